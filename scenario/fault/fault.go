@@ -1,0 +1,82 @@
+// Package fault describes what is wrong with a user's input and where, so that every reader of a
+// study or a weather record reports it in the same way: file, line, column, key, what was found, and
+// what to write instead.
+package fault
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+)
+
+// Most is the largest number of problems that one run reports.
+const Most = 10
+
+// Error is one problem in one place of a user's file. It prints as
+//
+//	FILE:LINE:COL: KEY: TEXT
+//
+// followed by the excerpt, where there is one; parts that are zero are left out.
+type Error struct {
+	File    string // as the user named it
+	Line    int    // 1-based, 0 when the whole file is meant
+	Col     int    // 1-based, in characters, 0 when the whole line is meant
+	Key     string // the key or column as the user wrote it, such as options[2].trench_drains.depth
+	Text    string // what is wrong, what was expected, what to do
+	Excerpt string // the offending line with a caret below it; may be empty
+}
+
+func (e *Error) Error() string {
+	var b strings.Builder
+	b.WriteString(e.File)
+	if e.Line > 0 {
+		fmt.Fprintf(&b, ":%d", e.Line)
+		if e.Col > 0 {
+			fmt.Fprintf(&b, ":%d", e.Col)
+		}
+	}
+	if b.Len() > 0 {
+		b.WriteString(": ")
+	}
+	if e.Key != "" {
+		b.WriteString(e.Key)
+		b.WriteString(": ")
+	}
+	b.WriteString(e.Text)
+	if e.Excerpt != "" {
+		b.WriteByte('\n')
+		b.WriteString(e.Excerpt)
+	}
+	return b.String()
+}
+
+// List collects problems, so that one run can report several.
+// The zero List is empty and ready to use.
+type List struct {
+	errs []error
+	more int
+}
+
+// Add appends a problem. After Most problems it only counts.
+func (l *List) Add(err error) {
+	if len(l.errs) == Most {
+		l.more++
+		return
+	}
+	l.errs = append(l.errs, err)
+}
+
+// Len is the number of problems added.
+func (l *List) Len() int { return len(l.errs) + l.more }
+
+// Err returns nil for an empty list, and otherwise one error that prints each problem on a line of its own.
+// errors.As finds the *Error values in it.
+func (l *List) Err() error {
+	switch {
+	case len(l.errs) == 0:
+		return nil
+	case l.more > 0:
+		return errors.Join(append(l.errs[:len(l.errs):len(l.errs)], fmt.Errorf("and %d more problems", l.more))...)
+	}
+	return errors.Join(l.errs...)
+}

@@ -1,0 +1,316 @@
+// Package result holds what the commands find, in the shape in which it is written as JSON.
+//
+// Lengths are m, storages mm, times days, rates 1/d, shares 0 to 1. A pointer or an empty value with omitempty is a
+// key that is left out where it does not apply; every other key is always there.
+package result
+
+// Version of the JSON; raised only when a key goes or changes its meaning.
+const Version = 1
+
+// Head stands first in the result of every command.
+type Head struct {
+	ResultsVersion int       `json:"results_version"`
+	Study          string    `json:"study"`
+	Tool           Tool      `json:"tool"`
+	Command        string    `json:"command"`
+	Inputs         []Input   `json:"inputs"`
+	Warnings       []Warning `json:"warnings"`
+	Cautions       []string  `json:"cautions"`
+}
+
+// Tool names the program that made a result.
+type Tool struct {
+	Name    string `json:"name"`
+	Version string `json:"version"`
+}
+
+// Input is a file that was read.
+type Input struct {
+	Role   string `json:"role"` // study or weather
+	File   string `json:"file"` // as the user named it
+	SHA256 string `json:"sha256"`
+}
+
+// Severities of a warning.
+const (
+	Warn = "warn"
+	Note = "note"
+)
+
+// Warning is something the reader must weigh. Text says what to do.
+type Warning struct {
+	Code      string `json:"code"`
+	Severity  string `json:"severity"`
+	Climate   string `json:"climate,omitempty"`
+	Condition string `json:"condition,omitempty"`
+	Option    string `json:"option,omitempty"`
+	Band      string `json:"band,omitempty"`
+	Text      string `json:"text"`
+}
+
+// KeyValue is a key of the study and the value in force, as text with its unit.
+type KeyValue struct {
+	Key   string `json:"key"`
+	Value string `json:"value"`
+}
+
+// Comparison is the result of compare.
+type Comparison struct {
+	Head
+	Declared map[string]string `json:"declared"`
+	Defaults []KeyValue        `json:"defaults"`
+	Settings Settings          `json:"settings"`
+	Bands    []Band            `json:"bands"`
+	Record   Record            `json:"record"`
+	Cases    []Case            `json:"cases"`
+}
+
+// Settings are the choices that shape the figures.
+type Settings struct {
+	YearStarts string  `json:"year_starts"` // English name of a month
+	ApartDays  float64 `json:"apart_days"`
+	Confidence float64 `json:"confidence"`
+	Resamples  int     `json:"resamples"`
+	Seed       uint64  `json:"seed"`
+	BlockYears float64 `json:"block_years"`
+	DecideOn   string  `json:"decide_on,omitempty"`
+	DecideBy   string  `json:"decide_by"`
+}
+
+// Band is a band of the study, with its level in every datum that is known.
+type Band struct {
+	Name           string   `json:"name"`
+	GivenAs        string   `json:"given_as"`
+	LevelM         float64  `json:"level_m"`
+	UntilM         float64  `json:"until_m"`
+	ElevationM     *float64 `json:"elevation_m,omitempty"`
+	BelowGroundM   float64  `json:"below_ground_m"`
+	WithinReadings *bool    `json:"within_readings,omitempty"` // left out when calibrated_to is not known
+}
+
+// Record describes the weather record and the years counted.
+type Record struct {
+	From          string   `json:"from"` // first and last time as the weather has them, ISO 8601
+	To            string   `json:"to"`
+	Step          string   `json:"step"` // such as 1 d or 15 min
+	StepDays      float64  `json:"step_days"`
+	Stamp         string   `json:"stamp"`
+	Rows          int      `json:"rows"`
+	WarmUpYears   int      `json:"warm_up_years"`
+	CountedFrom   string   `json:"counted_from"`
+	CountedTo     string   `json:"counted_to"`
+	YearsCounted  int      `json:"years_counted"`
+	PartialDays   float64  `json:"partial_days"`
+	GapsFilled    int      `json:"gaps_filled"`
+	RainMMPerYear float64  `json:"rain_mm_per_year"`
+	PETMMPerYear  *float64 `json:"pet_mm_per_year,omitempty"`
+}
+
+// Case is one climate and one condition of the works, with every option.
+type Case struct {
+	Climate   string   `json:"climate"`
+	Condition string   `json:"condition"`
+	Options   []Option `json:"options"`
+}
+
+// Option is what one option does.
+type Option struct {
+	Name              string       `json:"name"`
+	Baseline          bool         `json:"baseline"`
+	Measures          []string     `json:"measures"`
+	Rates             Rates        `json:"rates"`
+	Drains            []Drain      `json:"drains"`
+	RechargeMMPerYear float64      `json:"recharge_mm_per_year"`
+	ActualETMMPerYear *float64     `json:"actual_et_mm_per_year,omitempty"`
+	Level             Level        `json:"level"`
+	WaterBalance      Balance      `json:"water_balance"`
+	Bands             []BandFigure `json:"bands"`
+	Decision          *Decision    `json:"decision,omitempty"`
+}
+
+// Rates are the rates of the two stores as replayed.
+type Rates struct {
+	CoverSeepagePerDay         float64  `json:"cover_seepage_per_day"`
+	CoverPercolationPerDay     float64  `json:"cover_percolation_per_day"`
+	PercolationCeilingMMPerDay *float64 `json:"percolation_ceiling_mm_per_day,omitempty"`
+	DeepSeepagePerDay          float64  `json:"deep_seepage_per_day"`
+}
+
+// Drain is one drain of an option and what it carried over the counted years.
+type Drain struct {
+	Measure         string   `json:"measure"`
+	Layer           string   `json:"layer"` // cover or deep
+	RatePerDay      float64  `json:"rate_per_day"`
+	InvertM         float64  `json:"invert_m"` // above the base of its layer
+	CeilingMMPerDay *float64 `json:"ceiling_mm_per_day,omitempty"`
+	Law             string   `json:"law"`
+	RunningShare    float64  `json:"running_share"` // of the counted steps that end with water above the invert
+	MeanMMPerDay    float64  `json:"mean_mm_per_day"`
+	PeakMMPerDay    float64  `json:"peak_mm_per_day"` // largest flow at the end of a counted step
+	PeakLPerS       *float64 `json:"peak_l_per_s,omitempty"`
+}
+
+// Level sums up the end-of-step deep levels of the counted years.
+type Level struct {
+	MeanM float64 `json:"mean_m"`
+	MaxM  float64 `json:"max_m"`
+	Q50M  float64 `json:"q50_m"`
+	Q95M  float64 `json:"q95_m"`
+	Q99M  float64 `json:"q99_m"`
+}
+
+// Balance is the water balance of the record after the warm-up.
+type Balance struct {
+	Cover CoverBalance `json:"cover"`
+	Deep  DeepBalance  `json:"deep"`
+}
+
+// CoverBalance: in + unmet - seepage - percolation - drains - overflow - storage change = error.
+type CoverBalance struct {
+	InMM            float64 `json:"in_mm"`
+	SeepageMM       float64 `json:"seepage_mm"`
+	PercolationMM   float64 `json:"percolation_mm"`
+	DrainsMM        float64 `json:"drains_mm"`
+	OverflowMM      float64 `json:"overflow_mm"`
+	UnmetMM         float64 `json:"unmet_mm"`
+	StorageChangeMM float64 `json:"storage_change_mm"`
+	ErrorMM         float64 `json:"error_mm"`
+}
+
+// DeepBalance: in + lateral - seepage - drains - refused - storage change = error.
+type DeepBalance struct {
+	InMM            float64 `json:"in_mm"`
+	LateralMM       float64 `json:"lateral_mm"`
+	SeepageMM       float64 `json:"seepage_mm"`
+	DrainsMM        float64 `json:"drains_mm"`
+	RefusedMM       float64 `json:"refused_mm"`
+	StorageChangeMM float64 `json:"storage_change_mm"`
+	ErrorMM         float64 `json:"error_mm"`
+}
+
+// Interval is a lower and an upper limit at the confidence of the settings.
+type Interval [2]float64
+
+// BandFigure says how one option passes one band.
+type BandFigure struct {
+	Name                string      `json:"name"`
+	LevelM              float64     `json:"level_m"`
+	Events              int         `json:"events"`
+	EventsPerYear       float64     `json:"events_per_year"`
+	EventsPerYearCI     Interval    `json:"events_per_year_ci"`
+	DaysPerYear         float64     `json:"days_per_year"`
+	DaysPerYearCI       *Interval   `json:"days_per_year_ci,omitempty"`
+	DaysInBandPerYear   float64     `json:"days_in_band_per_year"`
+	AnnualProbability   float64     `json:"annual_probability"`
+	AnnualProbabilityCI Interval    `json:"annual_probability_ci"`
+	LongestDays         float64     `json:"longest_days"`
+	MeanSpanDays        *float64    `json:"mean_span_days,omitempty"`
+	PeakExcessM         *float64    `json:"peak_excess_m,omitempty"`
+	MeanExcessM         *float64    `json:"mean_excess_m,omitempty"`
+	LoadMDaysPerYear    float64     `json:"load_m_days_per_year"`
+	LoadMDaysPerYearCI  *Interval   `json:"load_m_days_per_year_ci,omitempty"`
+	DaysByMonth         [12]float64 `json:"days_by_month"` // per year, January first
+	Change              *Change     `json:"change,omitempty"`
+}
+
+// Change is the option against the baseline in the same years.
+type Change struct {
+	EventsPerYear     Difference `json:"events_per_year"`
+	DaysPerYear       Difference `json:"days_per_year"`
+	LoadMDaysPerYear  Difference `json:"load_m_days_per_year"`
+	AnnualProbability Difference `json:"annual_probability"`
+	ToldApart         bool       `json:"told_apart"`
+}
+
+// Difference is option minus baseline, so an improvement is negative.
+type Difference struct {
+	Difference   float64   `json:"difference"`
+	DifferenceCI *Interval `json:"difference_ci,omitempty"`
+	Ratio        *float64  `json:"ratio,omitempty"`
+	RatioCI      *Interval `json:"ratio_ci,omitempty"`
+	ShareBetter  float64   `json:"share_better"`
+	ShareEqual   float64   `json:"share_equal"`
+	YearsBetter  int       `json:"years_better"`
+	YearsEqual   int       `json:"years_equal"`
+	YearsWorse   int       `json:"years_worse"`
+}
+
+// Decision is the figure that ranks the options.
+type Decision struct {
+	Measure string    `json:"measure"`
+	Value   float64   `json:"value"`
+	CI      *Interval `json:"ci,omitempty"` // left out where the years hold no exceedance to resample
+	Rank    int       `json:"rank"`         // 1 is least; equal figures share a rank
+}
+
+// Check is the result of check.
+type Check struct {
+	Head
+	Understood []Understood  `json:"understood"`
+	Rates      Rates         `json:"rates"` // of the baseline
+	Options    []CheckOption `json:"options"`
+	Bands      []Band        `json:"bands"`
+	Record     Record        `json:"record"`
+	Audit      Audit         `json:"audit"`
+	Start      StartFound    `json:"start"`
+	YearStarts string        `json:"year_starts"`
+}
+
+// Understood is one key of the study with the value in force.
+type Understood struct {
+	Key     string `json:"key"`
+	Value   string `json:"value"`
+	Default bool   `json:"default"`
+}
+
+// CheckOption is what an option was understood to be.
+type CheckOption struct {
+	Name   string       `json:"name"`
+	Rates  Rates        `json:"rates"`
+	Drains []CheckDrain `json:"drains"`
+}
+
+// CheckDrain is a drain before any replay.
+type CheckDrain struct {
+	Measure         string   `json:"measure"`
+	Layer           string   `json:"layer"`
+	RatePerDay      float64  `json:"rate_per_day"`
+	HalfLifeDays    *float64 `json:"half_life_days,omitempty"`
+	InvertM         float64  `json:"invert_m"`
+	CeilingMMPerDay *float64 `json:"ceiling_mm_per_day,omitempty"`
+	From            string   `json:"from"` // how the rate came about, in words
+}
+
+// StartFound is the start that the baseline was replayed from.
+type StartFound struct {
+	CoverM float64 `json:"cover_m"`
+	DeepM  float64 `json:"deep_m"`
+}
+
+// Audit is what the weather record looks like.
+type Audit struct {
+	Wettest    []WetDay     `json:"wettest"`
+	Suspicious []Suspicious `json:"suspicious"`
+	Years      []YearRain   `json:"years"`
+}
+
+// WetDay is one of the wettest days of the record.
+type WetDay struct {
+	Date   string  `json:"date"`
+	RainMM float64 `json:"rain_mm"`
+}
+
+// Suspicious is a stretch of the record that a person should look at.
+type Suspicious struct {
+	Kind string `json:"kind"`
+	From string `json:"from"`
+	To   string `json:"to"`
+	Text string `json:"text"`
+}
+
+// YearRain is a calendar year of the record.
+type YearRain struct {
+	Year       int     `json:"year"`
+	RainMM     float64 `json:"rain_mm"`
+	ValidShare float64 `json:"valid_share"`
+}
