@@ -11,8 +11,6 @@
 // not a mistake and gives the empty result.
 package stats
 
-import "math"
-
 // Mean is the mean of a figure over the counted years, per year: the sum of byYear divided by its length. It is 0
 // without a year.
 func Mean(byYear []float64) float64 {
@@ -24,31 +22,6 @@ func Mean(byYear []float64) float64 {
 		a.add(x)
 	}
 	return a.total / float64(len(byYear))
-}
-
-// Quantile is the p-quantile of a sorted sample, by linear interpolation between order statistics: with x_1 <= ... <=
-// x_n and h = (n-1)p + 1,
-//
-//	x_[h] + (h - [h])*(x_[h]+1 - x_[h])       [h] the whole part of h
-//
-// p is from 0 (the smallest) to 1 (the largest); any other p, or a sample that is empty, has no quantile and gives
-// NaN. The sample must be in rising order.
-//
-// Source: Hyndman & Fan 1996, Am. Stat. 50:361-365, definition 7.
-func Quantile(sorted []float64, p float64) float64 {
-	if len(sorted) == 0 || !(p >= 0 && p <= 1) {
-		return math.NaN()
-	}
-	h := p * float64(len(sorted)-1)
-	i := int(h)
-	if i >= len(sorted)-1 {
-		return sorted[len(sorted)-1]
-	}
-	part := h - float64(i)
-	if part == 0 {
-		return sorted[i]
-	}
-	return sorted[i] + float64(part*(sorted[i+1]-sorted[i]))
 }
 
 // sum adds up terms with compensation (Kahan 1965, Commun. ACM 8:40), so that 24 steps of an hour make one day

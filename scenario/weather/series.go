@@ -1,0 +1,391 @@
+package weather
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+	"time"
+
+	"quietslope/scenario/fault"
+)
+
+// Limits of what can be weather.
+const (
+	// The most rain ever measured in a day is 1825 mm, on La Réunion in January 1966 (World Meteorological Organization,
+	// archive of weather and climate extremes; from memory).
+	maxRainPerDay = 2000 // mm
+	// Reference evapotranspiration of a hot and windy desert day is near 15 mm, and hours of such a day have about
+	// three times its mean (from memory).
+	maxPETPerDay = 50 // mm/d
+)
+
+const (
+	minStep = time.Minute
+	maxStep = day
+)
+
+// Ways in which a step can be missing.
+const (
+	rainMissing uint8 = 1 << iota
+	petMissing
+	rowsMissing
+)
+
+// gap is a stretch of steps without values. Its times are stamps in seconds since 1970.
+type gap struct {
+	from, to int64
+	line     int   // of the first row without a value, or of the row after missing rows
+	kind     uint8 // of all its steps together
+	hour     bool  // the jump over it is one step and one hour, where clocks may have changed
+}
+
+// maxGaps is the number of gaps that a message lists.
+const maxGaps = 10
+
+// series puts rows in a row.
+type series struct {
+	head []row // the first rows, until the step is known
+
+	step      int64 // s; 0 until it is known
+	first     int64 // stamp of the first row
+	last      int64 // stamp of the row taken last
+	lastLine  int
+	rain, pet []float64
+	scale     struct{ rainMul, rainDiv, petMul, petDiv, petMost float64 }
+
+	dayEnd   int64   // of the day of the last step, s
+	dayRain  float64 // in that day so far, mm
+	dayNoted bool
+
+	unsure   bool         // a row is out of place or lacks a time, so that gaps cannot be told
+	broken   bool         // so does the row read last
+	disorder *fault.Error // about the row before, while rows out of place follow each other
+	more     int          // further rows in a row that are like it
+	jump     int64        // steps from the row before to the last, 1 when there is no gap
+	jumps    int          // rows in a row after such a jump
+	jumpFrom int          // number of the line before the first of them
+
+	gaps     []gap // the first of them
+	gapCount int
+	gapSteps int64
+	gapEnd   int64                    // of the last gap, or one step before the first row
+	complete struct{ from, to int64 } // the longest stretch without gaps, to its last stamp; none if to < from
+}
+
+// take takes the next row that has a time.
+func (r *reader) take(w *row) error {
+	if r.step > 0 {
+		r.place(w)
+		return nil
+	}
+	kept := *w
+	kept.broken, r.broken = r.broken, false
+	kept.time, kept.rain, kept.pet = slices.Clone(w.time), slices.Clone(w.rain), slices.Clone(w.pet)
+	r.head = append(r.head, kept)
+	if len(r.head) < headRows {
+		return nil
+	}
+	return r.settle()
+}
+
+// settle finds the step, which is the commonest difference of the first times, and places the rows read so far.
+func (r *reader) settle() error {
+	if r.step > 0 || len(r.head) == 0 {
+		return nil
+	}
+	if len(r.head) == 1 {
+		if len(r.problems) > 0 {
+			return errStop
+		}
+		return r.fatal(r.head[0].line, "this is the only row; a record needs two at least, and a study some years of them")
+	}
+	step := commonest(r.head)
+	a, b := &r.head[0], &r.head[1]
+	switch d := time.Duration(step) * time.Second; {
+	case step == 0 && len(r.problems) > 0:
+		return errStop
+	case step == 0 && a.unix == b.unix:
+		return r.fatalTime(b, "repeats line %d, and so do all others; is this the right column?", a.line)
+	case step == 0:
+		return r.fatalTime(b, "comes before that of line %d; put the rows in the order of time, oldest first", a.line)
+	case d >= 28*day:
+		return r.fatal(0, "the rows are %s apart; calendar-month steps are not supported yet, steps run from 1 min to 1 d",
+			durationText(d))
+	case d > maxStep, d < minStep:
+		return r.fatal(0, "the rows are %s apart; steps run from 1 min to 1 d", durationText(d))
+	}
+	r.step = step
+	d := time.Duration(step) * time.Second
+	r.scale.rainMul, r.scale.rainDiv = r.rainUnit.factors(d)
+	r.scale.petMul, r.scale.petDiv = r.petUnit.factors(d)
+	r.scale.petMost = maxPETPerDay * d.Hours() / 24
+	if len(r.head) == headRows {
+		r.reserve()
+	}
+	for i := range r.head {
+		r.place(&r.head[i])
+	}
+	r.head = nil
+	return nil
+}
+
+// reserve makes room for the rows to come, as many as the file can hold at the length of the lines so far.
+func (r *reader) reserve() {
+	n := int(float64(r.size) / float64(r.read) * headRows * 1.01)
+	n = min(n, r.maxRows)
+	if n <= headRows {
+		return
+	}
+	r.rain = make([]float64, 0, n)
+	if r.petAt >= 0 {
+		r.pet = make([]float64, 0, n)
+	}
+}
+
+func (r *reader) fatalTime(w *row, format string, args ...any) error {
+	r.problem(w.line, r.src.Time, "%q %s", w.time, fmt.Sprintf(format, args...))
+	return errStop
+}
+
+// commonest returns the commonest positive difference of the times of successive rows in seconds, of equally common ones the
+// smallest, and 0 when there is none.
+func commonest(head []row) int64 {
+	var d []int64
+	for i := 1; i < len(head); i++ {
+		if s := head[i].unix - head[i-1].unix; s > 0 && !head[i].broken {
+			d = append(d, s)
+		}
+	}
+	slices.Sort(d)
+	var best int64
+	most, run := 0, 0
+	for i, s := range d {
+		if run++; i > 0 && d[i-1] != s {
+			run = 1
+		}
+		if run > most {
+			best, most = s, run
+		}
+	}
+	return best
+}
+
+// place checks that a row follows the one before and appends its values.
+func (r *reader) place(w *row) {
+	if r.lastLine == 0 {
+		r.first, r.gapEnd = w.unix, w.unix-r.step
+		r.complete.from, r.complete.to = w.unix, w.unix-r.step
+	} else if d := w.unix - r.last; d == r.step {
+		r.closeDisorder()
+		r.jump = 1
+	} else if !r.misplaced(w, d) {
+		return
+	}
+	r.last, r.lastLine = w.unix, w.line
+	if w.missing != 0 {
+		r.addGap(gap{from: w.unix, to: w.unix, line: w.line, kind: w.missing})
+	}
+	rain := w.rainV * r.scale.rainMul / r.scale.rainDiv
+	r.rain = append(r.rain, rain)
+	r.checkRain(w, rain)
+	if r.petAt >= 0 {
+		pet := w.petV * r.scale.petMul / r.scale.petDiv
+		r.pet = append(r.pet, pet)
+		if !(pet <= r.scale.petMost) {
+			r.problem(w.line, r.src.PET.Name, "%q is %.6g mm/d; evapotranspiration above %d mm/d is not possible, so check weather.columns.pet.unit",
+				w.pet, pet/r.scale.petMost*maxPETPerDay, maxPETPerDay)
+		}
+	}
+}
+
+// checkRain refuses rain that cannot have fallen in a step, or in the civil day in which the step begins.
+func (r *reader) checkRain(w *row, rain float64) {
+	start := w.unix + r.offset
+	if r.src.StampEnd {
+		start -= r.step
+	}
+	const seconds = int64(day / time.Second)
+	if start >= r.dayEnd || start < r.dayEnd-seconds {
+		r.dayEnd = start - (start%seconds+seconds)%seconds + seconds
+		r.dayRain, r.dayNoted = 0, false
+	}
+	r.dayRain += rain
+	switch {
+	case r.dayNoted || r.dayRain <= maxRainPerDay:
+		return
+	case !(rain <= maxRainPerDay):
+		r.problem(w.line, r.src.Rain.Name, "%q is %.6g mm of rain in a step; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
+			w.rain, rain, maxRainPerDay)
+	default:
+		r.problem(w.line, r.src.Rain.Name, "with %q the rain of this day adds up to %.6g mm; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
+			w.rain, r.dayRain, maxRainPerDay)
+	}
+	r.dayNoted = true
+}
+
+// misplaced deals with a row that does not come one step after the one before, but d seconds. It returns false when the
+// row is to be left out.
+func (r *reader) misplaced(w *row, d int64) (keep bool) {
+	if d > 0 && d%r.step == 0 {
+		r.closeDisorder()
+		r.skip(w, d/r.step)
+		return true
+	}
+	r.unsure = true
+	r.jump = 1
+	if r.disorder != nil {
+		r.more++
+		return d > 0
+	}
+	before := r.timeText(r.last)
+	var text string
+	switch {
+	case d == 0:
+		text = fmt.Sprintf("repeats line %d", r.lastLine)
+	case d < 0:
+		text = fmt.Sprintf("comes before %q in line %d", before, r.lastLine)
+	default:
+		text = fmt.Sprintf("comes %s after %q in line %d, but the step is %s", durationText(time.Duration(d)*time.Second), before,
+			r.lastLine, durationText(time.Duration(r.step)*time.Second))
+	}
+	hint := "; every time must be one step after the one before"
+	switch {
+	case r.clockChange(w.unix, d):
+		hint = clockHint
+	case r.layout.iso && r.step == int64(day/time.Second) && (d == 23*3600 || d == 25*3600):
+		hint = "; the offset from UTC changes here: keep one all year, so that days are 24 h long"
+	}
+	r.disorder = r.problem(w.line, r.src.Time, "%q %s%s", w.time, text, hint)
+	return d > 0
+}
+
+// closeDisorder ends a stretch of rows out of place, which is one problem.
+func (r *reader) closeDisorder() {
+	if r.disorder == nil {
+		return
+	}
+	if r.more > 0 {
+		r.disorder.Text += fmt.Sprintf(" (out of place too: %s after it)", count(r.more, "row"))
+	}
+	r.disorder, r.more = nil, 0
+}
+
+const clockHint = "; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso"
+
+// clockChange says whether a row that is d seconds after the one before is one hour off its place, at a time of the year
+// and the day at which clocks are changed. They are changed in the early hours, in most of the world in March or April
+// and in September, October or November (from memory).
+func (r *reader) clockChange(unix, d int64) bool {
+	const hour = 3600
+	if r.layout.iso || r.step >= int64(day/time.Second) || d-r.step != hour && r.step-d != hour {
+		return false
+	}
+	t := time.Unix(unix, 0).UTC()
+	switch t.Month() {
+	case time.March, time.April, time.September, time.October, time.November:
+		return t.Hour() <= 4
+	}
+	return false
+}
+
+// skip notes that rows are missing before w, which comes n steps after the row before. The same jump three times in a row
+// is a change of step.
+func (r *reader) skip(w *row, n int64) {
+	if n == r.jump {
+		r.jumps++
+	} else {
+		r.jump, r.jumps, r.jumpFrom = n, 1, r.lastLine
+	}
+	if r.jumps == 3 {
+		step := time.Duration(r.step) * time.Second
+		r.problem(w.line, r.src.Time, "%q: the step changes from %s to %s after line %d; every step must be the same",
+			w.time, durationText(step), durationText(time.Duration(n)*step), r.jumpFrom)
+		r.unsure = true
+	}
+	g := gap{from: r.last + r.step, to: w.unix - r.step, line: w.line, kind: rowsMissing}
+	g.hour = r.clockChange(w.unix, n*r.step)
+	r.addGap(g)
+}
+
+// addGap lengthens the last gap or adds another.
+func (r *reader) addGap(g gap) {
+	r.gapSteps += (g.to-g.from)/r.step + 1
+	if r.gapCount > 0 && g.from == r.gapEnd+r.step {
+		if r.gapCount <= len(r.gaps) {
+			last := &r.gaps[r.gapCount-1]
+			last.to, last.kind, last.hour = g.to, last.kind|g.kind, false
+		}
+	} else {
+		r.endStretch(g.from)
+		r.gapCount++
+		if len(r.gaps) < maxGaps {
+			r.gaps = append(r.gaps, g)
+		}
+	}
+	r.gapEnd = g.to
+}
+
+// endStretch notes that the steps since the last gap are complete up to the one before next.
+func (r *reader) endStretch(next int64) {
+	from, to := r.gapEnd+r.step, next-r.step
+	if to-from > r.complete.to-r.complete.from {
+		r.complete.from, r.complete.to = from, to
+	}
+}
+
+// timeText writes a stamp as the file does.
+func (r *reader) timeText(unix int64) string {
+	return r.layout.text(time.Unix(unix+r.offset, 0).UTC(), r.zone)
+}
+
+// end checks what can only be told at the end.
+func (r *reader) end() error {
+	if err := r.settle(); err != nil {
+		return err
+	}
+	r.closeDisorder()
+	if r.lastLine == 0 && len(r.problems) == 0 {
+		return r.fatal(0, "the file has a header but no rows")
+	}
+	if r.gapCount > 0 && !r.unsure && len(r.problems) < fault.Most {
+		r.refuseGaps()
+	}
+	return nil
+}
+
+// refuseGaps makes one problem of all gaps, with a list of the first.
+func (r *reader) refuseGaps() {
+	r.endStretch(r.last + r.step)
+	var b strings.Builder
+	fmt.Fprintf(&b, "%s without values, in %s; filling gaps is not supported yet, so complete the record",
+		count(int(r.gapSteps), "step"), count(r.gapCount, "gap"))
+	if r.complete.to >= r.complete.from {
+		fmt.Fprintf(&b, " or cut it to its longest stretch without gaps, %s to %s",
+			r.timeText(r.complete.from), r.timeText(r.complete.to))
+	}
+	b.WriteByte(':')
+	names := []string{r.src.Rain.Name}
+	if r.src.PET != nil {
+		names = append(names, r.src.PET.Name)
+	}
+	for _, g := range r.gaps {
+		fmt.Fprintf(&b, "\n    %s to %s, %s: ", r.timeText(g.from), r.timeText(g.to), count(int((g.to-g.from)/r.step+1), "step"))
+		switch {
+		case g.kind == rowsMissing:
+			fmt.Fprintf(&b, "no rows before line %d", g.line)
+		case g.kind&rowsMissing != 0:
+			fmt.Fprintf(&b, "no rows or no values near line %d", g.line)
+		case g.kind == rainMissing|petMissing:
+			fmt.Fprintf(&b, "no %s or %s from line %d", names[0], names[1], g.line)
+		default:
+			fmt.Fprintf(&b, "no %s from line %d", names[g.kind/petMissing], g.line)
+		}
+		if g.hour {
+			b.WriteString(clockHint)
+		}
+	}
+	if more := r.gapCount - len(r.gaps); more > 0 {
+		fmt.Fprintf(&b, "\n    and %s", count(more, "more gap"))
+	}
+	r.problem(r.gaps[0].line, "", "%s", b.String())
+}
