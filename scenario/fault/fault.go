@@ -76,7 +76,11 @@ func (l *List) Err() error {
 	case len(l.errs) == 0:
 		return nil
 	case l.more > 0:
-		return errors.Join(append(l.errs[:len(l.errs):len(l.errs)], fmt.Errorf("and %d more problems", l.more))...)
+		more := fmt.Errorf("and %d more problems", l.more)
+		if l.more == 1 {
+			more = errors.New("and 1 more problem")
+		}
+		return errors.Join(append(l.errs[:len(l.errs):len(l.errs)], more)...)
 	}
 	return errors.Join(l.errs...)
 }

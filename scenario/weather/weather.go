@@ -12,7 +12,7 @@ import (
 // Source says where a record is and how to read it.
 type Source struct {
 	Path     string   // file to open
-	Name     string   // the same file as the user wrote it, for messages
+	Name     string   // the same file as messages name it
 	Time     string   // name of the time column
 	Format   string   // of YYYY MM DD hh mm ss and literal characters, or iso; see CheckFormat
 	Rain     Column   // required
@@ -30,7 +30,7 @@ type Column struct {
 
 // Record is a complete record of constant step.
 type Record struct {
-	Name   string        // the file as the user wrote it
+	Name   string        // the file as messages name it
 	SHA256 string        // of the file's bytes as they are on disk, in hex
 	First  time.Time     // start of the first step; UTC, or for iso times the offset of the first row
 	Step   time.Duration // constant, 1 min to 1 d

@@ -1,0 +1,442 @@
+package scenario
+
+import (
+	"context"
+	"math"
+	"path/filepath"
+	"slices"
+	"time"
+
+	"quietslope/scenario/result"
+	"quietslope/scenario/weather"
+	"quietslope/stats"
+)
+
+// The case that is always there: the weather as recorded, the works as built.
+const (
+	AsRecorded = "as recorded"
+	AsBuilt    = "as built"
+)
+
+// prepared is a study with its record read and everything settled that all options share.
+type prepared struct {
+	study    *Study
+	record   *weather.Record
+	works    []*works
+	replayer *replayer
+	counted  period
+	baseline int
+	base     *trace // replay of the baseline
+}
+
+// prepare reads the record, replays the baseline and settles the years that are counted.
+func prepare(ctx context.Context, s *Study) (*prepared, error) {
+	record, err := weather.Read(ctx, weatherSource(s))
+	if err != nil {
+		return nil, err
+	}
+	p := &prepared{study: s, record: record}
+	for i := range s.Options {
+		p.works = append(p.works, newWorks(s, &s.Options[i]))
+		if s.Options[i].Baseline {
+			p.baseline = i
+		}
+	}
+	warm, err := newWarmUp(s, record, p.works)
+	if err != nil {
+		return nil, err
+	}
+	p.replayer = &replayer{study: s, record: record, warm: warm}
+
+	starts := time.Month(s.Count.YearStarts)
+	if starts == 0 {
+		starts, err = p.replayer.lowestMonth(ctx, p.works[p.baseline])
+		if err != nil {
+			return nil, err
+		}
+		if starts == 0 { // not one complete month, which is refused below
+			starts = record.First.Month()
+		}
+	}
+	p.counted = countYears(record, starts)
+	if p.counted.years == 0 {
+		return nil, noCompleteYear(s, record, starts)
+	}
+	p.base, err = p.replayer.replay(ctx, p.works[p.baseline], p.counted)
+	return p, err
+}
+
+func weatherSource(s *Study) weather.Source {
+	w := &s.Weather
+	src := weather.Source{
+		Path: w.Path, Name: w.Path, Time: w.Time, Format: w.Format,
+		Rain: weather.Column(w.Rain), StampEnd: w.StampEnd, Missing: w.Missing,
+	}
+	if w.PET != nil {
+		pet := weather.Column(*w.PET)
+		src.PET = &pet
+	}
+	return src
+}
+
+// Compare replays every option of a study on its whole record and says how each passes every band. A *fault.Error in
+// the chain means that the study or the record is at fault; any other error is ours, the machine's or the context's.
+func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
+	p, err := prepare(ctx, s)
+	if err != nil {
+		return nil, err
+	}
+	years := p.counted.years
+	resamples := stats.NewResamples(years, s.Count.Resamples, s.Count.MeanBlock, s.Count.Seed)
+
+	options := make([]optionFigures, len(p.works))
+	err = each(len(p.works), func(i int) error {
+		t := p.base
+		if i != p.baseline {
+			var err error
+			if t, err = p.replayer.replay(ctx, p.works[i], p.counted); err != nil {
+				return err
+			}
+		}
+		options[i] = p.figures(t)
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	err = each(len(options), func(i int) error {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		p.judge(&options[i], &options[p.baseline], resamples)
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	rank(s, options)
+
+	c := &result.Comparison{
+		Head:     p.head("compare"),
+		Declared: map[string]string(s.Declared),
+		Defaults: []result.KeyValue{},
+		Settings: p.settings(),
+		Bands:    p.bands(),
+		Record:   p.recordFound(),
+	}
+	for _, e := range s.Understood {
+		if e.Default {
+			c.Defaults = append(c.Defaults, result.KeyValue{Key: e.Key, Value: e.Value})
+		}
+	}
+	found := result.Case{Climate: AsRecorded, Condition: AsBuilt}
+	for i := range options {
+		found.Options = append(found.Options, options[i].Option)
+	}
+	c.Cases = []result.Case{found}
+	c.Warnings = append(p.studyWarnings(), p.resultWarnings(options, resamples)...)
+	return c, nil
+}
+
+// optionFigures is the result of one option, with what is still needed to compare it with others.
+type optionFigures struct {
+	result.Option
+	trace  traceSummary
+	passed []stats.Exceedance // by band
+}
+
+// traceSummary is what the warnings ask of a replay, so that its series need not be kept.
+type traceSummary struct {
+	works        *works
+	fromDry      float64
+	coverMax     float64 // m, over the record
+	deepMax      float64
+	refusedShare float64 // of what percolated to the deep store
+}
+
+// figures works out all that one replay says by itself.
+func (p *prepared) figures(t *trace) optionFigures {
+	w := t.works
+	years := float64(p.counted.years)
+	from, to := p.counted.from, p.counted.to
+	f := optionFigures{trace: summarise(t)}
+	f.Option = result.Option{
+		Name: w.option.Name, Baseline: w.option.Baseline, Measures: w.option.describe(), Rates: w.rates(),
+		Drains:            []result.Drain{},
+		RechargeMMPerYear: total(t.recharge[from:to]) / years,
+		Level:             levelFigures(t.deep[from:to]),
+		WaterBalance:      t.balance(),
+		Bands:             []result.BandFigure{},
+	}
+	if w.ground.Soil != nil {
+		actual := t.actualET / years
+		f.ActualETMMPerYear = &actual
+	}
+	for _, d := range w.drains {
+		f.Drains = append(f.Drains, p.drainFigures(t, d))
+	}
+	for i := range p.study.Bands {
+		b := &p.study.Bands[i]
+		e := stats.Exceed(t.deep, &p.counted.calendar, p.threshold(i), p.study.Count.Apart)
+		f.passed = append(f.passed, e)
+		f.Bands = append(f.Bands, p.bandFigure(b, &e))
+	}
+	return f
+}
+
+// threshold is a band as the counting sees it.
+func (p *prepared) threshold(i int) stats.Threshold {
+	bands := p.study.Bands
+	th := stats.Threshold{Level: bands[i].Level, Until: bands[i].Until, Next: math.Inf(1)}
+	if i+1 < len(bands) {
+		th.Next = bands[i+1].Level
+	}
+	return th
+}
+
+func levelFigures(levels []float64) result.Level {
+	q := stats.Quantiles(slices.Clone(levels), 0.50, 0.95, 0.99)
+	return result.Level{MeanM: total(levels) / float64(len(levels)), MaxM: largest(levels), Q50M: q[0], Q95M: q[1], Q99M: q[2]}
+}
+
+func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
+	w := t.works
+	levels, porosity, outlet := t.cover, w.ground.CoverPorosity, cascadeOutlet(w, d)
+	carried := t.counted.Cover.Drains
+	if d.layer == inDeep {
+		levels, porosity, carried = t.deep, w.ground.DeepPorosity, t.counted.Deep.Drains
+	}
+	running, peak := 0, 0.0
+	counted := levels[p.counted.from:p.counted.to]
+	for _, h := range counted {
+		if h > d.invert {
+			running++
+		}
+		peak = max(peak, outlet.Flow(storage(h, porosity)))
+	}
+	f := result.Drain{
+		Measure: d.measure, Layer: d.layer, RatePerDay: d.rate, InvertM: d.invert, CeilingMMPerDay: finite(d.ceiling),
+		Law: "linear", RunningShare: float64(running) / float64(len(counted)),
+		MeanMMPerDay: carried[d.index] / t.counted.Days, PeakMMPerDay: peak,
+	}
+	if area := p.study.Site.PlanArea; area > 0 {
+		// 1 mm over 1 m² is 1 L.
+		litres := peak * area / 86400
+		f.PeakLPerS = &litres
+	}
+	return f
+}
+
+func (t *trace) balance() result.Balance {
+	c, d := &t.whole.Cover, &t.whole.Deep
+	return result.Balance{
+		Cover: result.CoverBalance{
+			InMM: c.In, SeepageMM: c.Seepage, PercolationMM: c.Percolation, DrainsMM: total(c.Drains),
+			OverflowMM: c.Overflow, UnmetMM: c.Unmet,
+			StorageChangeMM: c.Change, ErrorMM: c.Error(),
+		},
+		Deep: result.DeepBalance{
+			InMM: d.In, LateralMM: d.Lateral, SeepageMM: d.Seepage, DrainsMM: total(d.Drains), RefusedMM: d.Refused,
+			StorageChangeMM: d.Change, ErrorMM: d.Error(),
+		},
+	}
+}
+
+// bandFigure is what can be said of one option at one band without comparing it.
+func (p *prepared) bandFigure(b *Band, e *stats.Exceedance) result.BandFigure {
+	years, confidence := p.counted.years, p.study.Count.Confidence
+	f := result.BandFigure{
+		Name: b.Name, LevelM: b.Level,
+		Events: e.Count, EventsPerYear: float64(e.Count) / float64(years),
+		DaysPerYear: stats.Mean(e.DaysByYear), DaysInBandPerYear: e.DaysInBand, AnnualProbability: stats.Mean(e.AnyByYear),
+		LongestDays: e.Longest, LoadMDaysPerYear: stats.Mean(e.LoadByYear), DaysByMonth: e.ByMonth,
+	}
+	lo, hi := stats.PoissonInterval(e.Count, float64(years), confidence)
+	f.EventsPerYearCI = result.Interval{lo, hi}
+	lo, hi = stats.BinomialInterval(e.YearsAbove, years, confidence)
+	f.AnnualProbabilityCI = result.Interval{lo, hi}
+	if e.Count > 0 {
+		f.MeanSpanDays, f.PeakExcessM, f.MeanExcessM = &e.MeanSpan, &e.PeakExcess, &e.MeanExcess
+	}
+	return f
+}
+
+// judge adds the intervals that come from resampling the years, and the change against the baseline.
+func (p *prepared) judge(f, base *optionFigures, r *stats.Resamples) {
+	confidence := p.study.Count.Confidence
+	for i := range f.Bands {
+		e, b := &f.passed[i], &f.Bands[i]
+		b.DaysPerYearCI = interval(r.Interval(e.DaysByYear, confidence))
+		b.LoadMDaysPerYearCI = interval(r.Interval(e.LoadByYear, confidence))
+		if f.Baseline {
+			continue
+		}
+		be := &base.passed[i]
+		c := &result.Change{}
+		for _, m := range measures {
+			d := r.Compare(m.byYear(e), m.byYear(be), confidence)
+			*m.of(c) = difference(d)
+			if m.name == p.study.Count.DecideBy {
+				c.ToldApart = d.ToldApart(confidence)
+			}
+		}
+		b.Change = c
+	}
+	if on := p.study.Count.DecideOn; on >= 0 {
+		m := measureNamed(p.study.Count.DecideBy)
+		value, ci := m.figure(&f.Bands[on])
+		f.Decision = &result.Decision{Measure: m.name, Value: value, CI: ci}
+	}
+}
+
+func interval(lo, hi float64, ok bool) *result.Interval {
+	if !ok {
+		return nil
+	}
+	return &result.Interval{lo, hi}
+}
+
+func difference(c stats.Change) result.Difference {
+	return result.Difference{
+		Difference: c.Difference, DifferenceCI: (*result.Interval)(c.DifferenceCI),
+		Ratio: c.Ratio, RatioCI: (*result.Interval)(c.RatioCI),
+		ShareBetter: c.ShareBetter, ShareEqual: c.ShareEqual,
+		YearsBetter: c.YearsBetter, YearsEqual: c.YearsEqual, YearsWorse: c.YearsWorse,
+	}
+}
+
+// measure is a figure by which options can be compared.
+type measure struct {
+	name   string // of count.decide_by
+	byYear func(*stats.Exceedance) []float64
+	of     func(*result.Change) *result.Difference
+	figure func(*result.BandFigure) (float64, *result.Interval)
+}
+
+// measures are those of count.decide_by.
+var measures = []measure{
+	{
+		"load",
+		func(e *stats.Exceedance) []float64 { return e.LoadByYear },
+		func(c *result.Change) *result.Difference { return &c.LoadMDaysPerYear },
+		func(b *result.BandFigure) (float64, *result.Interval) {
+			return b.LoadMDaysPerYear, b.LoadMDaysPerYearCI
+		},
+	},
+	{
+		"days",
+		func(e *stats.Exceedance) []float64 { return e.DaysByYear },
+		func(c *result.Change) *result.Difference { return &c.DaysPerYear },
+		func(b *result.BandFigure) (float64, *result.Interval) { return b.DaysPerYear, b.DaysPerYearCI },
+	},
+	{
+		"events",
+		func(e *stats.Exceedance) []float64 { return e.EventsByYear },
+		func(c *result.Change) *result.Difference { return &c.EventsPerYear },
+		func(b *result.BandFigure) (float64, *result.Interval) { return b.EventsPerYear, &b.EventsPerYearCI },
+	},
+	{
+		"annual_probability",
+		func(e *stats.Exceedance) []float64 { return e.AnyByYear },
+		func(c *result.Change) *result.Difference { return &c.AnnualProbability },
+		func(b *result.BandFigure) (float64, *result.Interval) {
+			return b.AnnualProbability, &b.AnnualProbabilityCI
+		},
+	},
+}
+
+func measureNamed(name string) *measure {
+	for i := range measures {
+		if measures[i].name == name {
+			return &measures[i]
+		}
+	}
+	panic("scenario: no measure " + name)
+}
+
+// rank orders the options by their decision figure; equal figures share a rank.
+func rank(s *Study, options []optionFigures) {
+	if s.Count.DecideOn < 0 {
+		return
+	}
+	for i := range options {
+		options[i].Decision.Rank = 1
+		for j := range options {
+			if options[j].Decision.Value < options[i].Decision.Value {
+				options[i].Decision.Rank++
+			}
+		}
+	}
+}
+
+// head is what every result begins with.
+func (p *prepared) head(command string) result.Head {
+	return result.Head{
+		ResultsVersion: result.Version,
+		Study:          p.study.Title,
+		Tool:           result.Tool{Name: "quietslope", Version: Version},
+		Command:        command,
+		// Base names only: the same study gives the same bytes from whatever folder it is run.
+		Inputs: []result.Input{
+			{Role: "study", File: filepath.Base(p.study.File), SHA256: p.study.SHA256},
+			{Role: "weather", File: filepath.Base(p.study.Weather.File), SHA256: p.record.SHA256},
+		},
+		Warnings: []result.Warning{},
+		Cautions: Cautions,
+	}
+}
+
+func (p *prepared) settings() result.Settings {
+	c := &p.study.Count
+	s := result.Settings{
+		YearStarts: p.counted.starts.String(), ApartDays: c.Apart, Confidence: c.Confidence, Resamples: c.Resamples,
+		Seed: c.Seed, BlockYears: c.MeanBlock, DecideBy: c.DecideBy,
+	}
+	if c.DecideOn >= 0 {
+		s.DecideOn = p.study.Bands[c.DecideOn].Name
+	}
+	return s
+}
+
+func (p *prepared) bands() []result.Band {
+	s := p.study
+	bands := []result.Band{}
+	thickness := s.Ground.CoverThickness + s.Ground.DeepThickness
+	for _, b := range s.Bands {
+		r := result.Band{
+			Name: b.Name, GivenAs: b.GivenAs, LevelM: b.Level, UntilM: b.Until, BelowGroundM: thickness - b.Level,
+		}
+		if ground := s.Site.GroundLevel; !math.IsNaN(ground) {
+			elevation := ground - thickness + b.Level
+			r.ElevationM = &elevation
+		}
+		if readings := s.Ground.CalibratedTo; !math.IsNaN(readings) {
+			within := b.Level <= readings
+			r.WithinReadings = &within
+		}
+		bands = append(bands, r)
+	}
+	return bands
+}
+
+func (p *prepared) recordFound() result.Record {
+	r, c := p.record, &p.counted
+	n := len(r.Rain)
+	years := float64(c.years)
+	stamp := "start"
+	if p.study.Weather.StampEnd {
+		stamp = "end"
+	}
+	found := result.Record{
+		From: r.ISO(0), To: r.ISO(n - 1), Step: r.StepText(), StepDays: r.Days(), Stamp: stamp, Rows: n,
+		WarmUpYears: p.replayer.warm.years,
+		CountedFrom: r.ISO(c.from), CountedTo: r.ISO(c.to - 1), YearsCounted: c.years,
+		PartialDays:   float64(n-(c.to-c.from)) * r.Days(),
+		RainMMPerYear: total(r.Rain[c.from:c.to]) / years,
+	}
+	if r.PET != nil {
+		pet := total(r.PET[c.from:c.to]) / years
+		found.PETMMPerYear = &pet
+	}
+	return found
+}

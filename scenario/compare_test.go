@@ -1,0 +1,369 @@
+package scenario
+
+import (
+	"context"
+	"encoding/csv"
+	"encoding/json"
+	"math"
+	"math/rand/v2"
+	"os"
+	"path/filepath"
+	"runtime"
+	"strconv"
+	"testing"
+	"time"
+
+	"github.com/google/go-cmp/cmp"
+	"pgregory.net/rapid"
+
+	"quietslope/scenario/result"
+	"quietslope/scenario/weather"
+)
+
+func load(t testing.TB, path string) *Study {
+	t.Helper()
+	s, err := Load(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
+}
+
+func compare(t testing.TB, s *Study) *result.Comparison {
+	t.Helper()
+	c, err := Compare(context.Background(), s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return c
+}
+
+// table reads a CSV file without its lines that begin with #, as columns by name.
+func table(t testing.TB, path string) (columns map[string][]string, rows int) {
+	t.Helper()
+	f, err := os.Open(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	r := csv.NewReader(f)
+	r.Comment = '#'
+	all, err := r.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	columns = map[string][]string{}
+	for i, name := range all[0] {
+		for _, row := range all[1:] {
+			columns[name] = append(columns[name], row[i])
+		}
+	}
+	return columns, len(all) - 1
+}
+
+func number(t testing.TB, text string) float64 {
+	t.Helper()
+	x, err := strconv.ParseFloat(text, 64)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return x
+}
+
+// TestRealWeather replays four years of real daily rain and compares with an independent program: an integrator with
+// event location for the levels, and a count written apart (testdata/ref/seattle.py, whose tables these are; the origin
+// of the rain is in testdata/seattle/ORIGIN.md).
+func TestRealWeather(t *testing.T) {
+	const (
+		levelTol = 1e-6 // m
+		apart    = 2e-6 // m; no reference level may be closer than this to a band, or a count could hang on rounding
+	)
+	s := load(t, "../testdata/seattle/study.yaml")
+	series, err := Levels(context.Background(), s, LevelsQuery{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	want, rows := table(t, "../testdata/ref/seattle-levels.csv")
+	if rows != series.Rows {
+		t.Fatalf("%d rows, want %d", series.Rows, rows)
+	}
+	worst := 0.0
+	for k, option := range series.Options {
+		for _, layer := range []struct {
+			name string
+			got  []float64
+		}{{"cover_m", series.Cover[k]}, {"deep_m", series.Deep[k]}} {
+			column, ok := want[option+"/"+layer.name]
+			if !ok {
+				t.Fatalf("the reference has no %s of %q", layer.name, option)
+			}
+			for i := range rows {
+				ref := number(t, column[i])
+				worst = max(worst, math.Abs(layer.got[i]-ref))
+				if layer.name != "deep_m" {
+					continue
+				}
+				for _, b := range s.Bands {
+					if math.Abs(ref-b.Level) < apart || math.Abs(ref-b.Until) < apart {
+						t.Fatalf("reference level of %q at %s is too close to band %q for an exact count", option, want["time"][i], b.Name)
+					}
+				}
+			}
+		}
+	}
+	if !(worst <= levelTol) {
+		t.Errorf("levels differ by up to %g m, more than %g m", worst, levelTol)
+	}
+
+	c := compare(t, s)
+	ref, rows := table(t, "../testdata/ref/seattle-counts.csv")
+	seen := 0
+	for i := range rows {
+		for _, o := range c.Cases[0].Options {
+			for _, b := range o.Bands {
+				if o.Name != ref["option"][i] || b.Name != ref["band"][i] {
+					continue
+				}
+				seen++
+				years := number(t, ref["years_counted"][i])
+				exact := func(what string, got float64) {
+					if want := number(t, ref[what][i]); got != want {
+						t.Errorf("%s, %s: %s is %v, want %v", o.Name, b.Name, what, got, want)
+					}
+				}
+				exact("years_counted", float64(c.Record.YearsCounted))
+				exact("events", float64(b.Events))
+				exact("days", math.Round(b.DaysPerYear*years))
+				exact("years_with", math.Round(b.AnnualProbability*years))
+				exact("longest_days", b.LongestDays)
+				if want := number(t, ref["load_m_days"][i]); math.Abs(b.LoadMDaysPerYear*years-want) > 1e-6*max(1, want) {
+					t.Errorf("%s, %s: load is %v m·d, want %v", o.Name, b.Name, b.LoadMDaysPerYear*years, want)
+				}
+				if b.PeakExcessM != nil && math.Abs(*b.PeakExcessM-number(t, ref["peak_excess_m"][i])) > levelTol {
+					t.Errorf("%s, %s: peak excess is %v m, want %s", o.Name, b.Name, *b.PeakExcessM, ref["peak_excess_m"][i])
+				}
+			}
+		}
+	}
+	if want := len(s.Options) * len(s.Bands); seen != want || rows != want {
+		t.Errorf("compared %d rows of %d, want %d", seen, rows, want)
+	}
+}
+
+// TestSameBytes holds the result to be the same on any number of processors, and from another folder.
+func TestSameBytes(t *testing.T) {
+	run := func(path string) string {
+		out, err := json.Marshal(compare(t, load(t, path)))
+		if err != nil {
+			t.Fatal(err)
+		}
+		return string(out)
+	}
+	want := run("../testdata/demo/study.yaml")
+	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(0))
+	for _, n := range []int{1, 2, 8} {
+		runtime.GOMAXPROCS(n)
+		if got := run("../testdata/demo/study.yaml"); got != want {
+			t.Errorf("GOMAXPROCS=%d changes the result", n)
+		}
+	}
+	absolute, err := filepath.Abs("../testdata/demo")
+	if err != nil {
+		t.Fatal(err)
+	}
+	t.Chdir(t.TempDir())
+	if got := run(filepath.Join(absolute, "study.yaml")); got != want {
+		t.Error("another folder changes the result")
+	}
+}
+
+// TestOrderOfOptions: an option's figures do not depend on which other options stand beside it, or in what order.
+func TestOrderOfOptions(t *testing.T) {
+	s := load(t, "../testdata/demo/study.yaml")
+	all := compare(t, s)
+	last := len(s.Options) - 1
+	s.Options[1], s.Options[last] = s.Options[last], s.Options[1]
+	turned := compare(t, s)
+	for _, pair := range [][2]int{{0, 0}, {1, last}, {last, 1}} {
+		if d := cmp.Diff(all.Cases[0].Options[pair[0]], turned.Cases[0].Options[pair[1]]); d != "" {
+			t.Errorf("option %d differs (-before +after):\n%s", pair[0], d)
+		}
+	}
+}
+
+// ground is a study without a file: two stores, bands and whatever options a test gives it.
+func ground(options ...Option) *Study {
+	inf := math.Inf(1)
+	options = append([]Option{{Name: "as it stands", Baseline: true}}, options...)
+	return &Study{
+		File: "study.yaml",
+		Ground: Ground{
+			Infiltration: 0.8, InfiltrationLimit: inf, Soil: &Soil{Available: 120, Readily: 0.5, CropFactor: 1},
+			CoverThickness: 4, CoverPorosity: 0.06, CoverSeepage: 0.011, Percolation: 0.0045, PercolationCap: inf, CoverFullAt: 4,
+			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, DeepFullAt: 9,
+			WarmUpYears: -1, CalibratedTo: 4.9,
+		},
+		Bands:    []Band{{Name: "onset", GivenAs: "level", Level: 2.5, Until: 2.5}},
+		Count:    Count{Apart: 10, Confidence: 0.9, Resamples: 200, Seed: 1, MeanBlock: 2, DecideBy: "load"},
+		Options:  options,
+		Site:     Site{GroundLevel: math.NaN()},
+		Declared: Declared{},
+	}
+}
+
+// invented is a record of made-up weather: showers that come in spells, a demand with the seasons.
+func invented(seed uint64, years int) *weather.Record {
+	rng := rand.New(rand.NewPCG(seed, 0))
+	first := time.Date(1990, time.January, 1, 0, 0, 0, 0, time.UTC)
+	n := int(first.AddDate(years, 0, 0).Sub(first).Hours() / 24)
+	r := &weather.Record{First: first, Step: 24 * time.Hour, Rain: make([]float64, n), PET: make([]float64, n)}
+	wet := false
+	for i := range n {
+		chance := 0.25
+		if wet {
+			chance = 0.65
+		}
+		if wet = rng.Float64() < chance; wet {
+			r.Rain[i] = 7 * rng.ExpFloat64()
+		}
+		r.PET[i] = 1.9 - 1.7*math.Cos(2*math.Pi*float64(i)/365.25)
+	}
+	return r
+}
+
+// deepLevels replays one option over a record of years, after a warm-up of one year.
+func deepLevels(t interface {
+	Helper()
+	Fatal(...any)
+}, s *Study, option int, r *weather.Record) *trace {
+	t.Helper()
+	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
+	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[option]), period{to: len(r.Rain)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return tr
+}
+
+// Levels are the quotient of storages that are exact to 1e-10 of themselves.
+const levelSlack = 1e-8 // m
+
+// TestMoreDrainageNeverRaises: whatever is added to an option, the deep level is nowhere higher.
+func TestMoreDrainageNeverRaises(t *testing.T) {
+	inf := math.Inf(1)
+	rapid.Check(t, func(t *rapid.T) {
+		trench := TrenchDrains{
+			Depth: rapid.Float64Range(0.2, 4).Draw(t, "depth"), Rate: rapid.Float64Range(1e-4, 2).Draw(t, "rate"),
+			Equivalent: math.NaN(), Efficiency: rapid.Float64Range(0.1, 1).Draw(t, "efficiency"), Ceiling: inf,
+		}
+		bores := BoredDrains{
+			Rate: rapid.Float64Range(1e-4, 1).Draw(t, "bored rate"), Level: rapid.Float64Range(0, 9).Draw(t, "level"),
+			Efficiency: 1, Ceiling: rapid.SampledFrom([]float64{inf, 0.3}).Draw(t, "ceiling"),
+		}
+		faster, deeper := trench, trench
+		faster.Rate *= rapid.Float64Range(1, 5).Draw(t, "times")
+		deeper.Depth += rapid.Float64Range(0, 4-trench.Depth).Draw(t, "plus")
+		cut := rapid.Float64Range(0, 0.5).Draw(t, "kept out")
+		option := func(ms ...Measure) Option { return Option{Name: "option", Measures: ms} }
+		s := ground(
+			option(Measure{Trench: &trench}),
+			option(Measure{Trench: &faster}),
+			option(Measure{Trench: &deeper}),
+			option(Measure{Trench: &trench}, Measure{Bored: &bores}),
+			option(Measure{Trench: &trench}, Measure{Cut: &SurfaceWater{KeptOut: cut}}),
+		)
+		r := invented(rapid.Uint64().Draw(t, "seed"), 2)
+		before := deepLevels(t, s, 0, r)
+		with := deepLevels(t, s, 1, r)
+		lower(t, "trenches", with, before)
+		for k, what := range []string{"faster trenches", "deeper trenches", "bored drains too", "water kept out too"} {
+			lower(t, what, deepLevels(t, s, k+2, r), with)
+		}
+	})
+}
+
+func lower(t *rapid.T, what string, more, less *trace) {
+	for i := range more.deep {
+		if more.deep[i] > less.deep[i]+levelSlack || more.cover[i] > less.cover[i]+levelSlack {
+			t.Fatalf("%s: step %d stands at %v m (cover %v m), without at %v m (cover %v m)",
+				what, i, more.deep[i], more.cover[i], less.deep[i], less.cover[i])
+		}
+	}
+}
+
+// TestPracticeAgrees holds what people who work with such slopes expect: common practice, no source.
+func TestPracticeAgrees(t *testing.T) {
+	s := ground(Option{Name: "trenches", Measures: []Measure{{Trench: &TrenchDrains{
+		Depth: 3, Rate: 0.05, Equivalent: math.NaN(), Efficiency: 1, Ceiling: math.Inf(1)}}}})
+	r := invented(7, 6)
+	before, after := deepLevels(t, s, 0, r), deepLevels(t, s, 1, r)
+
+	t.Run("draining the cover lowers the deep level", func(t *testing.T) {
+		if a, b := total(after.deep)/total(before.deep), largest(after.deep)/largest(before.deep); a > 0.95 || b > 0.95 {
+			t.Errorf("the mean falls to %.3f and the highest to %.3f of what they were", a, b)
+		}
+	})
+	t.Run("a band is passed with the deep layer far from full", func(t *testing.T) {
+		top := largest(before.deep)
+		if !(top > s.Bands[0].Level && top < s.Ground.DeepFullAt/2) {
+			t.Errorf("the highest level is %.2f m; the band begins at %v m, the layer is full at %v m", top, s.Bands[0].Level, s.Ground.DeepFullAt)
+		}
+	})
+	t.Run("a lower rate reacts more slowly, rising and falling", func(t *testing.T) {
+		slow := ground()
+		slow.Ground.DeepSeepage /= 3
+		fast := before
+		slower := deepLevels(t, slow, 0, r)
+		// Both move about means of their own; what counts is how fast, so levels are taken in their own spread.
+		if rise, fall := speeds(fast.deep); true {
+			slowRise, slowFall := speeds(slower.deep)
+			if !(slowRise < rise && slowFall < fall) {
+				t.Errorf("per day and spread: rising %.4f against %.4f, falling %.4f against %.4f", slowRise, rise, slowFall, fall)
+			}
+		}
+	})
+}
+
+// speeds are the fastest rise and fall in a step, as a share of the mean level.
+func speeds(h []float64) (rise, fall float64) {
+	for i := 1; i < len(h); i++ {
+		rise = max(rise, h[i]-h[i-1])
+		fall = max(fall, h[i-1]-h[i])
+	}
+	mean := total(h) / float64(len(h))
+	return rise / mean, fall / mean
+}
+
+// TestSupply works the water that enters by hand.
+func TestSupply(t *testing.T) {
+	r := &weather.Record{Step: 24 * time.Hour, Rain: []float64{10, 0, 100}, PET: []float64{2, 3, 1}}
+	for _, tt := range []struct {
+		name string
+		key  supplyKey
+		pet  bool
+		want []float64
+	}{
+		{"infiltration", supplyKey{share: 0.8, limit: math.Inf(1)}, false, []float64{8, 0, 80}},
+		{"limit of 2 mm/h over a day", supplyKey{share: 0.8, limit: 2}, false, []float64{8, 0, 48}},
+		{"a tenth kept out of what the limit lets in", supplyKey{share: 0.8, limit: 2, keptOut: 0.1}, false, []float64{7.2, 0, 43.2}},
+		{"less the demand", supplyKey{share: 0.8, limit: math.Inf(1)}, true, []float64{6, -3, 79}},
+		// From field capacity: 8 in, 2 asked; then 3 drawn from the soil; then 80 in, 1 asked, 3 to fill up.
+		{"with a soil", supplyKey{share: 0.8, limit: math.Inf(1), soil: Soil{Available: 100, Readily: 0.5, CropFactor: 1}, hasSoil: true}, true, []float64{6, 0, 76}},
+		{"crop factor", supplyKey{share: 0.8, limit: math.Inf(1), soil: Soil{Available: 100, Readily: 0.5, CropFactor: 2}, hasSoil: true}, true, []float64{4, 0, 72}},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			record := *r
+			if !tt.pet {
+				record.PET = nil
+			}
+			got := make([]float64, len(r.Rain))
+			newSupply(tt.key, &record).fill(got, 0)
+			for i := range got {
+				if math.Abs(got[i]-tt.want[i]) > 1e-12 {
+					t.Errorf("got %v, want %v", got, tt.want)
+					break
+				}
+			}
+		})
+	}
+}

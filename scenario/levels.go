@@ -1,0 +1,145 @@
+package scenario
+
+import (
+	"context"
+	"fmt"
+	"slices"
+	"strings"
+	"time"
+
+	"quietslope/scenario/fault"
+	"quietslope/scenario/weather"
+)
+
+// LevelsQuery says which levels are wanted. Empty fields mean all options, the weather as recorded, the works as built,
+// the whole record.
+type LevelsQuery struct {
+	Options            []string // names, in any order; the study's order is kept
+	Climate, Condition string
+	From, To           string // YYYY, YYYY-MM, YYYY-MM-DD or YYYY-MM-DDThh:mm; To includes the whole of what it names
+}
+
+// LevelSeries are the replayed series of some options, cut to the time asked for.
+type LevelSeries struct {
+	Options               []string
+	Rows                  int
+	Time                  func(i int) string // of row i, as the weather has it
+	Rain                  []float64          // mm per step
+	Recharge, Cover, Deep [][]float64        // per option: mm per step; end-of-step levels, m above the base of the layer
+}
+
+// Levels replays the options asked for. Errors are as for Compare.
+func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) {
+	if err := q.check(s); err != nil {
+		return nil, err
+	}
+	p, err := prepare(ctx, s)
+	if err != nil {
+		return nil, err
+	}
+	lo, hi, err := q.cut(p.record)
+	if err != nil {
+		return nil, err
+	}
+	var wanted []int
+	for i := range s.Options {
+		if len(q.Options) == 0 || slices.Contains(q.Options, s.Options[i].Name) {
+			wanted = append(wanted, i)
+		}
+	}
+	n := len(wanted)
+	series := &LevelSeries{
+		Rows: hi - lo, Time: func(i int) string { return p.record.Stamp(lo + i) }, Rain: p.record.Rain[lo:hi],
+		Recharge: make([][]float64, n), Cover: make([][]float64, n), Deep: make([][]float64, n),
+	}
+	for _, i := range wanted {
+		series.Options = append(series.Options, s.Options[i].Name)
+	}
+	err = each(n, func(k int) error {
+		t := p.base
+		if i := wanted[k]; i != p.baseline {
+			var err error
+			if t, err = p.replayer.replay(ctx, p.works[i], p.counted); err != nil {
+				return err
+			}
+		}
+		series.Recharge[k], series.Cover[k], series.Deep[k] = t.recharge[lo:hi], t.cover[lo:hi], t.deep[lo:hi]
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	return series, nil
+}
+
+// check refuses names that the study does not have.
+func (q *LevelsQuery) check(s *Study) error {
+	var known []string
+	for i := range s.Options {
+		known = append(known, s.Options[i].Name)
+	}
+	for i, name := range q.Options {
+		if !slices.Contains(known, name) {
+			return unknownName("--option", name, known)
+		}
+		if slices.Contains(q.Options[:i], name) {
+			return &fault.Error{Key: "--option", Text: fmt.Sprintf("%q is asked for twice; name each option once", name)}
+		}
+	}
+	if q.Climate != "" && q.Climate != AsRecorded {
+		return unknownName("--climate", q.Climate, []string{AsRecorded})
+	}
+	if q.Condition != "" && q.Condition != AsBuilt {
+		return unknownName("--condition", q.Condition, []string{AsBuilt})
+	}
+	return nil
+}
+
+func unknownName(flag, name string, known []string) error {
+	return &fault.Error{Key: flag, Text: fmt.Sprintf("the study has no %q; it has: %s", name, strings.Join(known, "; "))}
+}
+
+// cut finds the rows to write.
+func (q *LevelsQuery) cut(r *weather.Record) (lo, hi int, err error) {
+	n := len(r.Rain)
+	lo, hi = 0, n
+	if q.From != "" {
+		from, _, err := parseMoment("--from", q.From, r)
+		if err != nil {
+			return 0, 0, err
+		}
+		lo = min(max(firstStepAt(r, from), 0), n)
+	}
+	if q.To != "" {
+		_, end, err := parseMoment("--to", q.To, r)
+		if err != nil {
+			return 0, 0, err
+		}
+		hi = min(max(firstStepAt(r, end), 0), n)
+	}
+	if lo >= hi {
+		return 0, 0, &fault.Error{Key: "--from, --to",
+			Text: fmt.Sprintf("no step of the record lies in between; it runs from %s to %s", r.ISO(0), r.ISO(n-1))}
+	}
+	return lo, hi, nil
+}
+
+// parseMoment reads a time given on the command line as the stretch that it names: a year, a month, a day or a minute.
+func parseMoment(flag, text string, r *weather.Record) (from, end time.Time, err error) {
+	for _, f := range []struct {
+		layout              string
+		years, months, days int
+		rest                time.Duration
+	}{
+		{"2006", 1, 0, 0, 0},
+		{"2006-01", 0, 1, 0, 0},
+		{"2006-01-02", 0, 0, 1, 0},
+		{"2006-01-02T15:04", 0, 0, 0, time.Minute},
+	} {
+		if t, err := time.ParseInLocation(f.layout, text, r.First.Location()); err == nil {
+			return t, t.AddDate(f.years, f.months, f.days).Add(f.rest), nil
+		}
+	}
+	return from, end, &fault.Error{Key: flag,
+		Text: fmt.Sprintf("%q is not a time that exists; write 1998, 1998-11, 1998-11-30 or 1998-11-30T06:00", text)}
+}

@@ -1,0 +1,291 @@
+package scenario
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"runtime"
+	"sync"
+	"time"
+
+	"quietslope/cascade"
+	"quietslope/scenario/fault"
+	"quietslope/scenario/weather"
+)
+
+// maxWarmUp bounds what auto may ask for, y. Stores that need longer hardly react within any record.
+const maxWarmUp = 1000
+
+// warmUp is what is replayed before the record: whole years from its first step, from the beginning again where the
+// record is shorter.
+type warmUp struct {
+	years   int
+	repeats bool  // the record holds fewer whole years
+	passes  []int // the record's steps 0..passes[k]-1 are replayed, for each k in turn
+}
+
+// newWarmUp finds the warm-up of a study: as given, or for auto the least whole number of years that is at least 3 and
+// at least five times the longest time constant of either store over all options.
+func newWarmUp(s *Study, r *weather.Record, all []*works) (warmUp, error) {
+	years := s.Ground.WarmUpYears
+	if years < 0 {
+		slowest := math.Inf(1)
+		for _, w := range all {
+			slowest = min(slowest, w.minZeroInvertRate())
+		}
+		need := math.Ceil(max(3, 5/slowest/365.25))
+		if !(need <= maxWarmUp) {
+			return warmUp{}, &fault.Error{File: s.File, Key: "ground.warm_up",
+				Text: fmt.Sprintf("auto asks for more than %d years, since a store empties at only %s /d; give ground.start levels, or ground.warm_up in years", maxWarmUp, short(slowest))}
+		}
+		years = int(need)
+	}
+	w := warmUp{years: years}
+	ends := wholeYears(r)
+	if len(ends) == 0 {
+		w.years = 0 // refused later: there is no complete year to count either
+		return w, nil
+	}
+	w.repeats = years > len(ends)
+	for left := years; left > 0; left -= min(left, len(ends)) {
+		w.passes = append(w.passes, ends[min(left, len(ends))-1])
+	}
+	return w, nil
+}
+
+// trace is the replay of one option over the record.
+type trace struct {
+	works    *works
+	recharge []float64 // net input of the cover, mm per step
+	cover    []float64 // end-of-step level, m above the contact
+	deep     []float64 // end-of-step level, m above the base of the deep layer
+	actualET float64   // over the counted years, mm; 0 without a soil
+	start    StartLevels
+	fromDry  float64 // |difference| of the deep level at the first counted step when the replay starts dry, m
+
+	whole, counted cascade.Totals // over the record after the warm-up, and over the counted years
+}
+
+// replayer replays options on one record.
+type replayer struct {
+	study  *Study
+	record *weather.Record
+	warm   warmUp
+}
+
+// begin works out the water that reaches one option's cover over the record, and replays the warm-up up to its first
+// step. counted is the stretch over which actual evapotranspiration is added up.
+func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace, *cascade.Run, error) {
+	t := &trace{works: w, recharge: make([]float64, len(p.record.Rain))}
+
+	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
+	early := newSupply(w.supplyKey(), p.record)
+	scratch := make([]float64, p.longestPass())
+	for _, end := range p.warm.passes {
+		early.fill(scratch[:end], 0)
+	}
+	early.fill(t.recharge[:counted.from], 0)
+	early.actual = 0
+	early.fill(t.recharge[counted.from:counted.to], counted.from)
+	t.actualET = early.actual
+	early.fill(t.recharge[counted.to:], counted.to)
+
+	cover, deep, err := p.startStorages(w, t.recharge)
+	if err != nil {
+		return nil, nil, err
+	}
+	g := &w.ground
+	t.start = StartLevels{Cover: cover / storage(1, g.CoverPorosity), Deep: deep / storage(1, g.DeepPorosity)}
+	run, err := p.warmed(ctx, w, cover, deep)
+	return t, run, err
+}
+
+// lowestMonth is the calendar month in which the deep level of an option is lowest; see lowestMonth. Which month counts
+// first changes nothing in the levels, so it can be asked before anything is counted.
+func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error) {
+	t, run, err := p.begin(ctx, w, period{})
+	if err != nil {
+		return 0, err
+	}
+	deep := make([]float64, len(t.recharge))
+	if err := run.Replay(t.recharge, p.record.Days(), nil, deep); err != nil {
+		return 0, fmt.Errorf("option %q: %w", w.option.Name, err)
+	}
+	return lowestMonth(p.record, deep), nil
+}
+
+// replay runs one option through the warm-up and the record.
+func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace, error) {
+	t, run, err := p.begin(ctx, w, counted)
+	if err != nil {
+		return nil, err
+	}
+	n := len(t.recharge)
+	t.cover, t.deep = make([]float64, n), make([]float64, n)
+	origin := run.Totals()
+	var from, to cascade.Totals
+	parts := []struct {
+		lo, hi int
+		end    *cascade.Totals
+	}{{0, counted.from, &from}, {counted.from, counted.to, &to}, {counted.to, n, &t.whole}}
+	for _, part := range parts {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		err := run.Replay(t.recharge[part.lo:part.hi], p.record.Days(), t.cover[part.lo:part.hi], t.deep[part.lo:part.hi])
+		if err != nil {
+			return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+		}
+		*part.end = run.Totals()
+	}
+	t.whole = t.whole.Sub(origin)
+	t.counted = to.Sub(from)
+	if err := t.checkBalance(); err != nil {
+		return nil, err
+	}
+
+	first := min(counted.from+1, n)
+	dry, err := p.warmed(ctx, w, 0, 0)
+	if err != nil {
+		return nil, err
+	}
+	drained := make([]float64, first)
+	if err := dry.Replay(t.recharge[:first], p.record.Days(), nil, drained); err != nil {
+		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+	}
+	t.fromDry = math.Abs(t.deep[first-1]-drained[first-1]) / storage(1, w.ground.DeepPorosity)
+
+	toLevels(t.cover, w.ground.CoverPorosity)
+	toLevels(t.deep, w.ground.DeepPorosity)
+	return t, nil
+}
+
+// toLevels turns storages in mm into levels in m.
+func toLevels(storages []float64, porosity float64) {
+	for i, s := range storages {
+		storages[i] = s / storage(1, porosity)
+	}
+}
+
+func (p *replayer) longestPass() int {
+	longest := 0
+	for _, end := range p.warm.passes {
+		longest = max(longest, end)
+	}
+	return longest
+}
+
+// startStorages is where the warm-up begins: the given levels, or the steady state under the option's own mean recharge
+// over the whole years of the record from its first step. (The counted years would be circular: the month in which they
+// start is read off a replay.)
+func (p *replayer) startStorages(w *works, recharge []float64) (cover, deep float64, err error) {
+	g := &w.ground
+	if s := p.study.Ground.Start; s != nil {
+		return storage(s.Cover, g.CoverPorosity), storage(s.Deep, g.DeepPorosity), nil
+	}
+	ends := wholeYears(p.record)
+	n := len(recharge)
+	if len(ends) > 0 {
+		n = ends[len(ends)-1]
+	}
+	sum := 0.0
+	for _, depth := range recharge[:n] {
+		sum += depth
+	}
+	cover, deep, err = w.model.Steady(sum / (float64(n) * p.record.Days()))
+	if err != nil {
+		return 0, 0, p.study.Fault(w.option.Place, "%v; give ground.start levels, or a level at which the store is full", err)
+	}
+	return cover, deep, nil
+}
+
+// warmed starts the two stores at the given storages and replays the warm-up.
+func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*cascade.Run, error) {
+	run, err := cascade.NewRun(w.model, cover, deep)
+	if err != nil {
+		return nil, p.study.Fault(w.option.Place, "%v", err)
+	}
+	supply := newSupply(w.supplyKey(), p.record)
+	n := p.longestPass()
+	depths := make([]float64, n)
+	for _, end := range p.warm.passes {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		supply.fill(depths[:end], 0)
+		if err := run.Replay(depths[:end], p.record.Days(), nil, nil); err != nil {
+			return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+		}
+	}
+	return run, nil
+}
+
+// balanceTolerance is the largest water-balance error of a store, as a share of all that entered it and its largest storage.
+const balanceTolerance = 1e-9
+
+// checkBalance refuses a replay whose water does not add up: the fault would be ours. Called while levels are storages.
+func (t *trace) checkBalance() error {
+	in := 0.0
+	for _, depth := range t.recharge {
+		in += math.Abs(depth)
+	}
+	for _, store := range []struct {
+		name    string
+		err, in float64
+		largest float64
+	}{
+		{"cover", t.whole.Cover.Error(), in, largest(t.cover)},
+		{"deep", t.whole.Deep.Error(), t.whole.Deep.In + t.whole.Deep.Lateral, largest(t.deep)},
+	} {
+		if !(math.Abs(store.err) <= balanceTolerance*(store.in+store.largest)) {
+			return fmt.Errorf("option %q: the water balance of the %s store is off by %g mm; this is a fault of the program, please report it",
+				t.works.option.Name, store.name, store.err)
+		}
+	}
+	return nil
+}
+
+func total(xs []float64) float64 {
+	sum := 0.0
+	for _, x := range xs {
+		sum += x
+	}
+	return sum
+}
+
+func largest(xs []float64) float64 {
+	m := math.Inf(-1)
+	for _, x := range xs {
+		if x > m {
+			m = x
+		}
+	}
+	return m
+}
+
+// each calls f for 0..n-1 on all processors and returns the error of the lowest index, so that neither results nor errors
+// depend on how many processors there are.
+func each(n int, f func(i int) error) error {
+	errs := make([]error, n)
+	var wg sync.WaitGroup
+	free := make(chan struct{}, runtime.GOMAXPROCS(0))
+	for i := range n {
+		free <- struct{}{}
+		wg.Go(func() {
+			defer func() {
+				if v := recover(); v != nil { // a panic here would end the program, past every deferred call of main
+					errs[i] = fmt.Errorf("internal fault: %v", v)
+				}
+				<-free
+			}()
+			errs[i] = f(i)
+		})
+	}
+	wg.Wait()
+	for _, err := range errs {
+		if err != nil {
+			return err
+		}
+	}
+	return nil
+}

@@ -1,0 +1,181 @@
+// Package scenario puts a study together: it reads and checks the study file, works out what each option does to the
+// two stores, replays the weather for every option, and fills in the results.
+package scenario
+
+// Study is a study file as understood: every default filled in, every number in the units of the package comment of
+// cascade, except levels and lengths, which are in m.
+type Study struct {
+	File       string // as the user named it
+	SHA256     string // of the file's bytes, in hex
+	Title      string
+	PreparedBy string
+	CheckedBy  string
+
+	Weather  WeatherSpec
+	Ground   Ground
+	Bands    []Band // rising
+	Count    Count
+	Options  []Option // in the order of the file; exactly one has Baseline set
+	Site     Site
+	Declared Declared
+
+	Understood []Entry // every key with the value in force, in the order of the documentation
+
+	src    *source          // the text, for pointing into it; nil for a study that was not read
+	places map[string]Place // of every key that the study gives
+}
+
+// Entry is one key of the study with the value in force, as text with its unit.
+type Entry struct {
+	Key     string
+	Value   string
+	Default bool // the study did not give it
+}
+
+// WeatherSpec is the weather block.
+type WeatherSpec struct {
+	File     string // as written: a path from the study file's folder
+	Path     string // the same, joined to the folder of the study file
+	Time     string
+	Format   string
+	Rain     WeatherColumn
+	PET      *WeatherColumn // nil for none
+	StampEnd bool
+	Missing  []string
+	Place    Place // of weather.file
+}
+
+// WeatherColumn is a column of the weather file.
+type WeatherColumn struct{ Name, Unit string }
+
+// Place is where in the study file something stands, so that a check made later can still point at it.
+type Place struct {
+	Line, Col int
+	Key       string
+}
+
+// Ground is the slope as calibrated.
+type Ground struct {
+	Infiltration      float64 // share of the water at the surface
+	InfiltrationLimit float64 // mm/h; +Inf for none
+	Soil              *Soil   // nil for none
+
+	CoverThickness    float64 // m
+	CoverPorosity     float64 // drainable, share
+	CoverSeepage      float64 // 1/d
+	Percolation       float64 // 1/d
+	PercolationCap    float64 // mm/d; +Inf for none
+	CoverConductivity float64 // m/d; 0 when not given
+	CoverFullAt       float64 // m above the contact; +Inf for none
+
+	DeepThickness float64 // m
+	DeepPorosity  float64 // drainable, share
+	DeepSeepage   float64 // 1/d
+	Lateral       float64 // mm/d
+	DeepFullAt    float64 // m above the base of the deep layer; +Inf for none
+
+	Start        *StartLevels // nil for steady
+	WarmUpYears  int          // -1 for auto
+	CalibratedTo float64      // m; NaN when not known
+}
+
+// StartLevels are levels given for the start, m above the base of each layer.
+type StartLevels struct{ Cover, Deep float64 }
+
+// Soil is the soil-water block.
+type Soil struct {
+	Available  float64 // mm
+	Readily    float64 // share
+	CropFactor float64
+}
+
+// Band begins at a critical deep level and ends at the next band's.
+type Band struct {
+	Name    string
+	GivenAs string  // level, elevation or below_ground
+	Level   float64 // m above the base of the deep layer
+	Until   float64 // arrest level, same datum, <= Level
+	Place   Place
+}
+
+// Count is the count block.
+type Count struct {
+	Apart      float64 // d
+	YearStarts int     // 1 to 12; 0 for auto
+	Confidence float64 // share
+	Resamples  int
+	Seed       uint64
+	MeanBlock  float64 // y
+	DecideOn   int     // index into Bands; -1 where nothing is ranked: several bands, one option
+	DecideBy   string  // load, days, events or annual_probability
+}
+
+// Option is one thing that could be done.
+type Option struct {
+	Name     string
+	Baseline bool
+	Measures []Measure // in the order of the file; empty for nothing done
+	Place    Place
+}
+
+// Measure is one part of an option. Exactly one of the pointers is set.
+type Measure struct {
+	Key    string // as in the study: trench_drains, bored_drains, surface_water, set
+	Place  Place
+	Trench *TrenchDrains
+	Bored  *BoredDrains
+	Cut    *SurfaceWater
+	Set    []Assignment
+}
+
+// TrenchDrains act on the cover.
+type TrenchDrains struct {
+	Depth        float64 // m below ground
+	Rate         float64 // 1/d; 0 when worked out from the spacing
+	Spacing      float64 // m; 0 when the rate is given
+	Conductivity float64 // m/d; 0 for that of the cover
+	Equivalent   float64 // equivalent depth below drain level, m; NaN when not given
+	Efficiency   float64 // share
+	Ceiling      float64 // largest flow, mm/d; +Inf for none
+}
+
+// BoredDrains act on the deep layer.
+type BoredDrains struct {
+	Rate       float64 // 1/d
+	Level      float64 // m above the base of the deep layer
+	Efficiency float64 // share
+	Ceiling    float64 // largest flow, mm/d; +Inf for none
+	Number     int     // 0 when not given
+	Length     float64 // m; 0 when not given
+}
+
+// SurfaceWater keeps a share of the infiltration out.
+type SurfaceWater struct{ KeptOut float64 }
+
+// Assignment changes a calibrated number.
+type Assignment struct {
+	Key   string // such as cover.seepage
+	Value float64
+	Text  string // the value as typed
+	Place Place
+}
+
+// Site is the site block.
+type Site struct {
+	PlanArea    float64 // m2; 0 when not given
+	GroundLevel float64 // m on the site's datum; NaN when not given
+}
+
+// Declared holds the answers to what the tool cannot know, by key: yes, no or unknown.
+type Declared map[string]string
+
+// DeclaredKeys are the keys of Declared in the order of the documentation.
+var DeclaredKeys = []string{
+	"existing_slip_surface",
+	"rapid_movement_possible",
+	"ground_changed_since_calibration",
+	"iron_or_lime_in_water",
+	"perched_water",
+	"outlet_on_moving_ground",
+	"wells_or_buildings_nearby",
+}

@@ -1,0 +1,386 @@
+package scenario
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+	"time"
+
+	"quietslope/cascade"
+	"quietslope/scenario/result"
+	"quietslope/stats"
+)
+
+// Limits at which a warning is raised.
+const (
+	startFelt        = 0.01 // m of deep level at the first counted step that still depend on the start: judgement
+	closeToCapacity  = 0.10 // m below capacity within which peaks count as clipped: judgement
+	refusedShare     = 0.01 // of the percolation: judgement
+	drainDryShare    = 0.95 // of the steps on which the baseline's level is at or below a drain: judgement
+	fewEvents        = 5    // below which a rate says little: judgement
+	shortRecordYears = 30   // least length advised for extremes of groundwater level (Geosciences 2020, 10, 373)
+)
+
+// Plausible ranges. A number outside them is worth a second look, no more.
+const (
+	leastConductivity = 1e-11 * 86400 // m/d, of any soil: judgement
+	mostConductivity  = 1e-3 * 86400
+	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
+	mostPorosity      = 0.30
+	mostClayPorosity  = 0.10 // of a clay: judgement, after the same
+	leastDrainRate    = 1e-4 // 1/d: judgement
+	mostDrainRate     = 5.0  // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
+	mostTrenchDepth   = 6.0  // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
+	mostBoreLength    = 100.0
+	mostBoredShare    = 0.90 // efficiency of bored drains in clay: judgement
+)
+
+// summarise keeps of a replay what the warnings ask of it.
+func summarise(t *trace) traceSummary {
+	s := traceSummary{
+		works: t.works, fromDry: t.fromDry, coverMax: largest(t.cover), deepMax: largest(t.deep),
+	}
+	if in := t.whole.Deep.In; in > 0 {
+		s.refusedShare = t.whole.Deep.Refused / in
+	}
+	return s
+}
+
+func cascadeOutlet(w *works, d drainage) cascade.Outlet {
+	if d.layer == inDeep {
+		return w.model.Deep.Drains[d.index]
+	}
+	return w.model.Cover.Drains[d.index]
+}
+
+// warnings collects warnings in the order in which they are raised.
+type warnings []result.Warning
+
+func (ws *warnings) add(w result.Warning, format string, args ...any) {
+	w.Text = fmt.Sprintf(format, args...)
+	*ws = append(*ws, w)
+}
+
+func warn(code string) result.Warning { return result.Warning{Code: code, Severity: result.Warn} }
+func note(code string) result.Warning { return result.Warning{Code: code, Severity: result.Note} }
+
+// studyWarnings are those that need no option replayed but the baseline: what was declared, the ground, the bands, the
+// record and the works as planned.
+func (p *prepared) studyWarnings() []result.Warning {
+	ws := warnings{}
+	p.declaredWarnings(&ws)
+	p.bandWarnings(&ws)
+	p.groundWarnings(&ws)
+	p.recordWarnings(&ws)
+	for _, w := range p.works {
+		p.drainWarnings(&ws, w)
+	}
+	return ws
+}
+
+func (p *prepared) declaredWarnings(ws *warnings) {
+	d := p.study.Declared
+	const unknown = "unknown"
+	if d["existing_slip_surface"] == unknown {
+		ws.add(warn("existing_slip_surface_unknown"),
+			"It is not declared that the slope moves on an existing slip surface. The method is for slow movement on an old surface; find out and declare it before using any figure.")
+	}
+	if d["rapid_movement_possible"] == unknown {
+		ws.add(warn("rapid_movement_unknown"),
+			"It is not declared whether rapid movement is possible. Where it is, these figures must not be used; find out and declare it.")
+	}
+	var open []string
+	for _, key := range DeclaredKeys[2:] {
+		if d[key] == unknown {
+			open = append(open, key)
+		}
+	}
+	if len(open) > 0 {
+		ws.add(warn("declared_unanswered"), "Not answered under declared: %s. Answer each with yes or no, and weigh what a yes would change.", strings.Join(open, ", "))
+	}
+	drained := slices.ContainsFunc(p.works, func(w *works) bool { return len(w.drains) > 0 })
+	for _, yes := range []struct {
+		key, code, severity string
+		drains              bool // matters to drains only
+		text                string
+	}{
+		{"ground_changed_since_calibration", "ground_changed", result.Warn, false,
+			"The ground has changed since the calibration. Rates, porosities and critical levels may no longer hold; calibrate again, or set the bands anew from movement since the change."},
+		{"iron_or_lime_in_water", "drains_may_clog", result.Warn, true,
+			"Iron or lime in the water clogs drains. The figures hold for drains as built; plan access, flushing and inspection, and look at the baseline as the case in which they have stopped."},
+		{"perched_water", "perched_water", result.Note, false,
+			"Perched water is not in the model. Drains may lower the deep level and leave it."},
+		{"outlet_on_moving_ground", "outlet_on_moving_ground", result.Warn, true,
+			"An outlet on moving ground can shear or leak and then feeds the slide. Lead the water to stable ground and inspect the outlet."},
+		{"wells_or_buildings_nearby", "wells_or_buildings_nearby", result.Note, true,
+			"A lower water level can dry wells and settle foundations nearby. Check them, and what consents are needed."},
+	} {
+		if d[yes.key] == "yes" && (drained || !yes.drains) {
+			ws.add(result.Warning{Code: yes.code, Severity: yes.severity}, "%s", yes.text)
+		}
+	}
+}
+
+func (p *prepared) bandWarnings(ws *warnings) {
+	s := p.study
+	readings := s.Ground.CalibratedTo
+	given := map[string]bool{}
+	for i := range s.Bands {
+		b := &s.Bands[i]
+		given[b.GivenAs] = true
+		if b.Level > readings {
+			w := warn("band_beyond_readings")
+			w.Band = b.Name
+			ws.add(w, "The band begins at %.2f m, above the highest reading of the calibration (%.2f m). The response there is extrapolated; read more winters before relying on it.", b.Level, readings)
+		}
+	}
+	if math.IsNaN(readings) {
+		ws.add(warn("readings_unknown"), "ground.calibrated_to is not given, so no band is known to lie within the readings. Give the highest deep level in the readings used for calibration.")
+	}
+	if given["elevation"] && given["below_ground"] {
+		ws.add(warn("bands_in_two_datums"), "Some bands are given as an elevation and some as a depth below ground. Make sure that site.ground_level (%.2f m) is the ground from which those depths were measured.", s.Site.GroundLevel)
+	}
+	if on := s.Count.DecideOn; on >= 0 && !math.IsNaN(readings) && s.Bands[on].Until == s.Bands[on].Level {
+		w := note("no_arrest_level")
+		w.Band = s.Bands[on].Name
+		ws.add(w, "Onset and arrest are taken at the same level. Movement often stops at another level than it starts at; where readings of movement tell, give until.")
+	}
+}
+
+func (p *prepared) groundWarnings(ws *warnings) {
+	s := p.study
+	g := &s.Ground
+	switch {
+	case p.record.PET != nil && g.Soil == nil:
+		ws.add(note("drying_overstated"), "Evapotranspiration is drawn from the cover at the full rate, which overstates drying where the water table is deep. Give ground.soil to keep a soil-water balance.")
+	case p.record.PET == nil:
+		ws.add(note("no_evapotranspiration"), "The weather has no evapotranspiration: all that infiltrates is recharge, in summer too. Give weather.columns.pet and ground.soil unless the infiltration share was calibrated so.")
+	}
+	if !math.IsInf(g.InfiltrationLimit, 1) && p.record.Step > time.Hour {
+		ws.add(note("limit_hardly_acts"), "An infiltration limit hardly acts with steps of %s, over which rain is spread evenly. Give hourly or shorter steps, or lower the infiltration share instead.", p.record.StepText())
+	}
+	for _, q := range []struct {
+		key         string
+		value       float64
+		least, most float64
+		unit        string
+		scale       float64
+	}{
+		{"cover.drainable_porosity", g.CoverPorosity, leastPorosity, mostPorosity, "%", 100},
+		{"deep.drainable_porosity", g.DeepPorosity, 0, mostClayPorosity, "%", 100},
+		{"cover.conductivity", g.CoverConductivity, leastConductivity, mostConductivity, "m/d", 1},
+	} {
+		if q.value != 0 && !(q.value >= q.least && q.value <= q.most) {
+			ws.add(warn("implausible_ground"), "ground.%s is %s %s; usual are %s to %s %s. Check the unit and the source.",
+				q.key, short(q.value*q.scale), q.unit, short(q.least*q.scale), short(q.most*q.scale), q.unit)
+		}
+	}
+	if fast := g.CoverSeepage + g.Percolation; g.DeepSeepage > fast {
+		ws.add(warn("deep_faster_than_cover"), "The deep layer empties faster (%s /d) than the cover (%s /d). In fissured clay under a permeable cover it is usually the other way round; check that the rates are not swapped.",
+			short(g.DeepSeepage), short(fast))
+	}
+}
+
+func (p *prepared) recordWarnings(ws *warnings) {
+	if n := p.counted.years; n < shortRecordYears {
+		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
+	}
+	if p.replayer.warm.repeats {
+		ws.add(note("warm_up_repeats_record"), "The warm-up of %s is longer than the record, which was replayed from its beginning more than once to fill it.", plural(p.replayer.warm.years, "year"))
+	}
+}
+
+// drainWarnings hold a drain against the levels without works and against common practice.
+func (p *prepared) drainWarnings(ws *warnings, w *works) {
+	for _, d := range w.drains {
+		levels := p.base.cover
+		if d.layer == inDeep {
+			levels = p.base.deep
+		}
+		levels = levels[p.counted.from:p.counted.to]
+		dry := 0
+		for _, h := range levels {
+			if h <= d.invert {
+				dry++
+			}
+		}
+		share := float64(dry) / float64(len(levels))
+		at := warn("drain_runs_rarely")
+		at.Option = w.option.Name
+		switch {
+		case dry == len(levels):
+			at.Code = "drain_never_runs"
+			ws.add(at, "The %s lie at %.2f m and the baseline's %s level never rises above %.2f m: they do nothing in this record. Set them deeper.",
+				measureWords(d.measure), d.invert, d.layer, largest(levels))
+		case share > drainDryShare:
+			ws.add(at, "The %s lie at %.2f m, at or above the baseline's %s level on %.0f %% of the steps. They act on the highest levels only; make sure that this is meant.",
+				measureWords(d.measure), d.invert, d.layer, math.Floor(100*share))
+		}
+		if !(d.rate >= leastDrainRate && d.rate <= mostDrainRate) {
+			at.Code = "implausible_drain_rate"
+			ws.add(at, "The %s drain at %s /d; usual are %s to %s /d. Check conductivity, spacing and their units.",
+				measureWords(d.measure), short(d.rate), short(leastDrainRate), short(mostDrainRate))
+		}
+	}
+	for _, m := range w.option.Measures {
+		at := warn("")
+		at.Option = w.option.Name
+		switch {
+		case m.Trench != nil:
+			if m.Trench.Depth > mostTrenchDepth {
+				at.Code = "trench_deep"
+				ws.add(at, "Trenches %.1f m deep are beyond common practice (about %.0f m). Check that they can be built on moving ground.", m.Trench.Depth, mostTrenchDepth)
+			}
+			if k := m.Trench.Conductivity; k != 0 && !(k >= leastConductivity && k <= mostConductivity) {
+				at.Code = "implausible_ground"
+				ws.add(at, "The trench's conductivity is %s m/d; usual are %s to %s m/d. Check the unit and the source.", short(k), short(leastConductivity), short(mostConductivity))
+			}
+		case m.Bored != nil:
+			if m.Bored.Length > mostBoreLength {
+				at.Code = "bore_long"
+				ws.add(at, "Bores %.0f m long are beyond common practice (about %.0f m). Long bores deviate and miss the water.", m.Bored.Length, mostBoreLength)
+			}
+			if m.Bored.Efficiency > mostBoredShare {
+				at.Code = "bored_drains_efficient"
+				ws.add(at, "Bored drains are taken as %.0f %% efficient. In clay they often reach less water than planned; see what a lower efficiency does.", 100*m.Bored.Efficiency)
+			}
+		}
+	}
+}
+
+func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }
+
+// resultWarnings are those that the replays raise.
+func (p *prepared) resultWarnings(options []optionFigures, r *stats.Resamples) []result.Warning {
+	ws := warnings{}
+	for i := range options {
+		p.replayWarnings(&ws, &options[i])
+	}
+	p.countWarnings(&ws, options)
+	p.choiceWarnings(&ws, options, r)
+	return ws
+}
+
+func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
+	t := &f.trace
+	g := &t.works.ground
+	at := func(code string) result.Warning {
+		w := warn(code)
+		w.Option = f.Name
+		return w
+	}
+	if t.fromDry > startFelt {
+		ws.add(at("start_still_felt"), "Replayed from dry, the deep level at the first counted step differs by %.2f m. Give a longer ground.warm_up, or start levels that were measured.", t.fromDry)
+	}
+	if thickness := g.CoverThickness + g.DeepThickness; t.deepMax > thickness || t.coverMax > g.CoverThickness {
+		ws.add(at("level_above_ground"), "A level rises above ground (deep %.2f m of %.2f m, cover %.2f m of %.2f m). Outside the meaning of the model; give full_at, or an overflow that is there.",
+			t.deepMax, thickness, t.coverMax, g.CoverThickness)
+	}
+	if t.deepMax > g.DeepFullAt-closeToCapacity {
+		ws.add(at("peaks_clipped"), "The highest deep level (%.2f m) comes within %.0f cm of the level at which the layer is full (%.2f m). Peaks are clipped there, and figures of bands close below are too low.",
+			t.deepMax, 100*closeToCapacity, g.DeepFullAt)
+	}
+	if t.refusedShare > refusedShare {
+		ws.add(at("deep_refuses_water"), "The deep layer is full so often that it refuses %.1f %% of the percolation. The cover's level is then too low; check deep.drainable_porosity, deep.full_at and the rates.", 100*t.refusedShare)
+	}
+}
+
+// countWarnings say where the counts are too small to carry a rate, and where two measures point opposite ways.
+func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
+	for b, band := range p.study.Bands {
+		var none, few []string
+		var upper float64
+		for i := range options {
+			f := &options[i].Bands[b]
+			switch {
+			case f.Events == 0 && f.DaysPerYear == 0:
+				none = append(none, options[i].Name)
+				upper = f.EventsPerYearCI[1]
+			case f.Events < fewEvents:
+				few = append(few, fmt.Sprintf("%s (%d)", options[i].Name, f.Events))
+			}
+		}
+		if len(none) > 0 {
+			w := warn("no_events")
+			w.Band = band.Name
+			ws.add(w, "None in %s, which is not never: up to %s a year fit this record at %s %%. Options: %s.",
+				plural(p.counted.years, "year"), roundUp(upper), short(100*p.study.Count.Confidence), strings.Join(none, "; "))
+		}
+		if len(few) > 0 {
+			w := warn("few_events")
+			w.Band = band.Name
+			ws.add(w, "Fewer than %d events, too few for a rate; read the ranges. Options (events): %s.", fewEvents, strings.Join(few, "; "))
+		}
+	}
+	for i := range options {
+		for b := range options[i].Bands {
+			c := options[i].Bands[b].Change
+			if c == nil || c.DaysPerYear.Difference*c.EventsPerYear.Difference >= 0 {
+				continue
+			}
+			w := warn("days_and_events_disagree")
+			w.Option, w.Band = options[i].Name, options[i].Bands[b].Name
+			if c.DaysPerYear.Difference < 0 {
+				ws.add(w, "Fewer days but more events than the baseline: long events were split. Read days and load with the count.")
+			} else {
+				ws.add(w, "More days but fewer events than the baseline: events were joined. Read days and load with the count.")
+			}
+		}
+	}
+}
+
+// roundUp writes an upper limit with two significant digits, never lower than it is.
+func roundUp(x float64) string {
+	if x <= 0 {
+		return "0"
+	}
+	unit := math.Pow(10, math.Floor(math.Log10(x))-1)
+	return short(math.Ceil(x/unit-1e-9) * unit)
+}
+
+// choiceWarnings say what the record cannot tell about the order of the options.
+func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stats.Resamples) {
+	on := p.study.Count.DecideOn
+	if on < 0 || len(options) < 2 {
+		return
+	}
+	band := p.study.Bands[on].Name
+	m := measureNamed(p.study.Count.DecideBy)
+
+	var same []string
+	for i := range options {
+		if c := options[i].Bands[on].Change; c != nil && !c.ToldApart {
+			same = append(same, options[i].Name)
+		}
+	}
+	if len(same) > 0 {
+		w := warn("not_told_apart")
+		w.Band = band
+		ws.add(w, "Not told apart from the baseline on this record by %s: %s. Do not read a benefit, or none, into the difference.", measureTitle(m.name), strings.Join(same, "; "))
+	}
+
+	order := make([]int, len(options))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return options[a].Decision.Rank - options[b].Decision.Rank })
+	var pairs []string
+	for k := 1; k < len(order); k++ {
+		first, next := &options[order[k-1]], &options[order[k]]
+		if first.Baseline || next.Baseline { // said above
+			continue
+		}
+		c := r.Compare(m.byYear(&first.passed[on]), m.byYear(&next.passed[on]), p.study.Count.Confidence)
+		if !c.ToldApart(p.study.Count.Confidence) {
+			pairs = append(pairs, first.Name+" / "+next.Name)
+		}
+	}
+	if len(pairs) > 0 {
+		w := warn("order_not_told_apart")
+		w.Band = band
+		ws.add(w, "Neighbours in the order by %s that this record cannot tell apart: %s. Choose between them on other grounds.", measureTitle(m.name), strings.Join(pairs, "; "))
+	}
+}
+
+func measureTitle(name string) string { return strings.ReplaceAll(name, "_", " ") }

@@ -1,0 +1,299 @@
+package scenario
+
+import (
+	"math"
+	"os"
+	"regexp"
+	"slices"
+	"strings"
+	"testing"
+	"time"
+
+	"quietslope/scenario/result"
+	"quietslope/stats"
+)
+
+// codes are the codes of warnings, each once, in order.
+func codes(ws []result.Warning) []string {
+	var all []string
+	for _, w := range ws {
+		if !slices.Contains(all, w.Code) {
+			all = append(all, w.Code)
+		}
+	}
+	return all
+}
+
+// quiet is a prepared study that raises no warning of its own: everything declared, a long record with hours, a soil, a
+// band with an arrest level within the readings.
+func quiet() *prepared {
+	s := ground(Option{Name: "works"})
+	for _, key := range DeclaredKeys {
+		s.Declared[key] = "no"
+	}
+	s.Declared["existing_slip_surface"] = "yes"
+	s.Bands[0].Until = 2
+	r := record("1990-01-01T00:00", time.Hour, 100)
+	r.PET = make([]float64, 100)
+	p := &prepared{
+		study: s, record: r, replayer: &replayer{},
+		counted: period{years: shortRecordYears, to: 100},
+		base:    &trace{cover: make([]float64, 100), deep: make([]float64, 100)},
+	}
+	for i := range 100 {
+		p.base.cover[i], p.base.deep[i] = 4*float64(i)/99, 9*float64(i)/99
+	}
+	p.rework()
+	return p
+}
+
+func (p *prepared) rework() {
+	p.works = nil
+	for i := range p.study.Options {
+		p.works = append(p.works, newWorks(p.study, &p.study.Options[i]))
+	}
+}
+
+// TestStudyWarnings raises each warning that needs no option replayed at exactly its condition, and not just short of it.
+func TestStudyWarnings(t *testing.T) {
+	if ws := quiet().studyWarnings(); len(ws) > 0 {
+		t.Fatalf("the quiet study warns: %v", ws)
+	}
+	inf, nan := math.Inf(1), math.NaN()
+	trench := func(depth, rate float64) []Measure {
+		return []Measure{{Key: "trench_drains", Trench: &TrenchDrains{Depth: depth, Rate: rate, Equivalent: nan, Efficiency: 1, Ceiling: inf}}}
+	}
+	bored := func(level, efficiency, length float64) []Measure {
+		return []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: level, Efficiency: efficiency, Length: length, Ceiling: inf}}}
+	}
+	declare := func(key, answer string) func(*prepared) {
+		return func(p *prepared) { p.study.Declared[key] = answer }
+	}
+	drained := func(then func(*prepared)) func(*prepared) {
+		return func(p *prepared) { p.study.Options[1].Measures = trench(4, 0.05); then(p) }
+	}
+	for _, tt := range []struct {
+		name   string
+		change func(*prepared)
+		want   []string
+	}{
+		{"slip surface unknown", declare("existing_slip_surface", "unknown"), []string{"existing_slip_surface_unknown"}},
+		{"rapid movement unknown", declare("rapid_movement_possible", "unknown"), []string{"rapid_movement_unknown"}},
+		{"others unknown", func(p *prepared) {
+			declare("perched_water", "unknown")(p)
+			declare("wells_or_buildings_nearby", "unknown")(p)
+		}, []string{"declared_unanswered"}},
+		{"ground changed", declare("ground_changed_since_calibration", "yes"), []string{"ground_changed"}},
+		{"perched water", declare("perched_water", "yes"), []string{"perched_water"}},
+		{"iron, no drain", declare("iron_or_lime_in_water", "yes"), nil},
+		{"iron and drains", drained(declare("iron_or_lime_in_water", "yes")), []string{"drains_may_clog"}},
+		{"outlet moves", drained(declare("outlet_on_moving_ground", "yes")), []string{"outlet_on_moving_ground"}},
+		{"wells", drained(declare("wells_or_buildings_nearby", "yes")), []string{"wells_or_buildings_nearby"}},
+
+		{"band at the readings", func(p *prepared) { p.study.Ground.CalibratedTo = 2.5 }, nil},
+		{"band above the readings", func(p *prepared) { p.study.Ground.CalibratedTo = 2.4999 }, []string{"band_beyond_readings"}},
+		{"readings not known", func(p *prepared) { p.study.Ground.CalibratedTo = nan }, []string{"readings_unknown"}},
+		{"two datums", func(p *prepared) {
+			p.study.Bands = append(p.study.Bands, p.study.Bands[0], p.study.Bands[0])
+			p.study.Bands[1].GivenAs, p.study.Bands[2].GivenAs = "elevation", "below_ground"
+		}, []string{"bands_in_two_datums"}},
+		{"no arrest level on the deciding band", func(p *prepared) { p.study.Bands[0].Until = 2.5 }, []string{"no_arrest_level"}},
+		{"no arrest level, nothing decided", func(p *prepared) { p.study.Bands[0].Until, p.study.Count.DecideOn = 2.5, -1 }, nil},
+
+		{"no soil", func(p *prepared) { p.study.Ground.Soil = nil }, []string{"drying_overstated"}},
+		{"no evapotranspiration", func(p *prepared) { p.record.PET = nil }, []string{"no_evapotranspiration"}},
+		{"limit, hourly", func(p *prepared) { p.study.Ground.InfiltrationLimit = 5 }, nil},
+		{"limit, over an hour", func(p *prepared) {
+			p.study.Ground.InfiltrationLimit, p.record.Step = 5, time.Hour+time.Minute
+		}, []string{"limit_hardly_acts"}},
+		{"porosity in range", func(p *prepared) { p.study.Ground.CoverPorosity, p.study.Ground.DeepPorosity = 0.30, 0.10 }, nil},
+		{"porosity of the cover", func(p *prepared) { p.study.Ground.CoverPorosity = 0.301 }, []string{"implausible_ground"}},
+		{"porosity of the cover, low", func(p *prepared) { p.study.Ground.CoverPorosity = 0.0019 }, []string{"implausible_ground"}},
+		{"porosity of the clay", func(p *prepared) { p.study.Ground.DeepPorosity = 0.101 }, []string{"implausible_ground"}},
+		{"conductivity in m/s taken for m/d", func(p *prepared) { p.study.Ground.CoverConductivity = 1e-7 }, []string{"implausible_ground"}},
+		{"deep as fast as the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.0155 }, nil},
+		{"deep faster than the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.01551 }, []string{"deep_faster_than_cover"}},
+		{"29 years", func(p *prepared) { p.counted.years = 29 }, []string{"record_short"}},
+		{"warm-up again", func(p *prepared) { p.replayer.warm = warmUp{years: 4, repeats: true} }, []string{"warm_up_repeats_record"}},
+
+		// The baseline's levels rise evenly from 0 to the top in 100 steps.
+		{"dry on 95 of 100", func(p *prepared) { p.study.Options[1].Measures = bored(p.base.deep[94], 0.9, 100) }, nil},
+		{"dry on 96 of 100", func(p *prepared) { p.study.Options[1].Measures = bored(p.base.deep[95], 0.9, 100) }, []string{"drain_runs_rarely"}},
+		{"dry on all", func(p *prepared) { p.study.Options[1].Measures = bored(9, 0.9, 0) }, []string{"drain_never_runs"}},
+		{"dry on 96 of 100, cover", func(p *prepared) { p.study.Options[1].Measures = trench(4-p.base.cover[95], 0.05) }, []string{"drain_runs_rarely"}},
+		{"rates in range", func(p *prepared) { p.study.Options[1].Measures = append(trench(4, 5), bored(2, 0.5, 0)...) }, nil},
+		{"fast drain", func(p *prepared) { p.study.Options[1].Measures = trench(4, 5.1) }, []string{"implausible_drain_rate"}},
+		{"slow drain", func(p *prepared) { p.study.Options[1].Measures = trench(4, 9e-5) }, []string{"implausible_drain_rate"}},
+		{"six metres", func(p *prepared) {
+			p.study.Ground.CoverThickness = 8
+			p.study.Options[1].Measures = trench(6, 0.05)
+		}, nil},
+		{"deeper than six metres", func(p *prepared) {
+			p.study.Ground.CoverThickness = 8
+			p.study.Options[1].Measures = trench(6.1, 0.05)
+		}, []string{"trench_deep"}},
+		{"trench in another unit", func(p *prepared) {
+			p.study.Options[1].Measures = trench(4, 0.05)
+			p.study.Options[1].Measures[0].Trench.Conductivity = 100
+		}, []string{"implausible_ground"}},
+		{"long bore", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.9, 100.5) }, []string{"bore_long"}},
+		{"efficient bore", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.91, 0) }, []string{"bored_drains_efficient"}},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			p := quiet()
+			tt.change(p)
+			p.rework()
+			if got := codes(p.studyWarnings()); !slices.Equal(got, tt.want) {
+				t.Errorf("got %q, want %q", got, tt.want)
+			}
+		})
+	}
+}
+
+// TestReplayWarnings does the same for what a replay shows.
+func TestReplayWarnings(t *testing.T) {
+	for _, tt := range []struct {
+		name   string
+		change func(*traceSummary)
+		want   []string
+	}{
+		{"nothing", func(*traceSummary) {}, nil},
+		{"start forgotten to a centimetre", func(s *traceSummary) { s.fromDry = 0.01 }, nil},
+		{"start still felt", func(s *traceSummary) { s.fromDry = 0.0101 }, []string{"start_still_felt"}},
+		{"ten centimetres below capacity", func(s *traceSummary) { s.deepMax = 8.9 }, nil},
+		{"closer to capacity", func(s *traceSummary) { s.deepMax = 8.901 }, []string{"peaks_clipped"}},
+		{"a hundredth refused", func(s *traceSummary) { s.refusedShare = 0.01 }, nil},
+		{"more refused", func(s *traceSummary) { s.refusedShare = 0.0101 }, []string{"deep_refuses_water"}},
+		{"cover at the surface", func(s *traceSummary) { s.coverMax = 4 }, nil},
+		{"cover above the surface", func(s *traceSummary) { s.coverMax = 4.001 }, []string{"level_above_ground"}},
+		{"deep above ground", func(s *traceSummary) { s.deepMax, s.works.ground.DeepFullAt = 13.001, math.Inf(1) }, []string{"level_above_ground"}},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			p := quiet()
+			f := optionFigures{Option: result.Option{Name: "works"}, trace: traceSummary{works: p.works[1]}}
+			tt.change(&f.trace)
+			var ws warnings
+			p.replayWarnings(&ws, &f)
+			if got := codes(ws); !slices.Equal(got, tt.want) {
+				t.Errorf("got %q, want %q", got, tt.want)
+			}
+		})
+	}
+}
+
+// TestCountWarnings does the same for the counts and the choice between options.
+func TestCountWarnings(t *testing.T) {
+	// yearly is an option whose years hold the given events, days and load, equal numbers of each.
+	yearly := func(name string, baseline bool, events, days func(year int) float64) optionFigures {
+		f := optionFigures{Option: result.Option{Name: name, Baseline: baseline}, passed: []stats.Exceedance{{}}}
+		e := &f.passed[0]
+		for y := range shortRecordYears {
+			d := days(y)
+			e.EventsByYear = append(e.EventsByYear, events(y))
+			e.DaysByYear, e.LoadByYear = append(e.DaysByYear, d), append(e.LoadByYear, d)
+			above := 0.0
+			if d > 0 {
+				above = 1
+				e.YearsAbove++
+			}
+			e.AnyByYear = append(e.AnyByYear, above)
+			e.Count += int(events(y))
+		}
+		return f
+	}
+	in := func(n int, x float64) func(int) float64 { // x in the first n years
+		return func(year int) float64 {
+			if year < n {
+				return x
+			}
+			return 0
+		}
+	}
+	for _, tt := range []struct {
+		name   string
+		option optionFigures
+		want   []string
+	}{
+		{"told apart", yearly("works", false, in(5, 1), in(5, 10)), nil},
+		{"four events", yearly("works", false, in(4, 1), in(4, 10)), []string{"few_events"}},
+		{"none", yearly("works", false, in(0, 1), in(0, 10)), []string{"no_events"}},
+		{"days but no counted event", yearly("works", false, in(0, 1), in(1, 10)), []string{"few_events"}},
+		{"the same", yearly("works", false, in(20, 1), in(20, 20)), []string{"not_told_apart"}},
+		{"better in four years only", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(4, 5)(y) }), []string{"not_told_apart"}},
+		{"better in five", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(5, 5)(y) }), nil},
+		{"fewer days, more events", yearly("works", false, in(25, 1), in(10, 20)), []string{"days_and_events_disagree"}},
+		{"more days, fewer events", yearly("works", false, in(10, 1), in(26, 20)), []string{"days_and_events_disagree"}},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			p := quiet()
+			r := stats.NewResamples(shortRecordYears, 400, 1, 1)
+			options := []optionFigures{yearly("as it stands", true, in(20, 1), in(20, 20)), tt.option}
+			for i := range options {
+				options[i].trace.works = p.works[i]
+				options[i].Bands = []result.BandFigure{p.bandFigure(&p.study.Bands[0], &options[i].passed[0])}
+			}
+			for i := range options {
+				p.judge(&options[i], &options[0], r)
+			}
+			rank(p.study, options)
+			if got := codes(p.resultWarnings(options, r)); !slices.Equal(got, tt.want) {
+				t.Errorf("got %q, want %q", got, tt.want)
+			}
+		})
+	}
+}
+
+// TestNeighboursInOrder: two options that differ from the baseline but not from each other.
+func TestNeighboursInOrder(t *testing.T) {
+	s := load(t, "../testdata/demo/study.yaml")
+	c := compare(t, s)
+	i := slices.IndexFunc(c.Warnings, func(w result.Warning) bool { return w.Code == "order_not_told_apart" })
+	if i < 0 || !strings.Contains(c.Warnings[i].Text, "trenches 8 m apart / trenches 12 m apart") {
+		t.Error("nobody says that 8 m and 12 m are not told apart")
+	}
+}
+
+// TestWarningsSay holds every warning of the demo to the form that readers and scripts rely on.
+func TestWarningsSay(t *testing.T) {
+	s := load(t, "../testdata/demo/study.yaml")
+	for _, key := range DeclaredKeys {
+		s.Declared[key] = "unknown"
+	}
+	for _, w := range compare(t, s).Warnings {
+		if w.Text == "" || !strings.HasSuffix(w.Text, ".") || strings.ToLower(w.Code) != w.Code || (w.Severity != result.Warn && w.Severity != result.Note) {
+			t.Errorf("%+v", w)
+		}
+	}
+}
+
+func TestRoundUp(t *testing.T) {
+	for _, tt := range []struct {
+		x    float64
+		want string
+	}{{0, "0"}, {0.0768, "0.077"}, {0.1, "0.1"}, {0.101, "0.11"}, {2.996, "3"}, {12.3, "13"}} {
+		if got := roundUp(tt.x); got != tt.want {
+			t.Errorf("roundUp(%v) is %s, want %s", tt.x, got, tt.want)
+		}
+	}
+}
+
+// TestGuideKnowsWarnings holds the contributor guide to the codes that the source can raise.
+func TestGuideKnowsWarnings(t *testing.T) {
+	read := func(path string) string {
+		text, err := os.ReadFile(path)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return string(text)
+	}
+	source, guide := read("warnings.go"), read("../DEVELOPERS.md")
+	found := regexp.MustCompile(`(?:warn|note|at)\("([a-z_]+)"\)|Code = "([a-z_]+)"|"([a-z_]+)", result\.(?:Warn|Note)`).FindAllStringSubmatch(source, -1)
+	if len(found) < 25 {
+		t.Fatalf("only %d codes found in the source", len(found))
+	}
+	for _, m := range found {
+		if code := m[1] + m[2] + m[3]; !strings.Contains(guide, "`"+code+"`") {
+			t.Errorf("DEVELOPERS.md does not say where %s comes from", code)
+		}
+	}
+}
