@@ -1,0 +1,177 @@
+package main
+
+import (
+	"slices"
+	"strings"
+
+	"github.com/urfave/cli/v2"
+)
+
+const completionWord = "--generate-bash-completion"
+
+// arrange prepares a command line for the library, which would take every word after the first argument for an
+// argument too: options come first, then "--", then the arguments. What the library would misread or report badly is
+// refused here. An option is written -name or --name, its value after = or as the next word.
+func arrange(app *cli.App, args []string) ([]string, error) {
+	if len(args) > 0 && args[len(args)-1] == completionWord {
+		return args, nil
+	}
+	if len(args) == 0 {
+		return nil, nil
+	}
+	name, rest := args[0], args[1:]
+	switch name {
+	case "-h", "--help", "-help", "help", "h":
+		if name != "help" && name != "h" || len(rest) == 0 || isHelp(rest[0]) {
+			return []string{"--help"}, nil
+		}
+		if app.Command(rest[0]) == nil {
+			return nil, unknownCommand(app, rest[0])
+		}
+		return []string{"help", rest[0]}, nil
+	case "-v", "--version", "-version":
+		return []string{"--version"}, nil
+	}
+	if strings.HasPrefix(name, "-") {
+		return nil, usagef("", "unknown option %q before a command; the command comes first", name)
+	}
+	command := app.Command(name)
+	if command == nil {
+		return nil, unknownCommand(app, name)
+	}
+	before := rest
+	if i := slices.Index(rest, "--"); i >= 0 {
+		before = rest[:i]
+	}
+	if slices.ContainsFunc(before, isHelp) {
+		return []string{name, "--help"}, nil
+	}
+	options, arguments, err := split(command, rest)
+	if err != nil {
+		return nil, err
+	}
+	if err := oneStudy(name, arguments); err != nil {
+		return nil, err
+	}
+	return slices.Concat([]string{name}, options, []string{"--"}, arguments), nil
+}
+
+func isHelp(word string) bool { return word == "-h" || word == "--help" || word == "-help" }
+
+// oneStudy demands a single argument.
+func oneStudy(command string, arguments []string) error {
+	switch {
+	case len(arguments) == 0:
+		return usagef(command, "name the study file, as in: quietslope %s study.yaml", command)
+	case len(arguments) > 1:
+		return usagef(command, "one study file at a time, got %q and %q", arguments[0], arguments[1])
+	case arguments[0] == "":
+		return usagef(command, "the name of the study file is empty")
+	}
+	return nil
+}
+
+// split parts the options of a command, with their values, from its arguments.
+func split(command *cli.Command, words []string) (options, arguments []string, err error) {
+	given := map[string]bool{}
+	for i := 0; i < len(words); i++ {
+		word := words[i]
+		if word == "--" {
+			return options, append(arguments, words[i+1:]...), nil
+		}
+		if len(word) < 2 || word[0] != '-' {
+			arguments = append(arguments, word)
+			continue
+		}
+		name, _, joined := strings.Cut(strings.TrimPrefix(strings.TrimPrefix(word, "-"), "-"), "=")
+		flag := flagOf(command, name)
+		if flag == nil {
+			return nil, nil, unknownOption(command, word, name)
+		}
+		if _, repeatable := flag.(*cli.StringSliceFlag); !repeatable && given[name] {
+			return nil, nil, usagef(command.Name, "--%s is given twice", name)
+		}
+		given[name] = true
+		options = append(options, word)
+		if valued, ok := flag.(cli.DocGenerationFlag); joined || !ok || !valued.TakesValue() {
+			continue
+		}
+		if i++; i == len(words) || strings.HasPrefix(words[i], "--") {
+			return nil, nil, usagef(command.Name, "--%s needs a value", name)
+		}
+		options = append(options, words[i])
+	}
+	return options, arguments, nil
+}
+
+func flagOf(command *cli.Command, name string) cli.Flag {
+	for _, f := range command.Flags {
+		if slices.Contains(f.Names(), name) {
+			return f
+		}
+	}
+	return nil
+}
+
+func unknownOption(command *cli.Command, word, name string) error {
+	var known []string
+	for _, f := range command.Flags {
+		known = append(known, f.Names()[0])
+	}
+	if near := nearest(name, known); near != "" {
+		return usagef(command.Name, "unknown option %s; did you mean --%s?", word, near)
+	}
+	return usagef(command.Name, "unknown option %s; there are --%s", word, strings.Join(known, ", --"))
+}
+
+func unknownCommand(app *cli.App, name string) error {
+	known := []string{"help"}
+	for _, c := range app.Commands {
+		known = append(known, c.Name)
+	}
+	if near := nearest(name, known); near != "" {
+		return usagef("", "unknown command %q; did you mean %s?", name, near)
+	}
+	if strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml") {
+		return usagef("", "a command comes before the study file; did you mean quietslope compare %s?", name)
+	}
+	return usagef("", "unknown command %q", name)
+}
+
+// nearest finds the known word that a mistyped one most likely stands for; "" when none is close.
+func nearest(word string, known []string) string {
+	best, least := "", 1+max(1, len(word)/3)
+	for _, k := range known {
+		if d := edits(word, k); d < least {
+			best, least = k, d
+		}
+	}
+	return best
+}
+
+// edits is the least number of letters to insert, delete, replace or swap with their neighbour to turn a into b
+// (optimal string alignment).
+func edits(a, b string) int {
+	x, y := []rune(a), []rune(b)
+	rows := make([][]int, len(x)+1)
+	for i := range rows {
+		rows[i] = make([]int, len(y)+1)
+		rows[i][0] = i
+	}
+	for j := range rows[0] {
+		rows[0][j] = j
+	}
+	for i := 1; i <= len(x); i++ {
+		for j := 1; j <= len(y); j++ {
+			change := 1
+			if x[i-1] == y[j-1] {
+				change = 0
+			}
+			rows[i][j] = min(rows[i-1][j]+1, rows[i][j-1]+1, rows[i-1][j-1]+change)
+			if i > 1 && j > 1 && x[i-1] == y[j-2] && x[i-2] == y[j-1] {
+				rows[i][j] = min(rows[i][j], rows[i-2][j-2]+1)
+			}
+		}
+	}
+	return rows[len(x)][len(y)]
+}

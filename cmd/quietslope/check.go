@@ -1,0 +1,53 @@
+package main
+
+import (
+	"context"
+	"io"
+
+	"github.com/urfave/cli/v2"
+
+	"quietslope/cmd/quietslope/render"
+	"quietslope/scenario"
+	"quietslope/scenario/result"
+)
+
+// checkCommand says what a study means, before anything is replayed but the baseline.
+func checkCommand() *cli.Command {
+	return &cli.Command{
+		Name: "check", Category: lookFirst, ArgsUsage: "STUDY.yaml",
+		Usage: "say what a study means and what its weather record looks like",
+		Description: `What it does:
+  Lists every key of the study with the value in force and marks the defaults, the rates of every
+  option and how each drain's rate came about, the bands in every datum, the years that will be
+  counted, the start, and what looks odd about the weather record. Of the options only the baseline
+  is replayed, to find the month and the start that "auto" stands for.
+
+What it needs:
+  A study file (YAML) and the weather record that it names.
+
+Examples:
+  quietslope check testdata/demo/study.yaml
+  quietslope check --format json study.yaml
+`,
+		Flags: []cli.Flag{formatFlag(), outFlag()},
+		Action: func(c *cli.Context) error {
+			o, err := outputFrom(c)
+			if err != nil {
+				return err
+			}
+			return check(c.Context, c.Args().First(), o)
+		},
+	}
+}
+
+func check(ctx context.Context, path string, o *output) error {
+	s, err := loadStudy(ctx, path, o)
+	if err != nil {
+		return err
+	}
+	found, err := await(ctx, func() (*result.Check, error) { return scenario.Check(ctx, s) })
+	if err != nil {
+		return err
+	}
+	return o.deliver(ctx, found, func(w io.Writer) error { return render.Check(w, found) })
+}

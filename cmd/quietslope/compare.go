@@ -1,0 +1,54 @@
+package main
+
+import (
+	"context"
+	"io"
+
+	"github.com/urfave/cli/v2"
+
+	"quietslope/cmd/quietslope/render"
+	"quietslope/scenario"
+	"quietslope/scenario/result"
+)
+
+// compareCommand replays every option of a study on the same weather and sets the results side by side.
+func compareCommand() *cli.Command {
+	return &cli.Command{
+		Name: "compare", Category: comparing, ArgsUsage: "STUDY.yaml",
+		Usage: "replay the weather for every option and set them side by side",
+		Description: `What it does:
+  Replays the whole weather record of the study for every option, after a warm-up, and counts on
+  complete years how the deep level passes each band: events, days, load (metre-days), the share of
+  years, the longest and the highest. Every figure has a range. Options are set against the baseline
+  year by year and ranked on one band. The notes name what is weak about the figures.
+
+What it needs:
+  A study file (YAML) that names the weather record, the ground as calibrated, the bands and the
+  options. Run "quietslope check" on it first.
+
+Examples:
+  quietslope compare testdata/demo/study.yaml
+  quietslope compare study.yaml --format json --out result.json
+`,
+		Flags: []cli.Flag{formatFlag(), outFlag()},
+		Action: func(c *cli.Context) error {
+			o, err := outputFrom(c)
+			if err != nil {
+				return err
+			}
+			return compare(c.Context, c.Args().First(), o)
+		},
+	}
+}
+
+func compare(ctx context.Context, path string, o *output) error {
+	s, err := loadStudy(ctx, path, o)
+	if err != nil {
+		return err
+	}
+	found, err := await(ctx, func() (*result.Comparison, error) { return scenario.Compare(ctx, s) })
+	if err != nil {
+		return err
+	}
+	return o.deliver(ctx, found, func(w io.Writer) error { return render.Comparison(w, found) })
+}

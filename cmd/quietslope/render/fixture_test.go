@@ -1,0 +1,199 @@
+package render
+
+import (
+	"fmt"
+	"strings"
+
+	"quietslope/scenario/result"
+)
+
+// The figures below are made up to exercise the layout; they come from no replay.
+
+func ptr(x float64) *float64 { return &x }
+
+func ci(lo, hi float64) *result.Interval { return &result.Interval{lo, hi} }
+
+// strengths scale the made-up figures of an option: 1 for the baseline, 0 for one that ends the exceedances.
+type strengths struct {
+	name     string
+	measures []string
+	strength float64
+}
+
+var demoOptions = []strengths{
+	{"as it stands", nil, 1},
+	{"trenches, spacing 12 m", []string{"trench drains 3 m deep, 12 m apart"}, 0},
+	{"trenches, spacing 24 m", []string{"trench drains 3 m deep, 24 m apart"}, 0.46},
+	{"shallow trenches", []string{"trench drains 1.2 m deep, 8 m apart"}, 0.97},
+	{"bored drains", []string{"bored drains at 3 m in the deep layer, 0.005 /d"}, 0.8},
+	{"lined channels", []string{"10 % of the infiltration kept out"}, 0.6},
+	{"trenches at 16 m with lined channels", []string{"trench drains 3 m deep, 16 m apart", "10 % of the infiltration kept out"}, 0.04},
+}
+
+// fixture makes a comparison of the given options on bands of the given names.
+func fixture(options []strengths, bands []string) *result.Comparison {
+	const years = 39
+	inside := true
+	c := &result.Comparison{
+		Head: result.Head{
+			ResultsVersion: 1, Study: "Ostler Lea bank, cover drainage options",
+			Tool: result.Tool{Name: "quietslope", Version: "0.1.0"}, Command: "compare",
+			Inputs: []result.Input{
+				{Role: "study", File: "study.yaml", SHA256: strings.Repeat("0123456789abcdef", 4)},
+				{Role: "weather", File: "weather.csv", SHA256: strings.Repeat("fedcba9876543210", 4)},
+			},
+			Warnings: []result.Warning{
+				{Code: "declared_unanswered", Severity: result.Warn, Text: "Not answered under declared: iron_or_lime_in_water, wells_or_buildings_nearby. Answer each with yes or no, and weigh what a yes would change."},
+				{Code: "perched_water", Severity: result.Note, Text: "Perched water is not in the model. Drains may lower the deep level and leave it."},
+			},
+			Cautions: []string{
+				"These figures compare options on one record. They are no stability analysis, no forecast of movement and no warning system: nobody's safety may rest on them alone.",
+				"Design rests with licensed engineers and the owner.",
+			},
+		},
+		Declared: map[string]string{"existing_slip_surface": "yes", "rapid_movement_possible": "no", "perched_water": "unknown"},
+		Defaults: []result.KeyValue{{Key: "count.resamples", Value: "2000"}, {Key: "weather.stamp", Value: "start"}},
+		Settings: result.Settings{YearStarts: "October", ApartDays: 10, Confidence: 0.9, Resamples: 2000, Seed: 1, BlockYears: 2,
+			DecideBy: "load"},
+		Record: result.Record{From: "1984-01-01", To: "2023-12-31", Step: "1 d", StepDays: 1, Stamp: "start", Rows: 14610, WarmUpYears: 4,
+			CountedFrom: "1984-10-01", CountedTo: "2023-09-30", YearsCounted: years, PartialDays: 366, RainMMPerYear: 968.3, PETMMPerYear: ptr(691.2)},
+	}
+	for b, name := range bands {
+		level := 3.6 + 0.6*float64(b)
+		band := result.Band{Name: name, GivenAs: "level", LevelM: level, UntilM: level, BelowGroundM: 13 - level, ElevationM: ptr(405 + level)}
+		if b == 1 {
+			band.UntilM = level - 0.3
+		}
+		if b < 2 {
+			band.WithinReadings = &inside
+		}
+		c.Bands = append(c.Bands, band)
+		c.Settings.DecideOn = bands[min(1, len(bands)-1)]
+	}
+	if len(options) < 2 {
+		c.Settings.DecideOn = ""
+	}
+	found := result.Case{Climate: "as recorded", Condition: "as built"}
+	for i, s := range options {
+		o := result.Option{
+			Name: s.name, Baseline: i == 0, Measures: s.measures, RechargeMMPerYear: 310.4 - 20*(1-s.strength), ActualETMMPerYear: ptr(502.2),
+			Level: result.Level{MeanM: 2.4 + 0.8*s.strength, MaxM: 3.9 + 1.2*s.strength, Q50M: 2.3 + 0.7*s.strength, Q95M: 3.2 + 0.9*s.strength, Q99M: 3.6 + s.strength},
+			WaterBalance: result.Balance{
+				Cover: result.CoverBalance{InMM: 12416, SeepageMM: 8000 * (0.4 + 0.6*s.strength), PercolationMM: 3500, DrainsMM: 4800 * (1 - s.strength), StorageChangeMM: 12.3, ErrorMM: 3e-10},
+				Deep:  result.DeepBalance{InMM: 3500, SeepageMM: 3490, StorageChangeMM: 10, ErrorMM: -1.2e-10},
+			},
+		}
+		if s.strength < 1 && len(s.measures) > 0 {
+			d := result.Drain{Measure: "trench_drains", Layer: "cover", RatePerDay: 0.013712, InvertM: 1, Law: "linear", RunningShare: 0.412, MeanMMPerDay: 0.4123, PeakMMPerDay: 6.371, PeakLPerS: ptr(0.8849)}
+			if i%2 == 0 {
+				d.CeilingMMPerDay = ptr(5)
+			}
+			o.Drains = append(o.Drains, d)
+		}
+		for b, name := range bands {
+			scale := s.strength / (1 + 4*float64(b))
+			f := result.BandFigure{
+				Name: name, LevelM: c.Bands[b].LevelM, Events: int(61 * scale), EventsPerYear: float64(int(61*scale)) / years,
+				DaysPerYear: 64.21 * scale, AnnualProbability: float64(int(30*scale)) / years,
+				LongestDays: 171 * scale, LoadMDaysPerYear: 21.347 * scale * scale,
+				EventsPerYearCI:     result.Interval{0.7 * 61 * scale / years, (1.2*61*scale + 3) / years},
+				AnnualProbabilityCI: result.Interval{scale * 0.6, scale*0.89 + 0.074*(1-scale)},
+			}
+			for m := range f.DaysByMonth {
+				f.DaysByMonth[m] = scale * []float64{14.2, 15.1, 14, 9.3, 3.2, 0.6, 0.04, 0, 0, 0.2, 1.7, 5.9}[m]
+			}
+			if scale > 0 {
+				f.DaysPerYearCI = ci(0.61*f.DaysPerYear, 1.44*f.DaysPerYear)
+				f.LoadMDaysPerYearCI = ci(0.5*f.LoadMDaysPerYear, 1.63*f.LoadMDaysPerYear)
+				f.PeakExcessM = ptr(0.93 * scale)
+			}
+			if i > 0 {
+				d := func(x float64) result.Difference {
+					cut := x * (1 - s.strength)
+					return result.Difference{Difference: -cut, DifferenceCI: ci(-1.6*cut, -0.55*cut+0.05*x), Ratio: ptr(s.strength), RatioCI: ci(0.8*s.strength, min(1.05, 1.2*s.strength)),
+						ShareBetter: min(1, 1.4-s.strength), ShareEqual: max(0, s.strength-0.9), YearsBetter: int(30 * (1 - s.strength)), YearsEqual: 9, YearsWorse: 30 - int(30*(1-s.strength))}
+				}
+				f.Change = &result.Change{EventsPerYear: d(1.56 / (1 + 4*float64(b))), DaysPerYear: d(64.2 / (1 + 4*float64(b))), LoadMDaysPerYear: d(21.3 / (1 + 4*float64(b))),
+					AnnualProbability: d(0.77 / (1 + 4*float64(b))), ToldApart: s.strength < 0.7}
+			}
+			o.Bands = append(o.Bands, f)
+		}
+		if c.Settings.DecideOn != "" {
+			f := o.Bands[min(1, len(bands)-1)]
+			o.Decision = &result.Decision{Measure: "load", Value: f.LoadMDaysPerYear, CI: f.LoadMDaysPerYearCI}
+		}
+		found.Options = append(found.Options, o)
+		if i == 3 {
+			c.Warnings = append(c.Warnings,
+				result.Warning{Code: "drain_runs_rarely", Severity: result.Warn, Option: s.name, Text: "The trench drains lie at 2.80 m, at or above the baseline's cover level on 97 % of the steps. They act on the highest levels only; make sure that this is meant."},
+				result.Warning{Code: "few_events", Severity: result.Warn, Band: bands[len(bands)-1], Text: "Fewer than 5 events, too few for a rate; read the ranges. Options (events): " + s.name + " (3)."},
+				result.Warning{Code: "days_and_events_disagree", Severity: result.Warn, Option: s.name, Band: bands[0], Text: "Fewer days but more events than the baseline: long events were split. Read days and load with the count."})
+		}
+	}
+	for i := range found.Options {
+		if found.Options[i].Decision == nil {
+			continue
+		}
+		found.Options[i].Decision.Rank = 1
+		for j := range found.Options {
+			if found.Options[j].Decision.Value < found.Options[i].Decision.Value {
+				found.Options[i].Decision.Rank++
+			}
+		}
+	}
+	c.Cases = []result.Case{found}
+	return c
+}
+
+// longNames gives nine options names of 60 columns that differ only at the end.
+func longNames() []strengths {
+	var all []strengths
+	for i := range 9 {
+		name := fmt.Sprintf("%s, spacing %2d m", "counterfort trenches behind the lower road, with çollars", 8+4*i)
+		r := []rune(name)
+		if len(r) > 60 {
+			name = string(r[:60-len(", spacing 8 m")]) + fmt.Sprintf(", spacing %d m", i)
+		}
+		all = append(all, strengths{name, []string{"trench drains 3 m deep"}, 1 - float64(i)/8})
+	}
+	return all
+}
+
+// always is a slope that stands above every band all the time.
+func always() *result.Comparison {
+	c := fixture(demoOptions[:2], []string{"watch", "movement onset"})
+	for i := range c.Cases[0].Options {
+		for b := range c.Cases[0].Options[i].Bands {
+			f := &c.Cases[0].Options[i].Bands[b]
+			f.Events, f.EventsPerYear, f.EventsPerYearCI = 1, 1.0/39, result.Interval{0.0013, 0.12}
+			f.DaysPerYear, f.DaysPerYearCI = 365.256, ci(365.2, 365.3)
+			f.AnnualProbability, f.AnnualProbabilityCI = 1, result.Interval{0.926, 1}
+			f.LongestDays, f.PeakExcessM = 14610, ptr(3.217)
+			f.LoadMDaysPerYear, f.LoadMDaysPerYearCI = 812.4, ci(790.3, 838.9)
+			for m := range f.DaysByMonth {
+				f.DaysByMonth[m] = 30.4
+			}
+			if f.Change != nil {
+				same := result.Difference{DifferenceCI: ci(0, 0), Ratio: ptr(1), RatioCI: ci(1, 1), ShareEqual: 1, YearsEqual: 39}
+				f.Change = &result.Change{EventsPerYear: same, DaysPerYear: same, LoadMDaysPerYear: same, AnnualProbability: same}
+			}
+		}
+		c.Cases[0].Options[i].Decision.Rank = 1
+	}
+	return c
+}
+
+// never is a slope on which no band was passed.
+func never() *result.Comparison {
+	all := []strengths{{"as it stands", nil, 0}, {"lined channels", []string{"10 % of the infiltration kept out"}, 0}}
+	c := fixture(all, []string{"watch", "movement onset"})
+	for i := range c.Cases[0].Options {
+		for b := range c.Cases[0].Options[i].Bands {
+			if f := &c.Cases[0].Options[i].Bands[b]; f.Change != nil {
+				same := result.Difference{ShareEqual: 1, YearsEqual: 39}
+				f.Change = &result.Change{EventsPerYear: same, DaysPerYear: same, LoadMDaysPerYear: same, AnnualProbability: same}
+			}
+		}
+	}
+	return c
+}
