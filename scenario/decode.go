@@ -9,6 +9,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
 )
 
@@ -164,7 +165,7 @@ func (d *decoder) unknownKey(at Place, key string, fields []field) string {
 			known = append(known, f.name)
 		}
 	}
-	near := nearest(key, known)
+	near := fault.Nearest(key, known)
 	switch {
 	case len(known) == len(settable) && known[0] == settable[0].name:
 		short := strings.TrimPrefix(key, "ground.")
@@ -464,7 +465,7 @@ func (l limits) words(s *shape) string {
 
 // meantWord lists words, or gives the one that was meant.
 func meantWord(text string, words []string) string {
-	if near := nearest(text, words); near != "" {
+	if near := fault.Nearest(text, words); near != "" {
 		return near
 	}
 	if len(words) == 5 && words[0] == "yes" { // true and false are read too, but nobody needs to know
@@ -494,7 +495,7 @@ func meantMonth(text string) string {
 	if n, err := quantity.ParseWhole(strings.TrimPrefix(text, "0")); err == nil && n >= 1 && n <= 12 {
 		return time.Month(n).String()
 	}
-	if near := nearest(text, names); near != "" {
+	if near := fault.Nearest(text, names); near != "" {
 		return near
 	}
 	return "one such as October, or auto"

@@ -7,6 +7,7 @@ import (
 	"strconv"
 	"strings"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
 	"quietslope/scenario/weather"
 )
@@ -318,7 +319,7 @@ func (d *decoder) count(s *Study, b *blockValue, bands *value) {
 	switch {
 	case on.given && !on.bad && c.DecideOn < 0 && len(names) > 0:
 		hint := ""
-		if near := nearest(on.text, names); near != "" {
+		if near := fault.Nearest(on.text, names); near != "" {
 			hint = "; did you mean " + quoted(near) + "?"
 		}
 		d.add(on.place, "no band is named %s%s The bands are %s", quoted(on.text), stop(hint), quotedWords(names, "and"))

@@ -47,47 +47,6 @@ func foldKey(name string) string {
 	}, name)
 }
 
-// nearest returns the known word that is closest to word, and "" when none is close.
-func nearest(word string, known []string) string {
-	const longest = 40
-	if utf8.RuneCountInString(word) > longest {
-		return ""
-	}
-	best, least := "", 1+min(3, (utf8.RuneCountInString(word)+1)/3)
-	for _, k := range known {
-		if d := distance(foldKey(word), foldKey(k)); d < least {
-			best, least = k, d
-		}
-	}
-	return best
-}
-
-// distance is the least number of characters to insert, delete, replace or swap with their neighbour that makes a of b
-// (optimal string alignment; Damerau 1964, Levenshtein 1966, from memory).
-func distance(a, b string) int {
-	s, t := []rune(a), []rune(b)
-	var before, last, row []int
-	for j := range len(t) + 1 {
-		last = append(last, j)
-	}
-	for i := range s {
-		row = append(make([]int, 0, len(t)+1), i+1)
-		for j := range t {
-			d := last[j]
-			if s[i] != t[j] {
-				d++
-			}
-			d = min(d, last[j+1]+1, row[j]+1)
-			if i > 0 && j > 0 && s[i] == t[j-1] && s[i-1] == t[j] {
-				d = min(d, before[j-1]+1)
-			}
-			row = append(row, d)
-		}
-		before, last = last, row
-	}
-	return last[len(t)]
-}
-
 // quoted quotes a text of the user for a message and cuts a long one.
 func quoted(text string) string {
 	const most = 60

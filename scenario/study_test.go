@@ -452,18 +452,6 @@ func TestTable(t *testing.T) {
 	walk(studyShape.fields, "")
 }
 
-func TestNearest(t *testing.T) {
-	known := []string{"thickness", "seepage", "percolation", "full_at", "level"}
-	for word, want := range map[string]string{
-		"thicknes": "thickness", "Seepage": "seepage", "sepaage": "seepage", "levle": "level", "height": "", "x": "", "": "", "fullat": "full_at",
-		strings.Repeat("x", 1000): "",
-	} {
-		if got := nearest(word, known); got != want {
-			t.Errorf("nearest(%q) = %q, want %q", word, got, want)
-		}
-	}
-}
-
 func TestCheckName(t *testing.T) {
 	for _, good := range []string{"a", "012", "0+400", "trenches, spacing 8 m", "Böschung", strings.Repeat("ä", 60), "x=y"} {
 		if wrong := checkName(good); wrong != "" {

@@ -298,7 +298,7 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 				none = append(none, options[i].Name)
 				upper = f.EventsPerYearCI[1]
 			case f.Events < fewEvents:
-				few = append(few, fmt.Sprintf("%s (%d)", options[i].Name, f.Events))
+				few = append(few, options[i].Name)
 			}
 		}
 		if len(none) > 0 {
@@ -310,7 +310,7 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 		if len(few) > 0 {
 			w := warn("few_events")
 			w.Band = band.Name
-			ws.add(w, "Fewer than %d events, too few for a rate; read the ranges. Options (events): %s.", fewEvents, strings.Join(few, "; "))
+			ws.add(w, "Fewer than %d events, too few for a rate; read the ranges. Options: %s.", fewEvents, strings.Join(few, "; "))
 		}
 	}
 	for i := range options {

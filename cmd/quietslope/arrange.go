@@ -5,6 +5,8 @@ import (
 	"strings"
 
 	"github.com/urfave/cli/v2"
+
+	"quietslope/scenario/fault"
 )
 
 const completionWord = "--generate-bash-completion"
@@ -118,7 +120,7 @@ func unknownOption(command *cli.Command, word, name string) error {
 	for _, f := range command.Flags {
 		known = append(known, f.Names()[0])
 	}
-	if near := nearest(name, known); near != "" {
+	if near := fault.Nearest(name, known); near != "" {
 		return usagef(command.Name, "unknown option %s; did you mean --%s?", word, near)
 	}
 	return usagef(command.Name, "unknown option %s; there are --%s", word, strings.Join(known, ", --"))
@@ -129,49 +131,11 @@ func unknownCommand(app *cli.App, name string) error {
 	for _, c := range app.Commands {
 		known = append(known, c.Name)
 	}
-	if near := nearest(name, known); near != "" {
+	if near := fault.Nearest(name, known); near != "" {
 		return usagef("", "unknown command %q; did you mean %s?", name, near)
 	}
 	if strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml") {
 		return usagef("", "a command comes before the study file; did you mean quietslope compare %s?", name)
 	}
 	return usagef("", "unknown command %q", name)
-}
-
-// nearest finds the known word that a mistyped one most likely stands for; "" when none is close.
-func nearest(word string, known []string) string {
-	best, least := "", 1+max(1, len(word)/3)
-	for _, k := range known {
-		if d := edits(word, k); d < least {
-			best, least = k, d
-		}
-	}
-	return best
-}
-
-// edits is the least number of letters to insert, delete, replace or swap with their neighbour to turn a into b
-// (optimal string alignment).
-func edits(a, b string) int {
-	x, y := []rune(a), []rune(b)
-	rows := make([][]int, len(x)+1)
-	for i := range rows {
-		rows[i] = make([]int, len(y)+1)
-		rows[i][0] = i
-	}
-	for j := range rows[0] {
-		rows[0][j] = j
-	}
-	for i := 1; i <= len(x); i++ {
-		for j := 1; j <= len(y); j++ {
-			change := 1
-			if x[i-1] == y[j-1] {
-				change = 0
-			}
-			rows[i][j] = min(rows[i-1][j]+1, rows[i][j-1]+1, rows[i-1][j-1]+change)
-			if i > 1 && j > 1 && x[i-1] == y[j-2] && x[i-2] == y[j-1] {
-				rows[i][j] = min(rows[i][j], rows[i-2][j-2]+1)
-			}
-		}
-	}
-	return rows[len(x)][len(y)]
 }

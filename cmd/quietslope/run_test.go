@@ -220,17 +220,6 @@ func TestArrange(t *testing.T) {
 	}
 }
 
-func TestNearest(t *testing.T) {
-	known := []string{"check", "compare", "levels"}
-	for _, tt := range []struct{ word, want string }{
-		{"comapre", "compare"}, {"chekc", "check"}, {"level", "levels"}, {"compares", "compare"}, {"xyz", ""}, {"", ""}, {"c", ""},
-	} {
-		if got := nearest(tt.word, known); got != tt.want {
-			t.Errorf("nearest(%q) = %q, want %q", tt.word, got, tt.want)
-		}
-	}
-}
-
 // TestReport: which error gives which status, and that each problem is printed once.
 func TestReport(t *testing.T) {
 	gone, cancel := context.WithCancel(t.Context())

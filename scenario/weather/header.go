@@ -6,7 +6,8 @@ import (
 	"io"
 	"slices"
 	"strings"
-	"unicode/utf8"
+
+	"quietslope/scenario/fault"
 )
 
 // columns says where in a row the columns of the study stand.
@@ -151,7 +152,7 @@ func (r *reader) missingColumns(names, wanted []string) error {
 			continue
 		}
 		near := ""
-		if n := nearest(w, names); n != "" {
+		if n := fault.Nearest(w, names); n != "" {
 			near = fmt.Sprintf("; is %q meant?", n)
 		}
 		r.problem(first, w, "the header has no such column, only %s%s%s", quoteList(names), near, hint)
@@ -193,42 +194,6 @@ func quoteList(names []string) string {
 		fmt.Fprintf(&b, "%q", n)
 	}
 	return b.String()
-}
-
-// nearest returns the name that differs least from the one wanted, or "" when none is close.
-func nearest(wanted string, names []string) string {
-	best, least := "", 1+max(1, utf8.RuneCountInString(wanted)/3)
-	for _, n := range names {
-		if len(n) > maxField {
-			continue
-		}
-		if d := distance(strings.ToLower(wanted), strings.ToLower(n)); d < least {
-			best, least = n, d
-		}
-	}
-	return best
-}
-
-// distance is the number of characters to insert, delete or replace to turn a into b (Levenshtein 1966, from memory).
-func distance(a, b string) int {
-	to := []rune(b)
-	d := make([]int, len(to)+1)
-	for j := range d {
-		d[j] = j
-	}
-	for i, ca := range []rune(a) {
-		diagonal := d[0]
-		d[0] = i + 1
-		for j, cb := range to {
-			replace := diagonal
-			if ca != cb {
-				replace++
-			}
-			diagonal = d[j+1]
-			d[j+1] = min(replace, d[j]+1, d[j+1]+1)
-		}
-	}
-	return d[len(to)]
 }
 
 // split cuts a row into its fields. It returns false after noting a problem.

@@ -1,0 +1,66 @@
+package fault
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+	"testing"
+)
+
+func TestErrorText(t *testing.T) {
+	for _, tt := range []struct {
+		err  Error
+		want string
+	}{
+		{Error{File: "s.yaml", Line: 3, Col: 7, Key: "cover.seepage", Text: "is missing"}, "s.yaml:3:7: cover.seepage: is missing"},
+		{Error{File: "s.yaml", Line: 3, Text: "is odd", Excerpt: "  3 | x"}, "s.yaml:3: is odd\n  3 | x"},
+		{Error{File: "w.csv", Text: "is empty"}, "w.csv: is empty"},
+		{Error{Key: "--option", Text: "is not known"}, "--option: is not known"},
+	} {
+		if got := tt.err.Error(); got != tt.want {
+			t.Errorf("got %q, want %q", got, tt.want)
+		}
+	}
+}
+
+func TestList(t *testing.T) {
+	var l List
+	if l.Err() != nil {
+		t.Error("an empty list is an error")
+	}
+	for i := range Most {
+		l.Add(&Error{File: "f", Text: fmt.Sprint(i)})
+	}
+	var e *Error
+	if err := l.Err(); !errors.As(err, &e) || e.Text != "0" {
+		t.Errorf("the first problem is not found in %v", err)
+	}
+	full := l.Err().Error()
+	l.Add(errors.New("one more"))
+	if got := l.Err().Error(); got != full+"\nand 1 more problem" {
+		t.Errorf("got %q", got)
+	}
+	l.Add(errors.New("and one"))
+	if got := l.Err().Error(); got != full+"\nand 2 more problems" || l.Len() != Most+2 {
+		t.Errorf("got %q, length %d", got, l.Len())
+	}
+}
+
+func TestNearest(t *testing.T) {
+	keys := []string{"thickness", "seepage", "percolation", "full_at", "level", "rain_mm"}
+	commands := []string{"check", "compare", "levels"}
+	for _, tt := range []struct {
+		known      []string
+		word, want string
+	}{
+		{keys, "thicknes", "thickness"}, {keys, "Seepage", "seepage"}, {keys, "sepaage", "seepage"}, {keys, "SEAPAGE", "seepage"},
+		{keys, "levle", "level"}, {keys, "fullat", "full_at"}, {keys, "rainmm", "rain_mm"},
+		{keys, "height", ""}, {keys, "x", ""}, {keys, "", ""}, {keys, strings.Repeat("x", 1000), ""},
+		{commands, "comapre", "compare"}, {commands, "chekc", "check"}, {commands, "level", "levels"}, {commands, "compares", "compare"},
+		{commands, "xyz", ""}, {commands, "", ""}, {commands, "c", ""},
+	} {
+		if got := Nearest(tt.word, tt.known); got != tt.want {
+			t.Errorf("%q of %q: got %q, want %q", tt.word, tt.known, got, tt.want)
+		}
+	}
+}
