@@ -316,7 +316,7 @@ func (l *layout) parseISO(b []byte) (unix, offset int64, ok bool) {
 
 // dayOf returns the start of a day of the proleptic Gregorian calendar as seconds since 1970.
 func (l *layout) dayOf(y, m, d int) (unix int64, ok bool) {
-	if d == l.d && m == l.m && y == l.y {
+	if d == l.d && m == l.m && y == l.y && y != 0 { // a year of 0 is a day that was never read
 		return l.midnight, true
 	}
 	if y < firstYear || y > lastYear || m < 1 || m > 12 || d < 1 || d > daysIn(y, m) {

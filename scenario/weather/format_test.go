@@ -165,3 +165,38 @@ func TestDepthUnit(t *testing.T) {
 		}
 	}
 }
+
+// FuzzTime: no format and no text panics; a text that is refused is explained; one that is accepted is what the time it
+// stands for is written as, but for the spellings that RFC 3339 leaves open.
+func FuzzTime(f *testing.F) {
+	for _, format := range []string{"YYYY-MM-DD", "DD.MM.YYYY hh:mm", "YYYYMMDDhhmmss", "iso", "yyyy-mm-dd", "YYYY-MM", ""} {
+		for _, text := range []string{"2020-02-29", "29.02.2021 24:00", "20201231235960", "2020-03-29T02:30:00+01:00", "2020-01-01t00:00:00.000z", "1599-12-31", "0000-00-00", ""} {
+			f.Add(format, text)
+		}
+	}
+	f.Fuzz(func(t *testing.T, format, text string) {
+		l, err := newLayout(format)
+		if err != nil {
+			if err.Error() == "" {
+				t.Error("a format is refused without a word")
+			}
+			return
+		}
+		unix, offset, ok := l.parse([]byte(text))
+		if !ok {
+			if l.explain([]byte(text)) == "" {
+				t.Errorf("%q is refused without a word", text)
+			}
+			return
+		}
+		if y := time.Unix(unix+offset, 0).UTC().Year(); y < firstYear || y > lastYear {
+			t.Errorf("%q is in the year %d", text, y)
+		}
+		if l.iso {
+			return
+		}
+		if back := l.text(time.Unix(unix, 0).UTC(), ""); back != text {
+			t.Errorf("%q is written back as %q", text, back)
+		}
+	})
+}
