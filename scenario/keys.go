@@ -3,8 +3,8 @@ package scenario
 import "quietslope/scenario/quantity"
 
 // This file is the table of the study's keys: what each is called, how its value is written, what range it may have,
-// and what stands in for it when it is left out. The decoder reads by it, and errors and the list of what was
-// understood come from it.
+// what stands in for it when it is left out, and what it is. The decoder reads by it, and errors, the list of what was
+// understood and the reference of all keys come from it.
 
 // form is how a value is written.
 type form int
@@ -43,12 +43,14 @@ type limits struct {
 
 // field is one key of a block.
 type field struct {
-	name  string
-	shape shape
-	need  string // what must be given; "" for a key that may be left out
-	def   string // what stands in for a key that is left out, as it would be typed
-	quiet bool   // says nothing when it is left out, and is not listed then
-	later bool   // refused: not supported yet
+	name   string
+	says   string // what it is, for the reference that Keys makes: one line without a full stop
+	shape  shape
+	need   string // what must be given; "" for a key that may be left out
+	def    string // what stands in for a key that is left out, as it would be typed
+	absent string // for the reference: what holds when it is left out, where need and def do not say it
+	quiet  bool   // says nothing when it is left out, and is not listed then
+	later  bool   // refused: not supported yet
 }
 
 // Limits beyond which a number is taken for a slip. Where no reason stands beside it, a limit is a judgement, and far
@@ -102,30 +104,47 @@ var (
 // hang on them.
 var (
 	surfaceFields = []field{
-		{name: "infiltration", shape: shareShape, def: "100 %"},
-		{name: "infiltration_limit", shape: amount(quantity.Intensity, above(0, maxIntensity), "none"), def: "none"},
+		{name: "infiltration", says: "share of the rain that enters the ground; the rest runs off",
+			shape: shareShape, def: "100 %"},
+		{name: "infiltration_limit", says: "largest intensity at which water enters; the rest runs off",
+			shape: amount(quantity.Intensity, above(0, maxIntensity), "none"), def: "none"},
 	}
 	soilFields = []field{
-		{name: "available_water", shape: amount(quantity.WaterDepth, above(0, maxWater)), need: "the water that plants can draw from the soil, such as 120 mm"},
-		{name: "readily_available", shape: amount(quantity.Share, atLeast(0, maxReadily)), def: "50 %"},
-		{name: "crop_factor", shape: shape{form: formNumber, limits: atLeast(0, 5)}, def: "1"},
+		{name: "available_water", says: "water that plants can draw from a soil at field capacity",
+			shape: amount(quantity.WaterDepth, above(0, maxWater)), need: "the water that plants can draw from the soil, such as 120 mm"},
+		{name: "readily_available", says: "share of available_water that plants draw at their full demand",
+			shape: amount(quantity.Share, atLeast(0, maxReadily)), def: "50 %"},
+		{name: "crop_factor", says: "what the evapotranspiration of the record is multiplied by",
+			shape: shape{form: formNumber, limits: atLeast(0, 5)}, def: "1"},
 	}
 	coverFields = []field{
-		{name: "thickness", shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the cover, such as 4.0 m"},
-		{name: "drainable_porosity", shape: someShareShape, need: "the share of the cover that fills and drains, such as 6 %"},
-		{name: "seepage", shape: rateShape, need: "the rate at which water leaves along the contact, such as 0.01 /d"},
-		{name: "percolation", shape: rateShape, need: "the rate at which water sinks into the deep layer, such as 0.005 /d, or 0 /d"},
-		{name: "percolation_ceiling", shape: ceilingShape, def: "none"},
-		{name: "conductivity", shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
-		{name: "full_at", shape: fullAtShape}, // stands in: the thickness
+		{name: "thickness", says: "from the ground down to the contact with the deep layer",
+			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the cover, such as 4.0 m"},
+		{name: "drainable_porosity", says: "share of the cover that fills and drains as its level moves",
+			shape: someShareShape, need: "the share of the cover that fills and drains, such as 6 %"},
+		{name: "seepage", says: "rate at which stored water leaves along the contact and out at the toe",
+			shape: rateShape, need: "the rate at which water leaves along the contact, such as 0.01 /d"},
+		{name: "percolation", says: "rate at which stored water sinks into the deep layer; 0 /d for none",
+			shape: rateShape, need: "the rate at which water sinks into the deep layer, such as 0.005 /d, or 0 /d"},
+		{name: "percolation_ceiling", says: "most that the deep layer takes in, however full the cover is",
+			shape: ceilingShape, def: "none"},
+		{name: "conductivity", says: "hydraulic conductivity of the cover, for trenches that are given by their spacing", absent: "may be left out",
+			shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
+		{name: "full_at", says: "level above the contact at which the cover is full and overflows", absent: "by default the thickness of the cover",
+			shape: fullAtShape},
 	}
 	deepFields = []field{
-		{name: "thickness", shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the deep layer, such as 9.0 m"},
-		{name: "drainable_porosity", shape: someShareShape, need: "the share of the deep layer that its fissures take up, such as 1.4 %"},
-		{name: "seepage", shape: rateShape, need: "the rate at which water leaves the deep layer, such as 0.007 /d"},
-		{name: "lateral_inflow", shape: amount(quantity.Flux, atLeast(0, maxFlux)), def: "0 mm/d"},
+		{name: "thickness", says: "from the contact down to the base of the deep layer, the slip surface",
+			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the deep layer, such as 9.0 m"},
+		{name: "drainable_porosity", says: "share of the deep layer that fills and drains: its fissures only",
+			shape: someShareShape, need: "the share of the deep layer that its fissures take up, such as 1.4 %"},
+		{name: "seepage", says: "rate at which stored water leaves the deep layer by itself",
+			shape: rateShape, need: "the rate at which water leaves the deep layer, such as 0.007 /d"},
+		{name: "lateral_inflow", says: "steady inflow from the side or from uphill",
+			shape: amount(quantity.Flux, atLeast(0, maxFlux)), def: "0 mm/d"},
 		notYet("consolidation"),
-		{name: "full_at", shape: fullAtShape}, // stands in: the thickness
+		{name: "full_at", says: "level above the base at which the deep layer is full and refuses more", absent: "by default the thickness of the deep layer",
+			shape: fullAtShape},
 	}
 )
 
@@ -138,7 +157,7 @@ var settable = func() []field {
 	}{{"surface", surfaceFields}, {"soil", soilFields}, {"cover", coverFields}, {"deep", deepFields}} {
 		for _, f := range part.fields {
 			if f.name != "thickness" && !f.later {
-				all = append(all, field{name: part.name + "." + f.name, shape: f.shape, quiet: true})
+				all = append(all, field{name: part.name + "." + f.name, says: f.says, absent: "by default as in ground", shape: f.shape, quiet: true})
 			}
 		}
 	}
@@ -147,136 +166,215 @@ var settable = func() []field {
 
 // studyShape is the whole file. The order is that of the documentation.
 var studyShape = block(
-	field{name: "study", shape: filledShape, need: "a title on one line, such as: Bank above the mill, drainage options"},
-	field{name: "prepared_by", shape: textShape, def: ""},
-	field{name: "checked_by", shape: textShape, def: ""},
-	field{name: "weather", shape: weatherShape, need: "the record of rain: a block with file and columns"},
-	field{name: "ground", shape: groundShape, need: "the two layers: a block with cover and deep"},
+	field{name: "study", says: "title of the study, on one line",
+		shape: filledShape, need: "a title on one line, such as: Bank above the mill, drainage options"},
+	field{name: "prepared_by", says: "who made the study", absent: "by default blank",
+		shape: textShape, def: ""},
+	field{name: "checked_by", says: "who checked the study", absent: "by default blank",
+		shape: textShape, def: ""},
+	field{name: "weather", says: "the record that is replayed for every option",
+		shape: weatherShape, need: "the record of rain: a block with file and columns"},
+	field{name: "ground", says: "the slope as calibrated: two layers, each one store of drainable water",
+		shape: groundShape, need: "the two layers: a block with cover and deep"},
 	notYet("slope"),
-	field{name: "bands", shape: shape{form: formList, fields: bandFields}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
-	field{name: "count", shape: countShape},
+	field{name: "bands", says: "the critical deep levels, from the lowest to the highest",
+		shape: shape{form: formList, fields: bandFields}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
+	field{name: "count", says: "how exceedances are counted and options ranked",
+		shape: countShape},
 	notYet("money"),
 	notYet("climates"),
-	field{name: "options", shape: shape{form: formList, fields: optionFields}, need: "a list of what could be done, the first being the ground as it is: - name: as it stands"},
+	field{name: "options", says: "what could be done; all options are replayed on the same record",
+		shape: shape{form: formList, fields: optionFields}, need: "a list of what could be done, the first being the ground as it is: - name: as it stands"},
 	notYet("conditions"),
-	field{name: "site", shape: block(
-		field{name: "plan_area", shape: amount(quantity.Area, above(0, maxArea)), def: "none"},
-		field{name: "ground_level", shape: datumShape, def: "none"},
-	)},
-	field{name: "declared", shape: block(declaredFields()...)},
+	field{name: "site", says: "where and how large the slope is",
+		shape: block(
+			field{name: "plan_area", says: "area of the slope in plan, to turn depths of water into volumes",
+				shape: amount(quantity.Area, above(0, maxArea)), def: "none"},
+			field{name: "ground_level", says: "elevation of the ground on the site's datum, for bands given as an elevation",
+				shape: datumShape, def: "none"},
+		)},
+	field{name: "declared", says: "what no calculation can know; unknown is an honest answer, and is listed with the results",
+		shape: block(declaredFields()...)},
 	notYet("readings"),
 	notYet("fit"),
 )
 
 var weatherShape = block(
-	field{name: "file", shape: filledShape, need: "the path of the record from the folder of the study, such as weather.csv"},
-	field{name: "columns", shape: block(
-		field{name: "time", shape: block(
-			field{name: "name", shape: filledShape, need: "the header of the column of times"},
-			field{name: "format", shape: filledShape, need: "how times are written, such as YYYY-MM-DD or iso"},
-		), need: "the column of times: {name: HEADER, format: YYYY-MM-DD}"},
-		field{name: "rain", shape: columnShape, need: "the column of rain: {name: HEADER, unit: mm}"},
-		field{name: "pet", shape: columnShape, def: "none"},
-		notYet("temperature"),
-	), need: "the columns to read: a block with time and rain"},
+	field{name: "file", says: "path of the CSV file, from the folder of the study",
+		shape: filledShape, need: "the path of the record from the folder of the study, such as weather.csv"},
+	field{name: "columns", says: "which columns of the file are read; others may stand there too",
+		shape: block(
+			field{name: "time", says: "the column of times",
+				shape: block(
+					field{name: "name", says: "header of the column, as it stands in the file",
+						shape: filledShape, need: "the header of the column of times"},
+					field{name: "format", says: "how the times are written, such as YYYY-MM-DD hh:mm, or iso",
+						shape: filledShape, need: "how times are written, such as YYYY-MM-DD or iso"},
+				), need: "the column of times: {name: HEADER, format: YYYY-MM-DD}"},
+			field{name: "rain", says: "the column of rain",
+				shape: columnShape, need: "the column of rain: {name: HEADER, unit: mm}"},
+			field{name: "pet", says: "the column of potential evapotranspiration of grass",
+				shape: columnShape, def: "none"},
+			notYet("temperature"),
+		), need: "the columns to read: a block with time and rain"},
 	notYet("pet_from"),
 	notYet("snow"),
-	field{name: "stamp", shape: oneOf("start", "end"), def: "start"},
-	field{name: "missing", shape: shape{form: formTexts, most: 100}, def: `"", NA`},
-	field{name: "gaps", shape: shape{form: formWord, words: []string{"refuse"}, later: []string{"zero", "month mean"}}, def: "refuse"},
+	field{name: "stamp", says: "whether a time names the start or the end of its step",
+		shape: oneOf("start", "end"), def: "start"},
+	field{name: "missing", says: "cells that stand for a missing value; a list given here replaces the default",
+		shape: shape{form: formTexts, most: 100}, def: `"", NA`},
+	field{name: "gaps", says: "what to do about missing values: refuse the record",
+		shape: shape{form: formWord, words: []string{"refuse"}, later: []string{"zero", "month mean"}}, def: "refuse"},
 )
 
 var columnShape = block(
-	field{name: "name", shape: filledShape, need: "the header of the column"},
-	field{name: "unit", shape: filledShape, need: "the unit of the column, such as mm for a depth per step or mm/h for a rate"},
+	field{name: "name", says: "header of the column, as it stands in the file",
+		shape: filledShape, need: "the header of the column"},
+	field{name: "unit", says: "a depth per step (mm, cm, in), a rate (mm/h, mm/d, in/h), or multiples such as 0.1 mm",
+		shape: filledShape, need: "the unit of the column, such as mm for a depth per step or mm/h for a rate"},
 )
 
 var groundShape = block(
-	field{name: "surface", shape: block(surfaceFields...)},
-	field{name: "soil", shape: block(soilFields...), def: "none"},
-	field{name: "cover", shape: block(coverFields...), need: "the upper layer: a block with thickness, drainable_porosity, seepage and percolation"},
-	field{name: "deep", shape: block(deepFields...), need: "the lower layer: a block with thickness, drainable_porosity and seepage"},
+	field{name: "surface", says: "how rain enters the ground",
+		shape: block(surfaceFields...)},
+	field{name: "soil", says: "soil-water balance: plants use part of the water before any goes deeper; needs columns.pet",
+		shape: block(soilFields...), def: "none"},
+	field{name: "cover", says: "the upper, permeable layer",
+		shape: block(coverFields...), need: "the upper layer: a block with thickness, drainable_porosity, seepage and percolation"},
+	field{name: "deep", says: "the lower layer: clay with open fissures",
+		shape: block(deepFields...), need: "the lower layer: a block with thickness, drainable_porosity and seepage"},
 	notYet("rates_from"),
-	field{name: "start", shape: shape{form: formBlock, words: []string{"steady"}, fields: []field{
-		{name: "cover", shape: levelShape, need: "the level in the cover at the start, such as 1.2 m"},
-		{name: "deep", shape: levelShape, need: "the level in the deep layer at the start, such as 3.4 m"},
-	}}, def: "steady"},
-	field{name: "warm_up", shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(0, maxWarmUp), words: []string{"auto"}}}, // stands in: auto, or 0 y beside levels
-	field{name: "calibrated_to", shape: amount(quantity.Length, above(0, maxLevel), "unknown"), def: "unknown"},
+	field{name: "start", says: "where the replay begins: the steady levels under each option's own mean recharge, or levels",
+		shape: shape{form: formBlock, words: []string{"steady"}, fields: []field{
+			{name: "cover", says: "level in the cover at the start, above the contact",
+				shape: levelShape, need: "the level in the cover at the start, such as 1.2 m"},
+			{name: "deep", says: "level in the deep layer at the start, above its base",
+				shape: levelShape, need: "the level in the deep layer at the start, such as 3.4 m"},
+		}}, def: "steady"},
+	field{name: "warm_up", says: "years of the record that are replayed before it, so that the start no longer matters", absent: "by default auto, or 0 y where start gives levels",
+		shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(0, maxWarmUp), words: []string{"auto"}}},
+	field{name: "calibrated_to", says: "highest deep level in the readings used for calibration; bands above it are extrapolated",
+		shape: amount(quantity.Length, above(0, maxLevel), "unknown"), def: "unknown"},
 	notYet("ensemble"),
 )
 
 var bandFields = []field{
-	{name: "name", shape: nameShape, need: "a name, such as movement onset"},
-	{name: "level", shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
-	{name: "elevation", shape: datumShape, quiet: true},
-	{name: "below_ground", shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
+	{name: "name", says: "what begins at this level, such as movement onset",
+		shape: nameShape, need: "a name, such as movement onset"},
+	{name: "level", says: "height above the base of the deep layer", absent: "one of level, elevation and below_ground is required",
+		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
+	{name: "elevation", says: "height on the site's datum; needs site.ground_level", absent: "one of level, elevation and below_ground is required",
+		shape: datumShape, quiet: true},
+	{name: "below_ground", says: "depth below ground", absent: "one of level, elevation and below_ground is required",
+		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
 	notYet("factor_of_safety"),
-	{name: "until", shape: datumShape}, // stands in: the onset
+	{name: "until", says: "level at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
+		shape: datumShape},
 	notYet("loss_per_event"),
 	notYet("loss_per_day"),
 }
 
 var countShape = block(
-	field{name: "apart", shape: amount(quantity.Duration, atLeast(0, 3660)), def: "10 d"},
-	field{name: "year_starts", shape: shape{form: formMonth, words: []string{"auto"}}, def: "auto"},
-	field{name: "confidence", shape: amount(quantity.Share, limits{lo: 0.5, hi: 0.999, loOpen: true, hiOpen: true}), def: "90 %"},
-	field{name: "resamples", shape: shape{form: formWhole, limits: atLeast(100, maxResamples)}, def: "2000"},
-	field{name: "seed", shape: shape{form: formWhole, limits: atLeast(0, 1<<53)}, def: "1"}, // every reader of JSON keeps these apart
-	field{name: "decide_on", shape: filledShape},                                            // stands in: the only band
-	field{name: "decide_by", shape: oneOf("load", "days", "events", "annual_probability"), def: "load"},
-	field{name: "mean_block", shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "2 y"},
+	field{name: "apart", says: "exceedances no further apart than this are one event; with 0 d only until joins them",
+		shape: amount(quantity.Duration, atLeast(0, 3660)), def: "10 d"},
+	field{name: "year_starts", says: "month in which the counted years begin; auto is the month with the lowest level",
+		shape: shape{form: formMonth, words: []string{"auto"}}, def: "auto"},
+	field{name: "confidence", says: "confidence of the ranges beside the figures",
+		shape: amount(quantity.Share, limits{lo: 0.5, hi: 0.999, loOpen: true, hiOpen: true}), def: "90 %"},
+	field{name: "resamples", says: "how often the years are drawn anew for the ranges of days, load and changes",
+		shape: shape{form: formWhole, limits: atLeast(100, maxResamples)}, def: "2000"},
+	field{name: "seed", says: "where the random draws begin; the same seed gives the same figures",
+		shape: shape{form: formWhole, limits: atLeast(0, 1<<53-1)}, def: "1"}, // every reader of JSON keeps these apart
+	field{name: "decide_on", says: "name of the band that ranks the options", absent: "by default the only band; required with several bands and several options",
+		shape: filledShape},
+	field{name: "decide_by", says: "figure that ranks the options; load is the height above the band times days",
+		shape: oneOf("load", "days", "events", "annual_probability"), def: "load"},
+	field{name: "mean_block", says: "mean length of the runs of years that are drawn together",
+		shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "2 y"},
 	notYet("target"),
 	notYet("design_life"),
 )
 
 var optionFields = []field{
-	{name: "name", shape: nameShape, need: "a name, such as trenches"},
-	{name: "baseline", shape: oneOf("true", "false")}, // stands in: the first is
+	{name: "name", says: "what the option is called in every result",
+		shape: nameShape, need: "a name, such as trenches"},
+	{name: "baseline", says: "whether this is the option that all others are compared with; only one can be", absent: "by default the first option is, where none is marked",
+		shape: oneOf("true", "false")},
 	notYet("minimum"),
-	{name: "trench_drains", shape: trenchShape, quiet: true},
-	{name: "bored_drains", shape: boredShape, quiet: true},
-	{name: "surface_water", shape: block(
-		field{name: "kept_out", shape: shareShape, need: "the share of the infiltration that no longer enters, such as 10 %"},
-		notYet("like"),
-	), quiet: true},
+	{name: "trench_drains", says: "parallel trenches that drain the cover, down to their own level and no further", absent: "may be left out",
+		shape: trenchShape, quiet: true},
+	{name: "bored_drains", says: "bores that drain the deep layer, down to their own level and no further", absent: "may be left out",
+		shape: boredShape, quiet: true},
+	{name: "surface_water", says: "lined channels, grading and the like, which keep water out of the ground", absent: "may be left out",
+		shape: block(
+			field{name: "kept_out", says: "share of the infiltration that no longer enters, over the whole plan area",
+				shape: shareShape, need: "the share of the infiltration that no longer enters, such as 10 %"},
+			notYet("like"),
+		), quiet: true},
 	notYet("vegetation"),
 	notYet("cut_off_drain"),
-	{name: "set", shape: block(settable...), quiet: true},
+	{name: "set", says: "numbers of ground that this option changes, before its other measures act", absent: "may be left out",
+		shape: block(settable...), quiet: true},
 	notYet("cost"),
 }
 
 var trenchShape = block(
-	field{name: "depth", shape: amount(quantity.Length, above(0, maxThickness)), need: "the depth of the trenches below ground, such as 3.0 m"},
-	field{name: "rate", shape: drainRateShape, quiet: true},
-	field{name: "spacing", shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true},
-	field{name: "conductivity", shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
+	field{name: "depth", says: "depth of the trenches below ground, no deeper than the cover is thick",
+		shape: amount(quantity.Length, above(0, maxThickness)), need: "the depth of the trenches below ground, such as 3.0 m"},
+	field{name: "rate", says: "rate at which the trenches empty the cover above their level, measured or worked out elsewhere", absent: "either rate or spacing is required",
+		shape: drainRateShape, quiet: true},
+	field{name: "spacing", says: "distance from trench to trench, from which the rate is worked out", absent: "either rate or spacing is required",
+		shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true},
+	field{name: "conductivity", says: "hydraulic conductivity of the cover; only with spacing", absent: "by default ground.cover.conductivity",
+		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
 	notYet("conductivity_below"),
 	notYet("drain_radius"),
-	field{name: "equivalent_depth", shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true},
-	field{name: "working_head", shape: amount(quantity.Length, above(0, maxThickness)), quiet: true},
-	field{name: "law", shape: shape{form: formWord, words: []string{"linear"}, later: []string{"quadratic"}}, def: "linear"},
-	field{name: "efficiency", shape: someShareShape, def: "100 %"},
-	field{name: "ceiling", shape: ceilingShape, def: "none"},
+	field{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
+		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true},
+	field{name: "working_head", says: "height of the water above the trenches that the rate is worked out for; only with spacing", absent: "by default half of depth, the only value supported yet",
+		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true},
+	field{name: "law", says: "how the outflow grows with the height of the water above the trenches; only with spacing",
+		shape: shape{form: formWord, words: []string{"linear"}, later: []string{"quadratic"}}, def: "linear"},
+	field{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
+		shape: someShareShape, def: "100 %"},
+	field{name: "ceiling", says: "most that the trenches carry away",
+		shape: ceilingShape, def: "none"},
 	notYet("decline"),
 	notYet("like"),
 )
 
 var boredShape = block(
-	field{name: "rate", shape: drainRateShape, need: "the rate at which the drains empty the deep layer above their level, such as 0.005 /d"},
-	field{name: "level", shape: levelShape, need: "the level of the drains above the base of the deep layer, such as 3.0 m"},
-	field{name: "efficiency", shape: someShareShape, def: "100 %"},
-	field{name: "ceiling", shape: ceilingShape, def: "none"},
-	field{name: "number", shape: shape{form: formWhole, limits: atLeast(1, maxDrains)}, def: "none"},
-	field{name: "length", shape: amount(quantity.Length, above(0, maxLevel)), def: "none"},
+	field{name: "rate", says: "rate at which the drains empty the deep layer above their level",
+		shape: drainRateShape, need: "the rate at which the drains empty the deep layer above their level, such as 0.005 /d"},
+	field{name: "level", says: "level of the drains above the base of the deep layer",
+		shape: levelShape, need: "the level of the drains above the base of the deep layer, such as 3.0 m"},
+	field{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
+		shape: someShareShape, def: "100 %"},
+	field{name: "ceiling", says: "most that the drains carry away",
+		shape: ceilingShape, def: "none"},
+	field{name: "number", says: "how many bores there are; no figure depends on it",
+		shape: shape{form: formWhole, limits: atLeast(1, maxDrains)}, def: "none"},
+	field{name: "length", says: "length of each bore; only a warning depends on it",
+		shape: amount(quantity.Length, above(0, maxLevel)), def: "none"},
 	notYet("decline"),
 	notYet("like"),
 )
 
+// declaredSays describes the keys of DeclaredKeys.
+var declaredSays = map[string]string{
+	"existing_slip_surface":            "the slope moves on a slip surface that exists already; no is refused",
+	"rapid_movement_possible":          "the slope could move rapidly; yes is refused",
+	"ground_changed_since_calibration": "cutting, filling, toe erosion, an earthquake or more than 0.5 m of movement came since",
+	"iron_or_lime_in_water":            "the water carries iron or lime, which clog drains",
+	"perched_water":                    "water is held up above the level in the cover, which the model does not have",
+	"outlet_on_moving_ground":          "an outlet of the drains would lie on ground that moves",
+	"wells_or_buildings_nearby":        "wells or buildings stand near that a lower level could harm",
+}
+
 func declaredFields() []field {
 	var all []field
 	for _, k := range DeclaredKeys {
-		all = append(all, field{name: k, shape: answerShape, def: "unknown"})
+		all = append(all, field{name: k, says: declaredSays[k], shape: answerShape, def: "unknown"})
 	}
 	return all
 }

@@ -27,6 +27,10 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 		if name != "help" && name != "h" || len(rest) == 0 || isHelp(rest[0]) {
 			return []string{"--help"}, nil
 		}
+		if rest[0] == studyTopic {
+			app.CustomAppHelpTemplate = asTemplate(studyHelp())
+			return []string{"--help"}, nil
+		}
 		if app.Command(rest[0]) == nil {
 			return nil, unknownCommand(app, rest[0])
 		}

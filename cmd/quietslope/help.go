@@ -2,9 +2,14 @@ package main
 
 import (
 	"fmt"
+	"slices"
+	"strconv"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/urfave/cli/v2"
+
+	"quietslope/scenario"
 )
 
 // Categories group the commands by what a person is doing.
@@ -32,6 +37,7 @@ each critical band. It is no stability analysis and no warning system.
 Usage:
   quietslope COMMAND STUDY.yaml [options]      options may stand before or after the study
   quietslope help COMMAND                      what a command does, what it needs, examples
+  quietslope help study                        every key of the study file, units, rules, examples
   quietslope --version
 `)
 	for _, category := range []string{lookFirst, comparing, takeNumbers} {
@@ -54,7 +60,8 @@ To start, look at the demo from a copy of the source:
 // commandHelp is the text of "quietslope help COMMAND": the command's description, its options, the exit status.
 func commandHelp(app *cli.App, c *cli.Command) string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s %s [options]\n\n%s\nOptions:\n", app.Name, c.Name, c.Usage, app.Name, c.Name, c.ArgsUsage, c.Description)
+	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s %s [options]\n\n%s\n", app.Name, c.Name, c.Usage, app.Name, c.Name, c.ArgsUsage, c.Description)
+	b.WriteString("The study file:\n  \"quietslope help study\" lists its keys, units and rules, with examples.\n\nOptions:\n")
 	for _, f := range c.Flags {
 		d := f.(cli.DocGenerationFlag)
 		usage := strings.Split(d.GetUsage(), "\n")
@@ -66,4 +73,289 @@ func commandHelp(app *cli.App, c *cli.Command) string {
 	}
 	b.WriteString("\n" + exitStatus)
 	return b.String()
+}
+
+// studyTopic is the word after help that asks for the reference of the study file.
+const studyTopic = "study"
+
+// helpWidth is the largest number of characters of a line of help.
+const helpWidth = 100
+
+// studyHelp is the text of "quietslope help study". What it says of each key comes from the table by which the study is
+// read.
+func studyHelp() string {
+	var b strings.Builder
+	b.WriteString(`The study file: one YAML file that names the weather, the ground, the critical levels and the
+options. "quietslope check" says how yours was understood.
+
+Rules of the format:
+  - Plain text in UTF-8, at most 1 MB. Blocks are indented with blanks, never tabs, or stand between
+    { and }. A blank follows the colon of every key. A # after a blank begins a comment.
+  - Keys may stand in any order, each once in its block and none without a value. An unknown key is
+    an error, never ignored. "quietslope check" lists the defaults of those that are left out.
+  - Not used: anchors, aliases, merge keys, tags, block texts (| and >) and a second document.
+  - A text stands on one line. Put it between quotes when it holds a colon and a blank or begins
+    with a sign such as & * ! | > % @ [ { or #.
+  - Every quantity has its unit: 12 m, 0.011 /d, 8 %. A decimal point is a full stop, thousands are
+    not marked, and 2.4e6 is read. Only where the list says number is there no unit.
+  - A share may also be a bare 0 or a number between 0 and 1: 0.85 is 85 %. A bare 1 is refused.
+  - A name has 1 to 60 characters, no blank at either end, does not begin with = + - or @, and
+    differs from the others of its list in more than case. "as recorded" and "as built" are taken.
+  - Levels: level is above the base of the key's own layer, depth and below_ground are below ground,
+    elevation is on the site's datum.
+  - A missing code that is a number matches the same value, so that -999 covers -999.0; any other
+    matches the cell exactly, but for blanks around it.
+
+Below, [] stands for each item of a list, and "required" means: wherever its block stands. The
+examples put together in this order are a whole study; the second weather replaces the first.
+`)
+	for _, s := range sections(scenario.Keys()) {
+		b.WriteString("\n" + wrap(s.heading(), "  ") + "\n")
+		s.writeKeys(&b)
+		b.WriteString(studyNotes[s.path])
+		for _, e := range studyExamples {
+			if e.section == s.path {
+				fmt.Fprintf(&b, "\n  %s:\n\n%s", e.lead, indent(e.text, "    "))
+			}
+		}
+	}
+	b.WriteString("\nUnits, the usual one first (y is 365.25 d, and m² is read as m2):\n")
+	writeUnits(&b, scenario.Keys())
+	b.WriteString("\n" + wrap("Known but not supported yet: "+strings.Join(scenario.LaterKeys(), ", ")+".", "") + "\n")
+	return b.String()
+}
+
+// section is a block of the study whose keys are listed together, with those of the blocks in it.
+type section struct {
+	path string // "" for the keys outside any block
+	head scenario.KeyDoc
+	keys []scenario.KeyDoc
+}
+
+// sections puts the keys together: those of each block at the top, and those of each block in the items of a list.
+func sections(docs []scenario.KeyDoc) []section {
+	all := []section{{}}
+	for _, d := range docs {
+		path := sectionOf(d.Path)
+		i := slices.IndexFunc(all, func(s section) bool { return s.path == path })
+		switch {
+		case i >= 0:
+			all[i].keys = append(all[i].keys, d)
+		case path == d.Path && (d.Form == "block" || d.Form == "list of blocks"):
+			all = append(all, section{path: path, head: d})
+		case strings.Contains(d.Path, "[]."): // a key of an item itself
+			list, _, _ := strings.Cut(d.Path, "[].")
+			i = slices.IndexFunc(all, func(s section) bool { return s.path == list })
+			all[i].keys = append(all[i].keys, d)
+		default:
+			all[0].keys = append(all[0].keys, d)
+		}
+	}
+	return all
+}
+
+// sectionOf is the path of the block under which a key would be listed: the first part of its path, or the part up to the
+// first key of an item.
+func sectionOf(path string) string {
+	list, inItem, _ := strings.Cut(path, "[].")
+	if inItem != "" {
+		first, _, _ := strings.Cut(inItem, ".")
+		return list + "[]." + first
+	}
+	first, _, _ := strings.Cut(path, ".")
+	return first
+}
+
+func (s *section) heading() string {
+	if s.path == "" {
+		return "Outside any block:"
+	}
+	return fmt.Sprintf("%s: %s (%s)", s.path, s.head.Says, valueOf(s.head))
+}
+
+// writeKeys lists the keys of a section, by their path inside it.
+func (s *section) writeKeys(b *strings.Builder) {
+	inside := func(path string) string {
+		return strings.TrimPrefix(strings.TrimPrefix(path, s.path), "[]")
+	}
+	var names []string
+	widest := 0
+	for _, k := range s.keys {
+		name := strings.TrimPrefix(inside(k.Path), ".")
+		names = append(names, name)
+		widest = max(widest, utf8.RuneCountInString(name))
+	}
+	if strings.HasSuffix(s.path, "].set") { // the keys of ground once more
+		b.WriteString(wrap("  Its keys, written and meant as in ground: "+strings.Join(names, ", ")+".", "  ") + "\n")
+		return
+	}
+	for i, k := range s.keys {
+		lead := fmt.Sprintf("  %-*s  ", widest, names[i])
+		below := strings.Repeat(" ", len(lead))
+		b.WriteString(wrap(lead+k.Says, below) + "\n" + wrap(below+valueOf(k), below) + "\n")
+	}
+}
+
+// valueOf says how the value of a key is written, its range, and what holds when it is left out.
+func valueOf(k scenario.KeyDoc) string {
+	text := k.Form
+	switch {
+	case k.Form == "word" && len(k.Words) == 1:
+		return k.Words[0] + ", and no other yet"
+	case k.Form == "word":
+		text = orWords(k.Words)
+	case k.Range != "":
+		text += " " + k.Range
+	}
+	if k.Form != "word" && len(k.Words) > 0 {
+		text += ", or " + orWords(k.Words)
+	}
+	switch {
+	case k.Required:
+		text += "; required"
+	case k.Default != "":
+		text += "; default " + k.Default
+	case k.Absent != "":
+		text += "; " + k.Absent
+	default:
+		text += "; may be left out"
+	}
+	return text
+}
+
+// writeUnits lists the units of every kind of quantity that the keys use, in the order of their first use.
+func writeUnits(b *strings.Builder, docs []scenario.KeyDoc) {
+	seen := map[string]bool{}
+	for _, k := range docs {
+		if len(k.Units) > 0 && !seen[k.Form] {
+			seen[k.Form] = true
+			fmt.Fprintf(b, "  %-16s%s\n", k.Form, strings.Join(k.Units, "  "))
+		}
+	}
+}
+
+func orWords(words []string) string {
+	if len(words) < 2 {
+		return strings.Join(words, "")
+	}
+	return strings.Join(words[:len(words)-1], ", ") + " or " + words[len(words)-1]
+}
+
+// wrap breaks a text at blanks into lines of helpWidth. Blanks at its beginning stay; the later lines begin with below.
+func wrap(text, below string) string {
+	var b strings.Builder
+	line := text[:len(text)-len(strings.TrimLeft(text, " "))]
+	empty := true // the line has no word yet
+	for i, word := range strings.Split(strings.TrimLeft(text, " "), " ") {
+		if i > 0 && !empty && utf8.RuneCountInString(line)+1+utf8.RuneCountInString(word) > helpWidth {
+			b.WriteString(line + "\n")
+			line, empty = below, true
+		}
+		if !empty {
+			line += " "
+		}
+		line, empty = line+word, false
+	}
+	return b.String() + line
+}
+
+// indent puts blanks before every line that has text.
+func indent(text, by string) string {
+	var b strings.Builder
+	for line := range strings.Lines(text) {
+		if line != "\n" {
+			b.WriteString(by)
+		}
+		b.WriteString(line)
+	}
+	return b.String()
+}
+
+// asTemplate makes a text the template that prints it, whatever braces it holds.
+func asTemplate(text string) string { return "{{print " + strconv.Quote(text) + "}}" }
+
+// studyNotes stand below the keys of a section.
+var studyNotes = map[string]string{
+	"weather": `
+  The file: looked for from the folder of the study, wherever the program is started; an absolute
+  path is taken as it is. Its first line is the header. Columns are separated by commas, semicolons
+  or tabs; with the last two a decimal comma is read. It may be packed with gzip. The step is
+  constant, from a minute to a day, and no row is missing.
+
+  Times: YYYY MM DD hh mm ss are year, month, day, hour, minute and second, and any other character
+  stands for itself: YYYY-MM-DD, DD.MM.YYYY hh:mm, YYYYMMDDThhmm. The format iso reads times with
+  their offset from UTC, such as 2019-03-31T14:05:00+01:00 or 2019-03-31T13:05:00Z.
+  Clocks with summer time skip an hour and repeat another, and such a record, unless daily, is
+  refused. Give UTC or standard time all year, or iso. Daily rows in iso keep one offset all year.
+`,
+}
+
+// studyExamples stand below the notes of a section. Each text is part of a study as it would stand there, so that they
+// make one when put together; a second text of one block is another way to write it.
+var studyExamples = []struct{ section, lead, text string }{
+	{"", "Example", `study: Bank above the mill, drainage options
+prepared_by: A. N. Engineer
+`},
+	{"weather", "Daily depths", `weather:
+  file: weather.csv
+  columns:
+    time: {name: date, format: YYYY-MM-DD}
+    rain: {name: rain_mm, unit: mm}
+    pet: {name: pet_mm, unit: mm}
+  missing: ["", NA, -999]
+`},
+	{"weather", "Tips of a gauge, in local time with its offset, stamped at the end of the step", `weather:
+  file: records/gauge.csv.gz
+  columns:
+    time: {name: time, format: iso}
+    rain: {name: tips, unit: 0.2 mm}
+    pet: {name: et0, unit: mm/h}
+  stamp: end
+`},
+	{"ground", "With levels that were read at the start of the record; without start it begins steady", `ground:
+  surface: {infiltration: 85 %}
+  soil: {available_water: 120 mm}
+  cover:
+    thickness: 4.0 m
+    drainable_porosity: 8 %
+    conductivity: 0.044 m/d
+    seepage: 0.011 /d
+    percolation: 0.0045 /d
+  deep:
+    thickness: 9.0 m
+    drainable_porosity: 1.4 %
+    seepage: 0.007 /d
+  start: {cover: 1.2 m, deep: 3.4 m}
+  calibrated_to: 4.9 m
+`},
+	{"bands", "One band in each datum; with this ground and site they begin at 3.6, 4.2 and 5.0 m", `bands:
+  - {name: watch, level: 3.6 m}
+  - {name: movement onset, elevation: 409.2 m, until: 408.9 m}
+  - {name: fast movement, below_ground: 8.0 m}
+`},
+	{"count", "Example", `count: {apart: 10 d, year_starts: October, decide_on: movement onset, decide_by: load}
+`},
+	{"options", "The ground as it is, to compare with", `options:
+  - name: as it stands
+`},
+	{"options[].trench_drains", "By spacing, and by a rate that was worked out elsewhere", `  - name: trenches 12 m apart
+    trench_drains: {spacing: 12 m, depth: 3.0 m, equivalent_depth: 0.80 m, efficiency: 80 %}
+
+  - name: trenches at a given rate
+    trench_drains: {rate: 0.02 /d, depth: 3.0 m}
+`},
+	{"options[].bored_drains", "Example", `  - name: bored drains
+    bored_drains: {rate: 0.005 /d, level: 3.0 m, number: 12, length: 45 m}
+`},
+	{"options[].surface_water", "Measures combine", `  - name: trenches 24 m apart with channels
+    trench_drains: {spacing: 24 m, depth: 3.0 m, equivalent_depth: 0.89 m, efficiency: 80 %}
+    surface_water: {kept_out: 10 %}
+`},
+	{"options[].set", "Example", `  - name: seepage from a trial
+    set: {cover.seepage: 0.02 /d}
+`},
+	{"site", "Example", `site: {plan_area: 1.2 ha, ground_level: 418.0 m}
+`},
+	{"declared", "Example", `declared: {existing_slip_surface: yes, rapid_movement_possible: no, perched_water: unknown}
+`},
 }
