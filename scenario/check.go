@@ -52,7 +52,7 @@ func Check(ctx context.Context, s *Study) (*result.Check, error) {
 	for _, y := range a.Years {
 		c.Audit.Years = append(c.Audit.Years, result.YearRain(y))
 	}
-	ws := warnings(p.studyWarnings())
+	ws := warnings(p.studyWarnings(nil))
 	f := optionFigures{Option: result.Option{Name: s.Options[p.baseline].Name}, trace: summarise(p.base)}
 	p.replayWarnings(&ws, &f)
 	c.Warnings = ws

@@ -134,7 +134,7 @@ func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
 		found.Options = append(found.Options, options[i].Option)
 	}
 	c.Cases = []result.Case{found}
-	c.Warnings = append(p.studyWarnings(), p.resultWarnings(options, resamples)...)
+	c.Warnings = append(p.studyWarnings(options), p.resultWarnings(options, resamples)...)
 	return c, nil
 }
 
@@ -181,7 +181,23 @@ func (p *prepared) figures(t *trace) optionFigures {
 		f.passed = append(f.passed, e)
 		f.Bands = append(f.Bands, p.bandFigure(b, &e))
 	}
+	if on := p.study.Count.DecideOn; on >= 0 {
+		f.Bands[on].Spells = p.spells(&f.passed[on])
+	}
 	return f
+}
+
+// spells are the counted events, to be held against what is known of the slope's movement.
+func (p *prepared) spells(e *stats.Exceedance) []result.Spell {
+	var spells []result.Spell
+	for _, ev := range e.Events {
+		if ev.Counted {
+			spells = append(spells, result.Spell{
+				From: p.record.ISO(ev.First), To: p.record.ISO(ev.Last), Days: ev.Days, PeakExcessM: ev.PeakExcess,
+			})
+		}
+	}
+	return spells
 }
 
 // threshold is a band as the counting sees it.
@@ -354,7 +370,7 @@ func measureNamed(name string) *measure {
 	panic("scenario: no measure " + name)
 }
 
-// rank orders the options by their decision figure; equal figures share a rank.
+// rank orders the options by their decision figure; figures that differ by rounding only share a rank.
 func rank(s *Study, options []optionFigures) {
 	if s.Count.DecideOn < 0 {
 		return
@@ -362,7 +378,7 @@ func rank(s *Study, options []optionFigures) {
 	for i := range options {
 		options[i].Decision.Rank = 1
 		for j := range options {
-			if options[j].Decision.Value < options[i].Decision.Value {
+			if stats.Less(options[j].Decision.Value, options[i].Decision.Value) {
 				options[i].Decision.Rank++
 			}
 		}

@@ -10,6 +10,7 @@ import (
 	"path/filepath"
 	"runtime"
 	"strconv"
+	"strings"
 	"testing"
 	"time"
 
@@ -337,19 +338,22 @@ func speeds(h []float64) (rise, fall float64) {
 // TestSupply works the water that enters by hand.
 func TestSupply(t *testing.T) {
 	r := &weather.Record{Step: 24 * time.Hour, Rain: []float64{10, 0, 100}, PET: []float64{2, 3, 1}}
+	inf := math.Inf(1)
+	soil := func(factor float64) *Soil { return &Soil{Available: 100, Readily: 0.5, CropFactor: factor} }
 	for _, tt := range []struct {
-		name string
-		key  supplyKey
-		pet  bool
-		want []float64
+		name    string
+		ground  Ground
+		keptOut float64
+		pet     bool
+		want    []float64
 	}{
-		{"infiltration", supplyKey{share: 0.8, limit: math.Inf(1)}, false, []float64{8, 0, 80}},
-		{"limit of 2 mm/h over a day", supplyKey{share: 0.8, limit: 2}, false, []float64{8, 0, 48}},
-		{"a tenth kept out of what the limit lets in", supplyKey{share: 0.8, limit: 2, keptOut: 0.1}, false, []float64{7.2, 0, 43.2}},
-		{"less the demand", supplyKey{share: 0.8, limit: math.Inf(1)}, true, []float64{6, -3, 79}},
+		{"infiltration", Ground{Infiltration: 0.8, InfiltrationLimit: inf}, 0, false, []float64{8, 0, 80}},
+		{"limit of 2 mm/h over a day", Ground{Infiltration: 0.8, InfiltrationLimit: 2}, 0, false, []float64{8, 0, 48}},
+		{"a tenth kept out of what the limit lets in", Ground{Infiltration: 0.8, InfiltrationLimit: 2}, 0.1, false, []float64{7.2, 0, 43.2}},
+		{"less the demand", Ground{Infiltration: 0.8, InfiltrationLimit: inf}, 0, true, []float64{6, -3, 79}},
 		// From field capacity: 8 in, 2 asked; then 3 drawn from the soil; then 80 in, 1 asked, 3 to fill up.
-		{"with a soil", supplyKey{share: 0.8, limit: math.Inf(1), soil: Soil{Available: 100, Readily: 0.5, CropFactor: 1}, hasSoil: true}, true, []float64{6, 0, 76}},
-		{"crop factor", supplyKey{share: 0.8, limit: math.Inf(1), soil: Soil{Available: 100, Readily: 0.5, CropFactor: 2}, hasSoil: true}, true, []float64{4, 0, 72}},
+		{"with a soil", Ground{Infiltration: 0.8, InfiltrationLimit: inf, Soil: soil(1)}, 0, true, []float64{6, 0, 76}},
+		{"crop factor", Ground{Infiltration: 0.8, InfiltrationLimit: inf, Soil: soil(2)}, 0, true, []float64{4, 0, 72}},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
 			record := *r
@@ -357,7 +361,7 @@ func TestSupply(t *testing.T) {
 				record.PET = nil
 			}
 			got := make([]float64, len(r.Rain))
-			newSupply(tt.key, &record).fill(got, 0)
+			newSupply(&tt.ground, tt.keptOut, &record).fill(got, 0)
 			for i := range got {
 				if math.Abs(got[i]-tt.want[i]) > 1e-12 {
 					t.Errorf("got %v, want %v", got, tt.want)
@@ -365,5 +369,60 @@ func TestSupply(t *testing.T) {
 				}
 			}
 		})
+	}
+}
+
+// TestKeptOutMultiplies: shares that several measures keep out leave the product of what each lets in.
+func TestKeptOutMultiplies(t *testing.T) {
+	s := ground(Option{Name: "both", Measures: []Measure{{Cut: &SurfaceWater{KeptOut: 0.1}}, {Cut: &SurfaceWater{KeptOut: 0.5}}}})
+	if got := newWorks(s, &s.Options[1]).keptOut; math.Abs(got-0.55) > 1e-15 {
+		t.Errorf("%v is kept out, want 0.55", got)
+	}
+}
+
+// TestEqualOptionsShareARank: figures that differ by their last digits only are equal.
+func TestEqualOptionsShareARank(t *testing.T) {
+	s := load(t, "../testdata/demo/study.yaml")
+	s.Options = append(s.Options,
+		Option{Name: "the same by another way", Measures: []Measure{{Key: "set", Set: []Assignment{{Key: "surface.infiltration", Value: 0.85 * 0.9}}}}},
+		Option{Name: "the same again", Measures: []Measure{{Key: "surface_water", Cut: &SurfaceWater{KeptOut: 0.1}}}})
+	ranks := map[string]int{}
+	for _, o := range compare(t, s).Cases[0].Options {
+		ranks[o.Name] = o.Decision.Rank
+	}
+	if r := ranks["lined channels"]; ranks["the same by another way"] != r || ranks["the same again"] != r || ranks["bored drains"] != r+3 {
+		t.Errorf("ranks %v", ranks)
+	}
+}
+
+// TestDryOptionBalances: an option under which hardly any water reaches the cover is no fault of the program, however
+// much passed in the warm-up.
+func TestDryOptionBalances(t *testing.T) {
+	for _, share := range []float64{0.75, 0.85, 0.95, 1} {
+		for _, years := range []int{-1, 5, 8} {
+			s := load(t, "../testdata/demo/study.yaml")
+			s.Ground.WarmUpYears = years
+			s.Options = append(s.Options, Option{Name: "dry", Measures: []Measure{{Key: "surface_water", Cut: &SurfaceWater{KeptOut: share}}}})
+			compare(t, s)
+		}
+	}
+}
+
+// TestBrokenBalanceIsRefused: water that does not add up is not reported as a result.
+func TestBrokenBalanceIsRefused(t *testing.T) {
+	s := ground()
+	tr := deepLevels(t, s, 0, invented(3, 1))
+	if err := tr.checkBalance(); err != nil {
+		t.Fatal(err)
+	}
+	for name, spoil := range map[string]func(*trace){
+		"cover": func(t *trace) { t.whole.Cover.Seepage += 1e-5 },
+		"deep":  func(t *trace) { t.whole.Deep.Seepage += 1e-5 },
+	} {
+		spoilt := *tr
+		spoil(&spoilt)
+		if err := spoilt.checkBalance(); err == nil || !strings.Contains(err.Error(), name+" store") {
+			t.Errorf("%s: %v", name, err)
+		}
 	}
 }

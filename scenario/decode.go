@@ -411,8 +411,16 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		var whole int64
 		whole, err = quantity.ParseWhole(n.text)
 		v.num = float64(whole)
-	case formQuantity, formYears:
+	case formQuantity:
 		v.num, err = quantity.Parse(n.text, s.kind)
+	case formYears:
+		if v.num, err = quantity.Parse(n.text, s.kind); err != nil {
+			meant := "4"
+			if x, err := quantity.ParseWhole(n.text); err == nil {
+				meant = quantity.FormatNumber(float64(x))
+			}
+			err = fmt.Errorf("%s is not a number of years; write one such as %s y", quoted(n.text), meant)
+		}
 	}
 	if err != nil {
 		if len(s.words) > 0 && !strings.ContainsFunc(n.text, unicode.IsDigit) {

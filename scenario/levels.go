@@ -37,7 +37,7 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 	if err != nil {
 		return nil, err
 	}
-	lo, hi, err := q.cut(p.record)
+	lo, hi, err := q.cut(p.record, s.Weather.StampEnd)
 	if err != nil {
 		return nil, err
 	}
@@ -99,23 +99,29 @@ func unknownName(flag, name string, known []string) error {
 	return &fault.Error{Key: flag, Text: fmt.Sprintf("the study has no %q; it has: %s", name, strings.Join(known, "; "))}
 }
 
-// cut finds the rows to write.
-func (q *LevelsQuery) cut(r *weather.Record) (lo, hi int, err error) {
+// cut finds the rows to write: those whose times, as the weather has them, lie between From and To.
+func (q *LevelsQuery) cut(r *weather.Record, stampEnd bool) (lo, hi int, err error) {
 	n := len(r.Rain)
+	row := func(t time.Time) int { // the first row with this time or a later one
+		if stampEnd {
+			t = t.Add(-r.Step)
+		}
+		return min(max(firstStepAt(r, t), 0), n)
+	}
 	lo, hi = 0, n
 	if q.From != "" {
 		from, _, err := parseMoment("--from", q.From, r)
 		if err != nil {
 			return 0, 0, err
 		}
-		lo = min(max(firstStepAt(r, from), 0), n)
+		lo = row(from)
 	}
 	if q.To != "" {
 		_, end, err := parseMoment("--to", q.To, r)
 		if err != nil {
 			return 0, 0, err
 		}
-		hi = min(max(firstStepAt(r, end), 0), n)
+		hi = row(end)
 	}
 	if lo >= hi {
 		return 0, 0, &fault.Error{Key: "--from, --to",

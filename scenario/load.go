@@ -65,30 +65,38 @@ func unreadable(path string, err error) error {
 
 // Parse reads and checks the text of a study file. The file need not exist: its name stands in errors, and its folder
 // is where the files that the study names are looked for. Errors are as those of Load.
-func Parse(file string, src []byte) (s *Study, err error) {
-	defer func() {
-		// The reader of the format is not ours. Whatever it may trip over, the user hears which file did it.
-		if r := recover(); r != nil {
-			s, err = nil, &fault.Error{File: file, Text: fmt.Sprintf("this text cannot be read as a study (%v); simplify it, or report it as a fault of the program", r)}
-		}
-	}()
+func Parse(file string, src []byte) (*Study, error) {
 	text, err := readable(file, src)
 	if err != nil {
 		return nil, err
 	}
 	lines := &source{file: file, lines: strings.Split(text, "\n")}
 	found := &problems{src: lines}
-	root := readTree(found)
+	root, err := readSafely(found)
+	if err != nil {
+		return nil, err
+	}
 	if root == nil {
 		return nil, found.err()
 	}
-	s = decodeStudy(root, found)
+	s := decodeStudy(root, found)
 	if err := found.err(); err != nil {
 		return nil, err
 	}
 	sum := sha256.Sum256(src)
 	s.SHA256 = hex.EncodeToString(sum[:])
 	return s, nil
+}
+
+// readSafely reads the tree of a study. The reader of the format is not ours: whatever it may trip over, the user hears
+// which file did it.
+func readSafely(found *problems) (root *node, err error) {
+	defer func() {
+		if r := recover(); r != nil {
+			root, err = nil, &fault.Error{File: found.src.file, Text: fmt.Sprintf("this text cannot be read as a study (%v); simplify it, or report it as a fault of the program", r)}
+		}
+	}()
+	return readTree(found), nil
 }
 
 // readable checks that the bytes are text that a study may hold, and returns it with plain line ends and without a

@@ -21,12 +21,13 @@ type period struct {
 // firstStepAt is the index of the first step of the record that starts at t or later. It may be negative or beyond the
 // record.
 func firstStepAt(r *weather.Record, t time.Time) int {
-	d := t.Sub(r.First)
-	n := int(d / r.Step)
-	if d > 0 && d%r.Step != 0 {
+	// In seconds: a time.Duration holds 292 years only.
+	d, step := t.Unix()-r.First.Unix(), int64(r.Step/time.Second)
+	n := d / step
+	if d > 0 && d%step != 0 {
 		n++
 	}
-	return n
+	return int(n)
 }
 
 // yearOf is the first day of the year that begins in the given month.
@@ -180,11 +181,15 @@ func plural(n int, what string) string {
 	return fmt.Sprintf("%d %ss", n, what)
 }
 
-// wholeYears is the number of whole multiples of 12 months in the record from its first step, and the step at which
-// each of them ends: ends[k-1] is the first step after k years.
+// wholeYears finds the whole multiples of 12 months in the record from its first step: ends[k-1] is the first step after
+// k years. From 29 February a year ends with 28 February where there is no other.
 func wholeYears(r *weather.Record) (ends []int) {
 	for k := 1; ; k++ {
-		end := firstStepAt(r, r.First.AddDate(k, 0, 0))
+		t := r.First.AddDate(k, 0, 0)
+		if t.Day() != r.First.Day() {
+			t = t.AddDate(0, 0, -t.Day())
+		}
+		end := firstStepAt(r, t)
 		if end > len(r.Rain) {
 			return ends
 		}

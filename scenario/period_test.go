@@ -1,11 +1,13 @@
 package scenario
 
 import (
+	"errors"
 	"math"
 	"strings"
 	"testing"
 	"time"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/weather"
 )
 
@@ -34,6 +36,7 @@ func TestCountYears(t *testing.T) {
 		{"hours", record("2003-12-31T22:00", time.Hour, 2+366*24), time.January, 1, 2, 2 + 366*24},
 		// The day from 9 to 9 that starts on 31 December belongs to December, and the year starts with the next.
 		{"days that start at nine", record("2002-12-31T09:00", day, 366), time.January, 1, 1, 366},
+		{"four centuries of days", record("1600-01-01T00:00", day, 400*365+97), time.January, 400, 0, 400*365 + 97},
 		{"29 February as the first step", record("2004-02-29T00:00", day, 366), time.March, 1, 1, 366},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
@@ -140,6 +143,21 @@ func TestWarmUp(t *testing.T) {
 				t.Errorf("got %+v", got)
 			}
 		})
+	}
+	// From 29 February at noon, a year ends with 28 February where there is no other.
+	leap := record("2012-02-29T12:00", 12*time.Hour, 4*2*366)
+	if got := wholeYears(leap); len(got) != 4 || got[0] != 2*365 || got[3] != 2*(4*365+1) {
+		t.Errorf("whole years end at %v", got)
+	}
+	short := record("2012-02-29T12:00", 12*time.Hour, 2*364)
+	s.Ground.WarmUpYears = 4
+	var fe *fault.Error
+	if _, err := newWarmUp(s, short, w(0.007)); !errors.As(err, &fe) {
+		t.Errorf("a record of less than a year: %v", err)
+	}
+	s.Ground.WarmUpYears = 0
+	if got, err := newWarmUp(s, short, w(0.007)); err != nil || got.years != 0 {
+		t.Errorf("a record of less than a year without warm-up: %v, %v", got, err)
 	}
 	s.Ground.WarmUpYears = -1
 	if _, err := newWarmUp(s, long, w(1e-6)); err == nil || !strings.Contains(err.Error(), "give ground.start levels") {

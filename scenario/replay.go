@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"runtime"
+	"runtime/debug"
 	"sync"
 	"time"
 
@@ -29,22 +30,24 @@ type warmUp struct {
 func newWarmUp(s *Study, r *weather.Record, all []*works) (warmUp, error) {
 	years := s.Ground.WarmUpYears
 	if years < 0 {
-		slowest := math.Inf(1)
+		slowest, of := math.Inf(1), ""
 		for _, w := range all {
-			slowest = min(slowest, w.minZeroInvertRate())
+			if rate := w.minZeroInvertRate(); rate < slowest {
+				slowest, of = rate, w.option.Name
+			}
 		}
 		need := math.Ceil(max(3, 5/slowest/365.25))
 		if !(need <= maxWarmUp) {
-			return warmUp{}, &fault.Error{File: s.File, Key: "ground.warm_up",
-				Text: fmt.Sprintf("auto asks for more than %d years, since a store empties at only %s /d; give ground.start levels, or ground.warm_up in years", maxWarmUp, short(slowest))}
+			return warmUp{}, s.Fault(s.PlaceOf("ground.warm_up"), "auto asks for more than %d years, since a store of the option %s empties at only %s /d; give ground.start levels, or ground.warm_up in years",
+				maxWarmUp, quoted(of), short(slowest))
 		}
 		years = int(need)
 	}
 	w := warmUp{years: years}
 	ends := wholeYears(r)
-	if len(ends) == 0 {
-		w.years = 0 // refused later: there is no complete year to count either
-		return w, nil
+	if years > 0 && len(ends) == 0 {
+		return warmUp{}, &fault.Error{File: r.Name, Text: fmt.Sprintf(
+			"is shorter than the 12 months that a warm-up replays: it runs from %s to %s; give a longer record, or start levels and no warm-up", r.ISO(0), r.ISO(len(r.Rain)-1))}
 	}
 	w.repeats = years > len(ends)
 	for left := years; left > 0; left -= min(left, len(ends)) {
@@ -79,7 +82,7 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace,
 	t := &trace{works: w, recharge: make([]float64, len(p.record.Rain))}
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
-	early := newSupply(w.supplyKey(), p.record)
+	early := newSupply(&w.ground, w.keptOut, p.record)
 	scratch := make([]float64, p.longestPass())
 	for _, end := range p.warm.passes {
 		early.fill(scratch[:end], 0)
@@ -205,7 +208,7 @@ func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*
 	if err != nil {
 		return nil, p.study.Fault(w.option.Place, "%v", err)
 	}
-	supply := newSupply(w.supplyKey(), p.record)
+	supply := newSupply(&w.ground, w.keptOut, p.record)
 	n := p.longestPass()
 	depths := make([]float64, n)
 	for _, end := range p.warm.passes {
@@ -220,7 +223,8 @@ func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*
 	return run, nil
 }
 
-// balanceTolerance is the largest water-balance error of a store, as a share of all that entered it and its largest storage.
+// balanceTolerance is the largest water-balance error of a store, as a share of all that entered it and its largest
+// storage, or of 1 mm where both are less.
 const balanceTolerance = 1e-9
 
 // checkBalance refuses a replay whose water does not add up: the fault would be ours. Called while levels are storages.
@@ -237,7 +241,7 @@ func (t *trace) checkBalance() error {
 		{"cover", t.whole.Cover.Error(), in, largest(t.cover)},
 		{"deep", t.whole.Deep.Error(), t.whole.Deep.In + t.whole.Deep.Lateral, largest(t.deep)},
 	} {
-		if !(math.Abs(store.err) <= balanceTolerance*(store.in+store.largest)) {
+		if !(math.Abs(store.err) <= balanceTolerance*max(1, store.in+store.largest)) {
 			return fmt.Errorf("option %q: the water balance of the %s store is off by %g mm; this is a fault of the program, please report it",
 				t.works.option.Name, store.name, store.err)
 		}
@@ -245,10 +249,14 @@ func (t *trace) checkBalance() error {
 	return nil
 }
 
+// total is a compensated sum, so that 24 steps of an hour make the same day as one (Kahan 1965, Commun. ACM 8:40).
 func total(xs []float64) float64 {
-	sum := 0.0
+	sum, lost := 0.0, 0.0
 	for _, x := range xs {
-		sum += x
+		y := x - lost
+		t := sum + y
+		lost = (t - sum) - y
+		sum = t
 	}
 	return sum
 }
@@ -263,6 +271,14 @@ func largest(xs []float64) float64 {
 	return m
 }
 
+// Panic is a panic of the program's own, on its way to whoever reports it.
+type Panic struct {
+	Value any
+	Stack []byte
+}
+
+func (p *Panic) Error() string { return fmt.Sprint(p.Value) }
+
 // each calls f for 0..n-1 on all processors and returns the error of the lowest index, so that neither results nor errors
 // depend on how many processors there are.
 func each(n int, f func(i int) error) error {
@@ -274,7 +290,7 @@ func each(n int, f func(i int) error) error {
 		wg.Go(func() {
 			defer func() {
 				if v := recover(); v != nil { // a panic here would end the program, past every deferred call of main
-					errs[i] = fmt.Errorf("internal fault: %v", v)
+					errs[i] = &Panic{Value: v, Stack: debug.Stack()}
 				}
 				<-free
 			}()

@@ -13,6 +13,7 @@ import (
 	"time"
 
 	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
 
 	"quietslope/scenario/fault"
 )
@@ -269,17 +270,91 @@ func TestFaultAndPlaces(t *testing.T) {
 	}
 }
 
+// TestAssign: each key of set changes the number that it names, and nothing else.
 func TestAssign(t *testing.T) {
-	g := Ground{Soil: &Soil{Available: 100}}
-	changed := g
-	for i, f := range settable {
-		changed.assign(Assignment{Key: f.name, Value: float64(i + 1)})
+	places := func(g *Ground) map[string]*float64 {
+		return map[string]*float64{
+			"surface.infiltration": &g.Infiltration, "surface.infiltration_limit": &g.InfiltrationLimit,
+			"soil.available_water": &g.Soil.Available, "soil.readily_available": &g.Soil.Readily, "soil.crop_factor": &g.Soil.CropFactor,
+			"cover.drainable_porosity": &g.CoverPorosity, "cover.seepage": &g.CoverSeepage, "cover.percolation": &g.Percolation,
+			"cover.percolation_ceiling": &g.PercolationCap, "cover.conductivity": &g.CoverConductivity, "cover.full_at": &g.CoverFullAt,
+			"deep.drainable_porosity": &g.DeepPorosity, "deep.seepage": &g.DeepSeepage, "deep.lateral_inflow": &g.Lateral, "deep.full_at": &g.DeepFullAt,
+		}
 	}
-	if g.Soil.Available != 100 {
-		t.Error("the ground of the study was changed too")
+	if n := len(places(&Ground{Soil: &Soil{}})); n != len(settable) {
+		t.Errorf("%d keys are tried, of %d", n, len(settable))
 	}
-	if changed.Soil.Available == 100 || changed.DeepFullAt != float64(len(settable)) || changed.Infiltration != 1 {
-		t.Errorf("got %+v", changed)
+	for _, f := range settable {
+		g := Ground{Soil: &Soil{}}
+		changed := g
+		changed.assign(Assignment{Key: f.name, Value: 7})
+		for key, x := range places(&changed) {
+			if want := map[bool]float64{true: 7}[key == f.name]; *x != want {
+				t.Errorf("set %s leaves %s at %v, want %v", f.name, key, *x, want)
+			}
+		}
+		if g != (Ground{Soil: g.Soil}) || *g.Soil != (Soil{}) {
+			t.Errorf("set %s has changed the ground of the study too", f.name)
+		}
+	}
+}
+
+// TestEveryNumberArrives: what the wide study gives is what the rest of the program gets, in its units.
+func TestEveryNumberArrives(t *testing.T) {
+	src, err := os.ReadFile("testdata/study/wide.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := Parse("dir/wide.yaml", src)
+	if err != nil {
+		t.Fatal(err)
+	}
+	inf, nan := math.Inf(1), math.NaN()
+	want := &Study{
+		File: "dir/wide.yaml", Title: "0+400: a title with a colon", PreparedBy: "A. N. Engineer's office",
+		Weather: WeatherSpec{
+			File: "records/weather.csv.gz", Path: filepath.Join("dir", "records", "weather.csv.gz"), Time: "time", Format: "iso",
+			Rain: WeatherColumn{"rain, mm", "0.1 mm"}, StampEnd: true, Missing: []string{"", "-999", "-999.0", "n/a"},
+		},
+		Ground: Ground{
+			Infiltration: 0.85, InfiltrationLimit: 20,
+			CoverThickness: 4, CoverPorosity: 0.06, CoverSeepage: 0.011, Percolation: 0, PercolationCap: 2.4, CoverConductivity: 0.0864, CoverFullAt: inf,
+			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, Lateral: 0.05, DeepFullAt: 8.5,
+			WarmUpYears: 12, CalibratedTo: nan,
+		},
+		Bands: []Band{
+			{Name: "012", GivenAs: "below_ground", Level: 3.6, Until: 3.6},
+			{Name: "yes", GivenAs: "elevation", Level: 4.2, Until: 3.9},
+		},
+		Count: Count{Apart: 0, YearStarts: 10, Confidence: 0.95, Resamples: 10000, Seed: 42, MeanBlock: 3, DecideOn: 1, DecideBy: "annual_probability"},
+		Options: []Option{
+			{Name: "true"},
+			{Name: "with rate", Baseline: true, Measures: []Measure{
+				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Rate: 0.05, Equivalent: nan, Efficiency: 0.8, Ceiling: 12}},
+			}},
+			{Name: "on the contact, and more", Measures: []Measure{
+				{Key: "set", Set: []Assignment{
+					{Key: "cover.conductivity", Value: 0.1, Text: "0.1 m/d"},
+					{Key: "surface.infiltration", Value: 0.8, Text: "80 %"},
+					{Key: "cover.percolation_ceiling", Value: inf, Text: "none"},
+				}},
+				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 12, Equivalent: nan, Efficiency: 1, Ceiling: inf}},
+				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40}},
+				{Key: "surface_water", Cut: &SurfaceWater{KeptOut: 0.1}},
+			}},
+		},
+		Site: Site{PlanArea: 12000, GroundLevel: 418},
+		Declared: Declared{
+			"existing_slip_surface": "yes", "rapid_movement_possible": "no", "ground_changed_since_calibration": "unknown",
+			"iron_or_lime_in_water": "unknown", "perched_water": "unknown", "outlet_on_moving_ground": "unknown", "wells_or_buildings_nearby": "unknown",
+		},
+	}
+	opts := cmp.Options{
+		cmpopts.EquateNaNs(), cmpopts.EquateApprox(1e-12, 0), cmpopts.EquateEmpty(),
+		cmpopts.IgnoreTypes(Place{}), cmpopts.IgnoreUnexported(Study{}), cmpopts.IgnoreFields(Study{}, "Understood", "SHA256"),
+	}
+	if d := cmp.Diff(want, s, opts); d != "" {
+		t.Errorf("(-want +got):\n%s", d)
 	}
 }
 

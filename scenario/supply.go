@@ -21,28 +21,14 @@ type supply struct {
 	actual  float64 // actual evapotranspiration since the last reset, mm
 }
 
-// supplyKey tells apart the supplies of the options: those with equal keys get the same water.
-type supplyKey struct {
-	share, limit, keptOut float64
-	soil                  Soil
-	hasSoil               bool
-}
-
-func (w *works) supplyKey() supplyKey {
-	k := supplyKey{share: w.ground.Infiltration, limit: w.ground.InfiltrationLimit, keptOut: w.keptOut}
-	if w.ground.Soil != nil {
-		k.soil, k.hasSoil = *w.ground.Soil, true
-	}
-	return k
-}
-
-func newSupply(k supplyKey, r *weather.Record) *supply {
+// newSupply is the supply of an option's ground, with a soil that is full.
+func newSupply(g *Ground, keptOut float64, r *weather.Record) *supply {
 	s := &supply{
-		record: r, share: k.share, limit: k.limit * 24 * r.Days(), keptOut: k.keptOut, factor: 1,
+		record: r, share: g.Infiltration, limit: g.InfiltrationLimit * 24 * r.Days(), keptOut: keptOut, factor: 1,
 	}
-	if k.hasSoil {
-		s.factor = k.soil.CropFactor
-		s.soil = &soil.Store{Available: k.soil.Available, Readily: k.soil.Readily}
+	if g.Soil != nil {
+		s.factor = g.Soil.CropFactor
+		s.soil = &soil.Store{Available: g.Soil.Available, Readily: g.Soil.Readily}
 	}
 	return s
 }

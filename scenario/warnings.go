@@ -18,6 +18,7 @@ const (
 	closeToCapacity  = 0.10 // m below capacity within which peaks count as clipped: judgement
 	refusedShare     = 0.01 // of the percolation: judgement
 	drainDryShare    = 0.95 // of the steps on which the baseline's level is at or below a drain: judgement
+	fewYears         = 10   // below which counts say hardly anything: judgement
 	fewEvents        = 5    // below which a rate says little: judgement
 	shortRecordYears = 30   // least length advised for extremes of groundwater level (Geosciences 2020, 10, 373)
 )
@@ -29,8 +30,8 @@ const (
 	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
 	mostPorosity      = 0.30
 	mostClayPorosity  = 0.10 // of a clay: judgement, after the same
-	leastDrainRate    = 1e-4 // 1/d: judgement
-	mostDrainRate     = 5.0  // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
+	leastRate         = 1e-4 // 1/d, of a store or a drain: judgement
+	mostRate          = 5.0  // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
 	mostTrenchDepth   = 6.0  // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
 	mostBoreLength    = 100.0
 	mostBoredShare    = 0.90 // efficiency of bored drains in clay: judgement
@@ -65,16 +66,21 @@ func (ws *warnings) add(w result.Warning, format string, args ...any) {
 func warn(code string) result.Warning { return result.Warning{Code: code, Severity: result.Warn} }
 func note(code string) result.Warning { return result.Warning{Code: code, Severity: result.Note} }
 
-// studyWarnings are those that need no option replayed but the baseline: what was declared, the ground, the bands, the
-// record and the works as planned.
-func (p *prepared) studyWarnings() []result.Warning {
+// studyWarnings are about what was declared, the ground, the bands, the record and the works as planned. They need no
+// option replayed but the baseline. Where the options were replayed, options holds their figures; otherwise it is nil.
+func (p *prepared) studyWarnings(options []optionFigures) []result.Warning {
 	ws := warnings{}
 	p.declaredWarnings(&ws)
 	p.bandWarnings(&ws)
 	p.groundWarnings(&ws)
 	p.recordWarnings(&ws)
-	for _, w := range p.works {
-		p.drainWarnings(&ws, w)
+	for i, w := range p.works {
+		var replayed []result.Drain
+		if options != nil {
+			replayed = options[i].Drains
+		}
+		p.drainWarnings(&ws, w, replayed)
+		p.practiceWarnings(&ws, w)
 	}
 	return ws
 }
@@ -135,13 +141,21 @@ func (p *prepared) bandWarnings(ws *warnings) {
 			ws.add(w, "The band begins at %.2f m, above the highest reading of the calibration (%.2f m). The response there is extrapolated; read more winters before relying on it.", b.Level, readings)
 		}
 	}
+	for i := range s.Bands {
+		if b := &s.Bands[i]; b.Level > s.Ground.CoverThickness+s.Ground.DeepThickness {
+			w := warn("band_above_ground")
+			w.Band = b.Name
+			ws.add(w, "The band begins %.2f m above ground. Only artesian water stands there, which the model does not have; check the level and what it was measured from.",
+				b.Level-s.Ground.CoverThickness-s.Ground.DeepThickness)
+		}
+	}
 	if math.IsNaN(readings) {
 		ws.add(warn("readings_unknown"), "ground.calibrated_to is not given, so no band is known to lie within the readings. Give the highest deep level in the readings used for calibration.")
 	}
 	if given["elevation"] && given["below_ground"] {
 		ws.add(warn("bands_in_two_datums"), "Some bands are given as an elevation and some as a depth below ground. Make sure that site.ground_level (%.2f m) is the ground from which those depths were measured.", s.Site.GroundLevel)
 	}
-	if on := s.Count.DecideOn; on >= 0 && !math.IsNaN(readings) && s.Bands[on].Until == s.Bands[on].Level {
+	if on := s.Count.DecideOn; on >= 0 && s.Bands[on].Until == s.Bands[on].Level {
 		w := note("no_arrest_level")
 		w.Band = s.Bands[on].Name
 		ws.add(w, "Onset and arrest are taken at the same level. Movement often stops at another level than it starts at; where readings of movement tell, give until.")
@@ -176,6 +190,15 @@ func (p *prepared) groundWarnings(ws *warnings) {
 				q.key, short(q.value*q.scale), q.unit, short(q.least*q.scale), short(q.most*q.scale), q.unit)
 		}
 	}
+	for _, r := range []struct {
+		key  string
+		rate float64
+	}{{"cover.seepage", g.CoverSeepage}, {"cover.percolation", g.Percolation}, {"deep.seepage", g.DeepSeepage}} {
+		if r.rate != 0 && !plausibleRate(r.rate) {
+			ws.add(warn("implausible_ground"), "ground.%s is %s /d; usual are %s to %s /d. Check the unit and the calibration.",
+				r.key, short(r.rate), short(leastRate), short(mostRate))
+		}
+	}
 	if fast := g.CoverSeepage + g.Percolation; g.DeepSeepage > fast {
 		ws.add(warn("deep_faster_than_cover"), "The deep layer empties faster (%s /d) than the cover (%s /d). In fissured clay under a permeable cover it is usually the other way round; check that the rates are not swapped.",
 			short(g.DeepSeepage), short(fast))
@@ -183,7 +206,10 @@ func (p *prepared) groundWarnings(ws *warnings) {
 }
 
 func (p *prepared) recordWarnings(ws *warnings) {
-	if n := p.counted.years; n < shortRecordYears {
+	switch n := p.counted.years; {
+	case n < fewYears:
+		ws.add(warn("record_short"), "%s counted: too few to compare options by counts. Find a longer record, at least %d years, and use this one for looking at levels only.", plural(n, "complete year"), shortRecordYears)
+	case n < shortRecordYears:
 		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
 	}
 	if p.replayer.warm.repeats {
@@ -191,9 +217,10 @@ func (p *prepared) recordWarnings(ws *warnings) {
 	}
 }
 
-// drainWarnings hold a drain against the levels without works and against common practice.
-func (p *prepared) drainWarnings(ws *warnings, w *works) {
-	for _, d := range w.drains {
+// drainWarnings hold each drain of an option against the levels without works and, where the option was replayed, against
+// what it carried.
+func (p *prepared) drainWarnings(ws *warnings, w *works, replayed []result.Drain) {
+	for i, d := range w.drains {
 		levels := p.base.cover
 		if d.layer == inDeep {
 			levels = p.base.deep
@@ -206,23 +233,32 @@ func (p *prepared) drainWarnings(ws *warnings, w *works) {
 			}
 		}
 		share := float64(dry) / float64(len(levels))
-		at := warn("drain_runs_rarely")
+		at := warn("drain_never_runs")
 		at.Option = w.option.Name
 		switch {
-		case dry == len(levels):
-			at.Code = "drain_never_runs"
+		case replayed != nil && replayed[i].RunningShare == 0 && dry < len(levels):
+			ws.add(at, "The %s lie at %.2f m, and in this option the %s level is never above that: what else the option does leaves them nothing to carry. Set them deeper or leave them out.",
+				measureWords(d.measure), d.invert, d.layer)
+		case replayed != nil && replayed[i].RunningShare == 0, replayed == nil && dry == len(levels):
 			ws.add(at, "The %s lie at %.2f m and the baseline's %s level never rises above %.2f m: they do nothing in this record. Set them deeper.",
 				measureWords(d.measure), d.invert, d.layer, largest(levels))
 		case share > drainDryShare:
+			at.Code = "drain_runs_rarely"
 			ws.add(at, "The %s lie at %.2f m, at or above the baseline's %s level on %.0f %% of the steps. They act on the highest levels only; make sure that this is meant.",
 				measureWords(d.measure), d.invert, d.layer, math.Floor(100*share))
 		}
-		if !(d.rate >= leastDrainRate && d.rate <= mostDrainRate) {
+		if !plausibleRate(d.rate) {
 			at.Code = "implausible_drain_rate"
 			ws.add(at, "The %s drain at %s /d; usual are %s to %s /d. Check conductivity, spacing and their units.",
-				measureWords(d.measure), short(d.rate), short(leastDrainRate), short(mostDrainRate))
+				measureWords(d.measure), short(d.rate), short(leastRate), short(mostRate))
 		}
 	}
+}
+
+func plausibleRate(r float64) bool { return r >= leastRate && r <= mostRate }
+
+// practiceWarnings hold the works as planned against common practice.
+func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 	for _, m := range w.option.Measures {
 		at := warn("")
 		at.Option = w.option.Name
@@ -270,11 +306,14 @@ func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
 		w.Option = f.Name
 		return w
 	}
-	if t.fromDry > startFelt {
-		ws.add(at("start_still_felt"), "Replayed from dry, the deep level at the first counted step differs by %.2f m. Give a longer ground.warm_up, or start levels that were measured.", t.fromDry)
+	switch given := p.study.Ground.Start != nil; {
+	case t.fromDry > startFelt && given:
+		ws.add(at("start_still_felt"), "Replayed from dry, the deep level at the first counted step differs by %.2f m: the first counted years rest on the levels of ground.start. Make sure that they were read on the day on which the record begins, or give ground.warm_up.", t.fromDry)
+	case t.fromDry > startFelt:
+		ws.add(at("start_still_felt"), "Replayed from dry, the deep level at the first counted step differs by %.2f m. Give a longer ground.warm_up, or ground.start levels that were measured.", t.fromDry)
 	}
 	if thickness := g.CoverThickness + g.DeepThickness; t.deepMax > thickness || t.coverMax > g.CoverThickness {
-		ws.add(at("level_above_ground"), "A level rises above ground (deep %.2f m of %.2f m, cover %.2f m of %.2f m). Outside the meaning of the model; give full_at, or an overflow that is there.",
+		ws.add(at("level_above_ground"), "A level rises above ground: the deep one to %.2f m above its base, where ground is at %.2f m, the cover's to %.2f m above the contact, where ground is at %.2f m. That is outside the meaning of the model; check the porosities and rates, and let full_at be ground level at most.",
 			t.deepMax, thickness, t.coverMax, g.CoverThickness)
 	}
 	if t.deepMax > g.DeepFullAt-closeToCapacity {
@@ -289,28 +328,18 @@ func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
 // countWarnings say where the counts are too small to carry a rate, and where two measures point opposite ways.
 func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 	for b, band := range p.study.Bands {
-		var none, few []string
-		var upper float64
 		for i := range options {
 			f := &options[i].Bands[b]
+			at := warn("no_events")
+			at.Option, at.Band = options[i].Name, band.Name
 			switch {
 			case f.Events == 0 && f.DaysPerYear == 0:
-				none = append(none, options[i].Name)
-				upper = f.EventsPerYearCI[1]
+				ws.add(at, "None in %s, which is not never: up to %s events a year fit this record at %s %%.",
+					plural(p.counted.years, "year"), roundUp(f.EventsPerYearCI[1]), short(100*p.study.Count.Confidence))
 			case f.Events < fewEvents:
-				few = append(few, options[i].Name)
+				at.Code = "few_events"
+				ws.add(at, "Fewer than %d events, too few for a rate; read the ranges.", fewEvents)
 			}
-		}
-		if len(none) > 0 {
-			w := warn("no_events")
-			w.Band = band.Name
-			ws.add(w, "None in %s, which is not never: up to %s a year fit this record at %s %%. Options: %s.",
-				plural(p.counted.years, "year"), roundUp(upper), short(100*p.study.Count.Confidence), strings.Join(none, "; "))
-		}
-		if len(few) > 0 {
-			w := warn("few_events")
-			w.Band = band.Name
-			ws.add(w, "Fewer than %d events, too few for a rate; read the ranges. Options: %s.", fewEvents, strings.Join(few, "; "))
 		}
 	}
 	for i := range options {
@@ -360,17 +389,16 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stat
 		ws.add(w, "Not told apart from the baseline on this record by %s: %s. Do not read a benefit, or none, into the difference.", measureTitle(m.name), strings.Join(same, "; "))
 	}
 
-	order := make([]int, len(options))
-	for i := range order {
-		order[i] = i
+	var order []int // of the works; the baseline was held against each above
+	for i := range options {
+		if !options[i].Baseline {
+			order = append(order, i)
+		}
 	}
 	slices.SortStableFunc(order, func(a, b int) int { return options[a].Decision.Rank - options[b].Decision.Rank })
 	var pairs []string
 	for k := 1; k < len(order); k++ {
 		first, next := &options[order[k-1]], &options[order[k]]
-		if first.Baseline || next.Baseline { // said above
-			continue
-		}
 		c := r.Compare(m.byYear(&first.passed[on]), m.byYear(&next.passed[on]), p.study.Count.Confidence)
 		if !c.ToldApart(p.study.Count.Confidence) {
 			pairs = append(pairs, first.Name+" / "+next.Name)
@@ -383,4 +411,10 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stat
 	}
 }
 
-func measureTitle(name string) string { return strings.ReplaceAll(name, "_", " ") }
+// measureTitle is what the text calls a measure.
+func measureTitle(name string) string {
+	if name == "annual_probability" {
+		return "share of years"
+	}
+	return name
+}

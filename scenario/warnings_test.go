@@ -56,7 +56,7 @@ func (p *prepared) rework() {
 
 // TestStudyWarnings raises each warning that needs no option replayed at exactly its condition, and not just short of it.
 func TestStudyWarnings(t *testing.T) {
-	if ws := quiet().studyWarnings(); len(ws) > 0 {
+	if ws := quiet().studyWarnings(nil); len(ws) > 0 {
 		t.Fatalf("the quiet study warns: %v", ws)
 	}
 	inf, nan := math.Inf(1), math.NaN()
@@ -114,6 +114,15 @@ func TestStudyWarnings(t *testing.T) {
 		{"deep as fast as the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.0155 }, nil},
 		{"deep faster than the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.01551 }, []string{"deep_faster_than_cover"}},
 		{"29 years", func(p *prepared) { p.counted.years = 29 }, []string{"record_short"}},
+		{"9 years", func(p *prepared) { p.counted.years = 9 }, []string{"record_short"}},
+		{"band at ground", func(p *prepared) {
+			p.study.Bands[0].Level, p.study.Ground.CalibratedTo = 13, 13
+		}, nil},
+		{"band above ground", func(p *prepared) {
+			p.study.Bands[0].Level, p.study.Ground.CalibratedTo = 13.01, 14
+		}, []string{"band_above_ground"}},
+		{"a rate per hour taken for one per day", func(p *prepared) { p.study.Ground.CoverSeepage = 5.01 }, []string{"implausible_ground"}},
+		{"no percolation", func(p *prepared) { p.study.Ground.Percolation = 0 }, nil},
 		{"warm-up again", func(p *prepared) { p.replayer.warm = warmUp{years: 4, repeats: true} }, []string{"warm_up_repeats_record"}},
 
 		// The baseline's levels rise evenly from 0 to the top in 100 steps.
@@ -143,7 +152,33 @@ func TestStudyWarnings(t *testing.T) {
 			p := quiet()
 			tt.change(p)
 			p.rework()
-			if got := codes(p.studyWarnings()); !slices.Equal(got, tt.want) {
+			if got := codes(p.studyWarnings(nil)); !slices.Equal(got, tt.want) {
+				t.Errorf("got %q, want %q", got, tt.want)
+			}
+		})
+	}
+}
+
+// TestDrainsReplayed: where an option was replayed, its own water decides whether a drain runs at all.
+func TestDrainsReplayed(t *testing.T) {
+	for _, tt := range []struct {
+		name    string
+		level   float64
+		running float64
+		want    []string
+	}{
+		{"wet in both", 4, 0.2, nil},
+		{"dry, since other measures keep it so", 4, 0, []string{"drain_never_runs"}},
+		{"dry in both", 9, 0, []string{"drain_never_runs"}},
+		{"wet in the option's own ground only", 9, 0.01, []string{"drain_runs_rarely"}},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			p := quiet()
+			p.study.Options[1].Measures = []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: tt.level, Efficiency: 0.9, Ceiling: math.Inf(1)}}}
+			p.rework()
+			options := make([]optionFigures, 2)
+			options[1].Drains = []result.Drain{{RunningShare: tt.running}}
+			if got := codes(p.studyWarnings(options)); !slices.Equal(got, tt.want) {
 				t.Errorf("got %q, want %q", got, tt.want)
 			}
 		})

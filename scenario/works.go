@@ -131,11 +131,14 @@ func (o *Option) describe() []string {
 	for _, m := range o.Measures {
 		switch {
 		case m.Trench != nil && m.Trench.Spacing > 0:
-			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s m apart", short(m.Trench.Depth), short(m.Trench.Spacing)))
+			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s m apart", short(m.Trench.Depth), short(m.Trench.Spacing))+
+				besides(m.Trench.Efficiency, m.Trench.Ceiling))
 		case m.Trench != nil:
-			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s /d", short(m.Trench.Depth), short(m.Trench.Rate)))
+			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s /d", short(m.Trench.Depth), short(m.Trench.Rate))+
+				besides(m.Trench.Efficiency, m.Trench.Ceiling))
 		case m.Bored != nil:
-			texts = append(texts, fmt.Sprintf("bored drains at %s m in the deep layer, %s /d", short(m.Bored.Level), short(m.Bored.Rate)))
+			texts = append(texts, fmt.Sprintf("bored drains at %s m in the deep layer, %s /d", short(m.Bored.Level), short(m.Bored.Rate))+
+				besides(m.Bored.Efficiency, m.Bored.Ceiling))
 		case m.Cut != nil:
 			texts = append(texts, fmt.Sprintf("%s %% of the infiltration kept out", short(100*m.Cut.KeptOut)))
 		default:
@@ -145,6 +148,18 @@ func (o *Option) describe() []string {
 		}
 	}
 	return texts
+}
+
+// besides says of a drain what its rate does not.
+func besides(efficiency, ceiling float64) string {
+	text := ""
+	if efficiency != 1 {
+		text += fmt.Sprintf(", %s %% efficient", short(100*efficiency))
+	}
+	if !math.IsInf(ceiling, 1) {
+		text += fmt.Sprintf(", at most %s mm/d", short(ceiling))
+	}
+	return text
 }
 
 // short writes a number for people, with at most six significant digits.

@@ -119,11 +119,21 @@ type treeReader struct {
 // refuseTabs reports tabs that indent.
 func (r *treeReader) refuseTabs() {
 	for i, line := range r.src.lines {
-		indent := line[:len(line)-len(strings.TrimLeft(line, " \t"))]
+		indent := indentOf(line)
 		if tab := strings.IndexByte(indent, '\t'); tab >= 0 && len(indent) < len(line) {
 			r.add(Place{Line: i + 1, Col: tab + 1}, "a tab is used for indenting; use blanks")
 		}
 	}
+}
+
+// indentOf returns what stands before the first key or text of a line: blanks, tabs and the dashes of items.
+func indentOf(line string) string {
+	isBlank := func(i int) bool { return i < len(line) && (line[i] == ' ' || line[i] == '\t') }
+	n := 0
+	for isBlank(n) || n < len(line) && line[n] == '-' && isBlank(n+1) {
+		n++
+	}
+	return line[:n]
 }
 
 // refuseTokens reports the parts of YAML that a study does not use, before they are taken for anything.
@@ -285,7 +295,9 @@ func (r *treeReader) readEntry(block *node, v *ast.MappingValueNode, path string
 			return
 		}
 		r.add(at, "%s has neither colon nor value; write it as key: value", quoted(key))
-	case !r.blankAfter(v.Start):
+	case r.after(v.Start) == '\t':
+		r.add(r.placeOf(v.Start, full), "a tab stands after the key's colon; use a blank")
+	case r.after(v.Start) != ' ':
 		r.add(r.placeOf(v.Start, full), "a plain blank stands after a key's colon; put a text that holds a colon between quotes")
 	case !isText:
 		r.add(at, "a key is a word, and %s is not one; put it between quotes if it is meant", quoted(key))
@@ -310,11 +322,17 @@ func (r *treeReader) readEntry(block *node, v *ast.MappingValueNode, path string
 	block.entries = append(block.entries, e)
 }
 
-// blankAfter says whether a blank or the end of the line follows a colon.
-func (r *treeReader) blankAfter(colon *token.Token) bool {
+// after returns the character that follows a colon, a blank at the end of the line, and 0 where there is no colon.
+func (r *treeReader) after(colon *token.Token) rune {
 	p := r.placeOf(colon, "")
 	line := r.line(p.Line)
-	return p.Col > 0 && p.Col <= len(line) && line[p.Col-1] == ':' && (p.Col == len(line) || line[p.Col] == ' ')
+	switch {
+	case p.Col < 1 || p.Col > len(line) || line[p.Col-1] != ':':
+		return 0
+	case strings.Trim(string(line[p.Col:]), " \t") == "":
+		return ' '
+	}
+	return line[p.Col]
 }
 
 // numberSplit reports a number that a comma inside {…} cut in two, such as {depth: 3,5 m}, and returns false where

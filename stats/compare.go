@@ -29,6 +29,9 @@ const (
 	withoutBaseline = 0.05
 )
 
+// Less reports whether figure a is smaller than b by more than rounding: by more than 1e-9 of the larger of the two.
+func Less(a, b float64) bool { return a < b-tie*max(math.Abs(a), math.Abs(b)) }
+
 // Compare sets a yearly figure of an option, such as its days above a level, against the baseline's in the same
 // years. The differences are formed year by year before they are resampled, so what the years have in common drops
 // out. Intervals are expanded percentile intervals as in Interval; resamples without a baseline are left out of the

@@ -29,9 +29,11 @@ func TestImportsPointOneWay(t *testing.T) {
 	if err != nil {
 		t.Fatalf("go list: %v", err)
 	}
+	found := map[string][]string{}
 	for line := range strings.Lines(string(out)) {
 		fields := strings.Fields(line)
 		pkg, imports := fields[0], fields[1:]
+		found[pkg] = imports
 		known, ok := allowed[pkg]
 		if !ok {
 			t.Errorf("%s is a package that this test and DEVELOPERS.md do not know", pkg)
@@ -44,6 +46,16 @@ func TestImportsPointOneWay(t *testing.T) {
 			if slices.Contains(pure, pkg) && outside && !strings.HasPrefix(imp, "gonum.org/v1/gonum") {
 				t.Errorf("%s imports %s; it may import the standard library and gonum only", pkg, imp)
 			}
+		}
+	}
+	for pkg, imports := range allowed {
+		for _, imp := range imports {
+			if !slices.Contains(found[pkg], imp) {
+				t.Errorf("%s does not import %s, which this test allows it", pkg, imp)
+			}
+		}
+		if found[pkg] == nil {
+			t.Errorf("there is no package %s", pkg)
 		}
 	}
 }

@@ -31,7 +31,7 @@ const debugVariable = "QUIETSLOPE_DEBUG"
 func run(ctx context.Context, args []string, stdout, stderr io.Writer) (code int) {
 	defer func() {
 		if r := recover(); r != nil {
-			code = report(ctx, stderr, &internalFault{r, debug.Stack()})
+			code = report(ctx, stderr, &scenario.Panic{Value: r, Stack: debug.Stack()})
 		}
 	}()
 	out := &firstError{w: stdout}
@@ -85,16 +85,11 @@ func (e *usageError) Error() string {
 	return e.command + ": " + e.text + "\nRun \"quietslope help " + e.command + "\" for its options and examples."
 }
 
-// internalFault is a panic on its way to the user.
-type internalFault struct {
-	value any
-	stack []byte
-}
-
-func (e *internalFault) Error() string {
-	text := fmt.Sprintf("internal fault, nothing can be trusted of this run: %v; please report it with the study, or set %s=1 to see where", e.value, debugVariable)
+// internalFault says what a user can do about a panic.
+func internalFault(p *scenario.Panic) string {
+	text := fmt.Sprintf("internal fault, nothing can be trusted of this run: %v; please report it with the study, or set %s=1 to see where", p.Value, debugVariable)
 	if os.Getenv(debugVariable) != "" {
-		text += "\n" + string(e.stack)
+		text += "\n" + string(p.Stack)
 	}
 	return text
 }
@@ -124,6 +119,7 @@ func (e *outputError) Unwrap() error { return e.err }
 func report(ctx context.Context, stderr io.Writer, err error) int {
 	var usage *usageError
 	var input *fault.Error
+	var inside *scenario.Panic
 	switch {
 	case err == nil:
 		return exitDone
@@ -131,6 +127,9 @@ func report(ctx context.Context, stderr io.Writer, err error) int {
 		fmt.Fprintln(stderr, "quietslope: interrupted before the result was complete")
 		return exitInterrupted
 	case errors.Is(err, syscall.EPIPE): // whoever read the output has seen enough
+		return exitFault
+	case errors.As(err, &inside):
+		printError(stderr, errors.New(internalFault(inside)))
 		return exitFault
 	}
 	printError(stderr, err)
@@ -167,7 +166,7 @@ func await[T any](ctx context.Context, f func() (T, error)) (T, error) {
 		var o outcome
 		defer func() {
 			if r := recover(); r != nil {
-				o.err = &internalFault{r, debug.Stack()}
+				o.err = &scenario.Panic{Value: r, Stack: debug.Stack()}
 			}
 			done <- o
 		}()

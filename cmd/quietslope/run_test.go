@@ -135,6 +135,7 @@ func TestHelp(t *testing.T) {
 		{"help.golden", [][]string{{}, {"help"}, {"--help"}, {"-h"}, {"help", "--help"}, {"--help", "compare"}}},
 		{"help-check.golden", [][]string{{"help", "check"}, {"check", "-h"}}},
 		{"help-compare.golden", [][]string{{"help", "compare"}, {"compare", "--help"}, {"compare", "study.yaml", "-h"}, {"compare", "--out", "x", "study.yaml", "--help", "--nope"}}},
+		{"help-study.golden", [][]string{{"help", "study"}, {"h", "study"}, {"help", "study", "--help"}}},
 		{"help-levels.golden", [][]string{{"help", "levels"}, {"levels", "--help", "--", "x"}}},
 	} {
 		for _, args := range tt.ways {
@@ -207,6 +208,8 @@ func TestArrange(t *testing.T) {
 		{"compare -- -s.yaml", "compare -- -s.yaml"},
 		{"compare -", "compare -- -"},
 		{"compare help", "compare -- help"},
+		{"compare study", "compare -- study"},
+		{"help study", "--help"},
 		{"levels --option a s.yaml --option b,c", "levels --option a --option b,c -- s.yaml"},
 		{"compare s.yaml --generate-bash-completion", "compare s.yaml --generate-bash-completion"},
 		{"--generate-bash-completion", "--generate-bash-completion"},

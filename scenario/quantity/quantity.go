@@ -367,8 +367,9 @@ func ParseNumber(text string) (float64, error) {
 	return v, nil
 }
 
-// largestWhole is the largest whole number read: up to 2^53 every reader of JSON keeps each one apart.
-const largestWhole = 1 << 53
+// largestWhole is the largest whole number read: below 2^53 every reader of JSON keeps each one apart, and so does a
+// float64.
+const largestWhole = 1<<53 - 1
 
 // ParseWhole reads a whole number of magnitude up to 2^53, written in digits only.
 func ParseWhole(text string) (int64, error) {

@@ -241,11 +241,12 @@ func TestParseWhole(t *testing.T) {
 	}{
 		{text: "2000", v: 2000},
 		{text: "-1", v: -1},
-		{text: "9007199254740992", v: 1 << 53},
+		{text: "9007199254740991", v: 1<<53 - 1},
+		{text: "9007199254740993", want: `"9007199254740993" is too large; whole numbers go up to 9007199254740991`},
 		{text: "1.5", want: `"1.5" is not a whole number`},
 		{text: "2.0", want: `"2.0": a whole number is written in digits only; write 2`},
 		{text: "2e3", want: `"2e3": a whole number is written in digits only; write 2000`},
-		{text: "1e30", want: `"1e30" is too large; whole numbers go up to 9007199254740992`},
+		{text: "1e30", want: `"1e30" is too large; whole numbers go up to 9007199254740991`},
 		{text: "2 000", want: `"2 000": thousands are not marked; write 2000`},
 		{text: "many", want: `"many" is not a number`},
 	} {

@@ -27,7 +27,7 @@ type Tool struct {
 // Input is a file that was read.
 type Input struct {
 	Role   string `json:"role"` // study or weather
-	File   string `json:"file"` // as the user named it
+	File   string `json:"file"` // without its folder
 	SHA256 string `json:"sha256"`
 }
 
@@ -211,6 +211,15 @@ type BandFigure struct {
 	LoadMDaysPerYearCI  *Interval   `json:"load_m_days_per_year_ci,omitempty"`
 	DaysByMonth         [12]float64 `json:"days_by_month"` // per year, January first
 	Change              *Change     `json:"change,omitempty"`
+	Spells              []Spell     `json:"spells,omitempty"` // on the deciding band, in order of time
+}
+
+// Spell is one counted event, from its first to its last step above the band.
+type Spell struct {
+	From        string  `json:"from"` // as the weather has the time
+	To          string  `json:"to"`
+	Days        float64 `json:"days"` // spent above
+	PeakExcessM float64 `json:"peak_excess_m"`
 }
 
 // Change is the option against the baseline in the same years.

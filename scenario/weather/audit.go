@@ -44,12 +44,24 @@ const (
 	KindSpike        = "spike"         // far more rain in a day than in any other
 	KindPETZero      = "pet_zero"      // no evapotranspiration for long
 	KindPETConstant  = "pet_constant"  // the same evapotranspiration for long
+	KindRainTotal    = "rain_total"    // far more or less rain in a year, or more in a day, than nearly any climate has
+	KindPETTotal     = "pet_total"     // the same of the evapotranspiration in a year
 )
 
 // Thresholds of the audit. All are judgement, set so that a sound daily record of a humid climate gives few findings or
 // none, and that a stuck gauge, a lost value written as 0 or a sum of several days gives one.
 const (
 	wettestDays = 5
+
+	// Means of a year, and rain of a day in mm, outside of which a wrong unit is likelier than the climate: landslides in
+	// clay are rare in deserts, and the wettest and hottest places are known for being so. A unit that is wrong by a factor
+	// of ten takes most climates out of these limits.
+	leastRainPerYear = 150.0
+	mostRainPerYear  = 5000.0
+	mostRainPerDay   = 400.0
+	leastPETPerYear  = 150.0
+	mostPETPerYear   = 2500.0
+	daysPerYear      = 365.25 // on average
 
 	// Equal amounts of rain in as many steps, and over as long a time, are rarely rain: a sensor that is stuck, or a sum
 	// spread evenly over the days it was collected in.
@@ -80,18 +92,22 @@ const (
 
 // Audit looks for what is unusual in the record. It never changes a value.
 func (r *Record) Audit() Audit {
-	a := &auditor{Record: r, perDay: float64(day) / float64(r.Step)}
-	if len(r.Rain) > 0 {
-		a.gather()
-		a.repeats()
-		a.dryRuns()
-		a.dryMonths()
-		a.spikes()
-		a.pet()
-	}
-	slices.SortStableFunc(a.found, func(x, y finding) int { return cmp.Compare(x.from, y.from) })
-	out := Audit{Wettest: a.wettest(), Suspicious: a.suspicious(), Years: a.years}
-	return out
+	a := newAuditor(r)
+	a.totals()
+	a.repeats()
+	a.dryRuns()
+	a.dryMonths()
+	a.spikes()
+	a.pet()
+	return Audit{Wettest: a.wettest(), Suspicious: a.suspicious(), Years: a.years}
+}
+
+// Implausible gives those findings of Audit that put the whole record in doubt: rain or evapotranspiration outside of what
+// nearly every climate has, as it is when the unit of a column is wrong. It is quick.
+func (r *Record) Implausible() []Suspicious {
+	a := newAuditor(r)
+	a.totals()
+	return a.suspicious()
 }
 
 // finding is a Suspicious with its steps: from the first to before the last.
@@ -109,6 +125,12 @@ type auditor struct {
 	years  []YearRain
 	wetter [monthsPerYear]bool // months of the wetter half of the year; all false when not known
 	found  []finding
+}
+
+func newAuditor(r *Record) *auditor {
+	a := &auditor{Record: r, perDay: float64(day) / float64(r.Step)}
+	a.gather()
+	return a
 }
 
 type auditDay struct {
@@ -239,6 +261,56 @@ func runs(x []float64, found func(from, to int, v float64)) {
 
 func (a *auditor) daysIn(from, to int) float64 { return float64(to-from) / a.perDay }
 
+// totals holds the means of a year and the wettest day against their limits.
+func (a *auditor) totals() {
+	if len(a.Rain) == 0 {
+		return
+	}
+	wettest := slices.MaxFunc(a.days, func(x, y auditDay) int { return cmp.Compare(x.rain, y.rain) })
+	rain := a.perYear(a.Rain)
+	const text = "rain is %s mm a year and %s mm on the wettest day: check %sthe unit of the rain column"
+	switch {
+	case rain < leastRainPerYear || rain > mostRainPerYear:
+		a.add(KindRainTotal, 0, len(a.Rain), text, roundMM(rain), roundMM(wettest.rain), "")
+	case wettest.rain > mostRainPerDay:
+		a.add(KindRainTotal, wettest.from, wettest.to, text, roundMM(rain), roundMM(wettest.rain), "that day, and ")
+	}
+	if a.PET == nil {
+		return
+	}
+	if pet := a.perYear(a.PET); pet < leastPETPerYear || pet > mostPETPerYear {
+		a.add(KindPETTotal, 0, len(a.PET), "evapotranspiration is %s mm a year: check the unit of the evapotranspiration column", roundMM(pet))
+	}
+}
+
+// perYear is the mean sum of the complete calendar years in mm or, when there is none, the mean of all steps over as long as
+// a year.
+func (a *auditor) perYear(x []float64) float64 {
+	first := slices.IndexFunc(a.months, func(m auditMonth) bool { return m.whole && m.start.Month() == time.January })
+	whole := 0
+	for first >= 0 && first+whole < len(a.months) && a.months[first+whole].whole {
+		whole++
+	}
+	years := whole / monthsPerYear
+	from, to, scale := 0, len(x), daysPerYear*a.perDay/float64(len(x))
+	if years > 0 {
+		from, to, scale = a.months[first].from, a.months[first+years*monthsPerYear-1].to, 1/float64(years)
+	}
+	var sum total
+	for _, v := range x[from:to] {
+		sum.add(v)
+	}
+	return sum.value() * scale
+}
+
+// roundMM writes mm without decimals, or to two figures when they are few.
+func roundMM(v float64) string {
+	if v < 10 {
+		return fmt.Sprintf("%.2g", v)
+	}
+	return fmt.Sprintf("%.0f", v)
+}
+
 func (a *auditor) repeats() {
 	runs(a.Rain, func(from, to int, v float64) {
 		if v > 0 && to-from >= repeatSteps && a.daysIn(from, to) >= float64(repeatTime)/float64(day) {
@@ -348,6 +420,7 @@ func (a *auditor) wettest() []WetDay {
 
 // suspicious lists the findings in the order of time, the first of each kind and one that sums up the others.
 func (a *auditor) suspicious() []Suspicious {
+	slices.SortStableFunc(a.found, func(x, y finding) int { return cmp.Compare(x.from, y.from) })
 	var out []Suspicious
 	seen := map[string]int{}
 	rest := map[string]*finding{}

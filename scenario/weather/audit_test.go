@@ -2,6 +2,7 @@ package weather
 
 import (
 	"fmt"
+	"math"
 	"math/rand/v2"
 	"slices"
 	"testing"
@@ -171,18 +172,97 @@ func TestAuditSumsUp(t *testing.T) {
 }
 
 func TestWetterHalf(t *testing.T) {
-	a := &auditor{Record: wetAndDry(6, day), perDay: 1}
-	a.gather()
+	a := newAuditor(wetAndDry(6, day))
 	for m := range a.wetter {
 		if want := m+1 >= 10 || m+1 <= 3; a.wetter[m] != want {
 			t.Errorf("%v is in the wetter half: %v", time.Month(m+1), a.wetter[m])
 		}
 	}
-	a = &auditor{Record: wetAndDry(1, day), perDay: 1}
-	a.Rain = a.Rain[1:] // January is not whole
-	a.First = a.First.Add(day)
-	a.gather()
+	r := wetAndDry(1, day)
+	r.Rain = r.Rain[1:] // January is not whole
+	r.First = r.First.Add(day)
+	a = newAuditor(r)
 	if slices.Contains(a.wetter[:], true) {
 		t.Error("there is a wetter half without a whole January")
+	}
+}
+
+// TestImplausible works with constant rain and evapotranspiration, so that every mean can be told without a sum.
+func TestImplausible(t *testing.T) {
+	type found = []Suspicious
+	const year = 365.0
+	rain := func(from, to, text string) found { return found{{KindRainTotal, from, to, text}} }
+	pet := func(text string) found { return found{{KindPETTotal, "2001-01-01", "2003-12-31", text}} }
+	all := func(text string) found { return rain("2001-01-01", "2003-12-31", text) }
+	for _, tt := range []struct {
+		name         string
+		rain, pet, p float64 // mm a year; mm on 5 May 2002 instead
+		want         found
+	}{
+		{"sound", 800, 500, 30, nil},
+		{"rain at the lower limit", 150, 500, 150 / year, nil},
+		{"rain below it", 149, 500, 149 / year, all("rain is 149 mm a year and 0.41 mm on the wettest day: check the unit of the rain column")},
+		{"rain near the upper limit", 4999, 500, 0, nil},
+		{"rain above it", 5110, 500, 14, all("rain is 5110 mm a year and 14 mm on the wettest day: check the unit of the rain column")},
+		{"no rain", 0, 500, 0, all("rain is 0 mm a year and 0 mm on the wettest day: check the unit of the rain column")},
+		{"a day at the limit", 800, 500, 400, nil},
+		{"a day above it", 365, 500, 421, rain("2002-05-05", "2002-05-05", "rain is 505 mm a year and 421 mm on the wettest day: check that day, and the unit of the rain column")},
+		{"a little evapotranspiration", 800, 151, 30, nil},
+		{"too little", 800, 50, 30, pet("evapotranspiration is 50 mm a year: check the unit of the evapotranspiration column")},
+		{"much evapotranspiration", 800, 2499, 30, nil},
+		{"too much", 800, 5000, 30, pet("evapotranspiration is 5000 mm a year: check the unit of the evapotranspiration column")},
+		{"both", 8000, 5000, 700, append(all("rain is 8226 mm a year and 700 mm on the wettest day: check the unit of the rain column")[:1:1],
+			pet("evapotranspiration is 5000 mm a year: check the unit of the evapotranspiration column")...)},
+	} {
+		r := &Record{First: time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), Step: day, Rain: make([]float64, 3*365), PET: make([]float64, 3*365)}
+		fill(r.Rain, 0, len(r.Rain), tt.rain/year)
+		fill(r.PET, 0, len(r.PET), tt.pet/year)
+		r.Rain[r.at(2002, 5, 5)] = tt.p
+		if d := cmp.Diff(tt.want, r.Implausible(), cmpopts.EquateEmpty()); d != "" {
+			t.Errorf("%s: %s", tt.name, d)
+		}
+		total := slices.DeleteFunc(r.Audit().Suspicious, func(s Suspicious) bool { return s.Kind != KindRainTotal && s.Kind != KindPETTotal })
+		if d := cmp.Diff(r.Implausible(), total, cmpopts.EquateEmpty()); d != "" {
+			t.Errorf("%s: the audit finds something else: %s", tt.name, d)
+		}
+	}
+	if got := (&Record{}).Implausible(); got != nil {
+		t.Errorf("without steps: %v", got)
+	}
+}
+
+// Only complete years count where there are any; otherwise all steps do, as if they went on for a year.
+func TestPerYear(t *testing.T) {
+	for _, tt := range []struct {
+		name  string
+		first time.Time
+		steps int
+		step  time.Duration
+		want  float64
+	}{
+		{"from July to June", time.Date(2001, 7, 1, 0, 0, 0, 0, time.UTC), 3 * 365, day, 365},
+		{"a year", time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), 365, day, 365},
+		{"a year of hours", time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), 365 * 24, time.Hour, 365},
+		{"days from nine", time.Date(2001, 1, 1, 9, 0, 0, 0, time.UTC), 365, day, 365},
+		{"a day less", time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), 364, day, 365.25},
+		{"a leap year", time.Date(2004, 1, 1, 0, 0, 0, 0, time.UTC), 366, day, 366},
+		{"a month", time.Date(2001, 2, 1, 0, 0, 0, 0, time.UTC), 28, day, 365.25},
+	} {
+		r := &Record{First: tt.first, Step: tt.step, Rain: make([]float64, tt.steps)}
+		for i := range r.Rain { // 1 mm a day
+			r.Rain[i] = tt.step.Hours() / 24
+		}
+		if got := newAuditor(r).perYear(r.Rain); math.Abs(got-tt.want) > 1e-9 {
+			t.Errorf("%s: %v, want %v", tt.name, got, tt.want)
+		}
+	}
+	// What lies outside of the complete years is left out.
+	r := &Record{First: time.Date(2001, 7, 1, 0, 0, 0, 0, time.UTC), Step: day, Rain: make([]float64, 3*365)}
+	fill(r.Rain, r.at(2002, 1, 1), 365, 1)
+	fill(r.Rain, r.at(2003, 1, 1), 365, 2)
+	fill(r.Rain, 0, r.at(2002, 1, 1), 9)
+	fill(r.Rain, r.at(2004, 1, 1), len(r.Rain)-r.at(2004, 1, 1), 9)
+	if got := newAuditor(r).perYear(r.Rain); got != 365*1.5 {
+		t.Errorf("got %v", got)
 	}
 }

@@ -372,70 +372,88 @@ func (l *layout) read(b []byte) (v [parts]int, ok bool) {
 }
 
 // explain says why a text that parse refuses is no time in the format, and what one looks like.
-func (l *layout) explain(b []byte) string {
+func (l *layout) explain(b []byte) *trouble {
 	if len(b) == 0 {
-		return `"" is no time; every row needs one`
+		return wrong(`"" is no time; every row needs one`)
 	}
 	if l.iso {
-		return fmt.Sprintf("%q %s", b, explainISO(string(b)))
+		return l.explainISO(string(b))
 	}
 	if v, ok := l.read(b); ok {
-		return fmt.Sprintf("%q %s", b, wrongPart(v))
+		return wrongPart(b, v)
 	}
-	return fmt.Sprintf("%q does not match the format %s, in which a time reads %q", b, l.format,
+	return wrong("%q does not match the format %s, in which a time reads %q", b, l.format,
 		l.text(time.Date(2019, 3, 31, 14, 5, 0, 0, time.UTC), ""))
 }
 
-func explainISO(text string) string {
+func (l *layout) explainISO(text string) *trouble {
 	const (
-		shape  = "YYYY-MM-DDThh:mm:ss"
-		sample = "2019-03-31T14:05:00+01:00"
+		shape   = "YYYY-MM-DDThh:mm:ss"
+		toMin   = len("YYYY-MM-DDThh:mm")
+		sample  = "2019-03-31T14:05:00+01:00"
+		noMatch = "%q does not match the format iso, in which a time reads " + sample
 	)
-	civil, err := compile(shape)
-	if err != nil || len(text) < len(shape) {
-		if len(text) == len(time.DateOnly) {
-			return "does not match the format iso, in which a time reads " + sample + "; for dates alone write the format as YYYY-MM-DD"
-		}
-		return "does not match the format iso, in which a time reads " + sample
+	// Seconds that are left out are put in, so that the rest can be looked at.
+	full := text
+	short := len(text) == toMin || len(text) > toMin && text[toMin] != ':'
+	if short {
+		full = text[:toMin] + ":00" + text[toMin:]
 	}
-	b := []byte(text[:len(shape)])
-	if b[10] == ' ' || b[10] == 't' {
+	civil, err := compile(shape)
+	if err != nil || len(full) < len(shape) {
+		if len(text) == len(time.DateOnly) {
+			return wrong(noMatch+"; for dates alone write the format as YYYY-MM-DD", text)
+		}
+		return wrong(noMatch, text)
+	}
+	b := []byte(full[:len(shape)])
+	mark := b[10]
+	if mark == ' ' || mark == 't' {
 		b[10] = 'T'
 	}
 	v, ok := civil.read(b)
 	if !ok {
-		return "does not match the format iso, in which a time reads " + sample
+		return wrong(noMatch, text)
 	}
 	if _, _, ok := civil.parse(b); !ok {
-		return wrongPart(v)
+		return wrongPart([]byte(text), v)
 	}
-	switch zone := text[len(shape):]; {
+	switch zone := full[len(shape):]; {
+	case short && zone == "":
+		return wrong("%q has neither seconds nor an offset from UTC, which the format iso wants, such as "+sample+
+			"; without both write the format as YYYY-MM-DD%chh:mm", text, mark)
+	case short:
+		if _, _, ok := l.parseISO([]byte(full)); !ok {
+			return wrong(noMatch, text)
+		}
+		return wrong("%q has no seconds, which the format iso wants; write %s. A format such as YYYY-MM-DDThh:mm reads times without "+
+			"seconds, but also without an offset", text, full)
 	case zone == "":
-		return "has no offset from UTC, which the format iso wants, such as " + sample + "; without offsets write the format as " + shape
+		return wrong("%q has no offset from UTC, which the format iso wants, such as "+sample+"; without offsets write the format as YYYY-MM-DD%chh:mm:ss", text, mark)
 	case zone[0] == '.':
-		return "has a fraction of a second that is not zero, or no offset after it; write whole seconds such as " + sample
+		return wrong("%q has a fraction of a second that is not zero, or no offset after it; write whole seconds such as "+sample, text)
 	}
-	return "has an offset from UTC that cannot be read; write Z or one such as +01:00"
+	return wrong("%q has an offset from UTC that cannot be read; write Z or one such as +01:00", text)
 }
 
-// wrongPart says which of the parts cannot be.
-func wrongPart(v [parts]int) string {
+// wrongPart says which of the parts of a time cannot be.
+func wrongPart(b []byte, v [parts]int) *trouble {
 	y, m, d := v[year], v[month], v[dayOfMonth]
 	switch {
 	case y < firstYear || y > lastYear:
-		return fmt.Sprintf("is in the year %d; years from %d to %d are read", y, firstYear, lastYear)
+		return wrong("%q is in the year %d; years from %d to %d are read", b, y, firstYear, lastYear)
 	case m < 1 || m > 12:
-		return fmt.Sprintf("has no month %d; is the order of day and month right in the format?", m)
+		return wrong("%q has no month %d; is the order of day and month right in the format?", b, m)
 	case d == 29 && m == 2 && !isLeap(y):
-		return fmt.Sprintf("does not exist: %d is not a leap year", y)
+		return wrong("%q does not exist: %d is not a leap year", b, y)
 	case d < 1 || d > daysIn(y, m):
-		return fmt.Sprintf("does not exist: %s %d has %d days", time.Month(m), y, daysIn(y, m))
+		return wrong("%q does not exist: %s %d has %d days", b, time.Month(m), y, daysIn(y, m))
 	case v[hour] == 24:
-		return "has the hour 24; write 00 of the next day"
+		return wrong("%q has the hour 24; write 00 of the next day", b)
 	case v[hour] > 23:
-		return fmt.Sprintf("has the hour %d; hours run from 00 to 23", v[hour])
+		return wrong("%q has the hour %d; hours run from 00 to 23", b, v[hour])
 	case v[minute] > 59:
-		return fmt.Sprintf("has the minute %d; minutes run from 00 to 59", v[minute])
+		return wrong("%q has the minute %d; minutes run from 00 to 59", b, v[minute])
 	}
-	return fmt.Sprintf("has the second %d; seconds run from 00 to 59", v[second])
+	return wrong("%q has the second %d; seconds run from 00 to 59", b, v[second])
 }

@@ -118,7 +118,7 @@ func hasAll(names, wanted []string) bool {
 // namesIn returns the names of a header; nil when its quotes do not fit.
 func namesIn(header []byte, sep byte) []string {
 	r := reader{columns: columns{sep: sep}}
-	if why, open := r.cut(header); why != "" || open {
+	if why, open := r.cut(header); why != nil || open {
 		return nil
 	}
 	names := make([]string, len(r.fields))
@@ -200,11 +200,11 @@ func quoteList(names []string) string {
 func (r *reader) split(b []byte) (ok bool, err error) {
 	line := r.line
 	why, open := r.cut(b)
-	for open && why == "" { // a line end inside quotes belongs to the field (RFC 4180, section 2)
+	for open && why == nil { // a line end inside quotes belongs to the field (RFC 4180, section 2)
 		r.joined = append(append(r.joined[:0], b...), '\n')
 		more, err := r.next()
 		if err == io.EOF {
-			why = "a quote is opened but never closed"
+			why = wrong("a quote is opened but never closed")
 			break
 		}
 		if err != nil {
@@ -217,15 +217,15 @@ func (r *reader) split(b []byte) (ok bool, err error) {
 		}
 		why, open = r.cut(b)
 	}
-	if why != "" {
-		r.problem(line, "", "%s", why)
+	if why != nil {
+		r.inRow(line, "", why)
 		return false, nil
 	}
 	return true, nil
 }
 
 // cut cuts a line into r.fields. It returns what is wrong with the line, and whether a quote is still open at its end.
-func (r *reader) cut(b []byte) (why string, open bool) {
+func (r *reader) cut(b []byte) (why *trouble, open bool) {
 	r.fields = r.fields[:0]
 	if bytes.IndexByte(b, '"') >= 0 {
 		why, open = r.cutQuoted(b)
@@ -241,10 +241,10 @@ func (r *reader) cut(b []byte) (why string, open bool) {
 		}
 		r.fields = append(r.fields, rest)
 	}
-	if len(b) > maxField && why == "" {
+	if len(b) > maxField && why == nil {
 		for i, f := range r.fields {
 			if len(f) > maxField {
-				return fmt.Sprintf("field %d is longer than %d bytes (%q…); is a quote or a separator missing?", i+1, maxField, f[:20]), false
+				return wrong("field %d is longer than %d bytes (%q…); is a quote or a separator missing?", i+1, maxField, f[:20]), false
 			}
 		}
 	}
@@ -252,7 +252,7 @@ func (r *reader) cut(b []byte) (why string, open bool) {
 }
 
 // cutQuoted is cut for a line with quotes (RFC 4180): a field in quotes may hold separators and, doubled, quotes.
-func (r *reader) cutQuoted(b []byte) (why string, open bool) {
+func (r *reader) cutQuoted(b []byte) (why *trouble, open bool) {
 	r.quoted = r.quoted[:0]
 	for {
 		i := 0
@@ -264,7 +264,7 @@ func (r *reader) cutQuoted(b []byte) (why string, open bool) {
 				i = len(b)
 			}
 			if bytes.IndexByte(b[:i], '"') >= 0 {
-				return fmt.Sprintf("there is a quote inside field %d; put the whole field in quotes and double the quotes inside it",
+				return wrong("there is a quote inside field %d; put the whole field in quotes and double the quotes inside it",
 					len(r.fields)+1), false
 			}
 			r.fields = append(r.fields, b[:i])
@@ -275,7 +275,7 @@ func (r *reader) cutQuoted(b []byte) (why string, open bool) {
 				n := bytes.IndexByte(b[i:], '"')
 				if n < 0 {
 					r.fields = append(r.fields, b[i:])
-					return "", true
+					return nil, true
 				}
 				r.quoted = append(r.quoted, b[i:i+n]...)
 				if i += n + 1; i == len(b) || b[i] != '"' {
@@ -288,11 +288,11 @@ func (r *reader) cutQuoted(b []byte) (why string, open bool) {
 				i++
 			}
 			if i < len(b) && b[i] != r.sep {
-				return fmt.Sprintf("there is text after the closing quote of field %d", len(r.fields)), false
+				return wrong("there is text after the closing quote of field %d", len(r.fields)), false
 			}
 		}
 		if i == len(b) {
-			return "", false
+			return nil, false
 		}
 		b = b[i+1:]
 	}

@@ -2,7 +2,7 @@ package weather
 
 import (
 	"bytes"
-	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 )
@@ -95,14 +95,7 @@ func newCodes(missing []string, comma bool) codes {
 	return c
 }
 
-func (c *codes) hasNumber(v float64) bool {
-	for _, n := range c.numbers {
-		if n == v {
-			return true
-		}
-	}
-	return false
-}
+func (c *codes) hasNumber(v float64) bool { return slices.Contains(c.numbers, v) }
 
 func (c *codes) hasText(cell []byte) bool {
 	for _, t := range c.texts {
@@ -114,26 +107,26 @@ func (c *codes) hasText(cell []byte) bool {
 }
 
 // notNumber says why a cell is refused that is neither a number nor a missing code, and what to write.
-func notNumber(cell []byte, comma bool) string {
+func notNumber(cell []byte, comma bool) *trouble {
 	const orMissing = "if it stands for a missing value, list it in weather.missing"
 	text := string(cell)
 	if text == "" {
-		return `"" is not a number; if a blank cell stands for a missing value, list "" in weather.missing`
+		return wrong(`"" is not a number; if a blank cell stands for a missing value, list "" in weather.missing`)
 	}
 	switch strings.ToLower(strings.TrimLeft(text, "+-")) {
 	case "nan", "inf", "infinity":
-		return fmt.Sprintf("%q is not accepted as a value; %s", text, orMissing)
+		return wrong("%q is not accepted as a value; "+orMissing, text)
 	}
 	if _, err := strconv.ParseFloat(text, 64); err != nil && strings.Contains(err.Error(), strconv.ErrRange.Error()) {
-		return fmt.Sprintf("%q is too large for a number", text)
+		return wrong("%q is too large for a number", text)
 	}
 	point := bytes.Replace(cell, []byte{','}, []byte{'.'}, 1)
 	if _, ok := parseNumber(point, false); ok && !comma {
-		return fmt.Sprintf("%q has a decimal comma in a file whose columns are separated by commas; write %s, "+
+		return wrong("%q has a decimal comma in a file whose columns are separated by commas; write %s, "+
 			"or separate the columns by ; or tabs", text, point)
 	}
 	if bytes.ContainsAny(cell, ",") {
-		return fmt.Sprintf("%q is not a number; write it without a thousands mark, with a point as decimal mark", text)
+		return wrong("%q is not a number; write it without a thousands mark, with a point as decimal mark", text)
 	}
-	return fmt.Sprintf("%q is not a number; %s", text, orMissing)
+	return wrong("%q is not a number; "+orMissing, text)
 }

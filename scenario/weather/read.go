@@ -27,7 +27,7 @@ const (
 	maxLine  = 64 << 10 // bytes of a line
 	maxField = 256      // bytes of a field
 	maxRows  = 60e6     // rows; 114 years of minutes
-	maxBlank = 10_000   // blank lines at the end
+	maxBlank = 10_000   // blank lines one after another
 )
 
 // headRows is the number of rows from which the step is found.
@@ -133,7 +133,7 @@ type reader struct {
 	zone     string // the same as written
 
 	problems []*fault.Error
-	values   []badValue // at most fault.Most, like the problems
+	kinds    []*kind // of the problems in rows
 	series
 }
 
@@ -171,7 +171,9 @@ func read(ctx context.Context, src Source, raw io.Reader, size int64, maxRows in
 
 // report puts the problems in the order of the file.
 func (r *reader) report() error {
-	r.closeValues()
+	for _, k := range r.kinds {
+		k.problem.Text += k.more()
+	}
 	slices.SortStableFunc(r.problems, func(a, b *fault.Error) int { return a.Line - b.Line })
 	var list fault.List
 	for _, p := range r.problems[:min(len(r.problems), fault.Most)] {
@@ -300,7 +302,7 @@ type row struct {
 	time, rain, pet []byte // cells; valid until the next line is read
 	rainV, petV     float64
 	missing         uint8 // rainMissing, petMissing
-	broken          bool  // the row before could not be read
+	broken          bool  // the row before has no time, or could not be read
 }
 
 // rows reads all the rows.
@@ -325,7 +327,7 @@ func (r *reader) rows() error {
 			continue
 		}
 		if blank > 0 {
-			r.problem(blank, "", "the line is blank, but rows follow in line %d; delete blank lines", r.line)
+			r.inRow(blank, "", wrong("the line is blank, but rows follow in line %d; delete blank lines", r.line)).noun = "place"
 			blank = 0
 		}
 		if n++; n > r.maxRows {
@@ -367,7 +369,7 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 	w.time = bytes.Trim(r.fields[r.timeAt], blanks)
 	unix, offset, ok := r.layout.parse(w.time)
 	if !ok {
-		r.problem(w.line, r.src.Time, "%s", r.layout.explain(w.time))
+		r.inRow(w.line, r.src.Time, r.layout.explain(w.time))
 	} else if w.unix = unix; r.layout.iso && r.zone == "" {
 		r.offset, r.zone = offset, zoneOf(w.time)
 	}
@@ -389,7 +391,7 @@ func (r *reader) wrongWidth(line int) {
 	case len(r.fields) < r.width && r.ended:
 		hint = "; it is the last line: the file may have been cut off"
 	}
-	r.problem(line, "", "the row has %s where the header has %d%s", count(len(r.fields), "field"), r.width, hint)
+	r.inRow(line, "", wrong("the row has %s where the header has %d"+hint, count(len(r.fields), "field"), r.width))
 }
 
 // value reads a number or a missing code.
@@ -400,45 +402,75 @@ func (r *reader) value(w *row, cell []byte, column string, bit uint8) float64 {
 		w.missing |= bit
 		return 0
 	case !ok:
-		r.badValue(w.line, column, cell, notNumber(cell, r.comma))
+		r.badCell(w.line, column, cell, notNumber(cell, r.comma))
 		return 0
 	case v < 0 && bit == rainMissing:
-		r.badValue(w.line, column, cell, fmt.Sprintf("%q is negative rain; a negative code for a missing value belongs in "+
+		r.badCell(w.line, column, cell, wrong("%q is negative rain; a negative code for a missing value belongs in "+
 			"weather.missing, and a trace of rain is written as 0", cell))
 		return 0
 	case v < 0:
-		r.badValue(w.line, column, cell, fmt.Sprintf("%q is negative evapotranspiration; a negative code for a missing value "+
+		r.badCell(w.line, column, cell, wrong("%q is negative evapotranspiration; a negative code for a missing value "+
 			"belongs in weather.missing, and dew is written as 0", cell))
 		return 0
 	}
 	return v
 }
 
-// badValue notes a cell that cannot be used, once for all rows with the same text.
-func (r *reader) badValue(line int, column string, cell []byte, text string) {
-	for i := range r.values {
-		if b := &r.values[i]; b.column == column && b.cell == string(cell) {
-			b.rows++
-			return
-		}
-	}
-	r.values = append(r.values, badValue{column: column, cell: string(cell), rows: 1, problem: r.problem(line, column, "%s", text)})
+// trouble is what is wrong with a row. Troubles of one format are of one kind.
+type trouble struct {
+	format string
+	args   []any
 }
 
-// badValue is a text that cannot be used, with the problem about the first row that has it.
-type badValue struct {
-	column, cell string
-	rows         int
-	problem      *fault.Error
+func wrong(format string, args ...any) *trouble { return &trouble{format, args} }
+
+func (t *trouble) String() string { return fmt.Sprintf(t.format, t.args...) }
+
+// kind is a kind of trouble in one column. It is one problem, however many rows have it.
+type kind struct {
+	column, format string
+	problem        *fault.Error // about the first row that has it
+	rows           int
+	noun           string   // what rows counts
+	cells          []string // that have it, of those that differ the first few; empty where they do not matter
 }
 
-// closeValues adds to the problems in how many rows more they stand.
-func (r *reader) closeValues() {
-	for _, b := range r.values {
-		if b.rows > 1 {
-			b.problem.Text += fmt.Sprintf(" (and in %s)", count(b.rows-1, "more row"))
+// inRow notes what is wrong with a row, in a column where there is one.
+func (r *reader) inRow(line int, column string, t *trouble) *kind {
+	for _, k := range r.kinds {
+		if k.column == column && k.format == t.format {
+			k.rows++
+			return k
 		}
 	}
+	k := &kind{column: column, format: t.format, problem: r.problem(line, column, "%s", t), rows: 1, noun: "row"}
+	r.kinds = append(r.kinds, k)
+	return k
+}
+
+// mostCells is the number of further cells that a message names.
+const mostCells = 3
+
+// badCell is inRow for a cell that cannot be used.
+func (r *reader) badCell(line int, column string, cell []byte, t *trouble) {
+	k := r.inRow(line, column, t)
+	if len(k.cells) < 2+mostCells && !slices.Contains(k.cells, string(cell)) {
+		k.cells = append(k.cells, string(cell))
+	}
+}
+
+// more says in how many more rows the trouble stands, and in which other cells.
+func (k *kind) more() string {
+	also := ""
+	switch {
+	case k.rows == 1:
+		return ""
+	case len(k.cells) > 1+mostCells:
+		also = fmt.Sprintf("; also %s and others", quoteList(k.cells[1:1+mostCells]))
+	case len(k.cells) > 1:
+		also = "; also " + quoteList(k.cells[1:])
+	}
+	return fmt.Sprintf(" (and in %s%s)", count(k.rows-1, "more "+k.noun), also)
 }
 
 // count writes a number with its noun.

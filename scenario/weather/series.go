@@ -24,6 +24,9 @@ const (
 	maxStep = day
 )
 
+// Spans are counted in seconds, since a time.Duration holds 292 years only.
+const daySeconds = int64(day / time.Second)
+
 // Ways in which a step can be missing.
 const (
 	rainMissing uint8 = 1 << iota
@@ -42,7 +45,7 @@ type gap struct {
 // maxGaps is the number of gaps that a message lists.
 const maxGaps = 10
 
-// series puts rows in a row.
+// series puts rows in the order of time, or says which are out of it.
 type series struct {
 	head []row // the first rows, until the step is known
 
@@ -53,17 +56,15 @@ type series struct {
 	rain, pet []float64
 	scale     struct{ rainMul, rainDiv, petMul, petDiv, petMost float64 }
 
-	dayEnd   int64   // of the day of the last step, s
-	dayRain  float64 // in that day so far, mm
-	dayNoted bool
+	dayEnd  int64   // of the day of the last step, s
+	dayRain float64 // in that day so far, mm
 
-	unsure   bool         // a row is out of place or lacks a time, so that gaps cannot be told
-	broken   bool         // so does the row read last
-	disorder *fault.Error // about the row before, while rows out of place follow each other
-	more     int          // further rows in a row that are like it
-	jump     int64        // steps from the row before to the last, 1 when there is no gap
-	jumps    int          // rows in a row after such a jump
-	jumpFrom int          // number of the line before the first of them
+	unsure   bool  // a row is out of place, lacks a time or could not be read, so that gaps cannot be told
+	broken   bool  // the row read last has no time, or could not be read
+	disorder *kind // of the row before, while rows out of place follow each other
+	jump     int64 // steps from the row before to the last, 1 when there is no gap
+	jumps    int   // rows in a row after such a jump
+	jumpFrom int   // number of the line before the first of them
 
 	gaps     []gap // the first of them
 	gapCount int
@@ -74,12 +75,12 @@ type series struct {
 
 // take takes the next row that has a time.
 func (r *reader) take(w *row) error {
+	w.broken, r.broken = r.broken, false
 	if r.step > 0 {
 		r.place(w)
 		return nil
 	}
 	kept := *w
-	kept.broken, r.broken = r.broken, false
 	kept.time, kept.rain, kept.pet = slices.Clone(w.time), slices.Clone(w.rain), slices.Clone(w.pet)
 	r.head = append(r.head, kept)
 	if len(r.head) < headRows {
@@ -101,18 +102,20 @@ func (r *reader) settle() error {
 	}
 	step := commonest(r.head)
 	a, b := &r.head[0], &r.head[1]
-	switch d := time.Duration(step) * time.Second; {
+	switch {
 	case step == 0 && len(r.problems) > 0:
 		return errStop
 	case step == 0 && a.unix == b.unix:
 		return r.fatalTime(b, "repeats line %d, and so do all others; is this the right column?", a.line)
 	case step == 0:
 		return r.fatalTime(b, "comes before that of line %d; put the rows in the order of time, oldest first", a.line)
-	case d >= 28*day:
+	case step > int64(maxStep/time.Second) && r.unsure: // times were misread, which has been said
+		return errStop
+	case step >= 28*daySeconds:
 		return r.fatal(0, "the rows are %s apart; calendar-month steps are not supported yet, steps run from 1 min to 1 d",
-			durationText(d))
-	case d > maxStep, d < minStep:
-		return r.fatal(0, "the rows are %s apart; steps run from 1 min to 1 d", durationText(d))
+			secondsText(step))
+	case step > int64(maxStep/time.Second), step < int64(minStep/time.Second):
+		return r.fatal(0, "the rows are %s apart; steps run from 1 min to 1 d", secondsText(step))
 	}
 	r.step = step
 	d := time.Duration(step) * time.Second
@@ -176,8 +179,7 @@ func (r *reader) place(w *row) {
 		r.first, r.gapEnd = w.unix, w.unix-r.step
 		r.complete.from, r.complete.to = w.unix, w.unix-r.step
 	} else if d := w.unix - r.last; d == r.step {
-		r.closeDisorder()
-		r.jump = 1
+		r.disorder, r.jump = nil, 1
 	} else if !r.misplaced(w, d) {
 		return
 	}
@@ -192,8 +194,8 @@ func (r *reader) place(w *row) {
 		pet := w.petV * r.scale.petMul / r.scale.petDiv
 		r.pet = append(r.pet, pet)
 		if !(pet <= r.scale.petMost) {
-			r.problem(w.line, r.src.PET.Name, "%q is %.6g mm/d; evapotranspiration above %d mm/d is not possible, so check weather.columns.pet.unit",
-				w.pet, pet/r.scale.petMost*maxPETPerDay, maxPETPerDay)
+			r.inRow(w.line, r.src.PET.Name, wrong("%q is %.6g mm/d; evapotranspiration above %d mm/d is not possible, so check weather.columns.pet.unit",
+				w.pet, pet/r.scale.petMost*maxPETPerDay, maxPETPerDay))
 		}
 	}
 }
@@ -204,70 +206,54 @@ func (r *reader) checkRain(w *row, rain float64) {
 	if r.src.StampEnd {
 		start -= r.step
 	}
-	const seconds = int64(day / time.Second)
-	if start >= r.dayEnd || start < r.dayEnd-seconds {
-		r.dayEnd = start - (start%seconds+seconds)%seconds + seconds
-		r.dayRain, r.dayNoted = 0, false
+	if start >= r.dayEnd || start < r.dayEnd-daySeconds {
+		r.dayEnd = start - (start%daySeconds+daySeconds)%daySeconds + daySeconds
+		r.dayRain = 0
 	}
-	r.dayRain += rain
-	switch {
-	case r.dayNoted || r.dayRain <= maxRainPerDay:
+	if !(rain <= maxRainPerDay) {
+		r.inRow(w.line, r.src.Rain.Name, wrong("%q is %.6g mm of rain in a step; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
+			w.rain, rain, maxRainPerDay))
 		return
-	case !(rain <= maxRainPerDay):
-		r.problem(w.line, r.src.Rain.Name, "%q is %.6g mm of rain in a step; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
-			w.rain, rain, maxRainPerDay)
-	default:
-		r.problem(w.line, r.src.Rain.Name, "with %q the rain of this day adds up to %.6g mm; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
-			w.rain, r.dayRain, maxRainPerDay)
 	}
-	r.dayNoted = true
+	if r.dayRain += rain; r.dayRain > maxRainPerDay {
+		r.inRow(w.line, r.src.Rain.Name, wrong("with %q the rain of this day adds up to %.6g mm; more than %d mm has never fallen in a day, so check weather.columns.rain.unit",
+			w.rain, r.dayRain, maxRainPerDay))
+	}
 }
 
 // misplaced deals with a row that does not come one step after the one before, but d seconds. It returns false when the
 // row is to be left out.
 func (r *reader) misplaced(w *row, d int64) (keep bool) {
 	if d > 0 && d%r.step == 0 {
-		r.closeDisorder()
+		r.disorder = nil
 		r.skip(w, d/r.step)
 		return true
 	}
 	r.unsure = true
 	r.jump = 1
 	if r.disorder != nil {
-		r.more++
+		r.disorder.rows++
 		return d > 0
-	}
-	before := r.timeText(r.last)
-	var text string
-	switch {
-	case d == 0:
-		text = fmt.Sprintf("repeats line %d", r.lastLine)
-	case d < 0:
-		text = fmt.Sprintf("comes before %q in line %d", before, r.lastLine)
-	default:
-		text = fmt.Sprintf("comes %s after %q in line %d, but the step is %s", durationText(time.Duration(d)*time.Second), before,
-			r.lastLine, durationText(time.Duration(r.step)*time.Second))
 	}
 	hint := "; every time must be one step after the one before"
 	switch {
 	case r.clockChange(w.unix, d):
 		hint = clockHint
-	case r.layout.iso && r.step == int64(day/time.Second) && (d == 23*3600 || d == 25*3600):
+	case r.layout.iso && r.step == daySeconds && (d == 23*3600 || d == 25*3600):
 		hint = "; the offset from UTC changes here: keep one all year, so that days are 24 h long"
 	}
-	r.disorder = r.problem(w.line, r.src.Time, "%q %s%s", w.time, text, hint)
+	before := r.timeText(r.last)
+	var t *trouble
+	switch {
+	case d == 0:
+		t = wrong("%q repeats line %d"+hint, w.time, r.lastLine)
+	case d < 0:
+		t = wrong("%q comes before %q in line %d"+hint, w.time, before, r.lastLine)
+	default:
+		t = wrong("%q comes %s after %q in line %d, but the step is %s"+hint, w.time, secondsText(d), before, r.lastLine, secondsText(r.step))
+	}
+	r.disorder = r.inRow(w.line, r.src.Time, t)
 	return d > 0
-}
-
-// closeDisorder ends a stretch of rows out of place, which is one problem.
-func (r *reader) closeDisorder() {
-	if r.disorder == nil {
-		return
-	}
-	if r.more > 0 {
-		r.disorder.Text += fmt.Sprintf(" (out of place too: %s after it)", count(r.more, "row"))
-	}
-	r.disorder, r.more = nil, 0
 }
 
 const clockHint = "; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso"
@@ -277,7 +263,7 @@ const clockHint = "; if these are clock times of a place with summer time, give 
 // and in September, October or November (from memory).
 func (r *reader) clockChange(unix, d int64) bool {
 	const hour = 3600
-	if r.layout.iso || r.step >= int64(day/time.Second) || d-r.step != hour && r.step-d != hour {
+	if r.layout.iso || r.step >= daySeconds || d-r.step != hour && r.step-d != hour {
 		return false
 	}
 	t := time.Unix(unix, 0).UTC()
@@ -289,17 +275,19 @@ func (r *reader) clockChange(unix, d int64) bool {
 }
 
 // skip notes that rows are missing before w, which comes n steps after the row before. The same jump three times in a row
-// is a change of step.
+// is a change of step, unless rows between could not be read.
 func (r *reader) skip(w *row, n int64) {
-	if n == r.jump {
+	switch {
+	case w.broken:
+		r.jump = 1
+	case n == r.jump:
 		r.jumps++
-	} else {
+	default:
 		r.jump, r.jumps, r.jumpFrom = n, 1, r.lastLine
 	}
-	if r.jumps == 3 {
-		step := time.Duration(r.step) * time.Second
-		r.problem(w.line, r.src.Time, "%q: the step changes from %s to %s after line %d; every step must be the same",
-			w.time, durationText(step), durationText(time.Duration(n)*step), r.jumpFrom)
+	if r.jumps == 3 && !w.broken {
+		r.inRow(w.line, r.src.Time, wrong("%q: the step changes from %s to %s after line %d; every step must be the same",
+			w.time, secondsText(r.step), secondsText(n*r.step), r.jumpFrom)).noun = "place"
 		r.unsure = true
 	}
 	g := gap{from: r.last + r.step, to: w.unix - r.step, line: w.line, kind: rowsMissing}
@@ -343,11 +331,11 @@ func (r *reader) end() error {
 	if err := r.settle(); err != nil {
 		return err
 	}
-	r.closeDisorder()
-	if r.lastLine == 0 && len(r.problems) == 0 {
+	switch {
+	case r.lastLine == 0 && len(r.problems) == 0:
 		return r.fatal(0, "the file has a header but no rows")
-	}
-	if r.gapCount > 0 && !r.unsure && len(r.problems) < fault.Most {
+	case r.unsure || len(r.problems) >= fault.Most:
+	case r.gapCount > 0:
 		r.refuseGaps()
 	}
 	return nil
@@ -368,6 +356,7 @@ func (r *reader) refuseGaps() {
 	if r.src.PET != nil {
 		names = append(names, r.src.PET.Name)
 	}
+	hinted := false
 	for _, g := range r.gaps {
 		fmt.Fprintf(&b, "\n    %s to %s, %s: ", r.timeText(g.from), r.timeText(g.to), count(int((g.to-g.from)/r.step+1), "step"))
 		switch {
@@ -380,7 +369,8 @@ func (r *reader) refuseGaps() {
 		default:
 			fmt.Fprintf(&b, "no %s from line %d", names[g.kind/petMissing], g.line)
 		}
-		if g.hour {
+		if g.hour && !hinted {
+			hinted = true
 			b.WriteString(clockHint)
 		}
 	}

@@ -33,7 +33,7 @@ type Record struct {
 	Name   string        // the file as messages name it
 	SHA256 string        // of the file's bytes as they are on disk, in hex
 	First  time.Time     // start of the first step; UTC, or for iso times the offset of the first row
-	Step   time.Duration // constant, 1 min to 1 d
+	Step   time.Duration // constant, 1 min to 1 d, in whole seconds
 	Rain   []float64     // mm per step
 	PET    []float64     // mm per step; nil when the record has none
 
@@ -43,7 +43,10 @@ type Record struct {
 }
 
 // Start is the time at which step i starts. Start(len(r.Rain)) is the end of the record.
-func (r *Record) Start(i int) time.Time { return r.First.Add(time.Duration(i) * r.Step) }
+func (r *Record) Start(i int) time.Time {
+	// In seconds: a time.Duration holds 292 years only.
+	return time.Unix(r.First.Unix()+int64(i)*int64(r.Step/time.Second), 0).In(r.First.Location())
+}
 
 // Days is the length of a step in days.
 func (r *Record) Days() float64 { return r.Step.Hours() / 24 }
@@ -82,19 +85,19 @@ func (r *Record) iso(t time.Time) string {
 }
 
 // StepText is the length of a step in words: 1 d, 1 h, 15 min.
-func (r *Record) StepText() string { return durationText(r.Step) }
+func (r *Record) StepText() string { return secondsText(int64(r.Step / time.Second)) }
 
 const day = 24 * time.Hour
 
-// durationText writes d in the largest unit that divides it.
-func durationText(d time.Duration) string {
+// secondsText writes a time of s seconds in the largest unit that divides it.
+func secondsText(s int64) string {
 	switch {
-	case d%day == 0:
-		return fmt.Sprintf("%d d", d/day)
-	case d%time.Hour == 0:
-		return fmt.Sprintf("%d h", d/time.Hour)
-	case d%time.Minute == 0:
-		return fmt.Sprintf("%d min", d/time.Minute)
+	case s%daySeconds == 0:
+		return fmt.Sprintf("%d d", s/daySeconds)
+	case s%3600 == 0:
+		return fmt.Sprintf("%d h", s/3600)
+	case s%60 == 0:
+		return fmt.Sprintf("%d min", s/60)
 	}
-	return fmt.Sprintf("%d s", d/time.Second)
+	return fmt.Sprintf("%d s", s)
 }

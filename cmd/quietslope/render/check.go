@@ -3,6 +3,7 @@ package render
 import (
 	"fmt"
 	"io"
+	"math"
 	"strconv"
 
 	"quietslope/scenario/result"
@@ -108,7 +109,8 @@ func ratesText(r *result.Rates) string {
 	if r.PercolationCeilingMMPerDay != nil {
 		text += fmt.Sprintf(" (at most %s mm/d)", typed(*r.PercolationCeilingMMPerDay, 6))
 	}
-	return text + fmt.Sprintf("; deep seepage %s /d", typed(r.DeepSeepagePerDay, 6))
+	text += fmt.Sprintf(", so that it halves in %s d", significant(math.Ln2/(r.CoverSeepagePerDay+r.CoverPercolationPerDay), 2))
+	return text + fmt.Sprintf("; deep seepage %s /d, halves in %s d", typed(r.DeepSeepagePerDay, 6), significant(math.Ln2/r.DeepSeepagePerDay, 2))
 }
 
 func sameRates(a, b *result.Rates) bool {

@@ -16,6 +16,7 @@ import (
 
 	"quietslope/scenario"
 	"quietslope/scenario/result"
+	"quietslope/stats"
 )
 
 // Comparison writes the result of compare as text.
@@ -30,6 +31,7 @@ func Comparison(w io.Writer, c *result.Comparison) error {
 		}
 	}
 	v.title()
+	v.inShort()
 	v.counted()
 	v.options()
 	v.bands()
@@ -78,6 +80,60 @@ func title(p *page, h *result.Head) {
 	p.para("%s %s %s", h.Tool.Name, h.Tool.Version, h.Command)
 }
 
+// inShort says in a few lines what the tables say on the deciding band, without a judgement of its own.
+func (v *view) inShort() {
+	band := slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
+	if band < 0 || len(v.c.Cases) == 0 {
+		return
+	}
+	c := &v.c.Cases[0]
+	name, T := v.c.Bands[band].Name, v.c.Record.YearsCounted
+	by := measureOf(v.c.Settings.DecideBy)
+	v.heading("In short")
+	var none, same []string
+	for _, o := range pointers(c) {
+		f := &o.Bands[band]
+		switch {
+		case o.Baseline && notPassed(f):
+			v.para("%s, the baseline, does not pass %s in %s.", v.letters[o.Name], name, plural(T, "year"))
+		case o.Baseline:
+			days, limits := ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
+			v.para("%s, the baseline, passes %s in %.0f of %s, on %s days a year %s.", v.letters[o.Name], name,
+				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), days, limits)
+		case notPassed(f):
+			none = append(none, v.letters[o.Name])
+		}
+		if f.Change != nil && !f.Change.ToldApart {
+			same = append(same, v.letters[o.Name])
+		}
+	}
+	if len(none) > 0 {
+		v.para("With %s this record holds none, which is not never.", strings.Join(none, ", "))
+	}
+	if len(c.Options) > 1 {
+		text := fmt.Sprintf("From the least by %s: %s.", by.name, v.order(c, v.figuresBy(c, band, by)))
+		if len(same) > 0 {
+			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.baseline, strings.Join(same, ", "))
+		}
+		if refs := v.notes.numbers("order_not_told_apart"); refs != "" {
+			text += fmt.Sprintf(" Nor are all neighbours in this order told apart: see %s.", noun(refs))
+		}
+		v.para("%s", text)
+	}
+	if len(v.notes) > 0 {
+		v.para("%s. What is weak about these figures stands there.", v.notes.headline())
+	}
+}
+
+// figuresBy are the options' figures on a band by one measure, in the order of the case.
+func (v *view) figuresBy(c *result.Case, band int, m *measure) []float64 {
+	xs := make([]float64, len(c.Options))
+	for i := range c.Options {
+		xs[i] = m.figure(&c.Options[i].Bands[band])
+	}
+	return xs
+}
+
 // confidence is the level of the ranges, such as 90 %.
 func (v *view) confidence() string { return share(v.c.Settings.Confidence) }
 
@@ -96,14 +152,10 @@ func (v *view) counted() {
 	if s.ApartDays > 0 {
 		events += fmt.Sprintf("; runs %s d or less apart are one event", days(s.ApartDays))
 	}
-	v.field("events", "%s. Load is the height above the level times the days spent there.", events)
+	v.field("events", "%s. Load is the height above the level times the days spent there; peak is the greatest height above it.", events)
 	v.field("ranges", "%s", v.rangesText())
-	if len(v.notes) > 0 {
-		text := v.notes.count() + ", numbered under Notes and named beside the figures: read them first"
-		if refs := v.notes.refs(nil, "", ""); refs != "" {
-			text += ". About the whole study: " + refs
-		}
-		v.field("notes", "%s.", text)
+	if v.c.Settings.DecideOn == "" && len(v.notes) > 0 {
+		v.field("notes", "%s.", v.notes.headline())
 	}
 }
 
@@ -150,14 +202,21 @@ func recordFields(p *page, r *result.Record) {
 	p.field("warm-up", "%s", warm)
 }
 
-// fewYears is the number of counted years below which the resampled ranges are known to be too narrow.
-const fewYears = 60
+// Numbers of counted years below which resampled ranges are known to be too narrow, and below which they mean little.
+// The coverage that is printed was found by simulation: see stats.Resamples.Interval.
+const (
+	fewYears     = 60
+	veryFewYears = 10
+)
 
 func (v *view) rangesText() string {
 	text := fmt.Sprintf("in brackets, at %s: events exact Poisson, years with exact binomial, days, load and changes by resampling whole years",
 		v.confidence())
-	if v.c.Record.YearsCounted < fewYears {
-		text += ". Resampled ranges from few years are too narrow: at 90 % they cover about 70 to 85 % with 20 years, 80 to 87 % with 40"
+	switch n := v.c.Record.YearsCounted; {
+	case n < veryFewYears:
+		text += ". Resampled ranges from so few years mean little"
+	case n < fewYears:
+		text += ". Resampled ranges from few years are too narrow: at 90 % they cover about 74 to 86 % with 20 years and 80 to 88 % with 40, and less where a few years hold most of it"
 	}
 	return text + ". They hold what the record's years say, not the doubt in the ground's numbers."
 }
@@ -279,26 +338,32 @@ const (
 func (v *view) exceedance(c *result.Case, band int) {
 	b := &v.c.Bands[band]
 	v.heading("%s: deep level above %s m", b.Name, metres(b.LevelM))
-	var events, load, lasting, with column
-	var refs, none []string
-	T := float64(v.c.Record.YearsCounted)
+	T := v.c.Record.YearsCounted
 	options := pointers(c)
+	if passed := slices.ContainsFunc(options, func(o *result.Option) bool { return !notPassed(&o.Bands[band]) }); !passed {
+		_, _, upper := figures(0, 0, options[0].Bands[band].EventsPerYearCI[1], leastEvents)
+		v.para("No option passes it in %s. That is not never: up to %s events a year fit this record at %s.", plural(T, "year"), upper, v.confidence())
+		return
+	}
+	var events, load, lasting, with column
+	var refs []string
 	t := table{
 		head: [][]string{
-			{"", "events", "days", "load", fmt.Sprintf("years of %d", v.c.Record.YearsCounted), "longest", "peak"},
-			{"option", "per year", "per year", "m·d per year", "(chance)", "d", "+m"},
+			{"", "events", "days", "load", fmt.Sprintf("years of %d", T), "longest", "peak"},
+			{"option", "per year", "per year", "m·d per year", "(chance, %)", "d", "+m"},
 		},
 		left: []bool{true, true, true, true, true, false, false},
 	}
 	for _, o := range options {
 		f := &o.Bands[band]
-		if f.Events == 0 && f.DaysPerYear == 0 {
-			none = append(none, v.letters[o.Name])
+		value, limits := ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents)
+		if v.notes.about("few_events", o.Name, b.Name) {
+			value = "–" // too few for a rate
 		}
-		events.add(ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents))
+		events.add(value, limits)
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
-		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*T))), percentRange(f.AnnualProbability, f.AnnualProbabilityCI))
+		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), percentRange(f.AnnualProbability, f.AnnualProbabilityCI))
 		if r := v.notes.refs(c, o.Name, b.Name); r != "" {
 			refs = append(refs, v.letters[o.Name]+" "+r)
 		}
@@ -316,17 +381,35 @@ func (v *view) exceedance(c *result.Case, band int) {
 	if len(refs) > 0 {
 		v.para("See the notes: %s.", strings.Join(refs, "; "))
 	}
-	if len(none) > 0 {
-		v.para("None in %s (%s): the upper ends in brackets remain possible. It does not mean never.",
-			plural(v.c.Record.YearsCounted, "year"), strings.Join(none, ", "))
-	}
 	v.toldApart(options, band)
+	for _, o := range options {
+		if o.Baseline && len(o.Bands[band].Spells) > 0 {
+			v.spells(o, o.Bands[band].Spells)
+		}
+	}
+}
+
+// notPassed reports whether a band is not passed at all in the years counted.
+func notPassed(f *result.BandFigure) bool { return f.Events == 0 && f.DaysPerYear == 0 }
+
+// spells lists when the baseline passed the deciding band, to be held against what is known of the slope.
+func (v *view) spells(o *result.Option, spells []result.Spell) {
+	const most = 12
+	var parts []string
+	for i, s := range spells {
+		if i == most {
+			parts = append(parts, plural(len(spells)-most, "more event"))
+			break
+		}
+		parts = append(parts, fmt.Sprintf("%s to %s (+%s)", s.From, s.To, centimetres(s.PeakExcessM)))
+	}
+	v.para("%s passed it: %s. Hold these times against what is known of the slope's movement.", v.letters[o.Name], strings.Join(parts, ", "))
 }
 
 // percentRange prints a range of shares as percentages.
 func percentRange(p float64, ci result.Interval) string {
 	_, lo, hi := figures(100*p, 100*ci[0], 100*ci[1], 0)
-	return "(" + between(lo, hi) + " %)"
+	return "(" + between(lo, hi) + ")"
 }
 
 // dropEmpty leaves out the columns whose cells are all empty.
@@ -405,7 +488,7 @@ var measures = []measure{
 	{"events", "events", "events per year", 1,
 		func(f *result.BandFigure) float64 { return f.EventsPerYear },
 		func(c *result.Change) *result.Difference { return &c.EventsPerYear }},
-	{"annual_probability", "years with", "% of years", 100,
+	{"annual_probability", "share of years", "% of years", 100,
 		func(f *result.BandFigure) float64 { return f.AnnualProbability },
 		func(c *result.Change) *result.Difference { return &c.AnnualProbability }},
 }
@@ -473,7 +556,7 @@ func (v *view) change(c *result.Case) {
 	}
 	v.rows(t, options)
 	v.para("A change below zero is an improvement. Better (same): share of the resamples. b/s/w: years better, same, worse. Told apart: the range of the change leaves out zero and the years better and worse are too uneven "+
-		"for chance (sign test at %s). Ranks follow the figures alone; the test says nothing of two options against each other: for those see the notes.", v.confidence())
+		"for chance (sign test at %s). It says that there is a change, not that it is large enough to matter. Ranks follow the figures alone. To see the change between two works, mark one of them baseline: true in the study.", v.confidence())
 
 	v.otherChanges(options, band, by)
 	v.orders(c, band, by)
@@ -535,13 +618,7 @@ func rank(o *result.Option) int {
 
 // orders says whether the measures put the options in the same order on a band.
 func (v *view) orders(c *result.Case, band int, by *measure) {
-	figures := func(m *measure) []float64 {
-		xs := make([]float64, len(c.Options))
-		for i := range c.Options {
-			xs[i] = m.figure(&c.Options[i].Bands[band])
-		}
-		return xs
-	}
+	figures := func(m *measure) []float64 { return v.figuresBy(c, band, m) }
 	base := figures(by)
 	var against []*measure
 	for i := range measures {
@@ -551,7 +628,7 @@ func (v *view) orders(c *result.Case, band int, by *measure) {
 	}
 	v.gap()
 	if len(against) == 0 {
-		v.para("Load, days, events and years with put no two options in opposite orders.")
+		v.para("Load, days, events and share of years rank the options alike.")
 		return
 	}
 	var names []string
@@ -567,14 +644,11 @@ func (v *view) orders(c *result.Case, band int, by *measure) {
 	}
 }
 
-// equal reports whether two figures are the same but for rounding in floating point.
-func equal(a, b float64) bool { return math.Abs(a-b) <= 1e-9*max(math.Abs(a), math.Abs(b)) }
-
 // disagree reports whether some pair of options stands in opposite orders by the two figures.
 func disagree(a, b []float64) bool {
 	for i := range a {
 		for j := range a {
-			if a[i] < a[j] && !equal(a[i], a[j]) && b[i] > b[j] && !equal(b[i], b[j]) {
+			if stats.Less(a[i], a[j]) && stats.Less(b[j], b[i]) {
 				return true
 			}
 		}
@@ -590,16 +664,16 @@ func (v *view) order(c *result.Case, xs []float64) string {
 	}
 	slices.SortStableFunc(index, func(a, b int) int {
 		switch {
-		case equal(xs[a], xs[b]):
-			return 0
-		case xs[a] < xs[b]:
+		case stats.Less(xs[a], xs[b]):
 			return -1
+		case stats.Less(xs[b], xs[a]):
+			return 1
 		}
-		return 1
+		return 0
 	})
 	var b strings.Builder
 	for k, i := range index {
-		if k > 0 && equal(xs[i], xs[index[k-1]]) {
+		if k > 0 && !stats.Less(xs[index[k-1]], xs[i]) {
 			b.WriteString(" = ")
 		} else if k > 0 {
 			b.WriteString(" < ")
@@ -768,7 +842,7 @@ func (v *view) balance(c *result.Case) {
 		worst = max(worst, math.Abs(o.WaterBalance.Cover.ErrorMM), math.Abs(o.WaterBalance.Deep.ErrorMM))
 	}
 	v.rows(t, options)
-	v.para("Columns that are zero for every option are left out. The balance closes over the whole record to %s mm.", closure(worst))
+	v.para("Net in: infiltration less evapotranspiration; net in and unmet demand together are what leaves and what is stored. Columns that are zero for every option are left out. The balance closes over the whole record to %s mm.", closure(worst))
 }
 
 // closure prints the error of a balance; what is left by rounding in floating point is not worth its digits.
@@ -794,7 +868,7 @@ func (v *view) settings() {
 		s.YearStarts, days(s.ApartDays), v.confidence(), s.Resamples, rate(s.BlockYears), s.Seed)
 	inputs(&v.page, v.c.Inputs)
 	if len(v.c.Defaults) > 0 {
-		v.field("defaults", "%s", strings.Join(merged(v.c.Defaults), "; "))
+		v.field("defaults", "%s", strings.Join(v.merged(v.c.Defaults), "; "))
 	}
 	if len(v.c.Declared) > 0 {
 		var parts []string
@@ -809,23 +883,22 @@ func (v *view) settings() {
 
 var indexed = regexp.MustCompile(`^([a-z_]+)\[(\d+)\]\.(.*)$`)
 
-// merged lists keys with their values; those that differ only in the number of the option or band share an entry, as in
-// options[1-3,5].trench_drains.law linear.
-func merged(keys []result.KeyValue) []string {
+// merged lists keys with their values. Those that differ only in the option or band share an entry, as in
+// B, C, H: trench_drains.law linear. Which option is no baseline is said with the options.
+func (v *view) merged(keys []result.KeyValue) []string {
 	type entry struct {
 		list, rest, value string
-		at                []int
+		at                []string
 	}
 	var entries []entry
 	for _, k := range keys {
-		if strings.HasPrefix(k.Key, "declared.") { // listed by themselves
+		if strings.HasPrefix(k.Key, "declared.") || strings.HasSuffix(k.Key, "].baseline") { // said elsewhere
 			continue
 		}
 		e := entry{rest: k.Key, value: k.Value}
 		if m := indexed.FindStringSubmatch(k.Key); m != nil {
-			n, err := strconv.Atoi(m[2])
-			if err == nil {
-				e = entry{m[1], m[3], k.Value, []int{n}}
+			if n, err := strconv.Atoi(m[2]); err == nil {
+				e = entry{m[1], m[3], k.Value, []string{v.nameOf(m[1], n)}}
 			}
 		}
 		same := func(o entry) bool { return e.list != "" && o.list == e.list && o.rest == e.rest && o.value == e.value }
@@ -839,11 +912,22 @@ func merged(keys []result.KeyValue) []string {
 	for _, e := range entries {
 		text := e.rest + " " + e.value
 		if e.list != "" {
-			text = fmt.Sprintf("%s[%s].%s", e.list, numbers(e.at), text)
+			text = strings.Join(e.at, ", ") + ": " + text
 		}
 		texts = append(texts, text)
 	}
 	return texts
+}
+
+// nameOf is how the text calls item n of a list of the study.
+func (v *view) nameOf(list string, n int) string {
+	switch {
+	case list == "options":
+		return letter(n)
+	case list == "bands" && n < len(v.c.Bands):
+		return v.c.Bands[n].Name
+	}
+	return fmt.Sprintf("%s[%d]", list, n)
 }
 
 // shortHash is how many hex digits of a hash are enough to tell two files apart by eye.

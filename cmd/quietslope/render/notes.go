@@ -56,6 +56,33 @@ func (ns notes) count() string {
 	return plural(warn, "warning") + " and " + plural(remarks, "remark")
 }
 
+// headline says how many notes there are and where.
+func (ns notes) headline() string {
+	text := ns.count() + ", numbered under Notes and named beside the figures"
+	if refs := ns.refs(nil, "", ""); refs != "" {
+		text += "; about the whole study: " + refs
+	}
+	return text
+}
+
+// about reports whether there is a warning of this code about an option on a band.
+func (ns notes) about(code, option, band string) bool {
+	return slices.ContainsFunc(ns, func(n note) bool {
+		return n.first.Code == code && slices.ContainsFunc(n.places, func(w result.Warning) bool { return w.Option == option && w.Band == band })
+	})
+}
+
+// numbers are the numbers of the notes with a code, for print.
+func (ns notes) numbers(code string) string {
+	var found []int
+	for i, n := range ns {
+		if n.first.Code == code {
+			found = append(found, i+1)
+		}
+	}
+	return numbers(found)
+}
+
 // refs lists the numbers of the notes about exactly this option and band, either of which may be "", in this case.
 func (ns notes) refs(c *result.Case, option, band string) string {
 	var found []int
@@ -101,18 +128,36 @@ func (ns notes) write(p *page, letter func(string) string) {
 		if n.first.Severity == result.Warn {
 			kind = "WARNING"
 		}
-		var of []string
-		for _, w := range n.places {
-			if about := place(w, letter); about != "" && !slices.Contains(of, about) {
-				of = append(of, about)
-			}
-		}
+		of := n.about(letter)
 		text := kind
 		if len(of) > 0 {
 			text += ", " + strings.Join(of, "; ")
 		}
 		p.hang(fmt.Sprintf("%3d", i+1), 5, text+": "+n.first.Text)
 	}
+}
+
+// about says what a note is about: the options of each band, or what else it names.
+func (n note) about(letter func(string) string) []string {
+	var of, bands []string
+	options := map[string][]string{} // letters, by band
+	for _, w := range n.places {
+		switch {
+		case w.Band != "" && w.Option != "" && w.Climate+w.Condition == "":
+			if !slices.Contains(bands, w.Band) {
+				bands = append(bands, w.Band)
+			}
+			options[w.Band] = append(options[w.Band], letter(w.Option))
+		default:
+			if text := place(w, letter); text != "" && !slices.Contains(of, text) {
+				of = append(of, text)
+			}
+		}
+	}
+	for _, b := range bands {
+		of = append(of, b+" "+strings.Join(options[b], ", "))
+	}
+	return of
 }
 
 // place says what a warning is about.

@@ -14,14 +14,14 @@ const most = 3
 
 // figures rounds a figure and the ends of its range together, so that none has more digits than the range supports.
 //
-// The last digit kept is worth at most a fifth of the width of the range, and more than a fiftieth of it; the largest
+// The last digit kept is worth at most an eighth of the width of the range, and more than an eightieth of it; the largest
 // of the three numbers gets at most three significant digits. A number that would vanish keeps its first digit, down
 // to 10^least; one below that, or smaller than the last digit by more than two places, is given as a bound ("<0.01"), so
 // that only an exact zero reads "0". A range without width gives three significant digits.
 func figures(value, lo, hi float64, least int) (v, l, h string) {
 	last := exponent(max(math.Abs(value), math.Abs(lo), math.Abs(hi))) - (most - 1)
 	if width := hi - lo; width > 0 {
-		last = max(last, exponent(width/5))
+		last = max(last, exponent(width/8))
 	}
 	last = max(last, least)
 	least = max(least, last-2)
@@ -140,7 +140,7 @@ func depth(mm float64) string {
 	case a >= 0.05:
 		return strconv.FormatFloat(mm, 'f', 1, 64)
 	case mm < 0:
-		return ">-0.1"
+		return "0"
 	}
 	return "<0.1"
 }
