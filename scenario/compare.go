@@ -37,7 +37,11 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	}
 	p := &prepared{study: s, record: record}
 	for i := range s.Options {
-		p.works = append(p.works, newWorks(s, &s.Options[i]))
+		w := newWorks(s, &s.Options[i])
+		if err := w.check(s); err != nil {
+			return nil, err
+		}
+		p.works = append(p.works, w)
 		if s.Options[i].Baseline {
 			p.baseline = i
 		}

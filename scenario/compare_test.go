@@ -4,6 +4,8 @@ import (
 	"context"
 	"encoding/csv"
 	"encoding/json"
+	"errors"
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"os"
@@ -17,6 +19,8 @@ import (
 	"github.com/google/go-cmp/cmp"
 	"pgregory.net/rapid"
 
+	"quietslope/cascade"
+	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
 )
@@ -408,11 +412,85 @@ func TestDryOptionBalances(t *testing.T) {
 	}
 }
 
+// TestAnyLegalStudyRuns: whatever a legal study says, it is compared, or refused as bad input. It is no fault of ours.
+func TestAnyLegalStudyRuns(t *testing.T) {
+	dir := t.TempDir()
+	var b strings.Builder
+	b.WriteString("date,rain_mm,pet_mm\n")
+	r := invented(11, 3)
+	for i := range r.Rain {
+		fmt.Fprintf(&b, "%s,%.1f,%.2f\n", r.Start(i).Format(time.DateOnly), r.Rain[i], r.PET[i])
+	}
+	path := filepath.Join(dir, "weather.csv")
+	if err := os.WriteFile(path, []byte(b.String()), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	rapid.Check(t, func(t *rapid.T) {
+		some := func(name string, xs ...float64) float64 { return rapid.SampledFrom(xs).Draw(t, name) }
+		inf := math.Inf(1)
+		s := ground(
+			Option{Name: "trenches", Measures: []Measure{{Key: "trench_drains", Trench: &TrenchDrains{
+				Depth: some("depth", 0.1, 2, 4), Spacing: some("spacing", 1e-300, 1e-3, 1, 12, 1000), Conductivity: 0.04,
+				Equivalent: some("equivalent", 0, 0.8), Efficiency: some("efficiency", 0, 0.5, 1), Ceiling: some("ceiling", 1e-5, 2, inf)}}}},
+			Option{Name: "bores", Measures: []Measure{{Key: "bored_drains", Bored: &BoredDrains{
+				Rate: some("rate", 1e-300, 1e-3, 1, 1e6), Level: some("level", 0, 3, 9), Efficiency: 1, Ceiling: some("bored ceiling", 1e-5, 2, inf)}}}},
+			Option{Name: "dry", Measures: []Measure{{Key: "surface_water", Cut: &SurfaceWater{KeptOut: some("kept out", 0, 0.5, 0.9, 1)}}}},
+		)
+		s.Weather = WeatherSpec{File: "weather.csv", Path: path, Time: "date", Format: "YYYY-MM-DD", Rain: WeatherColumn{"rain_mm", "mm"}}
+		if rapid.Bool().Draw(t, "pet") {
+			s.Weather.PET = &WeatherColumn{"pet_mm", "mm"}
+		}
+		g := &s.Ground
+		if s.Weather.PET == nil || rapid.Bool().Draw(t, "no soil") {
+			g.Soil = nil
+		} else {
+			g.Soil = &Soil{Available: some("available", 1e-9, 10, 300), Readily: some("readily", 0, 0.5, 0.95), CropFactor: some("crop factor", 0, 1, 5)}
+		}
+		g.Infiltration, g.InfiltrationLimit = some("infiltration", 0, 1e-6, 0.05, 0.3, 1), some("limit", 0.01, 2, inf)
+		g.CoverThickness, g.CoverPorosity = some("cover thickness", 4, 300), some("cover porosity", 1e-5, 0.06, 1)
+		g.CoverSeepage, g.Percolation = some("seepage", 0, 1e-4, 0.01, 1e6), some("percolation", 1e-4, 0.005, 1e6)
+		g.PercolationCap = some("percolation ceiling", 1e-5, 1, inf)
+		g.CoverFullAt = some("cover full at", g.CoverThickness, g.CoverThickness/2, inf)
+		g.DeepPorosity, g.DeepSeepage, g.Lateral = some("deep porosity", 1e-5, 0.014, 1), some("deep seepage", 1e-5, 1e-3, 0.1, 1e6), some("lateral", 0, 0.1, 1e5)
+		g.DeepFullAt = some("deep full at", 9, 3, inf)
+		g.WarmUpYears = int(some("warm-up", -1, 0, 1, 8))
+		if rapid.Bool().Draw(t, "start given") {
+			g.Start = &StartLevels{Cover: some("start cover", 0, min(1, g.CoverFullAt)), Deep: some("start deep", 0, 3)}
+		}
+		s.Bands[0].Level = some("band", 1e-3, 1, 2.9)
+		s.Bands[0].Until = s.Bands[0].Level * some("until", 0, 0.5, 1)
+		s.Count.Apart = some("apart", 0, 10, 3660)
+		s.Count.Resamples = 100
+
+		for name, run := range map[string]func() error{
+			"compare": func() error {
+				c, err := Compare(context.Background(), s)
+				if err == nil {
+					_, err = json.Marshal(c) // refuses NaN and infinity
+				}
+				return err
+			},
+			"check": func() error {
+				c, err := Check(context.Background(), s)
+				if err == nil {
+					_, err = json.Marshal(c)
+				}
+				return err
+			},
+		} {
+			var fe *fault.Error
+			if err := run(); err != nil && !errors.As(err, &fe) {
+				t.Fatalf("%s: %v", name, err)
+			}
+		}
+	})
+}
+
 // TestBrokenBalanceIsRefused: water that does not add up is not reported as a result.
 func TestBrokenBalanceIsRefused(t *testing.T) {
 	s := ground()
 	tr := deepLevels(t, s, 0, invented(3, 1))
-	if err := tr.checkBalance(); err != nil {
+	if err := tr.checkBalance(&cascade.Totals{}); err != nil {
 		t.Fatal(err)
 	}
 	for name, spoil := range map[string]func(*trace){
@@ -421,7 +499,7 @@ func TestBrokenBalanceIsRefused(t *testing.T) {
 	} {
 		spoilt := *tr
 		spoil(&spoilt)
-		if err := spoilt.checkBalance(); err == nil || !strings.Contains(err.Error(), name+" store") {
+		if err := spoilt.checkBalance(&cascade.Totals{}); err == nil || !strings.Contains(err.Error(), name+" store") {
 			t.Errorf("%s: %v", name, err)
 		}
 	}

@@ -411,10 +411,9 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		var whole int64
 		whole, err = quantity.ParseWhole(n.text)
 		v.num = float64(whole)
-	case formQuantity:
+	case formQuantity, formYears:
 		v.num, err = quantity.Parse(n.text, s.kind)
-	case formYears:
-		if v.num, err = quantity.Parse(n.text, s.kind); err != nil {
+		if inYears := s.form == formYears || s.kind == quantity.Duration && s.limits.lo >= 365; err != nil && inYears {
 			meant := "4"
 			if x, err := quantity.ParseWhole(n.text); err == nil {
 				meant = quantity.FormatNumber(float64(x))

@@ -106,7 +106,7 @@ func (q *LevelsQuery) cut(r *weather.Record, stampEnd bool) (lo, hi int, err err
 		if stampEnd {
 			t = t.Add(-r.Step)
 		}
-		return min(max(firstStepAt(r, t), 0), n)
+		return min(max(r.FirstFrom(t), 0), n)
 	}
 	lo, hi = 0, n
 	if q.From != "" {

@@ -6,6 +6,8 @@ import (
 	"strings"
 	"unicode"
 	"unicode/utf8"
+
+	"golang.org/x/text/unicode/norm"
 )
 
 // longestName is the largest number of characters of a name.
@@ -36,15 +38,19 @@ func checkName(name string) string {
 	return ""
 }
 
-// foldKey maps names that differ only in case to one text.
+// foldKey maps names to one text that differ only in case, in characters that nobody sees, or in how the same characters
+// are encoded.
 func foldKey(name string) string {
 	return strings.Map(func(r rune) rune {
+		if unicode.Is(unicode.Cf, r) {
+			return -1
+		}
 		least := r
 		for f := unicode.SimpleFold(r); f != r; f = unicode.SimpleFold(f) {
 			least = min(least, f)
 		}
 		return unicode.ToLower(least)
-	}, name)
+	}, norm.NFKC.String(name))
 }
 
 // quoted quotes a text of the user for a message and cuts a long one.

@@ -18,18 +18,6 @@ type period struct {
 	calendar stats.Calendar
 }
 
-// firstStepAt is the index of the first step of the record that starts at t or later. It may be negative or beyond the
-// record.
-func firstStepAt(r *weather.Record, t time.Time) int {
-	// In seconds: a time.Duration holds 292 years only.
-	d, step := t.Unix()-r.First.Unix(), int64(r.Step/time.Second)
-	n := d / step
-	if d > 0 && d%step != 0 {
-		n++
-	}
-	return int(n)
-}
-
 // yearOf is the first day of the year that begins in the given month.
 func yearOf(year int, starts time.Month, r *weather.Record) time.Time {
 	return time.Date(year, starts, 1, 0, 0, 0, 0, r.First.Location())
@@ -40,8 +28,8 @@ func countYears(r *weather.Record, starts time.Month) period {
 	p := period{starts: starts}
 	n := len(r.Rain)
 	for year := r.First.Year() - 1; ; year++ {
-		from := firstStepAt(r, yearOf(year, starts, r))
-		to := firstStepAt(r, yearOf(year+1, starts, r))
+		from := r.FirstFrom(yearOf(year, starts, r))
+		to := r.FirstFrom(yearOf(year+1, starts, r))
 		if to > n {
 			break
 		}
@@ -100,7 +88,7 @@ func months(r *weather.Record) []monthSteps {
 	var ms []monthSteps
 	n := len(r.Rain)
 	for t := time.Date(r.First.Year(), r.First.Month(), 1, 0, 0, 0, 0, r.First.Location()); ; t = t.AddDate(0, 1, 0) {
-		from, to := firstStepAt(r, t), firstStepAt(r, t.AddDate(0, 1, 0))
+		from, to := r.FirstFrom(t), r.FirstFrom(t.AddDate(0, 1, 0))
 		if from >= n {
 			return ms
 		}
@@ -142,7 +130,7 @@ func noCompleteYear(s *Study, r *weather.Record, starts time.Month) error {
 	n := len(r.Rain)
 	best, most := 0, -1
 	for year := r.First.Year() - 1; year <= r.Start(n-1).Year(); year++ {
-		from, to := firstStepAt(r, yearOf(year, starts, r)), firstStepAt(r, yearOf(year+1, starts, r))
+		from, to := r.FirstFrom(yearOf(year, starts, r)), r.FirstFrom(yearOf(year+1, starts, r))
 		if present := min(to, n) - max(from, 0); present > most {
 			best, most = year, present
 		}
@@ -189,7 +177,7 @@ func wholeYears(r *weather.Record) (ends []int) {
 		if t.Day() != r.First.Day() {
 			t = t.AddDate(0, 0, -t.Day())
 		}
-		end := firstStepAt(r, t)
+		end := r.FirstFrom(t)
 		if end > len(r.Rain) {
 			return ends
 		}

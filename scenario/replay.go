@@ -79,6 +79,9 @@ type replayer struct {
 // begin works out the water that reaches one option's cover over the record, and replays the warm-up up to its first
 // step. counted is the stretch over which actual evapotranspiration is added up.
 func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace, *cascade.Run, error) {
+	if err := w.model.Check(); err != nil {
+		return nil, nil, p.study.Fault(w.option.Place, "the two stores of this option cannot be replayed: %v", err)
+	}
 	t := &trace{works: w, recharge: make([]float64, len(p.record.Rain))}
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
@@ -143,7 +146,7 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 	}
 	t.whole = t.whole.Sub(origin)
 	t.counted = to.Sub(from)
-	if err := t.checkBalance(); err != nil {
+	if err := t.checkBalance(&origin); err != nil {
 		return nil, err
 	}
 
@@ -206,7 +209,7 @@ func (p *replayer) startStorages(w *works, recharge []float64) (cover, deep floa
 func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*cascade.Run, error) {
 	run, err := cascade.NewRun(w.model, cover, deep)
 	if err != nil {
-		return nil, p.study.Fault(w.option.Place, "%v", err)
+		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
 	supply := newSupply(&w.ground, w.keptOut, p.record)
 	n := p.longestPass()
@@ -227,9 +230,10 @@ func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*
 // storage, or of 1 mm where both are less.
 const balanceTolerance = 1e-9
 
-// checkBalance refuses a replay whose water does not add up: the fault would be ours. Called while levels are storages.
-func (t *trace) checkBalance() error {
-	in := 0.0
+// checkBalance refuses a replay whose water does not add up: the fault would be ours. It is called while levels are
+// storages. What passed in the warm-up counts as entered, since the sums have run through it.
+func (t *trace) checkBalance(warmUp *cascade.Totals) error {
+	in := math.Abs(warmUp.Cover.In) + warmUp.Cover.Unmet
 	for _, depth := range t.recharge {
 		in += math.Abs(depth)
 	}
@@ -239,7 +243,7 @@ func (t *trace) checkBalance() error {
 		largest float64
 	}{
 		{"cover", t.whole.Cover.Error(), in, largest(t.cover)},
-		{"deep", t.whole.Deep.Error(), t.whole.Deep.In + t.whole.Deep.Lateral, largest(t.deep)},
+		{"deep", t.whole.Deep.Error(), warmUp.Deep.In + warmUp.Deep.Lateral + t.whole.Deep.In + t.whole.Deep.Lateral, largest(t.deep)},
 	} {
 		if !(math.Abs(store.err) <= balanceTolerance*max(1, store.in+store.largest)) {
 			return fmt.Errorf("option %q: the water balance of the %s store is off by %g mm; this is a fault of the program, please report it",

@@ -212,6 +212,13 @@ func (p *prepared) recordWarnings(ws *warnings) {
 	case n < shortRecordYears:
 		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
 	}
+	for _, q := range p.record.Implausible() {
+		at := q.From
+		if q.To != q.From {
+			at += " to " + q.To
+		}
+		ws.add(warn("implausible_weather"), "%s: %s. Every figure rests on it.", at, q.Text)
+	}
 	if p.replayer.warm.repeats {
 		ws.add(note("warm_up_repeats_record"), "The warm-up of %s is longer than the record, which was replayed from its beginning more than once to fill it.", plural(p.replayer.warm.years, "year"))
 	}
@@ -336,6 +343,9 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 			case f.Events == 0 && f.DaysPerYear == 0:
 				ws.add(at, "None in %s, which is not never: up to %s events a year fit this record at %s %%.",
 					plural(p.counted.years, "year"), roundUp(f.EventsPerYearCI[1]), short(100*p.study.Count.Confidence))
+			case f.Events == 0:
+				at.Code = "events_peak_outside"
+				ws.add(at, "Passed on %s d a year, in events that peak outside the counted years, so that none of them is counted. Read days and load.", short(math.Round(10*f.DaysPerYear)/10))
 			case f.Events < fewEvents:
 				at.Code = "few_events"
 				ws.add(at, "Fewer than %d events, too few for a rate; read the ranges.", fewEvents)

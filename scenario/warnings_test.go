@@ -35,6 +35,9 @@ func quiet() *prepared {
 	s.Bands[0].Until = 2
 	r := record("1990-01-01T00:00", time.Hour, 100)
 	r.PET = make([]float64, 100)
+	for i := range 100 {
+		r.Rain[i], r.PET[i] = 0.1, 0.08
+	}
 	p := &prepared{
 		study: s, record: r, replayer: &replayer{},
 		counted: period{years: shortRecordYears, to: 100},
@@ -113,6 +116,11 @@ func TestStudyWarnings(t *testing.T) {
 		{"conductivity in m/s taken for m/d", func(p *prepared) { p.study.Ground.CoverConductivity = 1e-7 }, []string{"implausible_ground"}},
 		{"deep as fast as the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.0155 }, nil},
 		{"deep faster than the cover", func(p *prepared) { p.study.Ground.DeepSeepage = 0.01551 }, []string{"deep_faster_than_cover"}},
+		{"rain in the wrong unit", func(p *prepared) {
+			for i := range p.record.Rain {
+				p.record.Rain[i] *= 10
+			}
+		}, []string{"implausible_weather"}},
 		{"29 years", func(p *prepared) { p.counted.years = 29 }, []string{"record_short"}},
 		{"9 years", func(p *prepared) { p.counted.years = 9 }, []string{"record_short"}},
 		{"band at ground", func(p *prepared) {
@@ -252,7 +260,7 @@ func TestCountWarnings(t *testing.T) {
 		{"told apart", yearly("works", false, in(5, 1), in(5, 10)), nil},
 		{"four events", yearly("works", false, in(4, 1), in(4, 10)), []string{"few_events"}},
 		{"none", yearly("works", false, in(0, 1), in(0, 10)), []string{"no_events"}},
-		{"days but no counted event", yearly("works", false, in(0, 1), in(1, 10)), []string{"few_events"}},
+		{"days but no counted event", yearly("works", false, in(0, 1), in(1, 10)), []string{"events_peak_outside"}},
 		{"the same", yearly("works", false, in(20, 1), in(20, 20)), []string{"not_told_apart"}},
 		{"better in four years only", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(4, 5)(y) }), []string{"not_told_apart"}},
 		{"better in five", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(5, 5)(y) }), nil},

@@ -26,9 +26,20 @@ type works struct {
 	model   cascade.Model
 }
 
+// check refuses a drain whose rate, worked out from its spacing, is beyond what can be replayed.
+func (w *works) check(s *Study) error {
+	for _, d := range w.drains {
+		if !(d.rate <= maxRate) {
+			return s.Fault(d.place, "the drains work out at %s /d, more than %d /d; check spacing, conductivity and drainable_porosity, and their units", short(d.rate), int(maxRate))
+		}
+	}
+	return nil
+}
+
 // drainage is one drain of an option.
 type drainage struct {
 	measure string // as in the study
+	place   Place
 	layer   string
 	rate    float64 // 1/d, after efficiency
 	invert  float64 // m above the base of its layer
@@ -57,9 +68,9 @@ func newWorks(s *Study, o *Option) *works {
 	for _, m := range o.Measures {
 		switch {
 		case m.Trench != nil:
-			w.addDrain(trench(m, g))
+			w.addDrain(m, trench(m, g))
 		case m.Bored != nil:
-			w.addDrain(bored(m))
+			w.addDrain(m, bored(m))
 		case m.Cut != nil:
 			enters *= 1 - m.Cut.KeptOut
 		}
@@ -71,7 +82,8 @@ func newWorks(s *Study, o *Option) *works {
 // storage is the drainable water in mm below a level in m.
 func storage(level, porosity float64) float64 { return 1000 * porosity * level }
 
-func (w *works) addDrain(d drainage) {
+func (w *works) addDrain(m Measure, d drainage) {
+	d.measure, d.place = m.Key, m.Place
 	store, porosity := &w.model.Cover, w.ground.CoverPorosity
 	if d.layer == inDeep {
 		store, porosity = &w.model.Deep, w.ground.DeepPorosity
@@ -88,7 +100,7 @@ func (w *works) addDrain(d drainage) {
 // the head being half of the trench's depth.
 func trench(m Measure, g *Ground) drainage {
 	t := m.Trench
-	d := drainage{measure: m.Key, layer: inCover, ceiling: t.Ceiling, invert: max(0, g.CoverThickness-t.Depth)}
+	d := drainage{layer: inCover, ceiling: t.Ceiling, invert: max(0, g.CoverThickness-t.Depth)}
 	if t.Spacing == 0 {
 		d.rate = t.Efficiency * t.Rate
 		d.from = "as given" + timesEfficiency(t.Efficiency)
@@ -113,7 +125,7 @@ func trench(m Measure, g *Ground) drainage {
 func bored(m Measure) drainage {
 	b := m.Bored
 	return drainage{
-		measure: m.Key, layer: inDeep, rate: b.Efficiency * b.Rate, invert: b.Level, ceiling: b.Ceiling,
+		layer: inDeep, rate: b.Efficiency * b.Rate, invert: b.Level, ceiling: b.Ceiling,
 		from: "as given" + timesEfficiency(b.Efficiency),
 	}
 }

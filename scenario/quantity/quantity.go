@@ -381,7 +381,7 @@ func ParseWhole(text string) (int64, error) {
 		return 0, fmt.Errorf("%s is not a whole number", quote(text))
 	}
 	if math.Abs(v) > largestWhole {
-		return 0, fmt.Errorf("%s is too large; whole numbers go up to %d", quote(text), largestWhole)
+		return 0, fmt.Errorf("%s is too large; whole numbers go up to %d", quote(text), int64(largestWhole))
 	}
 	if strings.ContainsAny(text, ".eE") {
 		return 0, fmt.Errorf("%s: a whole number is written in digits only; write %d", quote(text), int64(v))

@@ -204,8 +204,7 @@ func (t *total) value() float64 { return t.sum + t.lost }
 
 // firstAt returns the first step from i+1 on that does not start before t, at most the number of steps.
 func (a *auditor) firstAt(t time.Time, i int) int {
-	n := int((t.Sub(a.Start(i)) + a.Step - 1) / a.Step)
-	return min(i+max(n, 1), len(a.Rain))
+	return min(max(a.FirstFrom(t), i+1), len(a.Rain))
 }
 
 func sameMonth(a, b time.Time) bool { return a.Year() == b.Year() && a.Month() == b.Month() }

@@ -48,6 +48,16 @@ func (r *Record) Start(i int) time.Time {
 	return time.Unix(r.First.Unix()+int64(i)*int64(r.Step/time.Second), 0).In(r.First.Location())
 }
 
+// FirstFrom is the first step that starts at t or later. It may lie before the record (negative) or behind it.
+func (r *Record) FirstFrom(t time.Time) int {
+	d, step := t.Unix()-r.First.Unix(), int64(r.Step/time.Second)
+	n := d / step
+	if d > 0 && d%step != 0 {
+		n++
+	}
+	return int(n)
+}
+
 // Days is the length of a step in days.
 func (r *Record) Days() float64 { return r.Step.Hours() / 24 }
 

@@ -357,8 +357,12 @@ func (v *view) exceedance(c *result.Case, band int) {
 	for _, o := range options {
 		f := &o.Bands[band]
 		value, limits := ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents)
-		if v.notes.about("few_events", o.Name, b.Name) {
+		uncounted := v.notes.about("events_peak_outside", o.Name, b.Name)
+		if uncounted || v.notes.about("few_events", o.Name, b.Name) {
 			value = "–" // too few for a rate
+		}
+		if uncounted {
+			limits = ""
 		}
 		events.add(value, limits)
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
@@ -370,12 +374,14 @@ func (v *view) exceedance(c *result.Case, band int) {
 	}
 	for i, o := range options {
 		f := &o.Bands[band]
-		peak := "–"
+		peak, longest := "–", days(f.LongestDays)
 		if f.PeakExcessM != nil {
 			peak = centimetres(*f.PeakExcessM)
 		}
-		t.rows = append(t.rows, []string{"", events.cells()[i], lasting.cells()[i], load.cells()[i], with.cells()[i],
-			days(f.LongestDays), peak})
+		if f.Events == 0 && f.DaysPerYear > 0 {
+			longest = "–"
+		}
+		t.rows = append(t.rows, []string{"", events.cells()[i], lasting.cells()[i], load.cells()[i], with.cells()[i], longest, peak})
 	}
 	v.rows(t, options)
 	if len(refs) > 0 {
