@@ -4,7 +4,6 @@ import (
 	"context"
 	"math"
 	"path/filepath"
-	"slices"
 	"time"
 
 	"quietslope/scenario/result"
@@ -95,14 +94,16 @@ func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
 
 	options := make([]optionFigures, len(p.works))
 	err = each(len(p.works), func(i int) error {
-		t := p.base
-		if i != p.baseline {
-			var err error
-			if t, err = p.replayer.replay(ctx, p.works[i], p.counted); err != nil {
-				return err
-			}
+		if i == p.baseline {
+			options[i] = p.figures(p.base)
+			return nil
+		}
+		t, err := p.replayer.replay(ctx, p.works[i], p.counted)
+		if err != nil {
+			return err
 		}
 		options[i] = p.figures(t)
+		p.replayer.drop(t)
 		return nil
 	})
 	if err != nil {
@@ -168,7 +169,7 @@ func (p *prepared) figures(t *trace) optionFigures {
 		Name: w.option.Name, Baseline: w.option.Baseline, Measures: w.option.describe(), Rates: w.rates(),
 		Drains:            []result.Drain{},
 		RechargeMMPerYear: total(t.recharge[from:to]) / years,
-		Level:             levelFigures(t.deep[from:to]),
+		Level:             p.levelFigures(t),
 		WaterBalance:      t.balance(),
 		Bands:             []result.BandFigure{},
 	}
@@ -214,8 +215,11 @@ func (p *prepared) threshold(i int) stats.Threshold {
 	return th
 }
 
-func levelFigures(levels []float64) result.Level {
-	q := stats.Quantiles(slices.Clone(levels), 0.50, 0.95, 0.99)
+func (p *prepared) levelFigures(t *trace) result.Level {
+	levels := t.deep[p.counted.from:p.counted.to]
+	spare := p.replayer.newTrace(t.works)
+	defer p.replayer.drop(spare)
+	q := stats.Quantiles(append(spare.deep[:0], levels...), 0.50, 0.95, 0.99)
 	return result.Level{MeanM: total(levels) / float64(len(levels)), MaxM: largest(levels), Q50M: q[0], Q95M: q[1], Q99M: q[2]}
 }
 
@@ -226,14 +230,14 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 	if d.layer == inDeep {
 		levels, porosity, carried = t.deep, w.ground.DeepPorosity, t.counted.Deep.Drains
 	}
-	running, peak := 0, 0.0
+	running := 0
 	counted := levels[p.counted.from:p.counted.to]
 	for _, h := range counted {
 		if h > d.invert {
 			running++
 		}
-		peak = max(peak, outlet.Flow(storage(h, porosity)))
 	}
+	peak := outlet.Flow(storage(largest(counted), porosity)) // a higher level never carries less
 	f := result.Drain{
 		Measure: d.measure, Layer: d.layer, RatePerDay: d.rate, InvertM: d.invert, CeilingMMPerDay: finite(d.ceiling),
 		Law: "linear", RunningShare: float64(running) / float64(len(counted)),

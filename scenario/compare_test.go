@@ -490,7 +490,7 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 func TestBrokenBalanceIsRefused(t *testing.T) {
 	s := ground()
 	tr := deepLevels(t, s, 0, invented(3, 1))
-	if err := tr.checkBalance(&cascade.Totals{}); err != nil {
+	if err := tr.checkBalance(&cascade.Totals{}, 100, 100); err != nil {
 		t.Fatal(err)
 	}
 	for name, spoil := range map[string]func(*trace){
@@ -499,7 +499,7 @@ func TestBrokenBalanceIsRefused(t *testing.T) {
 	} {
 		spoilt := *tr
 		spoil(&spoilt)
-		if err := spoilt.checkBalance(&cascade.Totals{}); err == nil || !strings.Contains(err.Error(), name+" store") {
+		if err := spoilt.checkBalance(&cascade.Totals{}, 100, 100); err == nil || !strings.Contains(err.Error(), name+" store") {
 			t.Errorf("%s: %v", name, err)
 		}
 	}

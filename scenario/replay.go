@@ -64,6 +64,8 @@ type trace struct {
 	deep     []float64 // end-of-step level, m above the base of the deep layer
 	actualET float64   // over the counted years, mm; 0 without a soil
 	start    StartLevels
+	coverMax float64 // highest levels over the record, m
+	deepMax  float64
 	fromDry  float64 // |difference| of the deep level at the first counted step when the replay starts dry, m
 
 	whole, counted cascade.Totals // over the record after the warm-up, and over the counted years
@@ -74,6 +76,30 @@ type replayer struct {
 	study  *Study
 	record *weather.Record
 	warm   warmUp
+
+	mu    sync.Mutex
+	spare []*trace // traces that nobody needs any more, for their series
+}
+
+// newTrace returns a trace for an option, with series that may hold anything. The series of a dropped trace serve again:
+// fresh memory for every option of a long record would cost more time than the replay.
+func (p *replayer) newTrace(w *works) *trace {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if last := len(p.spare) - 1; last >= 0 {
+		old := p.spare[last]
+		p.spare = p.spare[:last]
+		return &trace{works: w, recharge: old.recharge, cover: old.cover, deep: old.deep}
+	}
+	n := len(p.record.Rain)
+	return &trace{works: w, recharge: make([]float64, n), cover: make([]float64, n), deep: make([]float64, n)}
+}
+
+// drop gives up a trace, whose series another option may then use.
+func (p *replayer) drop(t *trace) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	p.spare = append(p.spare, t)
 }
 
 // begin works out the water that reaches one option's cover over the record, and replays the warm-up up to its first
@@ -82,7 +108,7 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace,
 	if err := w.model.Check(); err != nil {
 		return nil, nil, p.study.Fault(w.option.Place, "the two stores of this option cannot be replayed: %v", err)
 	}
-	t := &trace{works: w, recharge: make([]float64, len(p.record.Rain))}
+	t := p.newTrace(w)
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
 	early := newSupply(&w.ground, w.keptOut, p.record)
@@ -113,11 +139,12 @@ func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error
 	if err != nil {
 		return 0, err
 	}
-	deep := make([]float64, len(t.recharge))
-	if err := run.Replay(t.recharge, p.record.Days(), nil, deep); err != nil {
+	if err := run.Replay(t.recharge, p.record.Days(), nil, t.deep); err != nil {
 		return 0, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
-	return lowestMonth(p.record, deep), nil
+	month := lowestMonth(p.record, t.deep)
+	p.drop(t)
+	return month, nil
 }
 
 // replay runs one option through the warm-up and the record.
@@ -127,7 +154,6 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 		return nil, err
 	}
 	n := len(t.recharge)
-	t.cover, t.deep = make([]float64, n), make([]float64, n)
 	origin := run.Totals()
 	var from, to cascade.Totals
 	parts := []struct {
@@ -146,7 +172,8 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 	}
 	t.whole = t.whole.Sub(origin)
 	t.counted = to.Sub(from)
-	if err := t.checkBalance(&origin); err != nil {
+	coverMax, deepMax := largest(t.cover), largest(t.deep)
+	if err := t.checkBalance(&origin, coverMax, deepMax); err != nil {
 		return nil, err
 	}
 
@@ -161,15 +188,17 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 	}
 	t.fromDry = math.Abs(t.deep[first-1]-drained[first-1]) / storage(1, w.ground.DeepPorosity)
 
-	toLevels(t.cover, w.ground.CoverPorosity)
-	toLevels(t.deep, w.ground.DeepPorosity)
+	metreOfCover, metreOfDeep := storage(1, w.ground.CoverPorosity), storage(1, w.ground.DeepPorosity)
+	toLevels(t.cover, metreOfCover)
+	toLevels(t.deep, metreOfDeep)
+	t.coverMax, t.deepMax = coverMax/metreOfCover, deepMax/metreOfDeep
 	return t, nil
 }
 
-// toLevels turns storages in mm into levels in m.
-func toLevels(storages []float64, porosity float64) {
+// toLevels turns storages in mm into levels in m, of which each holds so many mm.
+func toLevels(storages []float64, perMetre float64) {
 	for i, s := range storages {
-		storages[i] = s / storage(1, porosity)
+		storages[i] = s / perMetre
 	}
 }
 
@@ -230,9 +259,9 @@ func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*
 // storage, or of 1 mm where both are less.
 const balanceTolerance = 1e-9
 
-// checkBalance refuses a replay whose water does not add up: the fault would be ours. It is called while levels are
-// storages. What passed in the warm-up counts as entered, since the sums have run through it.
-func (t *trace) checkBalance(warmUp *cascade.Totals) error {
+// checkBalance refuses a replay whose water does not add up: the fault would be ours. The largest storages are in mm. What
+// passed in the warm-up counts as entered, since the sums have run through it.
+func (t *trace) checkBalance(warmUp *cascade.Totals, coverMax, deepMax float64) error {
 	in := math.Abs(warmUp.Cover.In) + warmUp.Cover.Unmet
 	for _, depth := range t.recharge {
 		in += math.Abs(depth)
@@ -242,8 +271,8 @@ func (t *trace) checkBalance(warmUp *cascade.Totals) error {
 		err, in float64
 		largest float64
 	}{
-		{"cover", t.whole.Cover.Error(), in, largest(t.cover)},
-		{"deep", t.whole.Deep.Error(), warmUp.Deep.In + warmUp.Deep.Lateral + t.whole.Deep.In + t.whole.Deep.Lateral, largest(t.deep)},
+		{"cover", t.whole.Cover.Error(), in, coverMax},
+		{"deep", t.whole.Deep.Error(), warmUp.Deep.In + warmUp.Deep.Lateral + t.whole.Deep.In + t.whole.Deep.Lateral, deepMax},
 	} {
 		if !(math.Abs(store.err) <= balanceTolerance*max(1, store.in+store.largest)) {
 			return fmt.Errorf("option %q: the water balance of the %s store is off by %g mm; this is a fault of the program, please report it",
@@ -253,14 +282,22 @@ func (t *trace) checkBalance(warmUp *cascade.Totals) error {
 	return nil
 }
 
-// total is a compensated sum, so that 24 steps of an hour make the same day as one (Kahan 1965, Commun. ACM 8:40).
+// total is a sum of a long series. Blocks of it are added up plainly and their sums with compensation (Kahan 1965, Commun.
+// ACM 8:40), so that decades of hours do not drift.
 func total(xs []float64) float64 {
+	const block = 64
 	sum, lost := 0.0, 0.0
-	for _, x := range xs {
-		y := x - lost
+	for len(xs) > 0 {
+		n := min(block, len(xs))
+		part := 0.0
+		for _, x := range xs[:n] {
+			part += x
+		}
+		y := part - lost
 		t := sum + y
 		lost = (t - sum) - y
 		sum = t
+		xs = xs[n:]
 	}
 	return sum
 }

@@ -40,7 +40,7 @@ const (
 // summarise keeps of a replay what the warnings ask of it.
 func summarise(t *trace) traceSummary {
 	s := traceSummary{
-		works: t.works, fromDry: t.fromDry, coverMax: largest(t.cover), deepMax: largest(t.deep),
+		works: t.works, fromDry: t.fromDry, coverMax: t.coverMax, deepMax: t.deepMax,
 	}
 	if in := t.whole.Deep.In; in > 0 {
 		s.refusedShare = t.whole.Deep.Refused / in

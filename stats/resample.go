@@ -3,16 +3,20 @@ package stats
 import (
 	"math/rand/v2"
 	"slices"
+	"sync"
 )
 
 // Resamples are resamples of the counted years, with replacement and in blocks of successive years. One set serves
-// every series of the same years, so that all of them see the same good and bad years together. A set is not changed
-// by its methods: several goroutines may use it.
+// every series of the same years, so that all of them see the same good and bad years together. Several goroutines may
+// use a set at once.
 type Resamples struct {
 	years, n int
 	// weight[y*n+i] says how often year y stands in resample i. Year by year, so that a year without any exceedance
 	// is passed over at once.
 	weight []float64
+
+	mu   sync.Mutex
+	kept struct{ confidence, tail float64 }
 }
 
 // NewResamples draws n resamples of a number of years by the stationary bootstrap. A resample starts at a year drawn
@@ -99,9 +103,19 @@ func (r *Resamples) varies(byYear []float64) bool {
 	return r.years >= 2 && r.n >= 1 && slices.ContainsFunc(byYear, func(x float64) bool { return x != 0 })
 }
 
-// limits are the ends of the expanded percentile interval of some figure of the resamples. It sorts them.
+// expanded is expandedTail, which takes longer than all else that an interval needs; so the last one is kept.
+func (r *Resamples) expanded(confidence float64) float64 {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	if r.kept.confidence != confidence {
+		r.kept.confidence, r.kept.tail = confidence, expandedTail(r.years, confidence)
+	}
+	return r.kept.tail
+}
+
+// limits are the ends of the expanded percentile interval of some figure of the resamples. It reorders them.
 func (r *Resamples) limits(figures []float64, confidence float64) (lo, hi float64) {
-	p := expandedTail(r.years, confidence)
-	slices.Sort(figures)
-	return Quantile(figures, p), Quantile(figures, 1-p)
+	p := r.expanded(confidence)
+	q := Quantiles(figures, p, 1-p)
+	return q[0], q[1]
 }

@@ -366,7 +366,7 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 		r.wrongWidth(w.line)
 		return false, nil
 	}
-	w.time = bytes.Trim(r.fields[r.timeAt], blanks)
+	w.time = trim(r.fields[r.timeAt])
 	unix, offset, ok := r.layout.parse(w.time)
 	if !ok {
 		r.inRow(w.line, r.src.Time, r.layout.explain(w.time))
@@ -374,13 +374,21 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 		r.offset, r.zone = offset, zoneOf(w.time)
 	}
 	w.missing = 0
-	w.rain = bytes.Trim(r.fields[r.rainAt], blanks)
+	w.rain = trim(r.fields[r.rainAt])
 	w.rainV = r.value(w, w.rain, r.src.Rain.Name, rainMissing)
 	if r.petAt >= 0 {
-		w.pet = bytes.Trim(r.fields[r.petAt], blanks)
+		w.pet = trim(r.fields[r.petAt])
 		w.petV = r.value(w, w.pet, r.src.PET.Name, petMissing)
 	}
 	return ok, nil
+}
+
+// trim cuts the blanks off a cell. Most cells have none, and that is seen from their ends.
+func trim(cell []byte) []byte {
+	if n := len(cell); n > 0 && cell[0] > ' ' && cell[n-1] > ' ' {
+		return cell
+	}
+	return bytes.Trim(cell, blanks)
 }
 
 func (r *reader) wrongWidth(line int) {
