@@ -273,7 +273,7 @@ func (d *decoder) checkBand(s *Study, b *Band, onset, until *value) {
 	case b.Until > b.Level+tie:
 		d.add(until.place, "an event ends at or below the level at which it begins, and %s lies above %s; until is given as %s too", quoted(until.text), quoted(onset.text), b.GivenAs)
 	case b.Until < -tie:
-		d.add(until.place, "%s lies below the base of the deep layer, so that no event would ever end", quoted(until.text))
+		d.add(until.place, "%s lies below the base of the deep layer, so that no event would ever end; until is given as %s too", quoted(until.text), b.GivenAs)
 	}
 }
 

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strconv"
 	"strings"
 	"time"
 
@@ -20,6 +21,7 @@ const (
 	drainDryShare    = 0.95 // of the steps on which the baseline's level is at or below a drain: judgement
 	fewYears         = 10   // below which counts say hardly anything: judgement
 	fewEvents        = 5    // below which a rate says little: judgement
+	mostOfTheYear    = 180  // d a year above a band beyond which its events run into one another: judgement
 	shortRecordYears = 30   // least length advised for extremes of groundwater level (Geosciences 2020, 10, 373)
 )
 
@@ -247,7 +249,7 @@ func (p *prepared) drainWarnings(ws *warnings, w *works, replayed []result.Drain
 			ws.add(at, "The %s lie at %.2f m, and in this option the %s level is never above that: what else the option does leaves them nothing to carry. Set them deeper or leave them out.",
 				measureWords(d.measure), d.invert, d.layer)
 		case replayed != nil && replayed[i].RunningShare == 0, replayed == nil && dry == len(levels):
-			ws.add(at, "The %s lie at %.2f m and the baseline's %s level never rises above %.2f m: they do nothing in this record. Set them deeper.",
+			ws.add(at, "The %s lie at %.2f m and the baseline's %s level never rises above %.2f m: they do nothing in this record. Set them deeper where there is water below them, or check why there is none.",
 				measureWords(d.measure), d.invert, d.layer, largest(levels))
 		case share > drainDryShare:
 			at.Code = "drain_runs_rarely"
@@ -328,7 +330,7 @@ func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
 			t.deepMax, 100*closeToCapacity, g.DeepFullAt)
 	}
 	if t.refusedShare > refusedShare {
-		ws.add(at("deep_refuses_water"), "The deep layer is full so often that it refuses %.1f %% of the percolation. The cover's level is then too low; check deep.drainable_porosity, deep.full_at and the rates.", 100*t.refusedShare)
+		ws.add(at("deep_refuses_water"), "The deep layer is full so often that it refuses %.0f %% of the percolation. The cover's level is then too low; check deep.drainable_porosity, deep.full_at and the rates.", 100*t.refusedShare)
 	}
 }
 
@@ -341,11 +343,14 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 			at.Option, at.Band = options[i].Name, band.Name
 			switch {
 			case f.Events == 0 && f.DaysPerYear == 0:
-				ws.add(at, "None in %s, which is not never: up to %s events a year fit this record at %s %%.",
-					plural(p.counted.years, "year"), roundUp(f.EventsPerYearCI[1]), short(100*p.study.Count.Confidence))
+				ws.add(at, "None in %s, which does not mean that none can come: up to %s events a year fit this record at %s %%.",
+					plural(p.counted.years, "year"), strconv.FormatFloat(f.EventsPerYearCI[1], 'g', 2, 64), short(100*p.study.Count.Confidence))
 			case f.Events == 0:
 				at.Code = "events_peak_outside"
 				ws.add(at, "Passed on %s d a year, in events that peak outside the counted years, so that none of them is counted. Read days and load.", short(math.Round(10*f.DaysPerYear)/10))
+			case f.Events < fewEvents && f.DaysPerYear > mostOfTheYear:
+				at.Code = "few_events"
+				ws.add(at, "Passed for most of the time, in few long events: their number says nothing. Read days and load.")
 			case f.Events < fewEvents:
 				at.Code = "few_events"
 				ws.add(at, "Fewer than %d events, too few for a rate; read the ranges.", fewEvents)
@@ -369,15 +374,6 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 	}
 }
 
-// roundUp writes an upper limit with two significant digits, never lower than it is.
-func roundUp(x float64) string {
-	if x <= 0 {
-		return "0"
-	}
-	unit := math.Pow(10, math.Floor(math.Log10(x))-1)
-	return short(math.Ceil(x/unit-1e-9) * unit)
-}
-
 // choiceWarnings say what the record cannot tell about the order of the options.
 func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stats.Resamples) {
 	on := p.study.Count.DecideOn
@@ -387,16 +383,19 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stat
 	band := p.study.Bands[on].Name
 	m := measureNamed(p.study.Count.DecideBy)
 
-	var same []string
+	passed := slices.ContainsFunc(options, func(f optionFigures) bool { return f.Bands[on].DaysPerYear > 0 || f.Bands[on].Events > 0 })
+	if !passed {
+		w := warn("nothing_to_decide_on")
+		w.Band = band
+		ws.add(w, "No option passes this band in the counted years, so the record cannot compare them on it. Check the band, or decide on a lower one.")
+		return
+	}
 	for i := range options {
 		if c := options[i].Bands[on].Change; c != nil && !c.ToldApart {
-			same = append(same, options[i].Name)
+			w := warn("not_told_apart")
+			w.Option, w.Band = options[i].Name, band
+			ws.add(w, "Not told apart from the baseline on this record by %s. Do not read a benefit, or none, into the difference.", measureTitle(m.name))
 		}
-	}
-	if len(same) > 0 {
-		w := warn("not_told_apart")
-		w.Band = band
-		ws.add(w, "Not told apart from the baseline on this record by %s: %s. Do not read a benefit, or none, into the difference.", measureTitle(m.name), strings.Join(same, "; "))
 	}
 
 	var order []int // of the works; the baseline was held against each above

@@ -309,17 +309,6 @@ func TestWarningsSay(t *testing.T) {
 	}
 }
 
-func TestRoundUp(t *testing.T) {
-	for _, tt := range []struct {
-		x    float64
-		want string
-	}{{0, "0"}, {0.0768, "0.077"}, {0.1, "0.1"}, {0.101, "0.11"}, {2.996, "3"}, {12.3, "13"}} {
-		if got := roundUp(tt.x); got != tt.want {
-			t.Errorf("roundUp(%v) is %s, want %s", tt.x, got, tt.want)
-		}
-	}
-}
-
 // TestGuideKnowsWarnings holds the contributor guide to the codes that the source can raise.
 func TestGuideKnowsWarnings(t *testing.T) {
 	read := func(path string) string {

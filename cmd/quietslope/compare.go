@@ -19,8 +19,9 @@ func compareCommand() *cli.Command {
 		Description: `What it does:
   Replays the whole weather record of the study for every option, after a warm-up, and counts on
   complete years how the deep level passes each band: events, days, load (metre-days), the share of
-  years, the longest and the highest. Every figure has a range. Options are set against the baseline
-  year by year and ranked on one band. The notes name what is weak about the figures.
+  years, the longest and the highest. Events, days, load and years have a range, and so has every
+  change. Options are set against the baseline year by year and ranked on one band. The notes name
+  what is weak about the figures. The text is laid out for 100 columns.
 
 What it needs:
   A study file (YAML) that names the weather record, the ground as calibrated, the bands and the

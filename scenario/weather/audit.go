@@ -267,7 +267,7 @@ func (a *auditor) totals() {
 	}
 	wettest := slices.MaxFunc(a.days, func(x, y auditDay) int { return cmp.Compare(x.rain, y.rain) })
 	rain := a.perYear(a.Rain)
-	const text = "rain is %s mm a year and %s mm on the wettest day: check %sthe unit of the rain column"
+	const text = "rain is %s mm a year over the record and %s mm on the wettest day: check %sthe unit of the rain column"
 	switch {
 	case rain < leastRainPerYear || rain > mostRainPerYear:
 		a.add(KindRainTotal, 0, len(a.Rain), text, roundMM(rain), roundMM(wettest.rain), "")
@@ -278,7 +278,7 @@ func (a *auditor) totals() {
 		return
 	}
 	if pet := a.perYear(a.PET); pet < leastPETPerYear || pet > mostPETPerYear {
-		a.add(KindPETTotal, 0, len(a.PET), "evapotranspiration is %s mm a year: check the unit of the evapotranspiration column", roundMM(pet))
+		a.add(KindPETTotal, 0, len(a.PET), "evapotranspiration is %s mm a year over the record: check the unit of the evapotranspiration column", roundMM(pet))
 	}
 }
 

@@ -201,18 +201,18 @@ func TestImplausible(t *testing.T) {
 	}{
 		{"sound", 800, 500, 30, nil},
 		{"rain at the lower limit", 150, 500, 150 / year, nil},
-		{"rain below it", 149, 500, 149 / year, all("rain is 149 mm a year and 0.41 mm on the wettest day: check the unit of the rain column")},
+		{"rain below it", 149, 500, 149 / year, all("rain is 149 mm a year over the record and 0.41 mm on the wettest day: check the unit of the rain column")},
 		{"rain near the upper limit", 4999, 500, 0, nil},
-		{"rain above it", 5110, 500, 14, all("rain is 5110 mm a year and 14 mm on the wettest day: check the unit of the rain column")},
-		{"no rain", 0, 500, 0, all("rain is 0 mm a year and 0 mm on the wettest day: check the unit of the rain column")},
+		{"rain above it", 5110, 500, 14, all("rain is 5110 mm a year over the record and 14 mm on the wettest day: check the unit of the rain column")},
+		{"no rain", 0, 500, 0, all("rain is 0 mm a year over the record and 0 mm on the wettest day: check the unit of the rain column")},
 		{"a day at the limit", 800, 500, 400, nil},
-		{"a day above it", 365, 500, 421, rain("2002-05-05", "2002-05-05", "rain is 505 mm a year and 421 mm on the wettest day: check that day, and the unit of the rain column")},
+		{"a day above it", 365, 500, 421, rain("2002-05-05", "2002-05-05", "rain is 505 mm a year over the record and 421 mm on the wettest day: check that day, and the unit of the rain column")},
 		{"a little evapotranspiration", 800, 151, 30, nil},
-		{"too little", 800, 50, 30, pet("evapotranspiration is 50 mm a year: check the unit of the evapotranspiration column")},
+		{"too little", 800, 50, 30, pet("evapotranspiration is 50 mm a year over the record: check the unit of the evapotranspiration column")},
 		{"much evapotranspiration", 800, 2499, 30, nil},
-		{"too much", 800, 5000, 30, pet("evapotranspiration is 5000 mm a year: check the unit of the evapotranspiration column")},
-		{"both", 8000, 5000, 700, append(all("rain is 8226 mm a year and 700 mm on the wettest day: check the unit of the rain column")[:1:1],
-			pet("evapotranspiration is 5000 mm a year: check the unit of the evapotranspiration column")...)},
+		{"too much", 800, 5000, 30, pet("evapotranspiration is 5000 mm a year over the record: check the unit of the evapotranspiration column")},
+		{"both", 8000, 5000, 700, append(all("rain is 8226 mm a year over the record and 700 mm on the wettest day: check the unit of the rain column")[:1:1],
+			pet("evapotranspiration is 5000 mm a year over the record: check the unit of the evapotranspiration column")...)},
 	} {
 		r := &Record{First: time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), Step: day, Rain: make([]float64, 3*365), PET: make([]float64, 3*365)}
 		fill(r.Rain, 0, len(r.Rain), tt.rain/year)

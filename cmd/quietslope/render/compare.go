@@ -82,7 +82,7 @@ func title(p *page, h *result.Head) {
 
 // inShort says in a few lines what the tables say on the deciding band, without a judgement of its own.
 func (v *view) inShort() {
-	band := slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
+	band := v.deciding()
 	if band < 0 || len(v.c.Cases) == 0 {
 		return
 	}
@@ -90,7 +90,19 @@ func (v *view) inShort() {
 	name, T := v.c.Bands[band].Name, v.c.Record.YearsCounted
 	by := measureOf(v.c.Settings.DecideBy)
 	v.heading("In short")
-	var none, same []string
+	for i, n := range v.notes {
+		if n.first.Code == "implausible_weather" || n.first.Code == "record_short" && T < veryFewYears {
+			v.para("Check first: %s (note %d)", n.first.Text, i+1)
+		}
+	}
+	if v.nothingPassed(c, band) {
+		base := baselineOf(c)
+		v.para("No option passes %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
+			name, plural(T, "year"), v.letters[base.Name], centimetres(base.Level.MaxM), metres(v.c.Bands[band].LevelM))
+		v.para("%s.", v.notes.headline())
+		return
+	}
+	var none, worse, same []string
 	for _, o := range pointers(c) {
 		f := &o.Bands[band]
 		switch {
@@ -98,31 +110,57 @@ func (v *view) inShort() {
 			v.para("%s, the baseline, does not pass %s in %s.", v.letters[o.Name], name, plural(T, "year"))
 		case o.Baseline:
 			days, limits := ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
-			v.para("%s, the baseline, passes %s in %.0f of %s, on %s days a year %s.", v.letters[o.Name], name,
-				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), days, limits)
+			v.para("%s, the baseline, passes %s in %.0f of %s, on %s days a year.", v.letters[o.Name], name,
+				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), strings.TrimSpace(days+" "+limits))
 		case notPassed(f):
 			none = append(none, v.letters[o.Name])
 		}
-		if f.Change != nil && !f.Change.ToldApart {
+		switch {
+		case f.Change == nil:
+		case !f.Change.ToldApart:
 			same = append(same, v.letters[o.Name])
+		case by.change(f.Change).Difference > 0:
+			worse = append(worse, v.letters[o.Name])
 		}
 	}
 	if len(none) > 0 {
-		v.para("With %s this record holds none, which is not never.", strings.Join(none, ", "))
+		v.para("With %s the record holds no event, which does not mean that none can come.", strings.Join(none, ", "))
 	}
 	if len(c.Options) > 1 {
 		text := fmt.Sprintf("From the least by %s: %s.", by.name, v.order(c, v.figuresBy(c, band, by)))
+		if len(worse) > 0 {
+			text += fmt.Sprintf(" Worse than %s: %s.", v.baseline, strings.Join(worse, ", "))
+		}
 		if len(same) > 0 {
 			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.baseline, strings.Join(same, ", "))
 		}
 		if refs := v.notes.numbers("order_not_told_apart"); refs != "" {
-			text += fmt.Sprintf(" Nor are all neighbours in this order told apart: see %s.", noun(refs))
+			text += fmt.Sprintf(" Some neighbours in this order are not told apart from each other: see %s.", noun(refs))
 		}
 		v.para("%s", text)
 	}
 	if len(v.notes) > 0 {
 		v.para("%s. What is weak about these figures stands there.", v.notes.headline())
 	}
+}
+
+// deciding is the index of the band that ranks the options, -1 for none.
+func (v *view) deciding() int {
+	return slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
+}
+
+// nothingPassed reports whether no option of a case passes a band.
+func (v *view) nothingPassed(c *result.Case, band int) bool {
+	return !slices.ContainsFunc(c.Options, func(o result.Option) bool { return !notPassed(&o.Bands[band]) })
+}
+
+func baselineOf(c *result.Case) *result.Option {
+	for i := range c.Options {
+		if c.Options[i].Baseline {
+			return &c.Options[i]
+		}
+	}
+	return &c.Options[0]
 }
 
 // figuresBy are the options' figures on a band by one measure, in the order of the case.
@@ -152,7 +190,7 @@ func (v *view) counted() {
 	if s.ApartDays > 0 {
 		events += fmt.Sprintf("; runs %s d or less apart are one event", days(s.ApartDays))
 	}
-	v.field("events", "%s. Load is the height above the level times the days spent there; peak is the greatest height above it.", events)
+	v.field("events", "%s. Load is the height above the level times the days spent there; peak is the greatest height above it; longest is the days above in the longest event, pauses not counted.", events)
 	v.field("ranges", "%s", v.rangesText())
 	if v.c.Settings.DecideOn == "" && len(v.notes) > 0 {
 		v.field("notes", "%s.", v.notes.headline())
@@ -190,9 +228,9 @@ func recordFields(p *page, r *result.Record) {
 	}
 	p.field("record", "%s to %s, %s of %s (time names the %s of a step), %s",
 		r.From, r.To, plural(r.Rows, "step"), r.Step, r.Stamp, gaps)
-	water := fmt.Sprintf("rain %.0f mm a year", r.RainMMPerYear)
+	water := fmt.Sprintf("rain %.0f mm a year in the counted years", r.RainMMPerYear)
 	if r.PETMMPerYear != nil {
-		water += fmt.Sprintf(", potential evapotranspiration %.0f mm a year", *r.PETMMPerYear)
+		water += fmt.Sprintf(", potential evapotranspiration %.0f", *r.PETMMPerYear)
 	}
 	p.field("weather", "%s", water)
 	warm := "none"
@@ -213,6 +251,8 @@ func (v *view) rangesText() string {
 	text := fmt.Sprintf("in brackets, at %s: events exact Poisson, years with exact binomial, days, load and changes by resampling whole years",
 		v.confidence())
 	switch n := v.c.Record.YearsCounted; {
+	case n == 1:
+		text += ". One year gives no resampled range"
 	case n < veryFewYears:
 		text += ". Resampled ranges from so few years mean little"
 	case n < fewYears:
@@ -243,7 +283,7 @@ func (v *view) options() {
 
 // noun names one or several notes.
 func noun(refs string) string {
-	if strings.ContainsAny(refs, ",-") {
+	if strings.ContainsAny(refs, ",–") {
 		return "notes " + refs
 	}
 	return "note " + refs
@@ -340,9 +380,9 @@ func (v *view) exceedance(c *result.Case, band int) {
 	v.heading("%s: deep level above %s m", b.Name, metres(b.LevelM))
 	T := v.c.Record.YearsCounted
 	options := pointers(c)
-	if passed := slices.ContainsFunc(options, func(o *result.Option) bool { return !notPassed(&o.Bands[band]) }); !passed {
+	if v.nothingPassed(c, band) {
 		_, _, upper := figures(0, 0, options[0].Bands[band].EventsPerYearCI[1], leastEvents)
-		v.para("No option passes it in %s. That is not never: up to %s events a year fit this record at %s.", plural(T, "year"), upper, v.confidence())
+		v.para("No option passes it in %s, which does not mean that none can: up to %s events a year fit this record at %s.", plural(T, "year"), upper, v.confidence())
 		return
 	}
 	var events, load, lasting, with column
@@ -407,7 +447,14 @@ func (v *view) spells(o *result.Option, spells []result.Spell) {
 			parts = append(parts, plural(len(spells)-most, "more event"))
 			break
 		}
-		parts = append(parts, fmt.Sprintf("%s to %s (+%s)", s.From, s.To, centimetres(s.PeakExcessM)))
+		from, to := s.From, s.To
+		if from == v.c.Record.From {
+			from = "before " + from
+		}
+		if to == v.c.Record.To {
+			to = "after " + to
+		}
+		parts = append(parts, fmt.Sprintf("%s to %s (+%s)", from, to, centimetres(s.PeakExcessM)))
 	}
 	v.para("%s passed it: %s. Hold these times against what is known of the slope's movement.", v.letters[o.Name], strings.Join(parts, ", "))
 }
@@ -449,31 +496,44 @@ func (t table) dropEmpty() table {
 	return out
 }
 
-// toldApart says which options differ from the baseline on one band by more than the record's chance.
+// toldApart says which options have less or more than the baseline on one band, beyond the record's chance.
 func (v *view) toldApart(options []*result.Option, band int) {
-	var yes, no []string
+	by := measureOf(v.c.Settings.DecideBy)
+	var less, more, no []string
 	for _, o := range options {
-		if ch := o.Bands[band].Change; ch != nil {
-			if ch.ToldApart {
-				yes = append(yes, v.letters[o.Name])
-			} else {
-				no = append(no, v.letters[o.Name])
-			}
+		switch ch := o.Bands[band].Change; {
+		case ch == nil:
+		case !ch.ToldApart:
+			no = append(no, v.letters[o.Name])
+		case by.change(ch).Difference > 0:
+			more = append(more, v.letters[o.Name])
+		default:
+			less = append(less, v.letters[o.Name])
 		}
 	}
-	if len(yes)+len(no) == 0 {
-		return
+	var parts []string
+	for _, part := range []struct {
+		what    string
+		letters []string
+	}{{"less", less}, {"more", more}, {"not told apart on this record", no}} {
+		if len(part.letters) > 0 {
+			parts = append(parts, part.what+": "+strings.Join(part.letters, ", "))
+		}
 	}
-	text := fmt.Sprintf("Against %s by %s: ", v.baseline, measureOf(v.c.Settings.DecideBy).name)
+	if len(parts) > 0 {
+		v.para("Against %s by %s: %s.", v.baseline, by.name, strings.Join(parts, "; "))
+	}
+}
+
+// against says in a cell how an option stands against the baseline.
+func against(d *result.Difference, apart bool) string {
 	switch {
-	case len(yes) == 0:
-		text += "not told apart on this record: " + strings.Join(no, ", ")
-	case len(no) == 0:
-		text += "told apart: " + strings.Join(yes, ", ")
-	default:
-		text += "told apart: " + strings.Join(yes, ", ") + "; not told apart on this record: " + strings.Join(no, ", ")
+	case !apart:
+		return "not told apart"
+	case d.Difference > 0:
+		return "more"
 	}
-	v.para("%s.", text)
+	return "less"
 }
 
 // measure is one of the figures that options can be ranked by.
@@ -511,8 +571,8 @@ func measureOf(key string) *measure {
 
 // change writes the ranking on the deciding band and the change against the baseline.
 func (v *view) change(c *result.Case) {
-	band := slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
-	if band < 0 || len(c.Options) < 2 {
+	band := v.deciding()
+	if band < 0 || len(c.Options) < 2 || v.nothingPassed(c, band) {
 		return
 	}
 	by := measureOf(v.c.Settings.DecideBy)
@@ -552,16 +612,18 @@ func (v *view) change(c *result.Case) {
 		if ch := o.Bands[band].Change; ch != nil {
 			d := by.change(ch)
 			row[4] = percent(d.ShareBetter)
-			if d.ShareEqual > 0 {
+			if d.DifferenceCI == nil && d.ShareEqual < 1 { // too few years to resample
+				row[4] = "–"
+			} else if d.ShareEqual >= 0.005 {
 				row[4] += " (" + percent(d.ShareEqual) + ")"
 			}
 			row[5] = fmt.Sprintf("%d/%d/%d", d.YearsBetter, d.YearsEqual, d.YearsWorse)
-			row[6] = map[bool]string{true: "told apart", false: "not told apart"}[ch.ToldApart]
+			row[6] = against(d, ch.ToldApart)
 		}
 		t.rows = append(t.rows, row)
 	}
 	v.rows(t, options)
-	v.para("A change below zero is an improvement. Better (same): share of the resamples. b/s/w: years better, same, worse. Told apart: the range of the change leaves out zero and the years better and worse are too uneven "+
+	v.para("A change below zero is an improvement. Better (same): share of the resamples. b/s/w: years better, same, worse. Less and more are said where the two can be told apart: the range of the change leaves out zero and the years better and worse are too uneven "+
 		"for chance (sign test at %s). It says that there is a change, not that it is large enough to matter. Ranks follow the figures alone. To see the change between two works, mark one of them baseline: true in the study.", v.confidence())
 
 	v.otherChanges(options, band, by)
@@ -634,7 +696,7 @@ func (v *view) orders(c *result.Case, band int, by *measure) {
 	}
 	v.gap()
 	if len(against) == 0 {
-		v.para("Load, days, events and share of years rank the options alike.")
+		v.para("By no other measure do two options change places, though some may be equal.")
 		return
 	}
 	var names []string
@@ -691,11 +753,11 @@ func (v *view) order(c *result.Case, xs []float64) string {
 
 // months writes when in the year the deciding band is passed.
 func (v *view) months(c *result.Case) {
-	band := slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
+	band := v.deciding()
 	if band < 0 && len(v.c.Bands) == 1 {
 		band = 0
 	}
-	if band < 0 {
+	if band < 0 || v.nothingPassed(c, band) {
 		return
 	}
 	v.heading("Days above %s by month, mean per year", v.c.Bands[band].Name)

@@ -102,7 +102,7 @@ func ofCase(w result.Warning, c *result.Case) bool {
 	return c == nil || (w.Climate == "" || w.Climate == c.Climate) && (w.Condition == "" || w.Condition == c.Condition)
 }
 
-// numbers joins rising numbers, runs of three and more as a span: 1,4-6.
+// numbers joins rising numbers, runs of three and more as a span: 1, 4–6.
 func numbers(ns []int) string {
 	var parts []string
 	for i := 0; i < len(ns); {
@@ -114,11 +114,11 @@ func numbers(ns []int) string {
 			j = i
 			parts = append(parts, strconv.Itoa(ns[i]))
 		} else {
-			parts = append(parts, fmt.Sprintf("%d-%d", ns[i], ns[j]))
+			parts = append(parts, fmt.Sprintf("%d–%d", ns[i], ns[j]))
 		}
 		i = j + 1
 	}
-	return strings.Join(parts, ",")
+	return strings.Join(parts, ", ")
 }
 
 // write prints the notes. letter gives the key of an option's name.
@@ -139,7 +139,7 @@ func (ns notes) write(p *page, letter func(string) string) {
 
 // about says what a note is about: the options of each band, or what else it names.
 func (n note) about(letter func(string) string) []string {
-	var of, bands []string
+	var of, bands, alone []string    // alone are the letters of options that no band is named with
 	options := map[string][]string{} // letters, by band
 	for _, w := range n.places {
 		switch {
@@ -148,11 +148,20 @@ func (n note) about(letter func(string) string) []string {
 				bands = append(bands, w.Band)
 			}
 			options[w.Band] = append(options[w.Band], letter(w.Option))
+		case w.Option != "" && w.Climate+w.Condition == "":
+			alone = append(alone, letter(w.Option))
 		default:
 			if text := place(w, letter); text != "" && !slices.Contains(of, text) {
 				of = append(of, text)
 			}
 		}
+	}
+	switch len(alone) {
+	case 0:
+	case 1:
+		of = append(of, "option "+alone[0])
+	default:
+		of = append(of, "options "+strings.Join(alone, ", "))
 	}
 	for _, b := range bands {
 		of = append(of, b+" "+strings.Join(options[b], ", "))

@@ -204,7 +204,7 @@ func TestSmallFormats(t *testing.T) {
 		{metres(4.2), "4.20"}, {metres(4.1234), "4.123"}, {metres(-0.0001), "0.00"}, {centimetres(-0.001), "0.00"},
 		{significant(0.0137123, 3), "0.0137"}, {significant(1234.5, 2), "1200"}, {significant(0, 2), "0"},
 		{rate(0.0045), "0.0045"}, {share(0.9), "90 %"}, {share(0.995), "99.5 %"},
-		{numbers([]int{1, 2, 4, 5, 6, 9}), "1,2,4-6,9"}, {numbers(nil), ""},
+		{numbers([]int{1, 2, 4, 5, 6, 9}), "1, 2, 4–6, 9"}, {numbers(nil), ""},
 		{letter(0) + letter(25) + letter(26) + letter(27) + letter(701) + letter(702), "AZAAABZZAAA"},
 		{shorten("trenches, spacing 12 m", 11), "trenc… 12 m"}, {shorten("short", 11), "short"}, {shorten("深い水位計測", 6), "深…測"}, {shorten("abc", 0), ""}, {shorten("abc", 1), "…"},
 		{monthBefore("January"), "December"}, {monthBefore("October"), "September"}, {monthBefore(""), ""},
