@@ -103,7 +103,7 @@ func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
 			return err
 		}
 		options[i] = p.figures(t)
-		p.replayer.drop(t)
+		p.replayer.drop(t.recharge, t.cover, t.deep)
 		return nil
 	})
 	if err != nil {
@@ -153,7 +153,7 @@ type optionFigures struct {
 // traceSummary is what the warnings ask of a replay, so that its series need not be kept.
 type traceSummary struct {
 	works        *works
-	fromDry      float64
+	fromDry      float64 // m, as in trace
 	coverMax     float64 // m, over the record
 	deepMax      float64
 	refusedShare float64 // of what percolated to the deep store
@@ -217,9 +217,9 @@ func (p *prepared) threshold(i int) stats.Threshold {
 
 func (p *prepared) levelFigures(t *trace) result.Level {
 	levels := t.deep[p.counted.from:p.counted.to]
-	spare := p.replayer.newTrace(t.works)
+	spare := p.replayer.series()
 	defer p.replayer.drop(spare)
-	q := stats.Quantiles(append(spare.deep[:0], levels...), 0.50, 0.95, 0.99)
+	q := stats.Quantiles(append(spare[:0], levels...), 0.50, 0.95, 0.99)
 	return result.Level{MeanM: total(levels) / float64(len(levels)), MaxM: largest(levels), Q50M: q[0], Q95M: q[1], Q99M: q[2]}
 }
 

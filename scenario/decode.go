@@ -415,7 +415,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		v.num, err = quantity.Parse(n.text, s.kind)
 		if inYears := s.form == formYears || s.kind == quantity.Duration && s.limits.lo >= 365; err != nil && inYears {
 			meant := "4"
-			if x, err := quantity.ParseWhole(n.text); err == nil {
+			if x, err := quantity.ParseWhole(n.text); err == nil && x > 0 {
 				meant = quantity.FormatNumber(float64(x))
 			}
 			err = fmt.Errorf("%s is not a number of years; write one such as %s y", quoted(n.text), meant)

@@ -170,7 +170,8 @@ func plural(n int, what string) string {
 }
 
 // wholeYears finds the whole multiples of 12 months in the record from its first step: ends[k-1] is the first step after
-// k years. From 29 February a year ends with 28 February where there is no other.
+// k years. Where the year has no 29 February, a year
+// from a time on that day ends at the same time of 28 February.
 func wholeYears(r *weather.Record) (ends []int) {
 	for k := 1; ; k++ {
 		t := r.First.AddDate(k, 0, 0)

@@ -60,8 +60,8 @@ func newWarmUp(s *Study, r *weather.Record, all []*works) (warmUp, error) {
 type trace struct {
 	works    *works
 	recharge []float64 // net input of the cover, mm per step
-	cover    []float64 // end-of-step level, m above the contact
-	deep     []float64 // end-of-step level, m above the base of the deep layer
+	cover    []float64 // end-of-step level, m above the contact; storage in mm while it is replayed
+	deep     []float64 // end-of-step level, m above the base of the deep layer; the same
 	actualET float64   // over the counted years, mm; 0 without a soil
 	start    StartLevels
 	coverMax float64 // highest levels over the record, m
@@ -78,28 +78,27 @@ type replayer struct {
 	warm   warmUp
 
 	mu    sync.Mutex
-	spare []*trace // traces that nobody needs any more, for their series
+	spare [][]float64 // series of the record's length that nobody needs any more
 }
 
-// newTrace returns a trace for an option, with series that may hold anything. The series of a dropped trace serve again:
-// fresh memory for every option of a long record would cost more time than the replay.
-func (p *replayer) newTrace(w *works) *trace {
+// series returns a series of the record's length that may hold anything. One that was dropped serves again: fresh memory
+// for every option of a long record would cost more time than the replay.
+func (p *replayer) series() []float64 {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	if last := len(p.spare) - 1; last >= 0 {
-		old := p.spare[last]
+		s := p.spare[last]
 		p.spare = p.spare[:last]
-		return &trace{works: w, recharge: old.recharge, cover: old.cover, deep: old.deep}
+		return s
 	}
-	n := len(p.record.Rain)
-	return &trace{works: w, recharge: make([]float64, n), cover: make([]float64, n), deep: make([]float64, n)}
+	return make([]float64, len(p.record.Rain))
 }
 
-// drop gives up a trace, whose series another option may then use.
-func (p *replayer) drop(t *trace) {
+// drop gives up series, which another option may then use.
+func (p *replayer) drop(series ...[]float64) {
 	p.mu.Lock()
 	defer p.mu.Unlock()
-	p.spare = append(p.spare, t)
+	p.spare = append(p.spare, series...)
 }
 
 // begin works out the water that reaches one option's cover over the record, and replays the warm-up up to its first
@@ -108,7 +107,7 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace,
 	if err := w.model.Check(); err != nil {
 		return nil, nil, p.study.Fault(w.option.Place, "the two stores of this option cannot be replayed: %v", err)
 	}
-	t := p.newTrace(w)
+	t := &trace{works: w, recharge: p.series(), cover: p.series(), deep: p.series()}
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
 	early := newSupply(&w.ground, w.keptOut, p.record)
@@ -132,8 +131,8 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace,
 	return t, run, err
 }
 
-// lowestMonth is the calendar month in which the deep level of an option is lowest; see lowestMonth. Which month counts
-// first changes nothing in the levels, so it can be asked before anything is counted.
+// lowestMonth is the calendar month in which the deep level of an option is lowest. The function of that name finds it from
+// storages, which have the order of the levels. Which month counts first changes nothing in the levels, so it can be asked before anything is counted.
 func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error) {
 	t, run, err := p.begin(ctx, w, period{})
 	if err != nil {
@@ -143,7 +142,7 @@ func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error
 		return 0, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
 	month := lowestMonth(p.record, t.deep)
-	p.drop(t)
+	p.drop(t.recharge, t.cover, t.deep)
 	return month, nil
 }
 

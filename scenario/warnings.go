@@ -30,13 +30,13 @@ const (
 	leastConductivity = 1e-11 * 86400 // m/d, of any soil: judgement
 	mostConductivity  = 1e-3 * 86400
 	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
-	mostPorosity      = 0.30
-	mostClayPorosity  = 0.10 // of a clay: judgement, after the same
-	leastRate         = 1e-4 // 1/d, of a store or a drain: judgement
-	mostRate          = 5.0  // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
-	mostTrenchDepth   = 6.0  // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
-	mostBoreLength    = 100.0
-	mostBoredShare    = 0.90 // efficiency of bored drains in clay: judgement
+	mostPorosity      = 0.30  // the same
+	mostClayPorosity  = 0.10  // of a clay: judgement, after the same
+	leastRate         = 1e-4  // 1/d, of a store or a drain: judgement
+	mostRate          = 5.0   // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
+	mostTrenchDepth   = 6.0   // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
+	mostBoreLength    = 100.0 // m: judgement
+	mostBoredShare    = 0.90  // efficiency of bored drains in clay: judgement
 )
 
 // summarise keeps of a replay what the warnings ask of it.

@@ -77,7 +77,7 @@ func (r *Resamples) Compare(option, baseline []float64, confidence float64) Chan
 	if c.Difference = Mean(diff); math.Abs(c.Difference) <= zero {
 		c.Difference = 0
 	}
-	c.Ratio, c.RatioCI = r.ratio(c.Difference, means, baseline, confidence)
+	c.Ratio, c.RatioCI = r.ratio(c.Difference, means, baseline, nought*largest, confidence)
 	if r.varies(diff) {
 		lo, hi := r.limits(means, confidence)
 		c.DifferenceCI = &[2]float64{lo, hi}
@@ -90,16 +90,16 @@ func (r *Resamples) Compare(option, baseline []float64, confidence float64) Chan
 
 // ratio is the option's mean divided by the baseline's, and its interval, from the difference of the means on the
 // record and in each resample: 1 + difference/baseline is exactly 1 where nothing changes and exactly 0 where nothing
-// is left.
-func (r *Resamples) ratio(difference float64, differences, baseline []float64, confidence float64) (*float64, *[2]float64) {
+// is left. A baseline of at most none counts as none.
+func (r *Resamples) ratio(difference float64, differences, baseline []float64, none, confidence float64) (*float64, *[2]float64) {
 	base := Mean(baseline)
-	if base == 0 {
+	if base <= none {
 		return nil, nil
 	}
 	all := max(0, 1+difference/base)
 	have := make([]float64, 0, r.n)
 	for i, b := range r.Means(baseline) {
-		if b != 0 {
+		if b > none {
 			have = append(have, max(0, 1+differences[i]/b))
 		}
 	}

@@ -66,9 +66,6 @@ func (l *List) Add(err error) {
 	l.errs = append(l.errs, err)
 }
 
-// Len is the number of problems added.
-func (l *List) Len() int { return len(l.errs) + l.more }
-
 // Err returns nil for an empty list, and otherwise one error that prints each problem on a line of its own.
 // errors.As finds the *Error values in it.
 func (l *List) Err() error {

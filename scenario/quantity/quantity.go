@@ -371,7 +371,7 @@ func ParseNumber(text string) (float64, error) {
 // float64.
 const largestWhole = 1<<53 - 1
 
-// ParseWhole reads a whole number of magnitude up to 2^53, written in digits only.
+// ParseWhole reads a whole number of magnitude below 2^53, written in digits only.
 func ParseWhole(text string) (int64, error) {
 	v, err := ParseNumber(text)
 	if err != nil {

@@ -134,7 +134,7 @@ func (v *view) inShort() {
 		if len(same) > 0 {
 			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.baseline, strings.Join(same, ", "))
 		}
-		if refs := v.notes.numbers("order_not_told_apart"); refs != "" {
+		if refs := v.notes.numbersOf("order_not_told_apart"); refs != "" {
 			text += fmt.Sprintf(" Some neighbours in this order are not told apart from each other: see %s.", noun(refs))
 		}
 		v.para("%s", text)
@@ -381,8 +381,11 @@ func (v *view) exceedance(c *result.Case, band int) {
 	T := v.c.Record.YearsCounted
 	options := pointers(c)
 	if v.nothingPassed(c, band) {
-		_, _, upper := figures(0, 0, options[0].Bands[band].EventsPerYearCI[1], leastEvents)
-		v.para("No option passes it in %s, which does not mean that none can: up to %s events a year fit this record at %s.", plural(T, "year"), upper, v.confidence())
+		text := fmt.Sprintf("No option passes it in %s, which does not mean that none can", plural(T, "year"))
+		if refs := v.notes.refs(c, options[0].Name, b.Name); refs != "" {
+			text += ": see " + noun(refs)
+		}
+		v.para("%s.", text)
 		return
 	}
 	var events, load, lasting, with column
@@ -397,8 +400,8 @@ func (v *view) exceedance(c *result.Case, band int) {
 	for _, o := range options {
 		f := &o.Bands[band]
 		value, limits := ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents)
-		uncounted := v.notes.about("events_peak_outside", o.Name, b.Name)
-		if uncounted || v.notes.about("few_events", o.Name, b.Name) {
+		uncounted := v.notes.has("events_peak_outside", o.Name, b.Name)
+		if uncounted || v.notes.has("few_events", o.Name, b.Name) {
 			value = "–" // too few for a rate
 		}
 		if uncounted {

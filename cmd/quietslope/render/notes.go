@@ -65,15 +65,15 @@ func (ns notes) headline() string {
 	return text
 }
 
-// about reports whether there is a warning of this code about an option on a band.
-func (ns notes) about(code, option, band string) bool {
+// has reports whether there is a warning of this code about an option on a band.
+func (ns notes) has(code, option, band string) bool {
 	return slices.ContainsFunc(ns, func(n note) bool {
 		return n.first.Code == code && slices.ContainsFunc(n.places, func(w result.Warning) bool { return w.Option == option && w.Band == band })
 	})
 }
 
-// numbers are the numbers of the notes with a code, for print.
-func (ns notes) numbers(code string) string {
+// numbersOf are the numbers of the notes with a code, for print.
+func (ns notes) numbersOf(code string) string {
 	var found []int
 	for i, n := range ns {
 		if n.first.Code == code {
@@ -128,7 +128,7 @@ func (ns notes) write(p *page, letter func(string) string) {
 		if n.first.Severity == result.Warn {
 			kind = "WARNING"
 		}
-		of := n.about(letter)
+		of := n.concerns(letter)
 		text := kind
 		if len(of) > 0 {
 			text += ", " + strings.Join(of, "; ")
@@ -137,22 +137,20 @@ func (ns notes) write(p *page, letter func(string) string) {
 	}
 }
 
-// about says what a note is about: the options of each band, or what else it names.
-func (n note) about(letter func(string) string) []string {
+// concerns says what a note is about: the options of each band, or what else it names.
+func (n note) concerns(letter func(string) string) []string {
 	var of, bands, alone []string    // alone are the letters of options that no band is named with
 	options := map[string][]string{} // letters, by band
 	for _, w := range n.places {
 		switch {
 		case w.Band != "" && w.Option != "" && w.Climate+w.Condition == "":
-			if !slices.Contains(bands, w.Band) {
-				bands = append(bands, w.Band)
-			}
-			options[w.Band] = append(options[w.Band], letter(w.Option))
+			bands = with(bands, w.Band)
+			options[w.Band] = with(options[w.Band], letter(w.Option))
 		case w.Option != "" && w.Climate+w.Condition == "":
-			alone = append(alone, letter(w.Option))
+			alone = with(alone, letter(w.Option))
 		default:
-			if text := place(w, letter); text != "" && !slices.Contains(of, text) {
-				of = append(of, text)
+			if text := place(w, letter); text != "" {
+				of = with(of, text)
 			}
 		}
 	}
@@ -167,6 +165,14 @@ func (n note) about(letter func(string) string) []string {
 		of = append(of, b+" "+strings.Join(options[b], ", "))
 	}
 	return of
+}
+
+// with is a list with a text in it, once.
+func with(list []string, text string) []string {
+	if slices.Contains(list, text) {
+		return list
+	}
+	return append(list, text)
 }
 
 // place says what a warning is about.
