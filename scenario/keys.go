@@ -66,7 +66,7 @@ const (
 	maxSpacing      = 10000 // m
 	maxArea         = 1e9   // m2
 	maxDrains       = 100000
-	maxResamples    = 1000000
+	maxResamples    = 100000 // a year of them takes 0.8 MB
 	// A soil that meets the full demand down to its last tenth of a millimetre takes ever shorter parts of a day to
 	// work out. Allen et al. (1998, FAO-56, table 22) have 0.2 to 0.7 (range from memory).
 	maxReadily = 0.95
