@@ -102,12 +102,13 @@ func (p *replayer) drop(series ...[]float64) {
 }
 
 // begin works out the water that reaches one option's cover over the record, and replays the warm-up up to its first
-// step. counted is the stretch over which actual evapotranspiration is added up.
-func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace, *cascade.Run, error) {
+// step: once from the start of the study, and once from dry. counted is the stretch over which actual evapotranspiration
+// is added up.
+func (p *replayer) begin(ctx context.Context, w *works, counted period) (t *trace, run, dry *cascade.Run, err error) {
 	if err := w.model.Check(); err != nil {
-		return nil, nil, p.study.Fault(w.option.Place, "the two stores of this option cannot be replayed: %v", err)
+		return nil, nil, nil, p.study.Fault(w.option.Place, "the two stores of this option cannot be replayed: %v", err)
 	}
-	t := &trace{works: w, recharge: p.series(), cover: p.series(), deep: p.series()}
+	t = &trace{works: w, recharge: p.series(), cover: p.series(), deep: p.series()}
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
 	early := newSupply(&w.ground, w.keptOut, p.record)
@@ -123,18 +124,44 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (*trace,
 
 	cover, deep, err := p.startStorages(w, t.recharge)
 	if err != nil {
-		return nil, nil, err
+		return nil, nil, nil, err
 	}
 	g := &w.ground
 	t.start = StartLevels{Cover: cover / storage(1, g.CoverPorosity), Deep: deep / storage(1, g.DeepPorosity)}
-	run, err := p.warmed(ctx, w, cover, deep)
-	return t, run, err
+	if run, err = cascade.NewRun(w.model, cover, deep); err == nil {
+		dry, err = cascade.NewRun(w.model, 0, 0)
+	}
+	if err == nil {
+		err = p.warmUp(ctx, w, scratch, run, dry)
+	}
+	if err != nil {
+		return nil, nil, nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+	}
+	return t, run, dry, nil
+}
+
+// warmUp replays the warm-up. The water of a pass is worked out in depths, which hold the longest.
+func (p *replayer) warmUp(ctx context.Context, w *works, depths []float64, runs ...*cascade.Run) error {
+	supply := newSupply(&w.ground, w.keptOut, p.record)
+	for _, end := range p.warm.passes {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		supply.fill(depths[:end], 0)
+		for _, run := range runs {
+			if err := run.Replay(depths[:end], p.record.Days(), nil, nil); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
 }
 
 // lowestMonth is the calendar month in which the deep level of an option is lowest. The function of that name finds it from
-// storages, which have the order of the levels. Which month counts first changes nothing in the levels, so it can be asked before anything is counted.
+// storages, which have the order of the levels. Which month counts first changes nothing in the levels, so it can be
+// asked before anything is counted.
 func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error) {
-	t, run, err := p.begin(ctx, w, period{})
+	t, run, _, err := p.begin(ctx, w, period{})
 	if err != nil {
 		return 0, err
 	}
@@ -148,7 +175,7 @@ func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error
 
 // replay runs one option through the warm-up and the record.
 func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace, error) {
-	t, run, err := p.begin(ctx, w, counted)
+	t, run, dry, err := p.begin(ctx, w, counted)
 	if err != nil {
 		return nil, err
 	}
@@ -177,15 +204,11 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 	}
 
 	first := min(counted.from+1, n)
-	dry, err := p.warmed(ctx, w, 0, 0)
-	if err != nil {
-		return nil, err
-	}
-	drained := make([]float64, first)
-	if err := dry.Replay(t.recharge[:first], p.record.Days(), nil, drained); err != nil {
+	if err := dry.Replay(t.recharge[:first], p.record.Days(), nil, nil); err != nil {
 		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
-	t.fromDry = math.Abs(t.deep[first-1]-drained[first-1]) / storage(1, w.ground.DeepPorosity)
+	_, fromDry := dry.Storage()
+	t.fromDry = math.Abs(t.deep[first-1]-fromDry) / storage(1, w.ground.DeepPorosity)
 
 	metreOfCover, metreOfDeep := storage(1, w.ground.CoverPorosity), storage(1, w.ground.DeepPorosity)
 	toLevels(t.cover, metreOfCover)
@@ -222,36 +245,11 @@ func (p *replayer) startStorages(w *works, recharge []float64) (cover, deep floa
 	if len(ends) > 0 {
 		n = ends[len(ends)-1]
 	}
-	sum := 0.0
-	for _, depth := range recharge[:n] {
-		sum += depth
-	}
-	cover, deep, err = w.model.Steady(sum / (float64(n) * p.record.Days()))
+	cover, deep, err = w.model.Steady(total(recharge[:n]) / (float64(n) * p.record.Days()))
 	if err != nil {
 		return 0, 0, p.study.Fault(w.option.Place, "%v; give ground.start levels, or a level at which the store is full", err)
 	}
 	return cover, deep, nil
-}
-
-// warmed starts the two stores at the given storages and replays the warm-up.
-func (p *replayer) warmed(ctx context.Context, w *works, cover, deep float64) (*cascade.Run, error) {
-	run, err := cascade.NewRun(w.model, cover, deep)
-	if err != nil {
-		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
-	}
-	supply := newSupply(&w.ground, w.keptOut, p.record)
-	n := p.longestPass()
-	depths := make([]float64, n)
-	for _, end := range p.warm.passes {
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
-		supply.fill(depths[:end], 0)
-		if err := run.Replay(depths[:end], p.record.Days(), nil, nil); err != nil {
-			return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
-		}
-	}
-	return run, nil
 }
 
 // balanceTolerance is the largest water-balance error of a store, as a share of all that entered it and its largest
