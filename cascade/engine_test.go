@@ -750,3 +750,26 @@ func TestAllocations(t *testing.T) {
 		t.Errorf("Step of calendar months allocates %v times", n)
 	}
 }
+
+// TestFullToTheLastDigit: a store that is full stands at its capacity, not one rounding above it. 1.25 less the foot of its
+// last segment, and that foot added again, are not 1.25.
+func TestFullToTheLastDigit(t *testing.T) {
+	capacity := 1.2500000000000002
+	m := cascade.Model{
+		Cover:       cascade.Store{Capacity: capacity},
+		Percolation: cascade.Outlet{Rate: 1, Invert: 0.12500000000000033, Ceiling: 1.1102230246251565e-16},
+		Deep:        cascade.Store{Capacity: 1},
+	}
+	r, err := cascade.NewRun(m, capacity, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for range 3 {
+		if err := r.Step(0, 1); err != nil {
+			t.Fatal(err)
+		}
+		if cover, deep := r.Storage(); cover > capacity || deep > 1 {
+			t.Fatalf("storages %v, %v", cover, deep)
+		}
+	}
+}

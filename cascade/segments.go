@@ -54,6 +54,9 @@ func newSegments(capacity float64, outlets []Outlet) segments {
 	}
 	for i := range n {
 		s.base[i], s.width[i] = edges[i], edges[i+1]-edges[i]
+		if s.base[i]+s.width[i] > edges[i+1] { // by its rounding; no storage may come out above the capacity
+			s.width[i] = math.Nextafter(s.width[i], 0)
+		}
 	}
 	s.base[s.full] = top
 	for o, out := range outlets {
@@ -84,7 +87,7 @@ func (s segments) place(storage float64) (i int, u float64) {
 	if i == s.full || s.base[i] != storage {
 		i--
 	}
-	return i, storage - s.base[i]
+	return i, min(storage-s.base[i], s.width[i])
 }
 
 // within tells whether a storage is one that the store can have.
