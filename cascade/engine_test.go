@@ -757,7 +757,7 @@ func TestFullToTheLastDigit(t *testing.T) {
 	capacity := 1.2500000000000002
 	m := cascade.Model{
 		Cover:       cascade.Store{Capacity: capacity},
-		Percolation: cascade.Outlet{Rate: 1, Invert: 0.12500000000000033, Ceiling: 1.1102230246251565e-16},
+		Percolation: cascade.Outlet{Rate: 10, Invert: 0.12500000000000033, Ceiling: 1.1102230246251565e-16},
 		Deep:        cascade.Store{Capacity: 1},
 	}
 	r, err := cascade.NewRun(m, capacity, 1)
