@@ -146,7 +146,7 @@ func (d *decoder) ground(s *Study, b, record *blockValue) {
 		g.WarmUpYears = -1
 		warmUp.shown = "auto"
 	}
-	d.checkGround(g, "", func(key string) Place { return s.PlaceOf("ground." + key) })
+	d.checkGround(g, nil, "", func(key string) Place { return s.PlaceOf("ground." + key) })
 	if g.Start != nil {
 		d.checkStart(g, "", start.block.get("cover").place, start.block.get("deep").place)
 	}
@@ -165,15 +165,18 @@ func fullLevel(v *value, thickness float64) float64 {
 }
 
 // checkGround refuses stores from which nothing can leave. Where says how the numbers came about, for an option's
-// ground.
-func (d *decoder) checkGround(g *Ground, where string, at func(key string) Place) {
-	if g.CoverSeepage == 0 && g.Percolation == 0 {
+// ground; before is then the ground of the study, whose own faults were said there.
+func (d *decoder) checkGround(g, before *Ground, where string, at func(key string) Place) {
+	if g.coverClosed() && (before == nil || !before.coverClosed()) {
 		d.add(at("cover.seepage"), "%snothing can leave the cover, since seepage and percolation are both 0 /d; give at least one of them a rate", where)
 	}
-	if g.DeepSeepage == 0 {
+	if g.deepClosed() && (before == nil || !before.deepClosed()) {
 		d.add(at("deep.seepage"), "%snothing can leave the deep layer, since its seepage is 0 /d; give it a rate", where)
 	}
 }
+
+func (g *Ground) coverClosed() bool { return g.CoverSeepage == 0 && g.Percolation == 0 }
+func (g *Ground) deepClosed() bool  { return g.DeepSeepage == 0 }
 
 // checkStart refuses start levels that a store cannot hold.
 func (d *decoder) checkStart(g *Ground, where string, cover, deep Place) {
@@ -418,22 +421,10 @@ func (d *decoder) measures(s *Study, o *Option, b *blockValue) {
 		return
 	}
 	g := s.Ground
+	var changes []Assignment
 	if set := b.get("set"); set.block != nil {
-		m := Measure{Key: "set", Place: set.place}
-		for _, key := range set.block.order {
-			v := set.block.get(key)
-			a := Assignment{Key: key, Value: v.none(), Text: v.text, Place: v.place}
-			m.Set = append(m.Set, a)
-			if strings.HasPrefix(key, "soil.") && g.Soil == nil {
-				d.add(v.place, "the study has no ground.soil to change; give it there first")
-				continue
-			}
-			g.assign(a)
-		}
-		if set.block.empty {
-			d.add(set.place, "set changes nothing; give a number of ground, such as {cover.seepage: 0.02 /d}, or delete the key")
-		}
-		d.checkChanged(s, o, &g, m.Set, set.place)
+		changes = d.changes(&g, set)
+		d.checkChanged(s, &g, changes, set.place)
 	}
 	for _, key := range b.order {
 		v := b.get(key)
@@ -448,17 +439,33 @@ func (d *decoder) measures(s *Study, o *Option, b *blockValue) {
 		case key == "surface_water":
 			m.Cut = &SurfaceWater{KeptOut: v.block.get("kept_out").num}
 		case key == "set":
-			for _, k := range v.block.order {
-				c := v.block.get(k)
-				m.Set = append(m.Set, Assignment{Key: k, Value: c.none(), Text: c.text, Place: c.place})
-			}
+			m.Set = changes
 		}
 		o.Measures = append(o.Measures, m)
 	}
 }
 
+// changes reads a set and makes its changes to the ground.
+func (d *decoder) changes(g *Ground, set *value) []Assignment {
+	var changes []Assignment
+	for _, key := range set.block.order {
+		v := set.block.get(key)
+		a := Assignment{Key: key, Value: v.none(), Text: v.text, Place: v.place}
+		changes = append(changes, a)
+		if strings.HasPrefix(key, "soil.") && g.Soil == nil {
+			d.add(v.place, "the study has no ground.soil to change; give it there first")
+			continue
+		}
+		g.assign(a)
+	}
+	if set.block.empty {
+		d.add(set.place, "set changes nothing; give a number of ground, such as {cover.seepage: 0.02 /d}, or delete the key")
+	}
+	return changes
+}
+
 // checkChanged checks the ground as set leaves it, where it differs from the ground of the study.
-func (d *decoder) checkChanged(s *Study, o *Option, g *Ground, set []Assignment, place Place) {
+func (d *decoder) checkChanged(s *Study, g *Ground, set []Assignment, place Place) {
 	at := func(keys ...string) Place {
 		for _, key := range keys {
 			for _, a := range set {
@@ -471,15 +478,7 @@ func (d *decoder) checkChanged(s *Study, o *Option, g *Ground, set []Assignment,
 	}
 	changed := func(keys ...string) bool { return at(keys...) != place }
 	if changed("cover.seepage", "cover.percolation", "deep.seepage") {
-		before := s.Ground
-		// What is wrong with the ground of the study was said there.
-		if before.CoverSeepage == 0 && before.Percolation == 0 {
-			g.CoverSeepage = math.NaN()
-		}
-		if before.DeepSeepage == 0 {
-			g.DeepSeepage = math.NaN()
-		}
-		d.checkGround(g, "in this option ", func(key string) Place { return at(key, "cover.percolation") })
+		d.checkGround(g, &s.Ground, "in this option ", func(key string) Place { return at(key, "cover.percolation") })
 	}
 	if changed("cover.full_at", "deep.full_at") && g.Start != nil && s.Ground.Start.Cover <= s.Ground.CoverFullAt+tie && s.Ground.Start.Deep <= s.Ground.DeepFullAt+tie {
 		d.checkStart(g, "in this option ", at("cover.full_at"), at("deep.full_at"))
@@ -495,49 +494,32 @@ func (d *decoder) checkChanged(s *Study, o *Option, g *Ground, set []Assignment,
 	}
 }
 
+// groundNumbers are the places of the numbers that set may change. Those of a soil need one.
+var groundNumbers = map[string]func(*Ground) *float64{
+	"surface.infiltration":       func(g *Ground) *float64 { return &g.Infiltration },
+	"surface.infiltration_limit": func(g *Ground) *float64 { return &g.InfiltrationLimit },
+	"soil.available_water":       func(g *Ground) *float64 { return &g.Soil.Available },
+	"soil.readily_available":     func(g *Ground) *float64 { return &g.Soil.Readily },
+	"soil.crop_factor":           func(g *Ground) *float64 { return &g.Soil.CropFactor },
+	"cover.drainable_porosity":   func(g *Ground) *float64 { return &g.CoverPorosity },
+	"cover.seepage":              func(g *Ground) *float64 { return &g.CoverSeepage },
+	"cover.percolation":          func(g *Ground) *float64 { return &g.Percolation },
+	"cover.percolation_ceiling":  func(g *Ground) *float64 { return &g.PercolationCap },
+	"cover.conductivity":         func(g *Ground) *float64 { return &g.CoverConductivity },
+	"cover.full_at":              func(g *Ground) *float64 { return &g.CoverFullAt },
+	"deep.drainable_porosity":    func(g *Ground) *float64 { return &g.DeepPorosity },
+	"deep.seepage":               func(g *Ground) *float64 { return &g.DeepSeepage },
+	"deep.lateral_inflow":        func(g *Ground) *float64 { return &g.Lateral },
+	"deep.full_at":               func(g *Ground) *float64 { return &g.DeepFullAt },
+}
+
 // assign changes one number of the ground.
 func (g *Ground) assign(a Assignment) {
 	if strings.HasPrefix(a.Key, "soil.") {
-		if g.Soil == nil {
-			return
-		}
 		soil := *g.Soil // the ground of the study keeps its own
 		g.Soil = &soil
 	}
-	switch a.Key {
-	case "surface.infiltration":
-		g.Infiltration = a.Value
-	case "surface.infiltration_limit":
-		g.InfiltrationLimit = a.Value
-	case "soil.available_water":
-		g.Soil.Available = a.Value
-	case "soil.readily_available":
-		g.Soil.Readily = a.Value
-	case "soil.crop_factor":
-		g.Soil.CropFactor = a.Value
-	case "cover.drainable_porosity":
-		g.CoverPorosity = a.Value
-	case "cover.seepage":
-		g.CoverSeepage = a.Value
-	case "cover.percolation":
-		g.Percolation = a.Value
-	case "cover.percolation_ceiling":
-		g.PercolationCap = a.Value
-	case "cover.conductivity":
-		g.CoverConductivity = a.Value
-	case "cover.full_at":
-		g.CoverFullAt = a.Value
-	case "deep.drainable_porosity":
-		g.DeepPorosity = a.Value
-	case "deep.seepage":
-		g.DeepSeepage = a.Value
-	case "deep.lateral_inflow":
-		g.Lateral = a.Value
-	case "deep.full_at":
-		g.DeepFullAt = a.Value
-	default:
-		panic("scenario: set of the unknown key " + a.Key)
-	}
+	*groundNumbers[a.Key](g) = a.Value
 }
 
 func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {

@@ -1,14 +1,10 @@
 package main
 
 import (
-	"context"
-	"io"
-
 	"github.com/urfave/cli/v2"
 
 	"quietslope/cmd/quietslope/render"
 	"quietslope/scenario"
-	"quietslope/scenario/result"
 )
 
 // checkCommand says what a study means, before anything is replayed but the baseline.
@@ -29,25 +25,7 @@ Examples:
   quietslope check testdata/demo/study.yaml
   quietslope check --format json study.yaml
 `,
-		Flags: []cli.Flag{formatFlag(), outFlag()},
-		Action: func(c *cli.Context) error {
-			o, err := outputFrom(c)
-			if err != nil {
-				return err
-			}
-			return check(c.Context, c.Args().First(), o)
-		},
+		Flags:  []cli.Flag{formatFlag(), outFlag()},
+		Action: func(c *cli.Context) error { return answer(c, scenario.Check, render.Check) },
 	}
-}
-
-func check(ctx context.Context, path string, o *output) error {
-	s, err := loadStudy(ctx, path, o)
-	if err != nil {
-		return err
-	}
-	found, err := await(ctx, func() (*result.Check, error) { return scenario.Check(ctx, s) })
-	if err != nil {
-		return err
-	}
-	return o.deliver(ctx, found, func(w io.Writer) error { return render.Check(w, found) })
 }

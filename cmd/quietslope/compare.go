@@ -1,14 +1,10 @@
 package main
 
 import (
-	"context"
-	"io"
-
 	"github.com/urfave/cli/v2"
 
 	"quietslope/cmd/quietslope/render"
 	"quietslope/scenario"
-	"quietslope/scenario/result"
 )
 
 // compareCommand replays every option of a study on the same weather and sets the results side by side.
@@ -31,25 +27,7 @@ Examples:
   quietslope compare testdata/demo/study.yaml
   quietslope compare study.yaml --format json --out result.json
 `,
-		Flags: []cli.Flag{formatFlag(), outFlag()},
-		Action: func(c *cli.Context) error {
-			o, err := outputFrom(c)
-			if err != nil {
-				return err
-			}
-			return compare(c.Context, c.Args().First(), o)
-		},
+		Flags:  []cli.Flag{formatFlag(), outFlag()},
+		Action: func(c *cli.Context) error { return answer(c, scenario.Compare, render.Comparison) },
 	}
-}
-
-func compare(ctx context.Context, path string, o *output) error {
-	s, err := loadStudy(ctx, path, o)
-	if err != nil {
-		return err
-	}
-	found, err := await(ctx, func() (*result.Comparison, error) { return scenario.Compare(ctx, s) })
-	if err != nil {
-		return err
-	}
-	return o.deliver(ctx, found, func(w io.Writer) error { return render.Comparison(w, found) })
 }

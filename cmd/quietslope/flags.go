@@ -82,10 +82,26 @@ func loadStudy(ctx context.Context, path string, o *output) (*scenario.Study, er
 	return s, nil
 }
 
-// deliver writes a result in the format asked for.
-func (o *output) deliver(ctx context.Context, result any, text func(io.Writer) error) error {
-	if o.json {
-		return o.write(ctx, func(w io.Writer) error { return render.JSON(w, result) })
+// answer is what a command does that finds a result from a study: it reads the study, finds the result, and writes it in
+// the format asked for.
+func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (*R, error), text func(io.Writer, *R) error) error {
+	ctx := c.Context
+	o, err := outputFrom(c)
+	if err != nil {
+		return err
 	}
-	return o.write(ctx, text)
+	s, err := loadStudy(ctx, c.Args().First(), o)
+	if err != nil {
+		return err
+	}
+	found, err := await(ctx, func() (*R, error) { return find(ctx, s) })
+	if err != nil {
+		return err
+	}
+	return o.write(ctx, func(w io.Writer) error {
+		if o.json {
+			return render.JSON(w, found)
+		}
+		return text(w, found)
+	})
 }

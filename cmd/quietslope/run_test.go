@@ -295,7 +295,7 @@ func TestFailedStdout(t *testing.T) {
 		}
 		b.Reset()
 		o := &output{stdout: failing{tt.err}}
-		err := o.deliver(t.Context(), nil, func(w io.Writer) error { _, err := io.WriteString(w, "x"); return err })
+		err := o.write(t.Context(), func(w io.Writer) error { _, err := io.WriteString(w, "x"); return err })
 		if code := report(t.Context(), &b, err); code != 1 || b.String() != tt.stderr {
 			t.Errorf("result: status %d, %q", code, &b)
 		}

@@ -199,11 +199,11 @@ func (v *view) counted() {
 
 // yearsText says which years were counted.
 func yearsText(r *result.Record, starts string) string {
-	span := "calendar years"
+	counted := plural(r.YearsCounted, "complete calendar year")
 	if last := monthBefore(starts); last != "" && starts != "January" {
-		span = fmt.Sprintf("years from %s to %s", starts, last)
+		counted = fmt.Sprintf("%s from %s to %s", plural(r.YearsCounted, "complete year"), starts, last)
 	}
-	text := fmt.Sprintf("%d complete %s, %s to %s", r.YearsCounted, strings.Replace(span, "years", map[bool]string{true: "year", false: "years"}[r.YearsCounted == 1], 1), r.CountedFrom, r.CountedTo)
+	text := fmt.Sprintf("%s, %s to %s", counted, r.CountedFrom, r.CountedTo)
 	if r.PartialDays > 0 {
 		text += fmt.Sprintf("; %s d at the ends are replayed, not counted", days(r.PartialDays))
 	}

@@ -146,7 +146,7 @@ func depth(mm float64) string {
 }
 
 // rate prints a rate: at most three significant digits, no padding.
-func rate(x float64) string { return strconv.FormatFloat(x, 'g', most, 64) }
+func rate(x float64) string { return typed(x, most) }
 
 // percent prints a share as a whole percentage, without claiming all or none where it is not.
 func percent(share float64) string {
