@@ -20,10 +20,13 @@ func TestImportsPointOneWay(t *testing.T) {
 		"quietslope/scenario/fault":    {},
 		"quietslope/cascade":           {},
 		"quietslope/cascade/drain":     {},
+		"quietslope/cascade/scheme":    {},
+		"quietslope/cascade/slope":     {},
 		"quietslope/cascade/soil":      {},
 		"quietslope/stats":             {},
 	}
-	pure := []string{"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/soil", "quietslope/stats"}
+	pure := []string{"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/scheme", "quietslope/cascade/slope",
+		"quietslope/cascade/soil", "quietslope/stats"}
 
 	out, err := exec.Command("go", "list", "-f", `{{.ImportPath}} {{join .Imports " "}}`, "quietslope/...").Output()
 	if err != nil {
