@@ -21,6 +21,7 @@ type value struct {
 	num   float64 // of a number or quantity, in the base unit; NaN where there is none, so that comparisons are false
 	text  string  // as typed, or the word
 	word  bool    // text is one of the shape's words
+	bare  bool    // a bare number where the shape allows one beside a quantity
 	texts []string
 	block *blockValue
 	items []*value // of a list
@@ -29,11 +30,12 @@ type value struct {
 
 // blockValue is a block with its values by key. Order lists the keys that the study gives in the order of the file.
 type blockValue struct {
-	place  Place
-	values map[string]*value
-	order  []string
-	later  []string // keys that were refused as not supported yet
-	empty  bool     // the study gives it without any key
+	place   Place
+	values  map[string]*value
+	order   []string
+	later   []string // keys that were refused as not supported yet
+	empty   bool     // the study gives it without any key
+	partial bool     // keys that it needs are not missing: what they were to be taken from was refused
 }
 
 // get returns the value of a key. It is never nil.
@@ -75,7 +77,7 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 	given := map[string]*node{}
 	refused := map[string]bool{} // present, but without a value that can be read
 	if n != nil {
-		b.empty = len(n.entries) == 0
+		b.empty, b.partial = len(n.entries) == 0, n.partial
 		known := make([]string, 0, len(fields))
 		for _, f := range fields {
 			known = append(known, f.name)
@@ -114,7 +116,7 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 			b.values[f.name] = d.readValue(v, &f.shape, at.Key)
 		case refused[f.name]:
 			b.values[f.name] = &value{place: at, given: true, bad: true, num: math.NaN()}
-		case f.need != "" && b.isLater("like"): // the other option would have it
+		case f.need != "" && b.partial:
 			b.values[f.name] = &value{place: at, bad: true, num: math.NaN()}
 		case f.need != "":
 			d.add(at, "the key is missing; give %s", f.need)
@@ -265,7 +267,7 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 		return bad("one value is wanted here, not a block of keys")
 	case listNode:
 		if strings.HasPrefix(key, "options[") {
-			return bad("a list of values is not supported yet; write an option for each value")
+			return bad("one value is wanted here; only a number of a measure may be a list, which makes an option of each value")
 		}
 		return bad("one value is wanted here, not a list")
 	}
@@ -412,6 +414,12 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		whole, err = quantity.ParseWhole(n.text)
 		v.num = float64(whole)
 	case formQuantity, formYears:
+		if s.bare {
+			if x, err := quantity.ParseNumber(n.text); err == nil { // its range is for whoever knows what it is
+				v.num, v.bare = x, true
+				return v
+			}
+		}
 		v.num, err = quantity.Parse(n.text, s.kind)
 		if inYears := s.form == formYears || s.kind == quantity.Duration && s.limits.lo >= 365; err != nil && inYears {
 			meant := "4"

@@ -7,6 +7,8 @@ import (
 	"strconv"
 	"strings"
 
+	"quietslope/cascade/scheme"
+	"quietslope/cascade/slope"
 	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
 	"quietslope/scenario/weather"
@@ -19,6 +21,7 @@ const tie = 1e-9
 // decodeStudy reads a study from its tree. What is wrong is added to found; the study then is not to be used.
 func decodeStudy(root *node, found *problems) *Study {
 	d := &decoder{problems: found, places: map[string]Place{}}
+	expandOptions(root, found)
 	file := d.readBlock(root, studyShape.fields, Place{})
 	s := &Study{
 		File:       found.src.file,
@@ -32,8 +35,10 @@ func decodeStudy(root *node, found *problems) *Study {
 	d.weather(s, file.sub("weather"))
 	d.site(s, file.sub("site"))
 	d.ground(s, file.sub("ground"), file.sub("weather"))
+	d.slope(s, file.get("slope"))
 	d.bands(s, file.get("bands"))
 	d.options(s, file.get("options"))
+	d.conditions(s, file.get("conditions"))
 	d.count(s, file.sub("count"), file.get("bands"))
 	d.declared(s, file.sub("declared"))
 	if len(found.list) == 0 {
@@ -89,6 +94,7 @@ func (d *decoder) weather(s *Study, b *blockValue) {
 	}
 	w.StampEnd = b.get("stamp").text == "end"
 	w.Missing = b.get("missing").texts
+	w.Gaps = b.get("gaps").text
 }
 
 func (d *decoder) site(s *Study, b *blockValue) {
@@ -121,6 +127,9 @@ func (d *decoder) ground(s *Study, b, record *blockValue) {
 		Lateral:           deep.get("lateral_inflow").num,
 		CalibratedTo:      b.get("calibrated_to").num,
 	}
+	from := b.sub("rates_from")
+	g.Scheme = schemeNamed(from.get("scheme").text)
+	g.SchemeStep = from.get("step").num
 	g.CoverFullAt = fullLevel(cover.get("full_at"), g.CoverThickness)
 	g.DeepFullAt = fullLevel(deep.get("full_at"), g.DeepThickness)
 	if soil != nil {
@@ -146,7 +155,9 @@ func (d *decoder) ground(s *Study, b, record *blockValue) {
 		g.WarmUpYears = -1
 		warmUp.shown = "auto"
 	}
-	d.checkGround(g, nil, "", func(key string) Place { return s.PlaceOf("ground." + key) })
+	at := func(key string) Place { return s.PlaceOf("ground." + key) }
+	d.checkGround(g, nil, "", at)
+	d.checkScheme(g, "", at)
 	if g.Start != nil {
 		d.checkStart(g, "", start.block.get("cover").place, start.block.get("deep").place)
 	}
@@ -178,6 +189,43 @@ func (d *decoder) checkGround(g, before *Ground, where string, at func(key strin
 func (g *Ground) coverClosed() bool { return g.CoverSeepage == 0 && g.Percolation == 0 }
 func (g *Ground) deepClosed() bool  { return g.DeepSeepage == 0 }
 
+// schemeNamed is the scheme of a word of rates_from, exact for any other.
+func schemeNamed(word string) scheme.Scheme {
+	for _, s := range []scheme.Scheme{scheme.Centred, scheme.Explicit, scheme.Implicit} {
+		if s.String() == word {
+			return s
+		}
+	}
+	return scheme.Exact
+}
+
+// checkScheme refuses rates that the formula they were calibrated with cannot have, and what cannot be converted.
+func (d *decoder) checkScheme(g *Ground, where string, at func(key string) Place) {
+	if g.Scheme == scheme.Exact {
+		return
+	}
+	if !math.IsInf(g.PercolationCap, 1) && !math.IsNaN(g.PercolationCap) {
+		d.add(at("cover.percolation_ceiling"), "%srates from the %s scheme cannot be converted beside a percolation_ceiling; leave the ceiling out, or give rates that were calibrated with exact steps", where, g.Scheme)
+	}
+	for _, store := range []struct {
+		key, name      string
+		rate, porosity float64
+	}{
+		{"cover.seepage", "cover, with seepage and percolation together,", g.CoverSeepage + g.Percolation, g.CoverPorosity},
+		{"deep.seepage", "deep layer", g.DeepSeepage, g.DeepPorosity},
+	} {
+		if math.IsNaN(store.rate) || math.IsNaN(g.SchemeStep) {
+			continue
+		}
+		exact, err := g.Scheme.ExactRate(store.rate, g.SchemeStep)
+		if err != nil {
+			d.add(at(store.key), "%sthe rate of the %s cannot come from the %s scheme: %v; check the rates and ground.rates_from", where, store.name, g.Scheme, err)
+		} else if n := store.porosity * store.rate / exact; n > 1 {
+			d.add(at(store.key), "%sconverted from the %s scheme the drainable porosity of the %s would be %s %%; check the rates and ground.rates_from", where, g.Scheme, store.name, short(100*n))
+		}
+	}
+}
+
 // checkStart refuses start levels that a store cannot hold.
 func (d *decoder) checkStart(g *Ground, where string, cover, deep Place) {
 	if g.Start.Cover > g.CoverFullAt+tie {
@@ -191,8 +239,32 @@ func (d *decoder) checkStart(g *Ground, where string, cover, deep Place) {
 // metres writes a level for a message, to a tenth of a millimetre.
 func metres(x float64) string { return quantity.Format(math.Round(x*1e4)/1e4, quantity.Length) }
 
+// slope reads the slope above the slip surface.
+func (d *decoder) slope(s *Study, v *value) {
+	b := v.block
+	if b == nil {
+		return
+	}
+	g := &s.Ground
+	depth := b.get("slip_depth")
+	if !depth.given {
+		depth.num = g.CoverThickness + g.DeepThickness
+		depth.shown = quantity.Format(depth.num, quantity.Length)
+	}
+	if depth.num > g.CoverThickness+g.DeepThickness+tie {
+		d.add(depth.place, "the slip surface lies %s deep, below the deep layer, whose base is %s below ground; levels there are not known", quoted(depth.text), metres(g.CoverThickness+g.DeepThickness))
+	}
+	s.Slope = &slope.Slope{
+		Angle: b.get("angle").num, Depth: depth.num, UnitWeight: b.get("unit_weight").num,
+		Friction: b.get("friction").num, Cohesion: b.get("cohesion").num, Standing: b.get("flow").text == "standing",
+	}
+}
+
+// bySafety is the key of a band that is given as a factor of safety.
+const bySafety = "factor_of_safety"
+
 // datums are the ways in which a band may be given.
-var datums = []string{"level", "elevation", "below_ground"}
+var datums = []string{"level", "elevation", "below_ground", bySafety}
 
 func (d *decoder) bands(s *Study, list *value) {
 	g := &s.Ground
@@ -212,8 +284,8 @@ func (d *decoder) bands(s *Study, list *value) {
 			}
 		}
 		if band.GivenAs == "" {
-			if b != nil && !b.isLater("factor_of_safety") {
-				d.add(item.place, "the band has no level; give level (above the base of the deep layer), elevation or below_ground")
+			if b != nil {
+				d.add(item.place, "the band has no level; give level (above the base of the deep layer), elevation, below_ground or factor_of_safety")
 			}
 			s.Bands = append(s.Bands, band)
 			continue
@@ -224,6 +296,8 @@ func (d *decoder) bands(s *Study, list *value) {
 				x -= base
 			case "below_ground":
 				x = g.CoverThickness + g.DeepThickness - x
+			case bySafety:
+				x = g.CoverThickness + g.DeepThickness - s.Slope.Depth + s.Slope.Level(x)
 			default:
 				return x
 			}
@@ -233,17 +307,80 @@ func (d *decoder) bands(s *Study, list *value) {
 		if band.GivenAs == "elevation" && !s.hasKey("site.ground_level") {
 			d.add(onset.place, "an elevation means nothing without site.ground_level; give it, or give the band as level or below_ground")
 		}
+		if band.GivenAs == bySafety && !d.checkSafety(s, onset, until) {
+			s.Bands = append(s.Bands, band)
+			continue
+		}
 		band.Level = convert(onset.num)
 		band.Until = band.Level
-		if until.given {
-			band.Until = convert(until.num)
-		} else {
+		switch {
+		case until.given:
+			band.Until = convert(d.untilNumber(until, band.GivenAs))
+		case band.GivenAs == bySafety:
+			until.num, until.shown = onset.num, quantity.FormatNumber(onset.num)
+		default:
 			until.num, until.shown = onset.num, quantity.Format(onset.num, quantity.Length)
+		}
+		if band.GivenAs == bySafety {
+			band.Safety = onset.num
 		}
 		d.checkBand(s, &band, onset, until)
 		band.Until = min(band.Until, band.Level)
 		s.Bands = append(s.Bands, band)
 	}
+}
+
+// untilNumber is the number of until, which is written as the band's own: NaN, and a problem, where it is not.
+func (d *decoder) untilNumber(until *value, givenAs string) float64 {
+	switch safety := givenAs == bySafety; {
+	case until.bad:
+	case until.bare == safety:
+		return until.num
+	case safety:
+		d.add(until.place, "the band is given as a factor of safety, and until is given in the same way; write a number without a unit, such as 1.1")
+	default:
+		_, err := quantity.Parse(until.text, quantity.Length)
+		d.add(until.place, "%v", err)
+	}
+	until.bad = true
+	return math.NaN()
+}
+
+// checkSafety refuses a factor of safety for which there is no level. It returns false where no level can be worked out.
+func (d *decoder) checkSafety(s *Study, onset, until *value) bool {
+	l := s.Slope
+	switch {
+	case l == nil && s.hasKey("slope"): // reported
+		return false
+	case l == nil:
+		d.add(onset.place, "a factor of safety needs the slope above the slip surface; give the block slope with angle, unit_weight and friction, or give the band as level")
+		return false
+	}
+	dry := l.FactorOfSafety(0)
+	if math.IsNaN(dry) {
+		return false
+	}
+	ok := true
+	for _, v := range []*value{onset, until} {
+		if !v.given || v.bad || v == until && !v.bare {
+			continue
+		}
+		h := l.Level(v.num)
+		switch {
+		case math.IsNaN(h):
+			ok = false
+		case h <= tie:
+			d.add(v.place, "no water level belongs to %s: even without water above the slip surface the slope has a factor of safety of %s; check slope, or write a lower factor", quoted(v.text), short(dry))
+			ok = false
+		case h > l.Uplift()+tie:
+			d.add(v.place, "for %s the water would have to stand %s above the slip surface, and from %s on it carries the whole weight of the ground; check slope, or write a higher factor", quoted(v.text), metres(h), metres(l.Uplift()))
+			ok = false
+		case v == until && v.num < onset.num:
+			d.add(v.place, "an event ends at or below the level at which it begins, so at a factor of safety of %s or more; %s is less", onset.text, quoted(v.text))
+			ok = false
+		}
+	}
+	return ok
 }
 
 // hasKey says whether the study gives a key.
@@ -414,6 +551,19 @@ func (d *decoder) options(s *Study, list *value) {
 	}
 }
 
+// conditions reads how the works hold up, besides as built.
+func (d *decoder) conditions(s *Study, list *value) {
+	seen := map[string]Place{}
+	for _, item := range list.items {
+		b := item.block
+		d.checkUnique("condition", b.get("name"), seen)
+		s.Conditions = append(s.Conditions, Condition{
+			Name: b.get("name").text, Drains: b.get("drains").num,
+			SurfaceWater: b.get("surface_water").num, Vegetation: b.get("vegetation").num,
+		})
+	}
+}
+
 // measures reads the measures of an option in the order of the file, and checks them in the ground as the option
 // leaves it.
 func (d *decoder) measures(s *Study, o *Option, b *blockValue) {
@@ -438,6 +588,13 @@ func (d *decoder) measures(s *Study, o *Option, b *blockValue) {
 			m.Bored = d.bored(&g, v.block)
 		case key == "surface_water":
 			m.Cut = &SurfaceWater{KeptOut: v.block.get("kept_out").num}
+		case key == "vegetation":
+			m.Vegetation = d.vegetation(s, v.block)
+		case key == "cut_off_drain":
+			m.CutOff = &CutOffDrain{Intercepted: v.block.get("intercepted").num}
+			if g.Lateral == 0 {
+				d.add(v.place, "a cut-off drain takes part of ground.deep.lateral_inflow, and there is none; give the inflow, or leave the drain out")
+			}
 		case key == "set":
 			m.Set = changes
 		}
@@ -479,6 +636,11 @@ func (d *decoder) checkChanged(s *Study, g *Ground, set []Assignment, place Plac
 	changed := func(keys ...string) bool { return at(keys...) != place }
 	if changed("cover.seepage", "cover.percolation", "deep.seepage") {
 		d.checkGround(g, &s.Ground, "in this option ", func(key string) Place { return at(key, "cover.percolation") })
+	}
+	if changed("cover.seepage", "cover.percolation", "deep.seepage", "cover.drainable_porosity", "deep.drainable_porosity", "cover.percolation_ceiling") {
+		d.checkScheme(g, "in this option ", func(key string) Place {
+			return at(key, "cover.percolation", "cover.drainable_porosity", "deep.drainable_porosity")
+		})
 	}
 	if changed("cover.full_at", "deep.full_at") && g.Start != nil && s.Ground.Start.Cover <= s.Ground.CoverFullAt+tie && s.Ground.Start.Deep <= s.Ground.DeepFullAt+tie {
 		d.checkStart(g, "in this option ", at("cover.full_at"), at("deep.full_at"))
@@ -522,6 +684,15 @@ func (g *Ground) assign(a Assignment) {
 	*groundNumbers[a.Key](g) = a.Value
 }
 
+// vegetation refuses planting that uses water of which the study knows nothing.
+func (d *decoder) vegetation(s *Study, b *blockValue) *Vegetation {
+	factor := b.get("pet_factor")
+	if !math.IsNaN(factor.num) && factor.num != 1 && s.Weather.PET == nil {
+		d.add(factor.place, "a pet_factor has nothing to multiply, since the weather has no evapotranspiration; give weather.columns.pet, or write 1 and the interception alone")
+	}
+	return &Vegetation{PETFactor: factor.num, Interception: b.get("interception").num}
+}
+
 func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 	depth, spacing, rate := b.get("depth"), b.get("spacing"), b.get("rate")
 	conductivity, equivalent, head, law := b.get("conductivity"), b.get("equivalent_depth"), b.get("working_head"), b.get("law")
@@ -541,7 +712,7 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 	switch {
 	case rate.given && spacing.given:
 		d.add(spacing.place, "the rate is given too; keep either the rate, or the spacing from which it is worked out")
-	case !rate.given && !spacing.given && !b.isLater("like"):
+	case !rate.given && !spacing.given && !b.partial:
 		d.add(b.place, "neither rate nor spacing is given; give the spacing, such as 12 m, with conductivity, or a rate that was measured or worked out elsewhere")
 	}
 	if rate.given {
@@ -557,14 +728,14 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 		return t
 	}
 	if !conductivity.given {
-		if g.CoverConductivity == 0 && !b.isLater("like") {
+		if g.CoverConductivity == 0 && !b.partial {
 			d.add(b.place, "the spacing needs the conductivity of the cover; give conductivity here or as ground.cover.conductivity, such as 0.02 m/d")
 		} else {
 			conductivity.num, conductivity.shown = g.CoverConductivity, quantity.Format(g.CoverConductivity, quantity.Conductivity)
 		}
 	}
 	switch {
-	case !equivalent.given && below > tie && !b.isLater("like"):
+	case !equivalent.given && below > tie && !b.partial:
 		d.add(b.place, "computing the equivalent depth is not supported yet; give equivalent_depth, the depth of flow below the trenches, or a depth of %s, which reaches the contact", metres(g.CoverThickness))
 	case !equivalent.given && math.Abs(below) <= tie:
 		equivalent.shown = "0 m"

@@ -18,6 +18,7 @@ type KeyDoc struct {
 	Required bool     // must be given wherever its block is
 	Default  string   // what stands in for a key that is left out, as it would be typed; "" for no fixed text
 	Absent   string   // what holds when the key is left out, in words, where Required and Default do not say it
+	List     bool     // a list of values may stand instead, which makes an option of each
 }
 
 // Keys describes every key of the study file that is supported, blocks before their keys, in the order of the
@@ -33,7 +34,7 @@ func keyDocs(docs []KeyDoc, fields []field, path string) []KeyDoc {
 		s := &f.shape
 		doc := KeyDoc{
 			Path: join(path, f.name), Says: f.says, Form: s.form.name(s.kind), Words: s.shownWords(), Range: s.rangeWords(),
-			Required: f.need != "", Default: f.def, Absent: f.absent,
+			Required: f.need != "", Default: f.def, Absent: f.absent, List: strings.HasPrefix(path, "options[].") && f.listable(),
 		}
 		switch s.form {
 		case formQuantity:

@@ -60,8 +60,8 @@ func TestKeysSamples(t *testing.T) {
 		{Path: "weather.missing", Form: "list of texts", Default: `["", NA]`},
 		{Path: "ground.cover.percolation_ceiling", Form: "flux", Units: quantity.Flux.Units(), Words: []string{"none"}, Range: "above 0 mm/d and at most 100000 mm/d", Default: "none"},
 		{Path: "ground.warm_up", Form: "whole number of years", Words: []string{"auto"}, Range: "from 0 y to 1000 y", Absent: "by default auto, or 0 y where start gives levels"},
-		{Path: "options[].trench_drains.depth", Form: "length", Units: quantity.Length.Units(), Range: "above 0 m and at most 500 m", Required: true},
-		{Path: "options[].set.cover.seepage", Form: "rate", Units: quantity.Rate.Units(), Range: "from 0 /d to 1000000 /d", Absent: "by default as in ground"},
+		{Path: "options[].trench_drains.depth", Form: "length", Units: quantity.Length.Units(), Range: "above 0 m and at most 500 m", Required: true, List: true},
+		{Path: "options[].set.cover.seepage", Form: "rate", Units: quantity.Rate.Units(), Range: "from 0 /d to 1000000 /d", Absent: "by default as in ground", List: true},
 		{Path: "declared.perched_water", Form: "word", Words: []string{"yes", "no", "unknown"}, Default: "unknown"},
 	} {
 		got := all[want.Path]
@@ -102,7 +102,7 @@ func TestKeysAreThoseRead(t *testing.T) {
 
 func TestLaterKeys(t *testing.T) {
 	later := LaterKeys()
-	for _, want := range []string{"weather.gaps as zero or month mean", "ground.deep.consolidation", "money", "options[].trench_drains.law as quadratic", "options[].cost"} {
+	for _, want := range []string{"weather.gaps as {from: …}", "ground.deep.consolidation", "money", "options[].trench_drains.law as quadratic", "options[].cost"} {
 		if !slices.Contains(later, want) {
 			t.Errorf("%s is missing from %q", want, later)
 		}

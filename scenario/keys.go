@@ -33,6 +33,7 @@ type shape struct {
 	later  []string      // words that are known but not supported yet
 	fields []field       // of a block, or of each block of a list
 	most   int           // largest number of items of a list of texts
+	bare   bool          // a quantity that may also be a bare number, for the decoder to tell apart
 }
 
 // limits is the range of a number.
@@ -66,6 +67,7 @@ const (
 	maxSpacing      = 10000 // m
 	maxArea         = 1e9   // m2
 	maxDrains       = 100000
+	maxSafety       = 10     // factor of safety; no slope that moves comes near
 	maxResamples    = 100000 // a year of them takes 0.8 MB
 	// A soil that meets the full demand down to its last tenth of a millimetre takes ever shorter parts of a day to
 	// work out. Allen et al. (1998, FAO-56, table 22) have 0.2 to 0.7 (range from memory).
@@ -97,6 +99,7 @@ var (
 	drainRateShape = amount(quantity.Rate, above(0, maxRate))
 	ceilingShape   = amount(quantity.Flux, above(0, maxFlux), "none")
 	fullAtShape    = amount(quantity.Length, above(0, maxLevel), "none")
+	angleShape     = amount(quantity.Angle, limits{lo: 0, hi: 90, loOpen: true, hiOpen: true})
 	answerShape    = shape{form: formWord, words: []string{"yes", "no", "unknown", "true", "false"}}
 )
 
@@ -176,7 +179,8 @@ var studyShape = block(
 		shape: weatherShape, need: "the record of rain: a block with file and columns"},
 	field{name: "ground", says: "the slope as calibrated: two layers, each one store of drainable water",
 		shape: groundShape, need: "the two layers: a block with cover and deep"},
-	notYet("slope"),
+	field{name: "slope", says: "the slope above the slip surface, for bands given as a factor of safety",
+		shape: slopeShape, def: "none"},
 	field{name: "bands", says: "the critical deep levels, from the lowest to the highest",
 		shape: shape{form: formList, fields: bandFields}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
 	field{name: "count", says: "how exceedances are counted and options ranked",
@@ -185,7 +189,8 @@ var studyShape = block(
 	notYet("climates"),
 	field{name: "options", says: "what could be done; all options are replayed on the same record",
 		shape: shape{form: formList, fields: optionFields}, need: "a list of what could be done, the first being the ground as it is: - name: as it stands"},
-	notYet("conditions"),
+	field{name: "conditions", says: "how the works hold up; every option is replayed in each, and as built", absent: "by default only as built",
+		shape: shape{form: formList, fields: conditionFields}, quiet: true},
 	field{name: "site", says: "where and how large the slope is",
 		shape: block(
 			field{name: "plan_area", says: "area of the slope in plan, to turn depths of water into volumes",
@@ -223,8 +228,8 @@ var weatherShape = block(
 		shape: oneOf("start", "end"), def: "start"},
 	field{name: "missing", says: "cells that stand for a missing value; a list given here replaces the default",
 		shape: shape{form: formTexts, most: 100}, def: `"", NA`},
-	field{name: "gaps", says: "what to do about missing values: refuse the record",
-		shape: shape{form: formWord, words: []string{"refuse"}, later: []string{"zero", "month mean"}}, def: "refuse"},
+	field{name: "gaps", says: "what to do about missing values; filled ones are counted and reported",
+		shape: shape{form: formWord, words: []string{"refuse", "zero", "month mean"}, later: []string{"{from: …}"}}, def: "refuse"},
 )
 
 var columnShape = block(
@@ -243,7 +248,13 @@ var groundShape = block(
 		shape: block(coverFields...), need: "the upper layer: a block with thickness, drainable_porosity, seepage and percolation"},
 	field{name: "deep", says: "the lower layer: clay with open fissures",
 		shape: block(deepFields...), need: "the lower layer: a block with thickness, drainable_porosity and seepage"},
-	notYet("rates_from"),
+	field{name: "rates_from", says: "the stepping formula that the rates were calibrated with",
+		shape: block(
+			field{name: "scheme", says: "the formula: centred is also called trapezoidal, explicit forward, implicit backward",
+				shape: oneOf("exact", "centred", "explicit", "implicit"), def: "exact"},
+			field{name: "step", says: "the step that the formula was used with",
+				shape: amount(quantity.Duration, above(0, 366)), def: "1 d"},
+		)},
 	field{name: "start", says: "where the replay begins: the steady levels under each option's own mean recharge, or levels",
 		shape: shape{form: formBlock, words: []string{"steady"}, fields: []field{
 			{name: "cover", says: "level in the cover at the start, above the contact",
@@ -258,18 +269,22 @@ var groundShape = block(
 	notYet("ensemble"),
 )
 
+// oneLevel is what holds of a band that does not give one of its levels.
+const oneLevel = "one of level, elevation, below_ground and factor_of_safety is required"
+
 var bandFields = []field{
 	{name: "name", says: "what begins at this level, such as movement onset",
 		shape: nameShape, need: "a name, such as movement onset"},
-	{name: "level", says: "height above the base of the deep layer", absent: "one of level, elevation and below_ground is required",
+	{name: "level", says: "height above the base of the deep layer", absent: oneLevel,
 		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
-	{name: "elevation", says: "height on the site's datum; needs site.ground_level", absent: "one of level, elevation and below_ground is required",
+	{name: "elevation", says: "height on the site's datum; needs site.ground_level", absent: oneLevel,
 		shape: datumShape, quiet: true},
-	{name: "below_ground", says: "depth below ground", absent: "one of level, elevation and below_ground is required",
+	{name: "below_ground", says: "depth below ground", absent: oneLevel,
 		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
-	notYet("factor_of_safety"),
+	{name: "factor_of_safety", says: "factor of safety at whose level the band begins; needs slope", absent: oneLevel,
+		shape: shape{form: formNumber, limits: above(0, maxSafety)}, quiet: true},
 	{name: "until", says: "level at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
-		shape: datumShape},
+		shape: shape{form: formQuantity, kind: quantity.Length, limits: atLeast(-1000, 10000), bare: true}},
 	notYet("loss_per_event"),
 	notYet("loss_per_day"),
 }
@@ -309,14 +324,30 @@ var optionFields = []field{
 		shape: block(
 			field{name: "kept_out", says: "share of the infiltration that no longer enters, over the whole plan area",
 				shape: shareShape, need: "the share of the infiltration that no longer enters, such as 10 %"},
-			notYet("like"),
+			likeField,
 		), quiet: true},
-	notYet("vegetation"),
-	notYet("cut_off_drain"),
+	{name: "vegetation", says: "planting, which uses more water and keeps some rain off the ground", absent: "may be left out",
+		shape: block(
+			field{name: "pet_factor", says: "what the evapotranspiration is multiplied by, besides soil.crop_factor",
+				shape: shape{form: formNumber, limits: atLeast(0, 5)}, need: "what the evapotranspiration is multiplied by, such as 1.10"},
+			field{name: "interception", says: "share of the rain that never reaches the ground",
+				shape: shareShape, def: "0 %"},
+			likeField,
+		), quiet: true},
+	{name: "cut_off_drain", says: "a drain uphill of the slope, which takes part of deep.lateral_inflow", absent: "may be left out",
+		shape: block(
+			field{name: "intercepted", says: "share of deep.lateral_inflow that no longer arrives",
+				shape: shareShape, need: "the share of deep.lateral_inflow that no longer arrives, such as 60 %"},
+			likeField,
+		), quiet: true},
 	{name: "set", says: "numbers of ground that this option changes, before its other measures act", absent: "may be left out",
 		shape: block(settable...), quiet: true},
 	notYet("cost"),
 }
+
+// likeField takes the measure of another option. The reader puts that option's keys in its place, before it is decoded.
+var likeField = field{name: "like", says: "name of an option above whose same measure is taken; keys beside it override", absent: "may be left out",
+	shape: filledShape, quiet: true}
 
 var trenchShape = block(
 	field{name: "depth", says: "depth of the trenches below ground, no deeper than the cover is thick",
@@ -340,7 +371,7 @@ var trenchShape = block(
 	field{name: "ceiling", says: "most that the trenches carry away",
 		shape: ceilingShape, def: "none"},
 	notYet("decline"),
-	notYet("like"),
+	likeField,
 )
 
 var boredShape = block(
@@ -357,8 +388,34 @@ var boredShape = block(
 	field{name: "length", says: "length of each bore; only a warning depends on it",
 		shape: amount(quantity.Length, above(0, maxLevel)), def: "none"},
 	notYet("decline"),
-	notYet("like"),
+	likeField,
 )
+
+var slopeShape = block(
+	field{name: "angle", says: "angle of the ground, and of the slip surface below it, to the horizontal",
+		shape: angleShape, need: "the angle of the slope, such as 11 deg"},
+	field{name: "slip_depth", says: "depth of the slip surface below ground, measured vertically", absent: "by default the thickness of cover and deep layer",
+		shape: amount(quantity.Length, above(0, maxThickness))},
+	field{name: "unit_weight", says: "weight of the ground above the slip surface, with its water",
+		shape: amount(quantity.UnitWeight, atLeast(8, 35)), need: "the unit weight of the ground, such as 19.5 kN/m3"},
+	field{name: "friction", says: "effective angle of friction on the slip surface; residual, where it has moved before",
+		shape: angleShape, need: "the angle of friction on the slip surface, such as 13.8 deg"},
+	field{name: "cohesion", says: "effective cohesion on the slip surface",
+		shape: amount(quantity.Stress, atLeast(0, 1e4)), def: "0 kPa"},
+	field{name: "flow", says: "how the water stands: parallel, seeping along the slope; standing, in open fissures without flow",
+		shape: oneOf("parallel", "standing"), def: "parallel"},
+)
+
+var conditionFields = []field{
+	{name: "name", says: "what the condition is called in every result",
+		shape: nameShape, need: "a name, such as neglected"},
+	{name: "drains", says: "share that is left of the rate of trench and bored drains, and of what a cut-off drain takes",
+		shape: shareShape, def: "100 %"},
+	{name: "surface_water", says: "share that is left of what surface_water keeps out",
+		shape: shareShape, def: "100 %"},
+	{name: "vegetation", says: "share that is left of the interception, and of what pet_factor adds",
+		shape: shareShape, def: "100 %"},
+}
 
 // declaredSays describes the keys of DeclaredKeys.
 var declaredSays = map[string]string{

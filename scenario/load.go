@@ -212,6 +212,14 @@ func (ps *problems) err() error {
 	slices.SortStableFunc(ps.list, func(a, b problem) int {
 		return cmp.Or(cmp.Compare(a.place.Line, b.place.Line), cmp.Compare(a.place.Col, b.place.Col))
 	})
+	// What one line says of several options is one problem.
+	said := map[problem]bool{}
+	ps.list = slices.DeleteFunc(ps.list, func(p problem) bool {
+		p.place.Key = ""
+		again := said[p]
+		said[p] = true
+		return again
+	})
 	var list fault.List
 	for i, p := range ps.list {
 		if i < fault.Most {

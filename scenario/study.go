@@ -2,6 +2,11 @@
 // two stores, replays the weather for every option, and fills in the results.
 package scenario
 
+import (
+	"quietslope/cascade/scheme"
+	"quietslope/cascade/slope"
+)
+
 // Study is a study file as understood: every default filled in, every number in the units of the package comment of
 // cascade, except levels and lengths, which are in m.
 type Study struct {
@@ -11,13 +16,15 @@ type Study struct {
 	PreparedBy string
 	CheckedBy  string
 
-	Weather  WeatherSpec
-	Ground   Ground
-	Bands    []Band // rising
-	Count    Count
-	Options  []Option // in the order of the file; exactly one has Baseline set
-	Site     Site
-	Declared Declared
+	Weather    WeatherSpec
+	Ground     Ground
+	Slope      *slope.Slope // nil for none
+	Bands      []Band       // rising
+	Count      Count
+	Options    []Option    // in the order of the file, one for each value of a list; exactly one has Baseline set
+	Conditions []Condition // besides as built
+	Site       Site
+	Declared   Declared
 
 	Understood []Entry // every key with the value in force, in the order of the documentation
 
@@ -42,7 +49,8 @@ type WeatherSpec struct {
 	PET      *WeatherColumn // nil for none
 	StampEnd bool
 	Missing  []string
-	Place    Place // of weather.file
+	Gaps     string // refuse, zero or month mean
+	Place    Place  // of weather.file
 }
 
 // WeatherColumn is a column of the weather file.
@@ -54,7 +62,7 @@ type Place struct {
 	Key       string
 }
 
-// Ground is the slope as calibrated.
+// Ground is the slope as calibrated: with the rates and porosities of the formula that it was calibrated with.
 type Ground struct {
 	Infiltration      float64 // share of the water at the surface
 	InfiltrationLimit float64 // mm/h; +Inf for none
@@ -74,6 +82,9 @@ type Ground struct {
 	Lateral       float64 // mm/d
 	DeepFullAt    float64 // m above the base of the deep layer; +Inf for none
 
+	Scheme     scheme.Scheme // the formula
+	SchemeStep float64       // its step, d
+
 	Start        *StartLevels // nil for steady
 	WarmUpYears  int          // -1 for auto
 	CalibratedTo float64      // m; NaN when not known
@@ -92,9 +103,10 @@ type Soil struct {
 // Band begins at a critical deep level and ends at the next band's.
 type Band struct {
 	Name    string
-	GivenAs string  // level, elevation or below_ground
+	GivenAs string  // level, elevation, below_ground or factor_of_safety
 	Level   float64 // m above the base of the deep layer
 	Until   float64 // arrest level, same datum, <= Level
+	Safety  float64 // the factor of safety that it was given as; 0 for any other
 	Place   Place
 }
 
@@ -120,12 +132,14 @@ type Option struct {
 
 // Measure is one part of an option. Exactly one of the pointers is set.
 type Measure struct {
-	Key    string // as in the study: trench_drains, bored_drains, surface_water, set
-	Place  Place
-	Trench *TrenchDrains
-	Bored  *BoredDrains
-	Cut    *SurfaceWater
-	Set    []Assignment
+	Key        string // as in the study: trench_drains, bored_drains, surface_water, vegetation, cut_off_drain, set
+	Place      Place
+	Trench     *TrenchDrains
+	Bored      *BoredDrains
+	Cut        *SurfaceWater
+	Vegetation *Vegetation
+	CutOff     *CutOffDrain
+	Set        []Assignment
 }
 
 // TrenchDrains act on the cover.
@@ -151,6 +165,26 @@ type BoredDrains struct {
 
 // SurfaceWater keeps a share of the infiltration out.
 type SurfaceWater struct{ KeptOut float64 }
+
+// Vegetation uses more water, or less, and keeps a share of the rain off the ground.
+type Vegetation struct {
+	PETFactor    float64 // of the evapotranspiration
+	Interception float64 // share of the rain
+}
+
+// CutOffDrain takes a share of the lateral inflow.
+type CutOffDrain struct{ Intercepted float64 }
+
+// Condition is how the works hold up: the shares that are left of what they do.
+type Condition struct {
+	Name         string
+	Drains       float64 // of the rate of every drain, and of what a cut-off drain takes
+	SurfaceWater float64 // of what surface water works keep out
+	Vegetation   float64 // of the interception, and of the distance of the factor of evapotranspiration from 1
+}
+
+// asBuilt is the condition that is always there.
+var asBuilt = Condition{Name: AsBuilt, Drains: 1, SurfaceWater: 1, Vegetation: 1}
 
 // Assignment changes a calibrated number.
 type Assignment struct {

@@ -164,7 +164,7 @@ func TestParseStudy(t *testing.T) {
 		Ground: Ground{
 			Infiltration: 0.85, InfiltrationLimit: inf, Soil: &Soil{Available: 120, Readily: 0.5, CropFactor: 1},
 			CoverThickness: 4, CoverPorosity: 0.06, CoverSeepage: 0.011, Percolation: 0.0045, PercolationCap: inf, CoverFullAt: 4,
-			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, DeepFullAt: 9,
+			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, DeepFullAt: 9, SchemeStep: 1,
 			Start: &StartLevels{1.2, 3.4}, WarmUpYears: 0, CalibratedTo: nan,
 		},
 		Bands: []Band{
@@ -314,12 +314,12 @@ func TestEveryNumberArrives(t *testing.T) {
 		File: "dir/wide.yaml", Title: "0+400: a title with a colon", PreparedBy: "A. N. Engineer's office",
 		Weather: WeatherSpec{
 			File: "records/weather.csv.gz", Path: filepath.Join("dir", "records", "weather.csv.gz"), Time: "time", Format: "iso",
-			Rain: WeatherColumn{"rain, mm", "0.1 mm"}, StampEnd: true, Missing: []string{"", "-999", "-999.0", "n/a"},
+			Rain: WeatherColumn{"rain, mm", "0.1 mm"}, StampEnd: true, Missing: []string{"", "-999", "-999.0", "n/a"}, Gaps: "refuse",
 		},
 		Ground: Ground{
 			Infiltration: 0.85, InfiltrationLimit: 20,
 			CoverThickness: 4, CoverPorosity: 0.06, CoverSeepage: 0.011, Percolation: 0, PercolationCap: 2.4, CoverConductivity: 0.0864, CoverFullAt: inf,
-			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, Lateral: 0.05, DeepFullAt: 8.5,
+			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, Lateral: 0.05, DeepFullAt: 8.5, SchemeStep: 1,
 			WarmUpYears: 12, CalibratedTo: nan,
 		},
 		Bands: []Band{
@@ -495,11 +495,10 @@ func TestKeysNowRefused(t *testing.T) {
 	walk(studyShape.fields, "")
 	want := strings.Fields(`
 		weather.columns.temperature weather.pet_from weather.snow
-		ground.deep.consolidation ground.rates_from ground.ensemble slope
-		bands.factor_of_safety bands.loss_per_event bands.loss_per_day count.target count.design_life money climates
+		ground.deep.consolidation ground.ensemble
+		bands.loss_per_event bands.loss_per_day count.target count.design_life money climates
 		options.minimum options.trench_drains.conductivity_below options.trench_drains.drain_radius options.trench_drains.decline
-		options.trench_drains.like options.bored_drains.decline options.bored_drains.like options.surface_water.like
-		options.vegetation options.cut_off_drain options.cost conditions readings fit`)
+		options.bored_drains.decline options.cost readings fit`)
 	if diff := cmp.Diff(want, got); diff != "" {
 		t.Errorf("(-want +got):\n%s", diff)
 	}

@@ -30,6 +30,7 @@ type node struct {
 	entries []entry        // of a block, in the order of the file
 	first   map[string]int // of a block: the line in which each key stands first
 	items   []*node        // of a list
+	partial bool           // of a block: keys that it needs stand in another block, which could not be had
 	line    int            // where it begins, counted from 1
 	col     int
 }

@@ -12,8 +12,8 @@ func TestImportsPointOneWay(t *testing.T) {
 	allowed := map[string][]string{
 		"quietslope/cmd/quietslope":        {"quietslope/cmd/quietslope/render", "quietslope/scenario", "quietslope/scenario/fault"},
 		"quietslope/cmd/quietslope/render": {"quietslope/scenario", "quietslope/scenario/result", "quietslope/stats"},
-		"quietslope/scenario": {"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/soil", "quietslope/stats",
-			"quietslope/scenario/fault", "quietslope/scenario/quantity", "quietslope/scenario/result", "quietslope/scenario/weather"},
+		"quietslope/scenario": {"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/scheme", "quietslope/cascade/slope",
+			"quietslope/cascade/soil", "quietslope/stats", "quietslope/scenario/fault", "quietslope/scenario/quantity", "quietslope/scenario/result", "quietslope/scenario/weather"},
 		"quietslope/scenario/weather":  {"quietslope/scenario/fault"},
 		"quietslope/scenario/quantity": {},
 		"quietslope/scenario/result":   {},
