@@ -75,6 +75,7 @@ type Settings struct {
 	BlockYears float64 `json:"block_years"`
 	DecideOn   string  `json:"decide_on,omitempty"`
 	DecideBy   string  `json:"decide_by"`
+	Against    string  `json:"against,omitempty"` // the option that changes are measured against, where it is not the baseline
 }
 
 // Band is a band of the study, with its level in every datum that is known.
@@ -85,6 +86,7 @@ type Band struct {
 	UntilM         float64  `json:"until_m"`
 	ElevationM     *float64 `json:"elevation_m,omitempty"`
 	BelowGroundM   float64  `json:"below_ground_m"`
+	FactorOfSafety *float64 `json:"factor_of_safety,omitempty"` // of a band that was given so
 	WithinReadings *bool    `json:"within_readings,omitempty"` // left out when calibrated_to is not known
 }
 
@@ -101,7 +103,8 @@ type Record struct {
 	CountedTo     string   `json:"counted_to"`
 	YearsCounted  int      `json:"years_counted"`
 	PartialDays   float64  `json:"partial_days"`
-	GapsFilled    int      `json:"gaps_filled"`
+	GapsFilled    int      `json:"gaps_filled"`           // steps
+	GapFilling    string   `json:"gap_filling,omitempty"` // zero or month mean; left out where nothing was filled
 	RainMMPerYear float64  `json:"rain_mm_per_year"`
 	PETMMPerYear  *float64 `json:"pet_mm_per_year,omitempty"`
 }
@@ -134,6 +137,7 @@ type Rates struct {
 	CoverPercolationPerDay     float64  `json:"cover_percolation_per_day"`
 	PercolationCeilingMMPerDay *float64 `json:"percolation_ceiling_mm_per_day,omitempty"`
 	DeepSeepagePerDay          float64  `json:"deep_seepage_per_day"`
+	Given                      *Rates   `json:"given,omitempty"` // before they were converted from a stepping scheme
 }
 
 // Drain is one drain of an option and what it carried over the counted years.
@@ -263,6 +267,33 @@ type Check struct {
 	Audit      Audit         `json:"audit"`
 	Start      StartFound    `json:"start"`
 	YearStarts string        `json:"year_starts"`
+	Conversion *Conversion   `json:"conversion,omitempty"` // left out where the rates are those of exact stores
+}
+
+// Conversion says how the rates of the ground were converted from the scheme that they were calibrated with.
+type Conversion struct {
+	Scheme            string           `json:"scheme"`
+	StepDays          float64          `json:"step_days"`
+	Cover             StoreConversion  `json:"cover"`
+	Deep              StoreConversion  `json:"deep"`
+	LargestDifference *LevelDifference `json:"largest_difference,omitempty"` // left out where the record has other steps
+}
+
+// StoreConversion is the total rate of a store's natural outlets and its drainable porosity, before and after.
+type StoreConversion struct {
+	GivenPerDay   float64 `json:"given_per_day"`
+	ExactPerDay   float64 `json:"exact_per_day"`
+	GivenPorosity float64 `json:"given_porosity"`
+	Porosity      float64 `json:"porosity"`
+}
+
+// LevelDifference is the largest difference of the end-of-step levels over the record when the ground without measures
+// is replayed by the scheme itself and by the exact stores, and the step in which it stands.
+type LevelDifference struct {
+	CoverM  float64 `json:"cover_m"`
+	DeepM   float64 `json:"deep_m"`
+	CoverAt string  `json:"cover_at"` // as the weather has the time
+	DeepAt  string  `json:"deep_at"`
 }
 
 // Understood is one key of the study with the value in force.
