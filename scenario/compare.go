@@ -452,11 +452,14 @@ func (p *prepared) recordFound() result.Record {
 		stamp = "end"
 	}
 	found := result.Record{
-		From: r.ISO(0), To: r.ISO(n - 1), Step: r.StepText(), StepDays: r.Days(), Stamp: stamp, Rows: n,
+		From: r.ISO(0), To: r.ISO(n - 1), Step: r.StepText(), Stamp: stamp, Rows: n,
 		WarmUpYears: p.replayer.warm.years,
 		CountedFrom: r.ISO(c.from), CountedTo: r.ISO(c.to - 1), YearsCounted: c.years,
-		PartialDays:   float64(n-(c.to-c.from)) * r.Days(),
+		PartialDays:   r.Span(0, c.from) + r.Span(c.to, n),
 		RainMMPerYear: total(r.Rain[c.from:c.to]) / years,
+	}
+	if days, _ := r.Stretch(0, n); !r.Monthly() {
+		found.StepDays = &days
 	}
 	if r.PET != nil {
 		pet := total(r.PET[c.from:c.to]) / years

@@ -37,7 +37,7 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 	if err != nil {
 		return nil, err
 	}
-	lo, hi, err := q.cut(p.record, s.Weather.StampEnd)
+	lo, hi, err := q.cut(p.record)
 	if err != nil {
 		return nil, err
 	}
@@ -99,15 +99,11 @@ func unknownName(flag, name string, known []string) error {
 	return &fault.Error{Key: flag, Text: fmt.Sprintf("the study has no %q; it has: %s", name, strings.Join(known, "; "))}
 }
 
-// cut finds the rows to write: those whose times, as the weather has them, lie between From and To.
-func (q *LevelsQuery) cut(r *weather.Record, stampEnd bool) (lo, hi int, err error) {
+// cut finds the rows to write: those whose times, as the weather has them, lie between From and To; of months, those that
+// begin in between.
+func (q *LevelsQuery) cut(r *weather.Record) (lo, hi int, err error) {
 	n := len(r.Rain)
-	row := func(t time.Time) int { // the first row with this time or a later one
-		if stampEnd {
-			t = t.Add(-r.Step)
-		}
-		return min(max(r.FirstFrom(t), 0), n)
-	}
+	row := func(t time.Time) int { return min(max(r.RowFrom(t), 0), n) }
 	lo, hi = 0, n
 	if q.From != "" {
 		from, _, err := parseMoment("--from", q.From, r)

@@ -52,11 +52,15 @@ func calendarOf(r *weather.Record, p period) stats.Calendar {
 	c := stats.Calendar{
 		Start: make([]float64, n), Days: make([]float64, n), Month: make([]uint8, n), Year: make([]int32, n), Years: p.years,
 	}
-	days := r.Days()
-	for i := range n {
-		c.Start[i] = float64(i) * days
-		c.Days[i] = days
-		c.Year[i] = -1
+	for i := 0; i < n; {
+		start := r.Span(0, i)
+		days, to := r.Stretch(i, n)
+		for k := range to - i {
+			c.Start[i+k] = start + float64(k)*days
+			c.Days[i+k] = days
+			c.Year[i+k] = -1
+		}
+		i = to
 	}
 	for _, m := range months(r) {
 		year := int32(-1)

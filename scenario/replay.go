@@ -149,10 +149,29 @@ func (p *replayer) warmUp(ctx context.Context, w *works, depths []float64, runs 
 		}
 		supply.fill(depths[:end], 0)
 		for _, run := range runs {
-			if err := run.Replay(depths[:end], p.record.Days(), nil, nil); err != nil {
+			if err := p.advance(run, 0, end, depths, nil, nil); err != nil {
 				return err
 			}
 		}
+	}
+	return nil
+}
+
+// advance replays the record's steps from..end-1, those of one length at a time. The series are of the whole record;
+// cover and deep, into which the storages go, may be nil.
+func (p *replayer) advance(run *cascade.Run, from, end int, depths, cover, deep []float64) error {
+	for from < end {
+		days, to := p.record.Stretch(from, end)
+		part := func(series []float64) []float64 {
+			if series == nil {
+				return nil
+			}
+			return series[from:to]
+		}
+		if err := run.Replay(depths[from:to], days, part(cover), part(deep)); err != nil {
+			return fmt.Errorf("from %s on: %w", p.record.ISO(from), err)
+		}
+		from = to
 	}
 	return nil
 }
@@ -165,7 +184,7 @@ func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error
 	if err != nil {
 		return 0, err
 	}
-	if err := run.Replay(t.recharge, p.record.Days(), nil, t.deep); err != nil {
+	if err := p.advance(run, 0, len(t.recharge), t.recharge, nil, t.deep); err != nil {
 		return 0, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
 	month := lowestMonth(p.record, t.deep)
@@ -190,8 +209,7 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		err := run.Replay(t.recharge[part.lo:part.hi], p.record.Days(), t.cover[part.lo:part.hi], t.deep[part.lo:part.hi])
-		if err != nil {
+		if err := p.advance(run, part.lo, part.hi, t.recharge, t.cover, t.deep); err != nil {
 			return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
 		}
 		*part.end = run.Totals()
@@ -204,7 +222,7 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 	}
 
 	first := min(counted.from+1, n)
-	if err := dry.Replay(t.recharge[:first], p.record.Days(), nil, nil); err != nil {
+	if err := p.advance(dry, 0, first, t.recharge, nil, nil); err != nil {
 		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
 	}
 	_, fromDry := dry.Storage()
@@ -245,7 +263,7 @@ func (p *replayer) startStorages(w *works, recharge []float64) (cover, deep floa
 	if len(ends) > 0 {
 		n = ends[len(ends)-1]
 	}
-	cover, deep, err = w.model.Steady(total(recharge[:n]) / (float64(n) * p.record.Days()))
+	cover, deep, err = w.model.Steady(total(recharge[:n]) / p.record.Span(0, n))
 	if err != nil {
 		return 0, 0, p.study.Fault(w.option.Place, "%v; give ground.start levels, or a level at which the store is full", err)
 	}

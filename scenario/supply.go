@@ -14,7 +14,7 @@ import (
 type supply struct {
 	record  *weather.Record
 	share   float64
-	limit   float64 // mm per step; +Inf for none
+	limit   float64 // mm/h; +Inf for none
 	keptOut float64
 	factor  float64 // of the record's evapotranspiration
 	soil    *soil.Store
@@ -24,7 +24,7 @@ type supply struct {
 // newSupply is the supply of an option's ground, with a soil that is full.
 func newSupply(g *Ground, keptOut float64, r *weather.Record) *supply {
 	s := &supply{
-		record: r, share: g.Infiltration, limit: g.InfiltrationLimit * 24 * r.Days(), keptOut: keptOut, factor: 1,
+		record: r, share: g.Infiltration, limit: g.InfiltrationLimit, keptOut: keptOut, factor: 1,
 	}
 	if g.Soil != nil {
 		s.factor = g.Soil.CropFactor
@@ -35,19 +35,22 @@ func newSupply(g *Ground, keptOut float64, r *weather.Record) *supply {
 
 // fill writes the net input of the record's steps from..from+len(depths)-1, mm per step.
 func (s *supply) fill(depths []float64, from int) {
-	days := s.record.Days()
-	for i := range depths {
-		in := (1 - s.keptOut) * min(s.share*s.record.Rain[from+i], s.limit)
-		if s.record.PET != nil {
-			demand := s.factor * s.record.PET[from+i]
-			if s.soil != nil {
-				var actual float64
-				in, actual = s.soil.Step(in, demand, days)
-				s.actual += actual
-			} else {
-				in -= demand
+	for i := 0; i < len(depths); {
+		days, to := s.record.Stretch(from+i, from+len(depths))
+		most := s.limit * 24 * days
+		for ; i < to-from; i++ {
+			in := (1 - s.keptOut) * min(s.share*s.record.Rain[from+i], most)
+			if s.record.PET != nil {
+				demand := s.factor * s.record.PET[from+i]
+				if s.soil != nil {
+					var actual float64
+					in, actual = s.soil.Step(in, demand, days)
+					s.actual += actual
+				} else {
+					in -= demand
+				}
 			}
+			depths[i] = in
 		}
-		depths[i] = in
 	}
 }

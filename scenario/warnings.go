@@ -173,7 +173,7 @@ func (p *prepared) groundWarnings(ws *warnings) {
 	case p.record.PET == nil:
 		ws.add(note("no_evapotranspiration"), "The weather has no evapotranspiration: all that infiltrates is recharge, in summer too. Give weather.columns.pet and ground.soil unless the infiltration share was calibrated so.")
 	}
-	if !math.IsInf(g.InfiltrationLimit, 1) && p.record.Step > time.Hour {
+	if !math.IsInf(g.InfiltrationLimit, 1) && (p.record.Monthly() || p.record.Step > time.Hour) {
 		ws.add(note("limit_hardly_acts"), "An infiltration limit hardly acts with steps of %s, over which rain is spread evenly. Give hourly or shorter steps, or lower the infiltration share instead.", p.record.StepText())
 	}
 	for _, q := range []struct {

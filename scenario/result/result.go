@@ -94,8 +94,8 @@ type Band struct {
 type Record struct {
 	From          string   `json:"from"` // first and last time as the weather has them, ISO 8601
 	To            string   `json:"to"`
-	Step          string   `json:"step"` // such as 1 d or 15 min
-	StepDays      float64  `json:"step_days"`
+	Step          string   `json:"step"`                // such as 1 month, 1 d or 15 min
+	StepDays      *float64 `json:"step_days,omitempty"` // left out for calendar months
 	Stamp         string   `json:"stamp"`
 	Rows          int      `json:"rows"`
 	WarmUpYears   int      `json:"warm_up_years"`

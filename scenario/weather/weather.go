@@ -32,8 +32,8 @@ type Column struct {
 type Record struct {
 	Name   string        // the file as messages name it
 	SHA256 string        // of the file's bytes as they are on disk, in hex
-	First  time.Time     // start of the first step; UTC, or for iso times the offset of the first row
-	Step   time.Duration // constant, 1 min to 1 d, in whole seconds
+	First  time.Time     // start of the first step, for months 00:00 of the 1st; UTC, or for iso times the offset of the first row
+	Step   time.Duration // constant, 1 min to 1 d, in whole seconds; 0 where every step is a calendar month
 	Rain   []float64     // mm per step
 	PET    []float64     // mm per step; nil when the record has none
 
@@ -42,14 +42,28 @@ type Record struct {
 	stampEnd bool
 }
 
+// Monthly says whether the steps are calendar months.
+func (r *Record) Monthly() bool { return r.Step == 0 }
+
 // Start is the time at which step i starts. Start(len(r.Rain)) is the end of the record.
 func (r *Record) Start(i int) time.Time {
+	if r.Monthly() {
+		return time.Date(r.First.Year(), r.First.Month()+time.Month(i), 1, 0, 0, 0, 0, r.First.Location())
+	}
 	// In seconds: a time.Duration holds 292 years only.
 	return time.Unix(r.First.Unix()+int64(i)*int64(r.Step/time.Second), 0).In(r.First.Location())
 }
 
 // FirstFrom is the first step that starts at t or later. It may lie before the record (negative) or behind it.
 func (r *Record) FirstFrom(t time.Time) int {
+	if r.Monthly() {
+		t = t.In(r.First.Location())
+		n := 12*(t.Year()-r.First.Year()) + int(t.Month()-r.First.Month())
+		if t.After(r.Start(n)) {
+			n++
+		}
+		return n
+	}
 	d, step := t.Unix()-r.First.Unix(), int64(r.Step/time.Second)
 	n := d / step
 	if d > 0 && d%step != 0 {
@@ -58,8 +72,40 @@ func (r *Record) FirstFrom(t time.Time) int {
 	return int(n)
 }
 
-// Days is the length of a step in days.
-func (r *Record) Days() float64 { return r.Step.Hours() / 24 }
+// RowFrom is the first row whose time, as the weather has it, is t or later; a row of a month counts as the first of that
+// month, whatever its time names. It may lie before the record (negative) or behind it.
+func (r *Record) RowFrom(t time.Time) int {
+	n := r.FirstFrom(t)
+	if r.stampEnd && !r.Monthly() {
+		n--
+	}
+	return n
+}
+
+// Stretch is the length of step i in days, and the first step after it that has another length, at most end. Steps of a
+// constant length are one stretch, however many they are.
+func (r *Record) Stretch(i, end int) (days float64, to int) {
+	if !r.Monthly() {
+		return r.Step.Hours() / 24, end
+	}
+	length := func(i int) int {
+		t := r.Start(i)
+		return daysIn(t.Year(), int(t.Month()))
+	}
+	n := length(i)
+	for to = i + 1; to < end && length(to) == n; {
+		to++
+	}
+	return float64(n), to
+}
+
+// Span is the length of the steps i to j-1 together in days.
+func (r *Record) Span(i, j int) float64 {
+	if !r.Monthly() {
+		return float64(j-i) * (r.Step.Hours() / 24)
+	}
+	return float64((r.Start(j).Unix() - r.Start(i).Unix()) / daySeconds)
+}
 
 // Stamp is the time of row i as the weather has it: in its own format, and the end of the step where that is what its
 // times name. Times in iso format are all given with the offset of the first row.
@@ -71,8 +117,14 @@ func (r *Record) Stamp(i int) string {
 }
 
 // ISO is the time of row i in ISO 8601, start or end of the step as the weather has it: the date alone for steps of a
-// whole day from midnight, otherwise date and time, followed by the offset where the weather has offsets.
-func (r *Record) ISO(i int) string { return r.iso(r.stamped(i)) }
+// whole day from midnight, otherwise date and time, followed by the offset where the weather has offsets. A month is
+// named by itself, such as 2019-03, whatever its time names.
+func (r *Record) ISO(i int) string {
+	if r.Monthly() {
+		return r.iso(r.Start(i))
+	}
+	return r.iso(r.stamped(i))
+}
 
 func (r *Record) stamped(i int) time.Time {
 	if r.stampEnd {
@@ -84,6 +136,8 @@ func (r *Record) stamped(i int) time.Time {
 func (r *Record) iso(t time.Time) string {
 	h, m, s := r.First.Clock()
 	switch {
+	case r.Monthly():
+		return t.Format("2006-01")
 	case r.Step == day && h == 0 && m == 0 && s == 0:
 		return t.Format(time.DateOnly)
 	case r.zone != "":
@@ -94,8 +148,13 @@ func (r *Record) iso(t time.Time) string {
 	return t.Format("2006-01-02T15:04:05")
 }
 
-// StepText is the length of a step in words: 1 d, 1 h, 15 min.
-func (r *Record) StepText() string { return secondsText(int64(r.Step / time.Second)) }
+// StepText is the length of a step in words: 1 month, 1 d, 1 h, 15 min.
+func (r *Record) StepText() string {
+	if r.Monthly() {
+		return "1 month"
+	}
+	return secondsText(int64(r.Step / time.Second))
+}
 
 const day = 24 * time.Hour
 

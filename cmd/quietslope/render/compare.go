@@ -863,7 +863,11 @@ func (v *view) drains(c *result.Case) {
 
 // balance writes the water balance, one line per option.
 func (v *view) balance(c *result.Case) {
-	years := float64(v.c.Record.Rows) * v.c.Record.StepDays / 365.25
+	r := &v.c.Record
+	years := r.PartialDays/365.25 + float64(r.YearsCounted)
+	if r.StepDays != nil {
+		years = float64(r.Rows) * *r.StepDays / 365.25
+	}
 	if !(years > 0) || len(c.Options) == 0 {
 		return
 	}

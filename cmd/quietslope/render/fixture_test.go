@@ -55,7 +55,7 @@ func fixture(options []strengths, bands []string) *result.Comparison {
 		Defaults: []result.KeyValue{{Key: "count.resamples", Value: "2000"}, {Key: "weather.stamp", Value: "start"}},
 		Settings: result.Settings{YearStarts: "October", ApartDays: 10, Confidence: 0.9, Resamples: 2000, Seed: 1, BlockYears: 2,
 			DecideBy: "load"},
-		Record: result.Record{From: "1984-01-01", To: "2023-12-31", Step: "1 d", StepDays: 1, Stamp: "start", Rows: 14610, WarmUpYears: 4,
+		Record: result.Record{From: "1984-01-01", To: "2023-12-31", Step: "1 d", StepDays: new(1.0), Stamp: "start", Rows: 14610, WarmUpYears: 4,
 			CountedFrom: "1984-10-01", CountedTo: "2023-09-30", YearsCounted: years, PartialDays: 366, RainMMPerYear: 968.3, PETMMPerYear: ptr(691.2)},
 	}
 	for b, name := range bands {
