@@ -87,7 +87,7 @@ type Band struct {
 	ElevationM     *float64 `json:"elevation_m,omitempty"`
 	BelowGroundM   float64  `json:"below_ground_m"`
 	FactorOfSafety *float64 `json:"factor_of_safety,omitempty"` // of a band that was given so
-	WithinReadings *bool    `json:"within_readings,omitempty"` // left out when calibrated_to is not known
+	WithinReadings *bool    `json:"within_readings,omitempty"`  // left out when calibrated_to is not known
 }
 
 // Record describes the weather record and the years counted.
