@@ -15,7 +15,9 @@
 // zero at the ends of steps stays equal as well: with constant inflow the storage moves in one direction within a step.
 //
 // For the lower of two stores in series the conversion is approximate, since its inflow varies within the step where
-// the formula takes one value. [Scheme.Replay] steps both stores by the formula itself, to show by how much.
+// the formula takes one value: the mean of both ends, which errs by a small bend only, or one end, which brings the
+// water half a step late (explicit) or early (implicit). [Scheme.Replay] steps both stores by the formula itself, to
+// show by how much.
 //
 // Storages are mm, times days, rates 1/d.
 package scheme
