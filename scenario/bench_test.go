@@ -33,7 +33,7 @@ func BenchmarkCompare(b *testing.B) {
 			if err != nil {
 				b.Fatal(err)
 			}
-			c, err := Compare(context.Background(), s)
+			c, err := Compare(context.Background(), s, CompareQuery{})
 			if err != nil {
 				b.Fatal(err)
 			}

@@ -4,6 +4,7 @@ import (
 	"context"
 	"math"
 	"path/filepath"
+	"slices"
 	"time"
 
 	"quietslope/scenario/result"
@@ -21,11 +22,18 @@ const (
 type prepared struct {
 	study    *Study
 	record   *weather.Record
-	works    []*works
+	works    []*works    // of every option, as built
+	cases    []caseWorks // the first is as built
 	replayer *replayer
 	counted  period
 	baseline int
-	base     *trace // replay of the baseline
+	base     *trace // replay of the baseline, as built
+}
+
+// caseWorks are all the options in one condition of the works.
+type caseWorks struct {
+	condition string
+	works     []*works
 }
 
 // prepare reads the record, replays the baseline and settles the years that are counted.
@@ -34,18 +42,15 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	if err != nil {
 		return nil, err
 	}
-	p := &prepared{study: s, record: record}
-	for i := range s.Options {
-		w := newWorks(s, &s.Options[i])
-		if err := w.check(s); err != nil {
-			return nil, err
-		}
-		p.works = append(p.works, w)
-		if s.Options[i].Baseline {
-			p.baseline = i
-		}
+	p := &prepared{study: s, record: record, baseline: baselineOf(s)}
+	if err := p.work(); err != nil {
+		return nil, err
 	}
-	warm, err := newWarmUp(s, record, p.works)
+	var all []*works
+	for _, c := range p.cases {
+		all = append(all, c.works...)
+	}
+	warm, err := newWarmUp(s, record, all)
 	if err != nil {
 		return nil, err
 	}
@@ -69,6 +74,30 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	return p, err
 }
 
+// work works out every option in every condition.
+func (p *prepared) work() error {
+	s := p.study
+	p.cases = nil
+	for _, c := range append([]Condition{asBuilt}, s.Conditions...) {
+		found := caseWorks{condition: c.Name}
+		for i := range s.Options {
+			w := newWorks(s, &s.Options[i], &c)
+			if err := w.check(s); err != nil {
+				return err
+			}
+			found.works = append(found.works, w)
+		}
+		p.cases = append(p.cases, found)
+	}
+	p.works = p.cases[0].works
+	return nil
+}
+
+// baselineOf is the place of the baseline among the options.
+func baselineOf(s *Study) int {
+	return max(0, slices.IndexFunc(s.Options, func(o Option) bool { return o.Baseline }))
+}
+
 func weatherSource(s *Study) weather.Source {
 	w := &s.Weather
 	src := weather.Source{
@@ -82,44 +111,55 @@ func weatherSource(s *Study) weather.Source {
 	return src
 }
 
-// Compare replays every option of a study on its whole record and says how each passes every band. A *fault.Error in
-// the chain means that the study or the record is at fault; any other error is ours, the machine's or the context's.
-func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
+// CompareQuery says how options are compared. Its zero value compares them with the baseline.
+type CompareQuery struct {
+	Against string // name of the option that changes are measured against; "" for the baseline
+}
+
+// Compare replays every option of a study in every case on its whole record and says how each passes every band. A
+// *fault.Error in the chain means that the study, the record or the query is at fault; any other error is ours, the
+// machine's or the context's.
+func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison, error) {
+	against := baselineOf(s)
+	if q.Against != "" {
+		if against = slices.IndexFunc(s.Options, func(o Option) bool { return o.Name == q.Against }); against < 0 {
+			return nil, unknownName("--against", q.Against, optionNames(s))
+		}
+	}
 	p, err := prepare(ctx, s)
 	if err != nil {
 		return nil, err
 	}
-	years := p.counted.years
-	resamples := stats.NewResamples(years, s.Count.Resamples, s.Count.MeanBlock, s.Count.Seed)
+	resamples := stats.NewResamples(p.counted.years, s.Count.Resamples, s.Count.MeanBlock, s.Count.Seed)
 
-	options := make([]optionFigures, len(p.works))
-	err = each(len(p.works), func(i int) error {
-		if i == p.baseline {
-			options[i] = p.figures(p.base)
+	n := len(s.Options)
+	all := make([]optionFigures, n*len(p.cases)) // the options of each case in turn
+	err = each(len(all), func(i int) error {
+		if i == p.baseline { // of the first case
+			all[i] = p.figures(p.base)
 			return nil
 		}
-		t, err := p.replayer.replay(ctx, p.works[i], p.counted)
+		t, err := p.replayer.replay(ctx, p.cases[i/n].works[i%n], p.counted)
 		if err != nil {
 			return err
 		}
-		options[i] = p.figures(t)
+		all[i] = p.figures(t)
 		p.replayer.drop(t.recharge, t.cover, t.deep)
 		return nil
 	})
 	if err != nil {
 		return nil, err
 	}
-	err = each(len(options), func(i int) error {
+	err = each(len(all), func(i int) error {
 		if err := ctx.Err(); err != nil {
 			return err
 		}
-		p.judge(&options[i], &options[p.baseline], resamples)
+		p.judge(&all[i], &all[i/n*n+against], resamples)
 		return nil
 	})
 	if err != nil {
 		return nil, err
 	}
-	rank(s, options)
 
 	c := &result.Comparison{
 		Head:     p.head("compare"),
@@ -134,13 +174,30 @@ func Compare(ctx context.Context, s *Study) (*result.Comparison, error) {
 			c.Defaults = append(c.Defaults, result.KeyValue{Key: e.Key, Value: e.Value})
 		}
 	}
-	found := result.Case{Climate: AsRecorded, Condition: AsBuilt}
-	for i := range options {
-		found.Options = append(found.Options, options[i].Option)
+	if against != p.baseline {
+		c.Settings.Against = s.Options[against].Name
 	}
-	c.Cases = []result.Case{found}
-	c.Warnings = append(p.studyWarnings(options), p.resultWarnings(options, resamples)...)
+	raised := make([]warnings, len(p.cases))
+	for k, w := range p.cases {
+		options := all[k*n : (k+1)*n]
+		rank(s, options)
+		found := result.Case{Climate: AsRecorded, Condition: w.condition}
+		for i := range options {
+			found.Options = append(found.Options, options[i].Option)
+		}
+		c.Cases = append(c.Cases, found)
+		raised[k] = p.resultWarnings(options, against, resamples)
+	}
+	c.Warnings = append(p.studyWarnings(all[:n]), p.ofCases(raised)...)
 	return c, nil
+}
+
+func optionNames(s *Study) []string {
+	var names []string
+	for i := range s.Options {
+		names = append(names, s.Options[i].Name)
+	}
+	return names
 }
 
 // optionFigures is the result of one option, with what is still needed to compare it with others.
@@ -285,17 +342,17 @@ func (p *prepared) bandFigure(b *Band, e *stats.Exceedance) result.BandFigure {
 	return f
 }
 
-// judge adds the intervals that come from resampling the years, and the change against the baseline.
-func (p *prepared) judge(f, base *optionFigures, r *stats.Resamples) {
+// judge adds the intervals that come from resampling the years, and the change against another option.
+func (p *prepared) judge(f, against *optionFigures, r *stats.Resamples) {
 	confidence := p.study.Count.Confidence
 	for i := range f.Bands {
 		e, b := &f.passed[i], &f.Bands[i]
 		b.DaysPerYearCI = interval(r.Interval(e.DaysByYear, confidence))
 		b.LoadMDaysPerYearCI = interval(r.Interval(e.LoadByYear, confidence))
-		if f.Baseline {
+		if f == against {
 			continue
 		}
-		be := &base.passed[i]
+		be := &against.passed[i]
 		c := &result.Change{}
 		for _, m := range measures {
 			d := r.Compare(m.byYear(e), m.byYear(be), confidence)
@@ -437,6 +494,9 @@ func (p *prepared) bands() []result.Band {
 		if readings := s.Ground.CalibratedTo; !math.IsNaN(readings) {
 			within := b.Level <= readings
 			r.WithinReadings = &within
+		}
+		if b.GivenAs == bySafety {
+			r.FactorOfSafety = &b.Safety
 		}
 		bands = append(bands, r)
 	}

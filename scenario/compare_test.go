@@ -36,7 +36,7 @@ func load(t testing.TB, path string) *Study {
 
 func compare(t testing.TB, s *Study) *result.Comparison {
 	t.Helper()
-	c, err := Compare(context.Background(), s)
+	c, err := Compare(context.Background(), s, CompareQuery{})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -243,7 +243,7 @@ func deepLevels(t interface {
 }, s *Study, option int, r *weather.Record) *trace {
 	t.Helper()
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
-	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[option]), period{to: len(r.Rain)})
+	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[option], &asBuilt), period{to: len(r.Rain)})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -365,7 +365,7 @@ func TestSupply(t *testing.T) {
 				record.PET = nil
 			}
 			got := make([]float64, len(r.Rain))
-			newSupply(&tt.ground, tt.keptOut, &record).fill(got, 0)
+			newSupply(&tt.ground, uptake{keptOut: tt.keptOut, petFactor: 1}, &record).fill(got, 0)
 			for i := range got {
 				if math.Abs(got[i]-tt.want[i]) > 1e-12 {
 					t.Errorf("got %v, want %v", got, tt.want)
@@ -379,7 +379,7 @@ func TestSupply(t *testing.T) {
 // TestKeptOutMultiplies: shares that several measures keep out leave the product of what each lets in.
 func TestKeptOutMultiplies(t *testing.T) {
 	s := ground(Option{Name: "both", Measures: []Measure{{Cut: &SurfaceWater{KeptOut: 0.1}}, {Cut: &SurfaceWater{KeptOut: 0.5}}}})
-	if got := newWorks(s, &s.Options[1]).keptOut; math.Abs(got-0.55) > 1e-15 {
+	if got := newWorks(s, &s.Options[1], &asBuilt).keptOut; math.Abs(got-0.55) > 1e-15 {
 		t.Errorf("%v is kept out, want 0.55", got)
 	}
 }
@@ -464,7 +464,7 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 
 		for name, run := range map[string]func() error{
 			"compare": func() error {
-				c, err := Compare(context.Background(), s)
+				c, err := Compare(context.Background(), s, CompareQuery{})
 				if err == nil {
 					_, err = json.Marshal(c) // refuses NaN and infinity
 				}

@@ -71,7 +71,7 @@ func TestActualETOfCountedYears(t *testing.T) {
 	s, r := ground(), invented(5, 5)
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
 	c := period{from: 400, to: 400 + 3*365}
-	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[0]), c)
+	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -86,12 +86,12 @@ func TestFromDry(t *testing.T) {
 	s, r := ground(), invented(3, 2)
 	p := replayer{study: s, record: r}
 	c := period{from: 100, to: 500}
-	steady, err := p.replay(context.Background(), newWorks(s, &s.Options[0]), c)
+	steady, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
 	if err != nil {
 		t.Fatal(err)
 	}
 	s.Ground.Start = &StartLevels{}
-	dry, err := p.replay(context.Background(), newWorks(s, &s.Options[0]), c)
+	dry, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -109,7 +109,7 @@ func TestSteadyStart(t *testing.T) {
 	for i := range r.Rain {
 		r.Rain[i] = []float64{1, 3, 7}[i/365]
 	}
-	w := newWorks(s, &s.Options[0])
+	w := newWorks(s, &s.Options[0], &asBuilt)
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
 	tr, err := p.replay(context.Background(), w, period{from: 0, to: 730})
 	if err != nil {
@@ -199,7 +199,7 @@ func TestNeighboursByRank(t *testing.T) {
 		return f
 	}
 	var ws warnings
-	p.choiceWarnings(&ws, []optionFigures{option("base", 9, 9), option("least", 1, 1), option("most", 3, 5), option("least too", 1, 1)}, r)
+	p.choiceWarnings(&ws, []optionFigures{option("base", 9, 9), option("least", 1, 1), option("most", 3, 5), option("least too", 1, 1)}, 0, r)
 	if len(ws) != 1 || !strings.Contains(ws[0].Text, "tell apart: least / least too.") {
 		t.Errorf("%+v", ws)
 	}

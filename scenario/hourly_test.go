@@ -311,7 +311,7 @@ func TestFailingOption(t *testing.T) {
 	}}}})
 	s.Ground.WarmUpYears = 1
 	var fe *fault.Error
-	if _, err := Compare(context.Background(), s); !errors.As(err, &fe) {
+	if _, err := Compare(context.Background(), s, CompareQuery{}); !errors.As(err, &fe) {
 		t.Errorf("got %v", err)
 	}
 }

@@ -41,6 +41,12 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 	if err != nil {
 		return nil, err
 	}
+	chosen := p.cases[0]
+	for _, c := range p.cases {
+		if c.condition == q.Condition {
+			chosen = c
+		}
+	}
 	var wanted []int
 	for i := range s.Options {
 		if len(q.Options) == 0 || slices.Contains(q.Options, s.Options[i].Name) {
@@ -57,9 +63,9 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 	}
 	err = each(n, func(k int) error {
 		t := p.base
-		if i := wanted[k]; i != p.baseline {
+		if w := chosen.works[wanted[k]]; w != p.works[p.baseline] {
 			var err error
-			if t, err = p.replayer.replay(ctx, p.works[i], p.counted); err != nil {
+			if t, err = p.replayer.replay(ctx, w, p.counted); err != nil {
 				return err
 			}
 		}
@@ -74,10 +80,7 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 
 // check refuses names that the study does not have.
 func (q *LevelsQuery) check(s *Study) error {
-	var known []string
-	for i := range s.Options {
-		known = append(known, s.Options[i].Name)
-	}
+	known := optionNames(s)
 	for i, name := range q.Options {
 		if !slices.Contains(known, name) {
 			return unknownName("--option", name, known)
@@ -89,8 +92,12 @@ func (q *LevelsQuery) check(s *Study) error {
 	if q.Climate != "" && q.Climate != AsRecorded {
 		return unknownName("--climate", q.Climate, []string{AsRecorded})
 	}
-	if q.Condition != "" && q.Condition != AsBuilt {
-		return unknownName("--condition", q.Condition, []string{AsBuilt})
+	conditions := []string{AsBuilt}
+	for i := range s.Conditions {
+		conditions = append(conditions, s.Conditions[i].Name)
+	}
+	if q.Condition != "" && !slices.Contains(conditions, q.Condition) {
+		return unknownName("--condition", q.Condition, conditions)
 	}
 	return nil
 }

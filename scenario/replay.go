@@ -26,7 +26,7 @@ type warmUp struct {
 }
 
 // newWarmUp finds the warm-up of a study: as given, or for auto the least whole number of years that is at least 3 and
-// at least five times the longest time constant of either store over all options.
+// at least five times the longest time constant of either store over all options and conditions.
 func newWarmUp(s *Study, r *weather.Record, all []*works) (warmUp, error) {
 	years := s.Ground.WarmUpYears
 	if years < 0 {
@@ -111,7 +111,7 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (t *trac
 	t = &trace{works: w, recharge: p.series(), cover: p.series(), deep: p.series()}
 
 	// The water supply does not depend on the stores, so the record's comes first: the steady start needs its mean.
-	early := newSupply(&w.ground, w.keptOut, p.record)
+	early := newSupply(&w.ground, w.uptake, p.record)
 	scratch := make([]float64, p.longestPass())
 	for _, end := range p.warm.passes {
 		early.fill(scratch[:end], 0)
@@ -142,7 +142,7 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (t *trac
 
 // warmUp replays the warm-up. The water of a pass is worked out in depths, which hold the longest.
 func (p *replayer) warmUp(ctx context.Context, w *works, depths []float64, runs ...*cascade.Run) error {
-	supply := newSupply(&w.ground, w.keptOut, p.record)
+	supply := newSupply(&w.ground, w.uptake, p.record)
 	for _, end := range p.warm.passes {
 		if err := ctx.Err(); err != nil {
 			return err

@@ -296,15 +296,40 @@ func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 
 func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }
 
-// resultWarnings are those that the replays raise.
-func (p *prepared) resultWarnings(options []optionFigures, r *stats.Resamples) []result.Warning {
+// resultWarnings are those that the replays of one case raise. Changes are against one of the options.
+func (p *prepared) resultWarnings(options []optionFigures, against int, r *stats.Resamples) warnings {
 	ws := warnings{}
 	for i := range options {
 		p.replayWarnings(&ws, &options[i])
 	}
 	p.countWarnings(&ws, options)
-	p.choiceWarnings(&ws, options, r)
+	p.changeWarnings(&ws, options, against)
+	p.choiceWarnings(&ws, options, against, r)
 	return ws
+}
+
+// ofCases joins the warnings of all cases. One that every case raises in the same words is about none of them; any other
+// names its case.
+func (p *prepared) ofCases(raised []warnings) []result.Warning {
+	in := map[result.Warning]int{}
+	for _, ws := range raised {
+		for _, w := range ws {
+			in[w]++
+		}
+	}
+	all := []result.Warning{}
+	for k, ws := range raised {
+		for _, w := range ws {
+			switch {
+			case in[w] < len(raised):
+				w.Condition = p.cases[k].condition
+			case k > 0: // said of the first
+				continue
+			}
+			all = append(all, w)
+		}
+	}
+	return all
 }
 
 func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
@@ -334,7 +359,7 @@ func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
 	}
 }
 
-// countWarnings say where the counts are too small to carry a rate, and where two measures point opposite ways.
+// countWarnings say where the counts are too small to carry a rate.
 func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 	for b, band := range p.study.Bands {
 		for i := range options {
@@ -357,6 +382,10 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 			}
 		}
 	}
+}
+
+// changeWarnings say where two measures of a change point opposite ways.
+func (p *prepared) changeWarnings(ws *warnings, options []optionFigures, against int) {
 	for i := range options {
 		for b := range options[i].Bands {
 			c := options[i].Bands[b].Change
@@ -366,16 +395,24 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 			w := warn("days_and_events_disagree")
 			w.Option, w.Band = options[i].Name, options[i].Bands[b].Name
 			if c.DaysPerYear.Difference < 0 {
-				ws.add(w, "Fewer days but more events than the baseline: long events were split. Read days and load with the count.")
+				ws.add(w, "Fewer days but more events than %s: long events were split. Read days and load with the count.", p.called(against))
 			} else {
-				ws.add(w, "More days but fewer events than the baseline: events were joined. Read days and load with the count.")
+				ws.add(w, "More days but fewer events than %s: events were joined. Read days and load with the count.", p.called(against))
 			}
 		}
 	}
 }
 
+// called is what a text calls an option that others are compared with.
+func (p *prepared) called(option int) string {
+	if option == p.baseline {
+		return "the baseline"
+	}
+	return quoted(p.study.Options[option].Name)
+}
+
 // choiceWarnings say what the record cannot tell about the order of the options.
-func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stats.Resamples) {
+func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, against int, r *stats.Resamples) {
 	on := p.study.Count.DecideOn
 	if on < 0 || len(options) < 2 {
 		return
@@ -394,13 +431,13 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, r *stat
 		if c := options[i].Bands[on].Change; c != nil && !c.ToldApart {
 			w := warn("not_told_apart")
 			w.Option, w.Band = options[i].Name, band
-			ws.add(w, "Not told apart from the baseline on this record by %s. Do not read a benefit, or none, into the difference.", measureTitle(m.name))
+			ws.add(w, "Not told apart from %s on this record by %s. Do not read a benefit, or none, into the difference.", p.called(against), measureTitle(m.name))
 		}
 	}
 
-	var order []int // of the works; the baseline was held against each above
+	var order []int // of the others; each was held against that one above
 	for i := range options {
-		if !options[i].Baseline {
+		if i != against {
 			order = append(order, i)
 		}
 	}

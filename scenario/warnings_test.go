@@ -53,7 +53,7 @@ func quiet() *prepared {
 func (p *prepared) rework() {
 	p.works = nil
 	for i := range p.study.Options {
-		p.works = append(p.works, newWorks(p.study, &p.study.Options[i]))
+		p.works = append(p.works, newWorks(p.study, &p.study.Options[i], &asBuilt))
 	}
 }
 
@@ -279,7 +279,7 @@ func TestCountWarnings(t *testing.T) {
 				p.judge(&options[i], &options[0], r)
 			}
 			rank(p.study, options)
-			if got := codes(p.resultWarnings(options, r)); !slices.Equal(got, tt.want) {
+			if got := codes(p.resultWarnings(options, 0, r)); !slices.Equal(got, tt.want) {
 				t.Errorf("got %q, want %q", got, tt.want)
 			}
 		})

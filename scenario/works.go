@@ -7,6 +7,7 @@ import (
 
 	"quietslope/cascade"
 	"quietslope/cascade/drain"
+	"quietslope/cascade/scheme"
 	"quietslope/scenario/result"
 )
 
@@ -16,14 +17,22 @@ const (
 	inDeep  = "deep"
 )
 
-// works is an option made into numbers: the ground after its changes, the water that still enters, and the two stores
-// with the drains beside their natural outlets.
+// works is an option in one condition made into numbers: the ground after its changes, the water that still enters, and
+// the two stores with the drains beside their natural outlets.
 type works struct {
-	option  *Option
-	ground  Ground
-	keptOut float64 // share of the infiltration that no longer enters
-	drains  []drainage
-	model   cascade.Model
+	option *Option
+	ground Ground  // rates and porosities are those of exact stores
+	given  *Ground // the same before they were converted; nil where they were exact
+	uptake
+	drains []drainage
+	model  cascade.Model
+}
+
+// uptake is what an option does to the water on its way to the cover.
+type uptake struct {
+	keptOut      float64 // share of the infiltration that no longer enters
+	interception float64 // share of the rain that never reaches the ground
+	petFactor    float64 // of the evapotranspiration, besides the soil's crop factor
 }
 
 // check refuses a drain whose rate, worked out from its spacing, is beyond what can be replayed.
@@ -49,13 +58,18 @@ type drainage struct {
 }
 
 // newWorks applies an option's measures to the ground of the study: first the changed numbers, then everything else, so
-// that a trench is worked out in the ground that it is dug in.
-func newWorks(s *Study, o *Option) *works {
+// that a trench is worked out in the ground that it is dug in. Of what the works do, the shares of the condition are left.
+func newWorks(s *Study, o *Option, c *Condition) *works {
 	w := &works{option: o, ground: s.Ground}
 	for _, m := range o.Measures {
 		for _, a := range m.Set {
 			w.ground.assign(a)
 		}
+	}
+	if w.ground.Scheme != scheme.Exact {
+		given := w.ground
+		w.given = &given
+		w.ground.toExact()
 	}
 	g := &w.ground
 	w.model = cascade.Model{
@@ -64,26 +78,57 @@ func newWorks(s *Study, o *Option) *works {
 		Deep:        cascade.Store{Capacity: storage(g.DeepFullAt, g.DeepPorosity), Seepage: g.DeepSeepage},
 		Lateral:     g.Lateral,
 	}
-	enters := 1.0
+	w.petFactor = 1
 	for _, m := range o.Measures {
 		switch {
 		case m.Trench != nil:
-			w.addDrain(m, trench(m, g))
+			w.addDrain(m, trench(m, g), c)
 		case m.Bored != nil:
-			w.addDrain(m, bored(m))
+			w.addDrain(m, bored(m), c)
 		case m.Cut != nil:
-			enters *= 1 - m.Cut.KeptOut
+			w.keptOut = both(w.keptOut, c.SurfaceWater*m.Cut.KeptOut)
+		case m.Vegetation != nil:
+			w.interception = both(w.interception, c.Vegetation*m.Vegetation.Interception)
+			w.petFactor *= 1 + c.Vegetation*(m.Vegetation.PETFactor-1)
+		case m.CutOff != nil:
+			w.model.Lateral *= 1 - c.Drains*m.CutOff.Intercepted
 		}
 	}
-	w.keptOut = 1 - enters
 	return w
+}
+
+// both is the share that two measures keep back together: each acts on what the other lets through.
+func both(a, b float64) float64 { return 1 - (1-a)*(1-b) }
+
+// toExact converts the rates and porosities of a ground that was calibrated with a stepping scheme into those of exact
+// stores, which keep outflow and levels at the ends of steps (see package scheme). The rate of the scheme is that of a
+// store's natural outlets together; each of them keeps its part. The decoder has refused rates out of the scheme's range.
+func (g *Ground) toExact() {
+	convert := func(porosity *float64, rates ...*float64) {
+		total := 0.0
+		for _, r := range rates {
+			total += *r
+		}
+		exact, err := g.Scheme.ExactRate(total, g.SchemeStep)
+		if err != nil || total == 0 { // nothing flows, and nothing needs to be kept
+			return
+		}
+		for _, r := range rates {
+			*r *= exact / total
+		}
+		*porosity *= total / exact
+	}
+	convert(&g.CoverPorosity, &g.CoverSeepage, &g.Percolation)
+	convert(&g.DeepPorosity, &g.DeepSeepage)
 }
 
 // storage is the drainable water in mm below a level in m.
 func storage(level, porosity float64) float64 { return 1000 * porosity * level }
 
-func (w *works) addDrain(m Measure, d drainage) {
+// addDrain makes a drain one of the outlets of its store, at the rate that the condition leaves of it.
+func (w *works) addDrain(m Measure, d drainage, c *Condition) {
 	d.measure, d.place = m.Key, m.Place
+	d.rate *= c.Drains
 	store, porosity := &w.model.Cover, w.ground.CoverPorosity
 	if d.layer == inDeep {
 		store, porosity = &w.model.Deep, w.ground.DeepPorosity
@@ -153,6 +198,10 @@ func (o *Option) describe() []string {
 				besides(m.Bored.Efficiency, m.Bored.Ceiling))
 		case m.Cut != nil:
 			texts = append(texts, fmt.Sprintf("%s %% of the infiltration kept out", short(100*m.Cut.KeptOut)))
+		case m.Vegetation != nil:
+			texts = append(texts, m.Vegetation.describe())
+		case m.CutOff != nil:
+			texts = append(texts, fmt.Sprintf("cut-off drain, %s %% of the lateral inflow intercepted", short(100*m.CutOff.Intercepted)))
 		default:
 			for _, a := range m.Set {
 				texts = append(texts, a.Key+" set to "+a.Text)
@@ -160,6 +209,14 @@ func (o *Option) describe() []string {
 		}
 	}
 	return texts
+}
+
+func (v *Vegetation) describe() string {
+	text := fmt.Sprintf("planting, evapotranspiration times %s", short(v.PETFactor))
+	if v.Interception > 0 {
+		text += fmt.Sprintf(", %s %% of the rain intercepted", short(100*v.Interception))
+	}
+	return text
 }
 
 // besides says of a drain what its rate does not.
@@ -192,11 +249,18 @@ func (w *works) minZeroInvertRate() float64 {
 }
 
 func (w *works) rates() result.Rates {
+	r := w.ground.rates()
+	if w.given != nil {
+		given := w.given.rates()
+		r.Given = &given
+	}
+	return r
+}
+
+func (g *Ground) rates() result.Rates {
 	return result.Rates{
-		CoverSeepagePerDay:         w.model.Cover.Seepage,
-		CoverPercolationPerDay:     w.model.Percolation.Rate,
-		PercolationCeilingMMPerDay: finite(w.model.Percolation.Ceiling),
-		DeepSeepagePerDay:          w.model.Deep.Seepage,
+		CoverSeepagePerDay: g.CoverSeepage, CoverPercolationPerDay: g.Percolation,
+		PercolationCeilingMMPerDay: finite(g.PercolationCap), DeepSeepagePerDay: g.DeepSeepage,
 	}
 }
 

@@ -1,10 +1,13 @@
 package main
 
 import (
+	"context"
+
 	"github.com/urfave/cli/v2"
 
 	"quietslope/cmd/quietslope/render"
 	"quietslope/scenario"
+	"quietslope/scenario/result"
 )
 
 // compareCommand replays every option of a study on the same weather and sets the results side by side.
@@ -28,6 +31,11 @@ Examples:
   quietslope compare study.yaml --format json --out result.json
 `,
 		Flags:  []cli.Flag{formatFlag(), outFlag()},
-		Action: func(c *cli.Context) error { return answer(c, scenario.Compare, render.Comparison) },
+		Action: func(c *cli.Context) error {
+			compare := func(ctx context.Context, s *scenario.Study) (*result.Comparison, error) {
+				return scenario.Compare(ctx, s, scenario.CompareQuery{})
+			}
+			return answer(c, compare, render.Comparison)
+		},
 	}
 }

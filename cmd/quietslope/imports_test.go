@@ -10,7 +10,7 @@ import (
 // TestImportsPointOneWay holds the arrows of DEVELOPERS.md: each package may import only those of the module named here.
 func TestImportsPointOneWay(t *testing.T) {
 	allowed := map[string][]string{
-		"quietslope/cmd/quietslope":        {"quietslope/cmd/quietslope/render", "quietslope/scenario", "quietslope/scenario/fault"},
+		"quietslope/cmd/quietslope":        {"quietslope/cmd/quietslope/render", "quietslope/scenario", "quietslope/scenario/fault", "quietslope/scenario/result"},
 		"quietslope/cmd/quietslope/render": {"quietslope/scenario", "quietslope/scenario/result", "quietslope/stats"},
 		"quietslope/scenario": {"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/scheme", "quietslope/cascade/slope",
 			"quietslope/cascade/soil", "quietslope/stats", "quietslope/scenario/fault", "quietslope/scenario/quantity", "quietslope/scenario/result", "quietslope/scenario/weather"},
