@@ -52,7 +52,11 @@ func Check(ctx context.Context, s *Study) (*result.Check, error) {
 	for _, y := range a.Years {
 		c.Audit.Years = append(c.Audit.Years, result.YearRain(y))
 	}
+	if c.Conversion, err = p.conversion(ctx); err != nil {
+		return nil, err
+	}
 	ws := warnings(p.studyWarnings(nil))
+	conversionWarnings(&ws, c.Conversion)
 	f := optionFigures{Option: result.Option{Name: s.Options[p.baseline].Name}, trace: summarise(p.base)}
 	p.replayWarnings(&ws, &f)
 	c.Warnings = ws

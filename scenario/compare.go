@@ -188,7 +188,13 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 		c.Cases = append(c.Cases, found)
 		raised[k] = p.resultWarnings(options, against, resamples)
 	}
-	c.Warnings = append(p.studyWarnings(all[:n]), p.ofCases(raised)...)
+	ws := warnings(p.studyWarnings(all[:n]))
+	conversion, err := p.conversion(ctx)
+	if err != nil {
+		return nil, err
+	}
+	conversionWarnings(&ws, conversion)
+	c.Warnings = append(ws, p.ofCases(raised)...)
 	return c, nil
 }
 

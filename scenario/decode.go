@@ -184,7 +184,11 @@ func (d *decoder) unknownKey(at Place, key string, fields []field) string {
 	case near != "":
 		d.add(at, "unknown key; did you mean %s?", near)
 	case len(blocksWith(key, &studyShape, "")) > 0:
-		d.add(at, "this key does not belong here; it stands under %s", joinWords(blocksWith(key, &studyShape, ""), "or"))
+		here := ""
+		if len(known) <= 6 {
+			here = "; the keys here are " + joinWords(known, "and")
+		}
+		d.add(at, "this key does not belong here; it stands under %s%s", joinWords(blocksWith(key, &studyShape, ""), "or"), here)
 	default:
 		d.add(at, "unknown key; the keys here are %s", joinWords(known, "and"))
 	}
@@ -400,7 +404,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 			return bad("%s: %s", quoted(n.text), wrong)
 		}
 	case formWord:
-		return bad("%s cannot stand here; write %s", quoted(n.text), meantWord(n.text, s.words))
+		return bad("%s cannot stand here; write %s", quoted(n.text), s.meantWord(n.text))
 	case formMonth:
 		month := monthNamed(n.text)
 		if month == 0 {
@@ -478,8 +482,14 @@ func (l limits) words(s *shape) string {
 	return lo + write(l.lo) + " and " + hi + write(l.hi)
 }
 
-// meantWord lists words, or gives the one that was meant.
-func meantWord(text string, words []string) string {
+// meantWord lists the words of a shape, or gives the one that was meant.
+func (s *shape) meantWord(text string) string {
+	for _, m := range s.meant {
+		if strings.EqualFold(text, m[0]) {
+			return m[1]
+		}
+	}
+	words := s.words
 	if near := fault.Nearest(text, words); near != "" {
 		return near
 	}

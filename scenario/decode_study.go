@@ -157,7 +157,9 @@ func (d *decoder) ground(s *Study, b, record *blockValue) {
 	}
 	at := func(key string) Place { return s.PlaceOf("ground." + key) }
 	d.checkGround(g, nil, "", at)
-	d.checkScheme(g, "", at)
+	for _, wrong := range g.notConverted() {
+		d.add(at(wrong.key), "%s", wrong.text)
+	}
 	if g.Start != nil {
 		d.checkStart(g, "", start.block.get("cover").place, start.block.get("deep").place)
 	}
@@ -199,13 +201,17 @@ func schemeNamed(word string) scheme.Scheme {
 	return scheme.Exact
 }
 
-// checkScheme refuses rates that the formula they were calibrated with cannot have, and what cannot be converted.
-func (d *decoder) checkScheme(g *Ground, where string, at func(key string) Place) {
+// notConverted lists what stands in the way of turning rates from a stepping scheme into those of exact stores, and under
+// which key of the ground.
+func (g *Ground) notConverted() (wrong []struct{ key, text string }) {
 	if g.Scheme == scheme.Exact {
-		return
+		return nil
+	}
+	add := func(key, format string, args ...any) {
+		wrong = append(wrong, struct{ key, text string }{key, fmt.Sprintf(format, args...)})
 	}
 	if !math.IsInf(g.PercolationCap, 1) && !math.IsNaN(g.PercolationCap) {
-		d.add(at("cover.percolation_ceiling"), "%srates from the %s scheme cannot be converted beside a percolation_ceiling; leave the ceiling out, or give rates that were calibrated with exact steps", where, g.Scheme)
+		add("cover.percolation_ceiling", "rates from the %s scheme cannot be converted beside a percolation_ceiling; leave the ceiling out, or give rates that were calibrated with exact steps", g.Scheme)
 	}
 	for _, store := range []struct {
 		key, name      string
@@ -214,16 +220,17 @@ func (d *decoder) checkScheme(g *Ground, where string, at func(key string) Place
 		{"cover.seepage", "cover, with seepage and percolation together,", g.CoverSeepage + g.Percolation, g.CoverPorosity},
 		{"deep.seepage", "deep layer", g.DeepSeepage, g.DeepPorosity},
 	} {
-		if math.IsNaN(store.rate) || math.IsNaN(g.SchemeStep) {
+		if math.IsNaN(store.rate) || math.IsNaN(g.SchemeStep) { // reported
 			continue
 		}
 		exact, err := g.Scheme.ExactRate(store.rate, g.SchemeStep)
 		if err != nil {
-			d.add(at(store.key), "%sthe rate of the %s cannot come from the %s scheme: %v; check the rates and ground.rates_from", where, store.name, g.Scheme, err)
+			add(store.key, "the rate of the %s does not fit ground.rates_from: %v; check the rates, the scheme and its step", store.name, err)
 		} else if n := store.porosity * store.rate / exact; n > 1 {
-			d.add(at(store.key), "%sconverted from the %s scheme the drainable porosity of the %s would be %s %%; check the rates and ground.rates_from", where, g.Scheme, store.name, short(100*n))
+			add(store.key, "converted from the %s scheme the drainable porosity of the %s would be %s %%; check the rates and ground.rates_from", g.Scheme, store.name, short(100*n))
 		}
 	}
+	return wrong
 }
 
 // checkStart refuses start levels that a store cannot hold.
@@ -637,10 +644,10 @@ func (d *decoder) checkChanged(s *Study, g *Ground, set []Assignment, place Plac
 	if changed("cover.seepage", "cover.percolation", "deep.seepage") {
 		d.checkGround(g, &s.Ground, "in this option ", func(key string) Place { return at(key, "cover.percolation") })
 	}
-	if changed("cover.seepage", "cover.percolation", "deep.seepage", "cover.drainable_porosity", "deep.drainable_porosity", "cover.percolation_ceiling") {
-		d.checkScheme(g, "in this option ", func(key string) Place {
-			return at(key, "cover.percolation", "cover.drainable_porosity", "deep.drainable_porosity")
-		})
+	if len(s.Ground.notConverted()) == 0 {
+		for _, wrong := range g.notConverted() {
+			d.add(at(wrong.key, "cover.percolation", "cover.drainable_porosity", "deep.drainable_porosity"), "in this option %s", wrong.text)
+		}
 	}
 	if changed("cover.full_at", "deep.full_at") && g.Start != nil && s.Ground.Start.Cover <= s.Ground.CoverFullAt+tie && s.Ground.Start.Deep <= s.Ground.DeepFullAt+tie {
 		d.checkStart(g, "in this option ", at("cover.full_at"), at("deep.full_at"))

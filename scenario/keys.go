@@ -34,6 +34,7 @@ type shape struct {
 	fields []field       // of a block, or of each block of a list
 	most   int           // largest number of items of a list of texts
 	bare   bool          // a quantity that may also be a bare number, for the decoder to tell apart
+	meant  [][2]string   // other words that a person may write, and which of the shape's words is meant
 }
 
 // limits is the range of a number.
@@ -251,7 +252,10 @@ var groundShape = block(
 	field{name: "rates_from", says: "the stepping formula that the rates were calibrated with",
 		shape: block(
 			field{name: "scheme", says: "the formula: centred is also called trapezoidal, explicit forward, implicit backward",
-				shape: oneOf("exact", "centred", "explicit", "implicit"), def: "exact"},
+				shape: shape{form: formWord, words: []string{"exact", "centred", "explicit", "implicit"}, meant: [][2]string{
+					{"centered", "centred"}, {"central", "centred"}, {"trapezoidal", "centred"}, {"trapezium", "centred"}, {"crank-nicolson", "centred"},
+					{"forward", "explicit"}, {"euler", "explicit"}, {"backward", "implicit"}, {"analytical", "exact"}, {"exponential", "exact"},
+				}}, def: "exact"},
 			field{name: "step", says: "the step that the formula was used with",
 				shape: amount(quantity.Duration, above(0, 366)), def: "1 d"},
 		)},
@@ -403,7 +407,9 @@ var slopeShape = block(
 	field{name: "cohesion", says: "effective cohesion on the slip surface",
 		shape: amount(quantity.Stress, atLeast(0, 1e4)), def: "0 kPa"},
 	field{name: "flow", says: "how the water stands: parallel, seeping along the slope; standing, in open fissures without flow",
-		shape: oneOf("parallel", "standing"), def: "parallel"},
+		shape: shape{form: formWord, words: []string{"parallel", "standing"}, meant: [][2]string{
+			{"along", "parallel"}, {"slope", "parallel"}, {"hydrostatic", "standing"}, {"vertical", "standing"}, {"none", "standing"},
+		}}, def: "parallel"},
 )
 
 var conditionFields = []field{

@@ -15,6 +15,7 @@ import (
 
 // Limits at which a warning is raised.
 const (
+	schemeFelt       = 0.10 // m of deep level by which the converted stores leave the scheme: judgement
 	startFelt        = 0.01 // m of deep level at the first counted step that still depend on the start: judgement
 	closeToCapacity  = 0.10 // m below capacity within which peaks count as clipped: judgement
 	refusedShare     = 0.01 // of the percolation: judgement
@@ -37,6 +38,8 @@ const (
 	mostTrenchDepth   = 6.0   // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
 	mostBoreLength    = 100.0 // m: judgement
 	mostBoredShare    = 0.90  // efficiency of bored drains in clay: judgement
+	mostKeptOut       = 0.50  // of the infiltration over the whole plan area: judgement
+	mostIntercepted   = 0.90  // of the lateral inflow: judgement
 )
 
 // summarise keeps of a replay what the warnings ask of it.
@@ -290,7 +293,29 @@ func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 				at.Code = "bored_drains_efficient"
 				ws.add(at, "Bored drains are taken as %.0f %% efficient. In clay they often reach less water than planned; see what a lower efficiency does.", 100*m.Bored.Efficiency)
 			}
+		case m.Cut != nil && m.Cut.KeptOut > mostKeptOut:
+			at.Code = "much_kept_out"
+			ws.add(at, "Surface water works are taken to keep out %s %% of the infiltration. That is a share over the whole plan area, so run-off from at least that share of it must be collected and led away from the slope; check that it can be, or lower kept_out.", short(100*m.Cut.KeptOut))
+		case m.Vegetation != nil && (m.Vegetation.PETFactor != 1 || m.Vegetation.Interception > 0):
+			at.Code = "planting_at_once"
+			ws.add(at, "The planting acts in full from the first day and alike in all seasons. It takes years to grow, and does little in winter, when levels are high; do not count on it for the first years, and see what half of it does.")
+		case m.CutOff != nil && m.CutOff.Intercepted > mostIntercepted:
+			at.Code = "cut_off_complete"
+			ws.add(at, "The cut-off drain is taken to intercept %s %% of the lateral inflow. Water passes below and around it: no more can be taken than the share of the wet depth that it cuts; check its depth against that, or lower intercepted.", short(100*m.CutOff.Intercepted))
 		}
+	}
+}
+
+// conversionWarnings say where converted rates do not stand for the scheme that they were calibrated with.
+func conversionWarnings(ws *warnings, c *result.Conversion) {
+	switch {
+	case c == nil:
+	case c.LargestDifference == nil:
+		ws.add(note("conversion_unchecked"), "The rates come from the %s scheme with steps of %s d, and the record has other steps, so that the replay by the scheme cannot be held against the exact one. The deep store's conversion is approximate; check it on a record with those steps.",
+			c.Scheme, short(c.StepDays))
+	case c.LargestDifference.DeepM > schemeFelt:
+		ws.add(warn("conversion_differs"), "Replayed by the %s scheme itself the deep level differs by up to %.2f m (%s): the scheme lets the cover's water arrive early or late within a step. Calibrate again with exact steps, or take bands and readings as no surer than that.",
+			c.Scheme, c.LargestDifference.DeepM, c.LargestDifference.DeepAt)
 	}
 }
 

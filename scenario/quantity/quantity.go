@@ -11,6 +11,7 @@ import (
 	"fmt"
 	"math"
 	"math/big"
+	"regexp"
 	"strconv"
 	"strings"
 )
@@ -116,6 +117,11 @@ func Parse(text string, kind Kind) (float64, error) {
 	if number == "" {
 		return 0, notANumber(text, name, kind)
 	}
+	if kind == Angle {
+		if err := gradient(text); err != nil {
+			return 0, err
+		}
+	}
 	if err := misspelt(text, number, name); err != nil {
 		return 0, err
 	}
@@ -155,6 +161,25 @@ func change(text, number string, v float64) (float64, error) {
 
 // factorAsChange is a factor such as 1.15 written as the change it makes, rounded to a thousandth of a per cent.
 func factorAsChange(v float64) string { return Format(math.Round((v-1)*1e5)/1e5, Change) }
+
+// oneIn are the ways to write a gradient of one in n.
+var oneIn = regexp.MustCompile(`^1 *(?::|/|in) *([0-9]+(?:\.[0-9]+)?)$`)
+
+// gradient refuses an angle that is given as the ratio of rise to run, such as 1:5, with the angle in degrees.
+func gradient(text string) error {
+	m := oneIn.FindStringSubmatch(strings.TrimSpace(plain(text)))
+	if m == nil {
+		return nil
+	}
+	n, err := strconv.ParseFloat(m[1], 64)
+	if err != nil || n == 0 {
+		return nil
+	}
+	return fmt.Errorf("%s is a gradient, and an angle is written in deg; write %s deg if one up in %s along is meant", quote(text), four(degrees(1/n)), m[1])
+}
+
+// degrees is the angle of a gradient.
+func degrees(gradient float64) float64 { return math.Atan(gradient) * 180 / math.Pi }
 
 // bare handles a number without a unit.
 func bare(text, number string, kind Kind) (float64, error) {
@@ -245,8 +270,24 @@ func wrongUnit(text, number, name string, kind Kind) error {
 			return fmt.Errorf("%s is %s, and %s is wanted here%s%s", quote(text), other, kind, list, hint)
 		}
 	}
+	if kind == UnitWeight {
+		for _, d := range densities {
+			if v, err := (unit{mul: d.tonnes * gravity}).base(number); d.name == name && err == nil {
+				return fmt.Errorf("%s is a density, and a unit weight is wanted here; write %s kN/m3", quote(text), four(v))
+			}
+		}
+	}
 	return fmt.Errorf("%s: unknown unit %s%s", quote(text), quote(name), list)
 }
+
+// gravity turns a density in t/m3 into a unit weight in kN/m3.
+const gravity = 9.81
+
+// densities are units of a density, and the t/m3 in one of them.
+var densities = []struct {
+	name   string
+	tonnes float64
+}{{"t/m3", 1}, {"Mg/m3", 1}, {"g/cm3", 1}, {"kg/m3", 1e-3}}
 
 // instead says how a value of one kind is written as the other, where there is a usual way.
 func instead(v float64, from, to Kind) string {
@@ -264,6 +305,8 @@ func instead(v float64, from, to Kind) string {
 		as, why = four(v*1000)+" mm/d", "a flux"
 	case to == Intensity && from == Conductivity:
 		as, why = four(v*1000/24)+" mm/h", "an intensity"
+	case to == Angle && from == Share && v != 0:
+		as, why = four(degrees(v))+" deg", "a gradient"
 	default:
 		return ""
 	}
