@@ -280,13 +280,15 @@ var studyNotes = map[string]string{
   The file: looked for from the folder of the study, wherever the program is started; an absolute
   path is taken as it is. Its first line is the header. Columns are separated by commas, semicolons
   or tabs; with the last two a decimal comma is read. It may be packed with gzip. The step is
-  constant, from a minute to a day, and no row is missing.
+  constant, from a minute to a day, or each row is a calendar month, and no row is missing.
 
   Times: YYYY MM DD hh mm ss are year, month, day, hour, minute and second, and any other character
   stands for itself: YYYY-MM-DD, DD.MM.YYYY hh:mm, YYYYMMDDThhmm. The format iso reads times with
   their offset from UTC, such as 2019-03-31T14:05:00+01:00 or 2019-03-31T13:05:00Z.
   Clocks with summer time skip an hour and repeat another, and such a record, unless daily, is
   refused. Give UTC or standard time all year, or iso. Daily rows in iso keep one offset all year.
+  A month is named by its first day, or by YYYY-MM alone; with the stamp end by the first day of the
+  following month or by its own last day.
 `,
 }
 

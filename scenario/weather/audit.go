@@ -10,14 +10,14 @@ import (
 
 // Audit is what a person should look at before trusting a record.
 type Audit struct {
-	Wettest    []WetDay     // the five wettest days, the wettest first
+	Wettest    []WetDay     // the five wettest days, or months where these are the steps, the wettest first
 	Suspicious []Suspicious // in the order of time
 	Years      []YearRain   // every calendar year that the record touches
 }
 
-// WetDay is the rain of a civil day. A step belongs to the day in which it starts.
+// WetDay is the rain of a civil day or of a month. A step belongs to the day in which it starts.
 type WetDay struct {
-	Date   string // ISO 8601
+	Date   string // ISO 8601, of a month such as 2019-03
 	RainMM float64
 }
 
@@ -32,8 +32,8 @@ type Suspicious struct {
 // YearRain is a calendar year.
 type YearRain struct {
 	Year       int
-	RainMM     float64
-	ValidShare float64 // of the year's steps that the record has, 0 to 1
+	RainMM     float64 // as replayed, filled steps included
+	ValidShare float64 // of the year for which the record has steps that were measured, 0 to 1
 }
 
 // Kinds of Suspicious.
@@ -90,7 +90,11 @@ const (
 	monthsPerYear = 12
 )
 
-// Audit looks for what is unusual in the record. It never changes a value.
+// Audit looks for what is unusual in the record. It never changes a value. Steps that were filled are no part of a finding,
+// but they are part of the totals of a year, which are as replayed.
+//
+// In a record of months it looks for repeated rain, two dry months or longer, dry months of the wetter half of the year,
+// and totals of a year; days out of the ordinary, and evapotranspiration that stays, cannot be told from months.
 func (r *Record) Audit() Audit {
 	a := newAuditor(r)
 	a.totals()
@@ -119,7 +123,6 @@ type finding struct {
 
 type auditor struct {
 	*Record
-	perDay float64 // steps in a day
 	days   []auditDay
 	months []auditMonth
 	years  []YearRain
@@ -128,7 +131,7 @@ type auditor struct {
 }
 
 func newAuditor(r *Record) *auditor {
-	a := &auditor{Record: r, perDay: float64(day) / float64(r.Step)}
+	a := &auditor{Record: r}
 	a.gather()
 	return a
 }
@@ -145,7 +148,7 @@ type auditMonth struct {
 	whole    bool // all of the month's steps are in the record
 }
 
-// gather sums the rain by day, month and year.
+// gather sums the rain by day, month and year. A step of a month counts as a day.
 func (a *auditor) gather() {
 	var yearRain total
 	for i := 0; i < len(a.Rain); {
@@ -170,13 +173,19 @@ func (a *auditor) gather() {
 		month.rain += rain
 		yearRain.add(rain)
 		year.RainMM = yearRain.value()
-		year.ValidShare += float64(end-i) * a.Step.Seconds()
+		year.ValidShare += a.seconds(i, end)
 		i = end
+	}
+	for _, g := range a.Filled {
+		for i := g.From; i < g.To; i++ {
+			y := &a.years[a.Start(i).Year()-a.years[0].Year]
+			y.ValidShare -= a.seconds(i, i+1)
+		}
 	}
 	for i := range a.years {
 		y := &a.years[i]
 		length := time.Date(y.Year+1, 1, 1, 0, 0, 0, 0, time.UTC).Sub(time.Date(y.Year, 1, 1, 0, 0, 0, 0, time.UTC))
-		y.ValidShare = min(1, y.ValidShare/length.Seconds())
+		y.ValidShare = min(1, max(0, y.ValidShare/length.Seconds()))
 	}
 	for i := range a.months {
 		m := &a.months[i]
@@ -247,18 +256,49 @@ func (a *auditor) add(kind string, from, to int, format string, args ...any) {
 	a.found = append(a.found, finding{kind, from, to, fmt.Sprintf(format, args...)})
 }
 
-// runs calls found for every stretch of equal values, from the first step to before the last.
-func runs(x []float64, found func(from, to int, v float64)) {
-	from := 0
-	for i := 1; i <= len(x); i++ {
-		if i == len(x) || x[i] != x[from] {
-			found(from, i, x[from])
-			from = i
-		}
+// seconds is the length of the steps i to j-1 together in s.
+func (a *auditor) seconds(i, j int) float64 {
+	if a.Monthly() {
+		return a.Span(i, j) * float64(daySeconds)
 	}
+	return float64(j-i) * a.Step.Seconds()
 }
 
-func (a *auditor) daysIn(from, to int) float64 { return float64(to-from) / a.perDay }
+// runs calls found for every stretch of equal values that were measured, from the first step to before the last. Which
+// steps were filled is told by filled.
+func (a *auditor) runs(x []float64, filled func(*Gap) bool, found func(from, to int, v float64)) {
+	from := 0
+	upTo := func(end int) {
+		for i := from + 1; i <= end; i++ {
+			if i == end || x[i] != x[from] {
+				found(from, i, x[from])
+				from = i
+			}
+		}
+	}
+	for i := range a.Filled {
+		if g := &a.Filled[i]; filled(g) {
+			upTo(g.From)
+			from = g.To
+		}
+	}
+	upTo(len(x))
+}
+
+func rainFilled(g *Gap) bool { return g.Rain }
+func petFilled(g *Gap) bool  { return g.PET }
+
+// filledRain is the number of steps from..to-1 of which the rain was filled.
+func (a *auditor) filledRain(from, to int) int {
+	i, _ := slices.BinarySearchFunc(a.Filled, from, func(g Gap, from int) int { return cmp.Compare(g.To, from+1) })
+	n := 0
+	for ; i < len(a.Filled) && a.Filled[i].From < to; i++ {
+		if g := &a.Filled[i]; g.Rain {
+			n += min(g.To, to) - max(g.From, from)
+		}
+	}
+	return n
+}
 
 // totals holds the means of a year and the wettest day against their limits.
 func (a *auditor) totals() {
@@ -267,12 +307,16 @@ func (a *auditor) totals() {
 	}
 	wettest := slices.MaxFunc(a.days, func(x, y auditDay) int { return cmp.Compare(x.rain, y.rain) })
 	rain := a.perYear(a.Rain)
-	const text = "rain is %s mm a year over the record and %s mm on the wettest day: check %sthe unit of the rain column"
+	const text = "rain is %s mm a year over the record and %s mm %s: check %sthe unit of the rain column"
+	in := "on the wettest day"
+	if a.Monthly() {
+		in = "in the wettest month"
+	}
 	switch {
 	case rain < leastRainPerYear || rain > mostRainPerYear:
-		a.add(KindRainTotal, 0, len(a.Rain), text, roundMM(rain), roundMM(wettest.rain), "")
-	case wettest.rain > mostRainPerDay:
-		a.add(KindRainTotal, wettest.from, wettest.to, text, roundMM(rain), roundMM(wettest.rain), "that day, and ")
+		a.add(KindRainTotal, 0, len(a.Rain), text, roundMM(rain), roundMM(wettest.rain), in, "")
+	case !a.Monthly() && wettest.rain > mostRainPerDay:
+		a.add(KindRainTotal, wettest.from, wettest.to, text, roundMM(rain), roundMM(wettest.rain), in, "that day, and ")
 	}
 	if a.PET == nil {
 		return
@@ -291,7 +335,7 @@ func (a *auditor) perYear(x []float64) float64 {
 		whole++
 	}
 	years := whole / monthsPerYear
-	from, to, scale := 0, len(x), daysPerYear*a.perDay/float64(len(x))
+	from, to, scale := 0, len(x), daysPerYear/a.Span(0, len(x))
 	if years > 0 {
 		from, to, scale = a.months[first].from, a.months[first+years*monthsPerYear-1].to, 1/float64(years)
 	}
@@ -311,16 +355,16 @@ func roundMM(v float64) string {
 }
 
 func (a *auditor) repeats() {
-	runs(a.Rain, func(from, to int, v float64) {
-		if v > 0 && to-from >= repeatSteps && a.daysIn(from, to) >= float64(repeatTime)/float64(day) {
+	a.runs(a.Rain, rainFilled, func(from, to int, v float64) {
+		if v > 0 && to-from >= repeatSteps && a.Span(from, to) >= float64(repeatTime)/float64(day) {
 			a.add(KindRepeatedRain, from, to, "the same %.4g mm of rain in %d steps one after another; a stuck gauge, or a sum spread over several steps, looks like this", v, to-from)
 		}
 	})
 }
 
 func (a *auditor) dryRuns() {
-	runs(a.Rain, func(from, to int, v float64) {
-		days := a.daysIn(from, to)
+	a.runs(a.Rain, rainFilled, func(from, to int, v float64) {
+		days := a.Span(from, to)
 		if v != 0 || days < dryDaysWetter {
 			return
 		}
@@ -329,13 +373,16 @@ func (a *auditor) dryRuns() {
 			a.add(KindLongDry, from, to, text, days, "")
 			return
 		}
+		if a.Monthly() { // left to dryMonths
+			return
+		}
 		wetter := 0
 		for i := from; i < to; i++ {
 			if a.isWetter(a.Start(i)) {
 				wetter++
 			}
 		}
-		if float64(wetter) >= dryDaysWetter*a.perDay {
+		if a.Span(0, wetter) >= dryDaysWetter {
 			a.add(KindLongDry, from, to, text, days, " in the wetter half of the year")
 		}
 	})
@@ -345,7 +392,7 @@ func (a *auditor) dryRuns() {
 func (a *auditor) dryMonths() {
 	dry := slices.Clone(a.found)
 	for _, m := range a.months {
-		if !m.whole || m.rain > 0 || !a.isWetter(m.start) {
+		if !m.whole || m.rain > 0 || !a.isWetter(m.start) || a.filledRain(m.from, m.to) > 0 {
 			continue
 		}
 		if slices.ContainsFunc(dry, func(f finding) bool { return f.kind == KindLongDry && f.from <= m.from && m.to <= f.to }) {
@@ -356,6 +403,9 @@ func (a *auditor) dryMonths() {
 }
 
 func (a *auditor) spikes() {
+	if a.Monthly() {
+		return
+	}
 	var wet []auditDay
 	for _, d := range a.days {
 		if d.rain >= spikeWetMM {
@@ -388,10 +438,13 @@ func quantile(days []auditDay, p float64) float64 {
 }
 
 func (a *auditor) pet() {
+	if a.Monthly() {
+		return
+	}
 	stretches := 0 // in the last finding of constant evapotranspiration
 	last := -1     // its place in found
-	runs(a.PET, func(from, to int, v float64) {
-		days := a.daysIn(from, to)
+	a.runs(a.PET, petFilled, func(from, to int, v float64) {
+		days := a.Span(from, to)
 		switch {
 		case days < petDays:
 		case v == 0:
@@ -408,11 +461,17 @@ func (a *auditor) pet() {
 }
 
 func (a *auditor) wettest() []WetDay {
-	days := slices.DeleteFunc(slices.Clone(a.days), func(d auditDay) bool { return d.rain == 0 })
+	days := slices.DeleteFunc(slices.Clone(a.days), func(d auditDay) bool {
+		return d.rain == 0 || a.filledRain(d.from, d.to) == d.to-d.from
+	})
+	layout := time.DateOnly
+	if a.Monthly() {
+		layout = "2006-01"
+	}
 	slices.SortStableFunc(days, func(x, y auditDay) int { return cmp.Compare(y.rain, x.rain) })
 	var out []WetDay
 	for _, d := range days[:min(len(days), wettestDays)] {
-		out = append(out, WetDay{a.Start(d.from).Format(time.DateOnly), d.rain})
+		out = append(out, WetDay{a.Start(d.from).Format(layout), d.rain})
 	}
 	return out
 }

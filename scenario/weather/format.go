@@ -49,8 +49,8 @@ type literal struct {
 }
 
 // CheckFormat says whether a time format can be used: YYYY, MM, DD, hh, mm and ss with literal characters, or iso.
-// MM is the month and mm the minute. A format must have year, month and day; mm needs hh and ss needs mm. For a format
-// that comes close the error gives the right spelling.
+// MM is the month and mm the minute. A format must have year and month; hh needs DD, mm needs hh and ss needs mm. Without
+// DD it can tell months only. For a format that comes close the error gives the right spelling.
 func CheckFormat(format string) error {
 	_, err := newLayout(format)
 	return err
@@ -115,18 +115,21 @@ func compile(format string) (*layout, error) {
 	if err := checkWord(format[word:]); err != nil {
 		return nil, err
 	}
-	for _, p := range []int{year, month, dayOfMonth} {
+	for _, p := range []int{year, month} {
 		if l.at[p] < 0 {
 			return nil, fmt.Errorf("it has no %s", tokens[p])
 		}
 	}
-	for _, p := range []int{minute, second} {
+	for _, p := range []int{hour, minute, second} {
 		if l.at[p] >= 0 && l.at[p-1] < 0 {
 			return nil, fmt.Errorf("it has %s but no %s", tokens[p], tokens[p-1])
 		}
 	}
 	return l, nil
 }
+
+// hasDay says whether times in the format tell the day.
+func (l *layout) hasDay() bool { return l.iso || l.at[dayOfMonth] >= 0 }
 
 func isLetter(c byte) bool { return 'a' <= c && c <= 'z' || 'A' <= c && c <= 'Z' }
 
@@ -249,7 +252,11 @@ func (l *layout) parse(b []byte) (unix, offset int64, ok bool) {
 			return 0, 0, false
 		}
 	}
-	unix, ok = l.dayOf(number(b, l.at[year], 4), number(b, l.at[month], 2), number(b, l.at[dayOfMonth], 2))
+	d := 1
+	if i := l.at[dayOfMonth]; i >= 0 {
+		d = number(b, i, 2)
+	}
+	unix, ok = l.dayOf(number(b, l.at[year], 4), number(b, l.at[month], 2), d)
 	if !ok {
 		return 0, 0, false
 	}
@@ -360,6 +367,7 @@ func (l *layout) read(b []byte) (v [parts]int, ok bool) {
 			return v, false
 		}
 	}
+	v[dayOfMonth] = 1
 	for p := range v {
 		if l.at[p] < 0 {
 			continue

@@ -12,7 +12,7 @@ import (
 func TestCheckFormat(t *testing.T) {
 	for _, f := range []string{
 		"iso", "YYYY-MM-DD", "YYYYMMDD", "DD/MM/YYYY", "MM/DD/YYYY hh:mm", "DD.MM.YYYY hh:mm:ss", "YYYY-MM-DDThh:mmZ",
-		"YYYYMMDDhhmm", "YYYYMMDDhh", "hh:mm DD/MM/YYYY", "YYYY-MM-DD hh:mm UTC", "YYYY-MM-DD hh:mm GMT", "DD.MM.YYYY hh Uhr", "YYYY年MM月DD日",
+		"YYYYMMDDhhmm", "YYYYMMDDhh", "hh:mm DD/MM/YYYY", "YYYY-MM-DD hh:mm UTC", "YYYY-MM-DD hh:mm GMT", "DD.MM.YYYY hh Uhr", "YYYY年MM月DD日", "YYYY-MM", "MM/YYYY", "YYYYMM",
 	} {
 		if err := CheckFormat(f); err != nil {
 			t.Error(err)
@@ -36,7 +36,10 @@ func TestCheckFormat(t *testing.T) {
 		{"YYYY-MM-DD hh:mm AM", `"YYYY-MM-DD hh:mm AM" is not a time format: a clock of twelve hours is not supported; write one such as "YYYY-MM-DD hh:mm", or iso`},
 		{"YYYY-MM-DD :mm", `"YYYY-MM-DD :mm" is not a time format: it has mm but no hh; write one such as "YYYY-MM-DD hh:mm", or iso`},
 		{"YYYY-MM-DD hh:ss", `"YYYY-MM-DD hh:ss" is not a time format: it has ss but no mm; write one such as "YYYY-MM-DD hh:mm", or iso`},
-		{"YYYY-MM", `"YYYY-MM" is not a time format: it has no DD; write one such as "YYYY-MM-DD hh:mm", or iso`},
+		{"YYYY-MM hh:mm", `"YYYY-MM hh:mm" is not a time format: it has hh but no DD; write one such as "YYYY-MM-DD hh:mm", or iso`},
+		{"yyyy/mm", `"yyyy/mm" is not a time format: "yyyy" is none of YYYY MM DD hh mm ss; write "YYYY/MM"`},
+		{"%Y-%m", `"%Y-%m" is not a time format: "Y" is none of YYYY MM DD hh mm ss; write "YYYY-MM"`},
+		{"YYYY", `"YYYY" is not a time format: it has no MM; write one such as "YYYY-MM-DD hh:mm", or iso`},
 		{"YYYY-MM-DD YYYY", `"YYYY-MM-DD YYYY" is not a time format: YYYY stands twice; write one such as "YYYY-MM-DD hh:mm", or iso`},
 		{" YYYY-MM-DD", `" YYYY-MM-DD" is not a time format: it begins or ends with a blank; write "YYYY-MM-DD"`},
 		{"YYYY-MM-DD\nhh", `"YYYY-MM-DD\nhh" is not a time format: it has a control character; write one such as "YYYY-MM-DD hh:mm", or iso`},

@@ -155,16 +155,27 @@ func read(ctx context.Context, src Source, raw io.Reader, size int64, maxRows in
 	}
 	rec := &Record{
 		Name: src.Name, SHA256: hex.EncodeToString(sum.Sum(nil)),
-		Step: time.Duration(r.step) * time.Second, Rain: r.rain, PET: r.pet,
-		layout: r.layout, zone: r.zone, stampEnd: src.StampEnd,
+		Rain: r.rain, PET: r.pet,
+		layout: r.layout, zone: r.zone, stampEnd: src.StampEnd, lastDays: r.lastDays,
 	}
 	in := time.UTC
 	if r.offset != 0 {
 		in = time.FixedZone("", int(r.offset))
 	}
-	rec.First = time.Unix(r.first, 0).In(in)
-	if src.StampEnd {
-		rec.First = rec.First.Add(-rec.Step)
+	if r.months {
+		rec.First = startOfMonth(r.first, in)
+	} else {
+		rec.Step = time.Duration(r.step) * time.Second
+		rec.First = time.Unix(r.first, 0).In(in)
+		if src.StampEnd {
+			rec.First = rec.First.Add(-rec.Step)
+		}
+	}
+	if r.gapCount > 0 {
+		r.fill(rec)
+	}
+	if len(r.problems) > 0 {
+		return nil, r.report()
 	}
 	return rec, nil
 }
@@ -236,6 +247,11 @@ func (r *reader) prepare() error {
 	var err error
 	if r.layout, err = newLayout(r.src.Format); err != nil {
 		r.problem(0, r.src.Time, "%v", err)
+	} else if r.src.StampEnd && !r.layout.hasDay() {
+		r.problem(0, r.src.Time, "the format %s names a month and no end of it; write weather.stamp: start, with which each row is of the month that it names", r.src.Format)
+	}
+	if err := checkGaps(r.src.Gaps); err != nil {
+		r.problem(0, "", "%v", err)
 	}
 	if r.rainUnit, err = DepthUnit(r.src.Rain.Unit); err != nil {
 		r.problem(0, r.src.Rain.Name, "%v", err)
@@ -297,7 +313,7 @@ const saveAsText = "save the table as CSV text in UTF-8"
 
 // row is one row as read.
 type row struct {
-	unix            int64 // of the stamp
+	at              int64 // the stamp in s since 1970; once a month is placed, its monthNumber
 	line            int
 	time, rain, pet []byte // cells; valid until the next line is read
 	rainV, petV     float64
@@ -367,10 +383,10 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 		return false, nil
 	}
 	w.time = trim(r.fields[r.timeAt])
-	unix, offset, ok := r.layout.parse(w.time)
+	at, offset, ok := r.layout.parse(w.time)
 	if !ok {
 		r.inRow(w.line, r.src.Time, r.layout.explain(w.time))
-	} else if w.unix = unix; r.layout.iso && r.zone == "" {
+	} else if w.at = at; r.layout.iso && r.zone == "" {
 		r.offset, r.zone = offset, zoneOf(w.time)
 	}
 	w.missing = 0

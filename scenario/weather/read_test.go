@@ -204,7 +204,7 @@ func TestMissingCodes(t *testing.T) {
 	const text = "date;rain;pet\n2020-01-01;1;1\n2020-01-02;;1\n2020-01-03;1; NA\n2020-01-04;-999.0;1\n2020-01-05;1;-9.99e2\n" +
 		"2020-01-06;9999.90;1\n2020-01-07;NaN;1\n2020-01-08; --- ;1\n"
 	_, err := readText(src, text)
-	const want = `w.csv:3: 7 steps without values, in 1 gap; filling gaps is not supported yet, so complete the record or cut it to its longest stretch without gaps, 2020-01-01 to 2020-01-01:
+	const want = `w.csv:3: 7 steps without values, in 1 gap; complete the record, cut it to its longest stretch without gaps, 2020-01-01 to 2020-01-01, or let weather.gaps fill them (zero, or month mean):
     2020-01-02 to 2020-01-08, 7 steps: no rain or pet from line 3`
 	if err == nil || err.Error() != want {
 		t.Errorf("got %v\nwant %s", err, want)
@@ -352,10 +352,8 @@ func TestRefusals(t *testing.T) {
 			`w.csv:2: column "time": "2020-02-30T00:00:00Z" does not exist: February 2020 has 29 days`},
 
 		// Step and order.
-		{"months", daily(), days("2020-01-01,1,2", "2020-02-01,1,2", "2020-03-01,1,2", "2020-04-01,1,2"),
-			"w.csv: the rows are 31 d apart; calendar-month steps are not supported yet, steps run from 1 min to 1 d"},
-		{"weeks", daily(), days("2020-01-01,1,2", "2020-01-08,1,2"), "w.csv: the rows are 7 d apart; steps run from 1 min to 1 d"},
-		{"half minutes", hourlyOf("YYYY-MM-DD hh:mm:ss"), hours("2020-01-01 00:00:00", "2020-01-01 00:00:30"), "w.csv: the rows are 30 s apart; steps run from 1 min to 1 d"},
+		{"weeks", daily(), days("2020-01-01,1,2", "2020-01-08,1,2"), "w.csv: the rows are 7 d apart; steps run from 1 min to 1 d, or are calendar months"},
+		{"half minutes", hourlyOf("YYYY-MM-DD hh:mm:ss"), hours("2020-01-01 00:00:00", "2020-01-01 00:00:30"), "w.csv: the rows are 30 s apart; steps run from 1 min to 1 d, or are calendar months"},
 		{"all the same", daily(), days("2020-01-01,1,2", "2020-01-01,1,2", "2020-01-01,1,2"), `w.csv:3: column "date": "2020-01-01" repeats line 2, and so do all others; is this the right column?`},
 		{"newest first", daily(), days("2020-01-03,1,2", "2020-01-02,1,2", "2020-01-01,1,2"), `w.csv:3: column "date": "2020-01-02" comes before that of line 2; put the rows in the order of time, oldest first`},
 		{"repeat", daily(), days("2020-01-01,1,2", "2020-01-02,1,2", "2020-01-02,1,2", "2020-01-03,1,2"),
@@ -375,7 +373,7 @@ func TestRefusals(t *testing.T) {
 		{"clocks put back in half hours", hourly(), hours("2019-10-27 01:30", "2019-10-27 02:00", "2019-10-27 02:30", "2019-10-27 02:00", "2019-10-27 02:30", "2019-10-27 03:00"),
 			`w.csv:5: column "time": "2019-10-27 02:00" comes before "2019-10-27 02:30" in line 4; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso (and in 1 more row)`},
 		{"clocks put forward", hourly(), hours("2019-03-31 00:00", "2019-03-31 01:00", "2019-03-31 03:00", "2019-03-31 04:00"),
-			"w.csv:4: 1 step without values, in 1 gap; filling gaps is not supported yet, so complete the record or cut it to its longest stretch without gaps, 2019-03-31 00:00 to 2019-03-31 01:00:\n" +
+			"w.csv:4: 1 step without values, in 1 gap; complete the record, cut it to its longest stretch without gaps, 2019-03-31 00:00 to 2019-03-31 01:00, or let weather.gaps fill them (zero, or month mean):\n" +
 				"    2019-03-31 02:00 to 2019-03-31 02:00, 1 step: no rows before line 4; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso"},
 		{"an hour repeated in June", hourly(), hours("2019-06-30 01:00", "2019-06-30 02:00", "2019-06-30 02:00", "2019-06-30 03:00"),
 			`w.csv:4: column "time": "2019-06-30 02:00" repeats line 3; every time must be one step after the one before`},
@@ -390,26 +388,26 @@ func TestRefusals(t *testing.T) {
 			"w.csv:5: the row has 1 field where the header has 3 (and in 3 more rows)"},
 		{"months read as days", hourlyOf("MM/DD/YYYY"), hours("11/01/2020", "12/01/2020", "13/01/2020", "14/01/2020", "30/01/2020", "31/01/2020", "01/02/2020", "02/02/2020", "03/02/2020"),
 			`w.csv:4: column "time": "13/01/2020" has no month 13; is the order of day and month right in the format? (and in 3 more rows)`},
-		{"centuries apart", hourlyOf("YYYY-MM-DD"), hours("1600-01-01", "2500-01-01"), "w.csv: the rows are 328719 d apart; calendar-month steps are not supported yet, steps run from 1 min to 1 d"},
+		{"centuries apart", hourlyOf("YYYY-MM-DD"), hours("1600-01-01", "2500-01-01"), "w.csv: the rows are 900 years apart; steps run from 1 min to 1 d, or are calendar months"},
 		{"off the step by centuries", hourly(), hours("1600-01-01 00:00", "1600-01-01 01:00", "2400-01-01 01:30", "2400-01-01 02:30"),
 			`w.csv:4: column "time": "2400-01-01 01:30" comes 420759390 min after "1600-01-01 01:00" in line 3, but the step is 1 h; every time must be one step after the one before`},
 
 		// Gaps.
 		{"clocks put forward every year", hourly(), hours("2019-03-31 00:00", "2019-03-31 01:00", "2019-03-31 03:00", "2019-03-31 04:00", "2019-03-31 05:00", "2020-03-29 00:00", "2020-03-29 01:00", "2020-03-29 03:00", "2020-03-29 04:00"),
-			"w.csv:4: 8732 steps without values, in 3 gaps; filling gaps is not supported yet, so complete the record or cut it to its longest stretch without gaps, 2019-03-31 03:00 to 2019-03-31 05:00:\n" +
+			"w.csv:4: 8732 steps without values, in 3 gaps; complete the record, cut it to its longest stretch without gaps, 2019-03-31 03:00 to 2019-03-31 05:00, or let weather.gaps fill them (zero, or month mean):\n" +
 				"    2019-03-31 02:00 to 2019-03-31 02:00, 1 step: no rows before line 4; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso\n" +
 				"    2019-03-31 06:00 to 2020-03-28 23:00, 8730 steps: no rows before line 7\n" +
 				"    2020-03-29 02:00 to 2020-03-29 02:00, 1 step: no rows before line 9"},
 		{"gaps", daily(), days("2020-01-01,NA,2", "2020-01-02,1,2", "2020-01-03,1,2", "2020-01-06,1,2", "2020-01-07,1,", "2020-01-08,,", "2020-01-09,1,2"),
-			"w.csv:2: 5 steps without values, in 3 gaps; filling gaps is not supported yet, so complete the record or cut it to its longest stretch without gaps, 2020-01-02 to 2020-01-03:\n" +
+			"w.csv:2: 5 steps without values, in 3 gaps; complete the record, cut it to its longest stretch without gaps, 2020-01-02 to 2020-01-03, or let weather.gaps fill them (zero, or month mean):\n" +
 				"    2020-01-01 to 2020-01-01, 1 step: no rain from line 2\n" +
 				"    2020-01-04 to 2020-01-05, 2 steps: no rows before line 5\n" +
 				"    2020-01-07 to 2020-01-08, 2 steps: no rain or pet from line 6"},
 		{"rows and values", daily(), days("2020-01-01,1,2", "2020-01-02,1,2", "2020-01-04,1,", "2020-01-05,1,"),
-			"w.csv:4: 3 steps without values, in 1 gap; filling gaps is not supported yet, so complete the record or cut it to its longest stretch without gaps, 2020-01-01 to 2020-01-02:\n" +
+			"w.csv:4: 3 steps without values, in 1 gap; complete the record, cut it to its longest stretch without gaps, 2020-01-01 to 2020-01-02, or let weather.gaps fill them (zero, or month mean):\n" +
 				"    2020-01-03 to 2020-01-05, 3 steps: no rows or no values near line 4"},
 		{"no value at all", daily(), days("2020-01-01,1,", "2020-01-02,1,NA"),
-			"w.csv:2: 2 steps without values, in 1 gap; filling gaps is not supported yet, so complete the record:\n" +
+			"w.csv:2: 2 steps without values, in 1 gap; complete the record, or let weather.gaps fill them (zero, or month mean):\n" +
 				"    2020-01-01 to 2020-01-02, 2 steps: no pet from line 2"},
 	} {
 		t.Run(tt.name, func(t *testing.T) {

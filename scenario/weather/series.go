@@ -2,6 +2,7 @@ package weather
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"strings"
 	"time"
@@ -14,6 +15,8 @@ const (
 	// The most rain ever measured in a day is 1825 mm, on La Réunion in January 1966 (World Meteorological Organization,
 	// archive of weather and climate extremes; from memory).
 	maxRainPerDay = 2000 // mm
+	// The most rain ever measured in a calendar month is 9300 mm, in Cherrapunji in July 1861 (from memory).
+	maxRainPerMonth = 10_000 // mm
 	// Reference evapotranspiration of a hot and windy desert day is near 15 mm, and hours of such a day have about
 	// three times its mean (from memory).
 	maxPETPerDay = 50 // mm/d
@@ -34,7 +37,7 @@ const (
 	rowsMissing
 )
 
-// gap is a stretch of steps without values. Its times are stamps in seconds since 1970.
+// gap is a stretch of steps without values. Its times are as in series.
 type gap struct {
 	from, to int64
 	line     int   // of the first row without a value, or of the row after missing rows
@@ -45,13 +48,16 @@ type gap struct {
 // maxGaps is the number of gaps that a message lists.
 const maxGaps = 10
 
-// series puts rows in the order of time, or says which are out of it.
+// series puts rows in the order of time, or says which are out of it. Its times are stamps in seconds since 1970, of
+// months the numbers of the months.
 type series struct {
 	head []row // the first rows, until the step is known
 
-	step      int64 // s; 0 until it is known
-	first     int64 // stamp of the first row
-	last      int64 // stamp of the row taken last
+	step      int64 // s, or 1 month; 0 until it is known
+	months    bool  // the steps are calendar months
+	lastDays  bool  // the times of months name their last days
+	first     int64 // of the first row
+	last      int64 // of the row taken last
 	lastLine  int
 	rain, pet []float64
 	scale     struct{ rainMul, rainDiv, petMul, petDiv, petMost float64 }
@@ -65,6 +71,8 @@ type series struct {
 	jump     int64 // steps from the row before to the last, 1 when there is no gap
 	jumps    int   // rows in a row after such a jump
 	jumpFrom int   // number of the line before the first of them
+	jumpsOne bool  // the last of these jumps is over a calendar month
+	lost     []lostRows
 
 	gaps     []gap // the first of them
 	gapCount int
@@ -100,28 +108,27 @@ func (r *reader) settle() error {
 		}
 		return r.fatal(r.head[0].line, "this is the only row; a record needs two at least, and a study some years of them")
 	}
-	step := commonest(r.head)
+	step := commonest(differences(r.head))
 	a, b := &r.head[0], &r.head[1]
 	switch {
 	case step == 0 && len(r.problems) > 0:
 		return errStop
-	case step == 0 && a.unix == b.unix:
+	case step == 0 && a.at == b.at:
 		return r.fatalTime(b, "repeats line %d, and so do all others; is this the right column?", a.line)
 	case step == 0:
 		return r.fatalTime(b, "comes before that of line %d; put the rows in the order of time, oldest first", a.line)
 	case step > int64(maxStep/time.Second) && r.unsure: // times were misread, which has been said
 		return errStop
-	case step >= 28*daySeconds:
-		return r.fatal(0, "the rows are %s apart; calendar-month steps are not supported yet, steps run from 1 min to 1 d",
-			secondsText(step))
+	case step >= shortestMonth:
+		if err := r.settleMonths(step); err != nil {
+			return err
+		}
 	case step > int64(maxStep/time.Second), step < int64(minStep/time.Second):
-		return r.fatal(0, "the rows are %s apart; steps run from 1 min to 1 d", secondsText(step))
+		return r.wrongStep(secondsText(step))
+	default:
+		r.step = step
+		r.setScale(time.Duration(step) * time.Second)
 	}
-	r.step = step
-	d := time.Duration(step) * time.Second
-	r.scale.rainMul, r.scale.rainDiv = r.rainUnit.factors(d)
-	r.scale.petMul, r.scale.petDiv = r.petUnit.factors(d)
-	r.scale.petMost = maxPETPerDay * d.Hours() / 24
 	if len(r.head) == headRows {
 		r.reserve()
 	}
@@ -130,6 +137,17 @@ func (r *reader) settle() error {
 	}
 	r.head = nil
 	return nil
+}
+
+func (r *reader) wrongStep(text string) error {
+	return r.fatal(0, "the rows are %s apart; steps run from 1 min to 1 d, or are calendar months", text)
+}
+
+// setScale sets what turns the numbers of a row into mm in a step of the given length.
+func (r *reader) setScale(step time.Duration) {
+	r.scale.rainMul, r.scale.rainDiv = r.rainUnit.factors(step)
+	r.scale.petMul, r.scale.petDiv = r.petUnit.factors(step)
+	r.scale.petMost = maxPETPerDay * step.Hours() / 24
 }
 
 // reserve makes room for the rows to come, as many as the file can hold at the length of the lines so far.
@@ -150,15 +168,18 @@ func (r *reader) fatalTime(w *row, format string, args ...any) error {
 	return errStop
 }
 
-// commonest returns the commonest positive difference of the times of successive rows in seconds, of equally common ones the
-// smallest, and 0 when there is none.
-func commonest(head []row) int64 {
-	var d []int64
+// differences are those of the times of successive rows that are positive, s.
+func differences(head []row) (d []int64) {
 	for i := 1; i < len(head); i++ {
-		if s := head[i].unix - head[i-1].unix; s > 0 && !head[i].broken {
+		if s := head[i].at - head[i-1].at; s > 0 && !head[i].broken {
 			d = append(d, s)
 		}
 	}
+	return d
+}
+
+// commonest returns the commonest number, of equally common ones the smallest, and 0 when there is none.
+func commonest(d []int64) int64 {
 	slices.Sort(d)
 	var best int64
 	most, run := 0, 0
@@ -175,34 +196,50 @@ func commonest(head []row) int64 {
 
 // place checks that a row follows the one before and appends its values.
 func (r *reader) place(w *row) {
+	if r.months && !r.toMonth(w) {
+		return
+	}
 	if r.lastLine == 0 {
-		r.first, r.gapEnd = w.unix, w.unix-r.step
-		r.complete.from, r.complete.to = w.unix, w.unix-r.step
-	} else if d := w.unix - r.last; d == r.step {
+		r.first, r.gapEnd = w.at, w.at-r.step
+		r.complete.from, r.complete.to = w.at, w.at-r.step
+	} else if d := w.at - r.last; d == r.step {
 		r.disorder, r.jump = nil, 1
 	} else if !r.misplaced(w, d) {
 		return
 	}
-	r.last, r.lastLine = w.unix, w.line
+	r.last, r.lastLine = w.at, w.line
 	if w.missing != 0 {
-		r.addGap(gap{from: w.unix, to: w.unix, line: w.line, kind: w.missing})
+		r.addGap(gap{from: w.at, to: w.at, line: w.line, kind: w.missing})
 	}
 	rain := w.rainV * r.scale.rainMul / r.scale.rainDiv
+	if w.missing&rainMissing != 0 {
+		rain = math.NaN()
+	} else {
+		r.checkRain(w, rain)
+	}
 	r.rain = append(r.rain, rain)
-	r.checkRain(w, rain)
 	if r.petAt >= 0 {
 		pet := w.petV * r.scale.petMul / r.scale.petDiv
-		r.pet = append(r.pet, pet)
-		if !(pet <= r.scale.petMost) {
+		if w.missing&petMissing != 0 {
+			pet = math.NaN()
+		} else if !(pet <= r.scale.petMost) {
 			r.inRow(w.line, r.src.PET.Name, wrong("%q is %.6g mm/d; evapotranspiration above %d mm/d is not possible, so check weather.columns.pet.unit",
 				w.pet, pet/r.scale.petMost*maxPETPerDay, maxPETPerDay))
 		}
+		r.pet = append(r.pet, pet)
 	}
 }
 
 // checkRain refuses rain that cannot have fallen in a step, or in the civil day in which the step begins.
 func (r *reader) checkRain(w *row, rain float64) {
-	start := w.unix + r.offset
+	if r.months {
+		if !(rain <= maxRainPerMonth) {
+			r.inRow(w.line, r.src.Rain.Name, wrong("%q is %.6g mm of rain in a month; more than %d mm has never fallen in one, so check weather.columns.rain.unit",
+				w.rain, rain, maxRainPerMonth))
+		}
+		return
+	}
+	start := w.at + r.offset
 	if r.src.StampEnd {
 		start -= r.step
 	}
@@ -237,7 +274,7 @@ func (r *reader) misplaced(w *row, d int64) (keep bool) {
 	}
 	hint := "; every time must be one step after the one before"
 	switch {
-	case r.clockChange(w.unix, d):
+	case r.clockChange(w.at, d):
 		hint = clockHint
 	case r.layout.iso && r.step == daySeconds && (d == 23*3600 || d == 25*3600):
 		hint = "; the offset from UTC changes here: keep one all year, so that days are 24 h long"
@@ -263,7 +300,7 @@ const clockHint = "; if these are clock times of a place with summer time, give 
 // and in September, October or November (from memory).
 func (r *reader) clockChange(unix, d int64) bool {
 	const hour = 3600
-	if r.layout.iso || r.step >= daySeconds || d-r.step != hour && r.step-d != hour {
+	if r.layout.iso || r.months || r.step >= daySeconds || d-r.step != hour && r.step-d != hour {
 		return false
 	}
 	t := time.Unix(unix, 0).UTC()
@@ -277,21 +314,31 @@ func (r *reader) clockChange(unix, d int64) bool {
 // skip notes that rows are missing before w, which comes n steps after the row before. The same jump three times in a row
 // is a change of step, unless rows between could not be read.
 func (r *reader) skip(w *row, n int64) {
+	oneMonth := !r.months && r.civil(w.at).Equal(r.civil(r.last).AddDate(0, 1, 0))
 	switch {
 	case w.broken:
 		r.jump = 1
-	case n == r.jump:
+	case n == r.jump, r.jump > 1 && oneMonth && r.jumpsOne:
+		r.jump = n
 		r.jumps++
 	default:
 		r.jump, r.jumps, r.jumpFrom = n, 1, r.lastLine
 	}
+	r.jumpsOne = oneMonth
 	if r.jumps == 3 && !w.broken {
+		to := r.spanText(n * r.step)
+		if oneMonth {
+			to = "1 month"
+		}
 		r.inRow(w.line, r.src.Time, wrong("%q: the step changes from %s to %s after line %d; every step must be the same",
-			w.time, secondsText(r.step), secondsText(n*r.step), r.jumpFrom)).noun = "place"
+			w.time, r.spanText(r.step), to, r.jumpFrom)).noun = "place"
 		r.unsure = true
 	}
-	g := gap{from: r.last + r.step, to: w.unix - r.step, line: w.line, kind: rowsMissing}
-	g.hour = r.clockChange(w.unix, n*r.step)
+	if r.fills() {
+		r.lost = append(r.lost, lostRows{before: len(r.rain), steps: n - 1})
+	}
+	g := gap{from: r.last + r.step, to: w.at - r.step, line: w.line, kind: rowsMissing}
+	g.hour = r.clockChange(w.at, n*r.step)
 	r.addGap(g)
 }
 
@@ -322,8 +369,19 @@ func (r *reader) endStretch(next int64) {
 }
 
 // timeText writes a stamp as the file does.
-func (r *reader) timeText(unix int64) string {
-	return r.layout.text(time.Unix(unix+r.offset, 0).UTC(), r.zone)
+func (r *reader) timeText(at int64) string {
+	if r.months {
+		return r.layout.text(r.stampOfMonth(at), r.zone)
+	}
+	return r.layout.text(r.civil(at), r.zone)
+}
+
+// spanText writes the time between two stamps.
+func (r *reader) spanText(d int64) string {
+	if r.months {
+		return monthsText(d)
+	}
+	return secondsText(d)
 }
 
 // end checks what can only be told at the end.
@@ -335,8 +393,10 @@ func (r *reader) end() error {
 	case r.lastLine == 0 && len(r.problems) == 0:
 		return r.fatal(0, "the file has a header but no rows")
 	case r.unsure || len(r.problems) >= fault.Most:
-	case r.gapCount > 0:
+	case r.gapCount > 0 && !r.fills():
 		r.refuseGaps()
+	case r.gapCount > 0 && len(r.problems) == 0:
+		r.makeRoom()
 	}
 	return nil
 }
@@ -345,13 +405,11 @@ func (r *reader) end() error {
 func (r *reader) refuseGaps() {
 	r.endStretch(r.last + r.step)
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s without values, in %s; filling gaps is not supported yet, so complete the record",
-		count(int(r.gapSteps), "step"), count(r.gapCount, "gap"))
+	fmt.Fprintf(&b, "%s without values, in %s; complete the record, ", count(int(r.gapSteps), "step"), count(r.gapCount, "gap"))
 	if r.complete.to >= r.complete.from {
-		fmt.Fprintf(&b, " or cut it to its longest stretch without gaps, %s to %s",
-			r.timeText(r.complete.from), r.timeText(r.complete.to))
+		fmt.Fprintf(&b, "cut it to its longest stretch without gaps, %s to %s, ", r.timeText(r.complete.from), r.timeText(r.complete.to))
 	}
-	b.WriteByte(':')
+	b.WriteString("or let weather.gaps fill them (zero, or month mean):")
 	names := []string{r.src.Rain.Name}
 	if r.src.PET != nil {
 		names = append(names, r.src.PET.Name)

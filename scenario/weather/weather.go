@@ -1,7 +1,8 @@
 // Package weather reads a record of rain and evapotranspiration, checks it, and says what looks wrong with it.
 //
 // A record is delimited text with one header line and one row per step. It is read whole and checked whole: what comes
-// out of Read has a constant step, no gaps, and only finite values within physical limits.
+// out of Read has steps of a constant length or of calendar months, a value in every step, measured or filled as the study
+// asks, and only finite values within physical limits.
 package weather
 
 import (
@@ -17,8 +18,9 @@ type Source struct {
 	Format   string   // of YYYY MM DD hh mm ss and literal characters, or iso; see CheckFormat
 	Rain     Column   // required
 	PET      *Column  // nil for none
-	StampEnd bool     // the time names the end of a step, not its start
+	StampEnd bool     // the time names the end of a step, not its start; of a month, the first of the next or its own last day
 	Missing  []string // texts that stand for a missing value; a number matches any cell of the same value
+	Gaps     Gaps     // what becomes of steps without a value
 }
 
 // Column is one column of numbers.
@@ -36,10 +38,12 @@ type Record struct {
 	Step   time.Duration // constant, 1 min to 1 d, in whole seconds; 0 where every step is a calendar month
 	Rain   []float64     // mm per step
 	PET    []float64     // mm per step; nil when the record has none
+	Filled []Gap         // in the order of time, neighbours with the same columns as one; nil when nothing was filled
 
 	layout   *layout // of the time column; nil in a record not read from a file
 	zone     string  // offset of the first row as written, such as Z or +01:00; empty for civil times
 	stampEnd bool
+	lastDays bool // the times of months name their last days
 }
 
 // Monthly says whether the steps are calendar months.
@@ -102,7 +106,7 @@ func (r *Record) Stretch(i, end int) (days float64, to int) {
 // Span is the length of the steps i to j-1 together in days.
 func (r *Record) Span(i, j int) float64 {
 	if !r.Monthly() {
-		return float64(j-i) * (r.Step.Hours() / 24)
+		return float64(j-i) * r.Step.Seconds() / float64(daySeconds)
 	}
 	return float64((r.Start(j).Unix() - r.Start(i).Unix()) / daySeconds)
 }
@@ -127,8 +131,11 @@ func (r *Record) ISO(i int) string {
 }
 
 func (r *Record) stamped(i int) time.Time {
-	if r.stampEnd {
-		i++
+	switch {
+	case r.lastDays:
+		return r.Start(i+1).AddDate(0, 0, -1)
+	case r.stampEnd:
+		return r.Start(i + 1)
 	}
 	return r.Start(i)
 }

@@ -28,7 +28,7 @@ func Check(w io.Writer, c *result.Check) error {
 	p.field("years", "%s", yearsText(&c.Record, c.YearStarts))
 	recordFields(&p, &c.Record)
 	p.field("start", "baseline from %s m in the cover and %s m in the deep layer", centimetres(c.Start.CoverM), centimetres(c.Start.DeepM))
-	audit(&p, &c.Audit)
+	audit(&p, c)
 	if len(ns) > 0 {
 		p.heading("Notes")
 		if refs := ns.refs(nil, "", ""); refs != "" {
@@ -120,14 +120,19 @@ func sameRates(a, b *result.Rates) bool {
 }
 
 // audit lists what a person should look at in the record.
-func audit(p *page, a *result.Audit) {
+func audit(p *page, c *result.Check) {
+	a := &c.Audit
 	p.heading("The weather record")
 	var wet []string
 	for _, d := range a.Wettest {
 		wet = append(wet, fmt.Sprintf("%s  %s", d.Date, padLeft(strconv.FormatFloat(d.RainMM, 'f', 1, 64), 6)))
 	}
 	if len(wet) > 0 {
-		p.para("Wettest days, mm of rain:")
+		steps := "days"
+		if c.Record.StepDays == nil {
+			steps = "months"
+		}
+		p.para("Wettest %s, mm of rain:", steps)
 		p.grid(wet)
 	}
 	if len(a.Years) > 0 {
