@@ -102,7 +102,7 @@ func weatherSource(s *Study) weather.Source {
 	w := &s.Weather
 	src := weather.Source{
 		Path: w.Path, Name: w.Path, Time: w.Time, Format: w.Format,
-		Rain: weather.Column(w.Rain), StampEnd: w.StampEnd, Missing: w.Missing,
+		Rain: weather.Column(w.Rain), StampEnd: w.StampEnd, Missing: w.Missing, Gaps: weather.Gaps(w.Gaps),
 	}
 	if w.PET != nil {
 		pet := weather.Column(*w.PET)
@@ -526,6 +526,10 @@ func (p *prepared) recordFound() result.Record {
 	}
 	if days, _ := r.Stretch(0, n); !r.Monthly() {
 		found.StepDays = &days
+	}
+	for _, g := range r.Filled {
+		found.GapsFilled += g.To - g.From
+		found.GapFilling = p.study.Weather.Gaps
 	}
 	if r.PET != nil {
 		pet := total(r.PET[c.from:c.to]) / years

@@ -10,6 +10,7 @@ import (
 
 	"quietslope/cascade"
 	"quietslope/scenario/result"
+	"quietslope/scenario/weather"
 	"quietslope/stats"
 )
 
@@ -23,6 +24,8 @@ const (
 	fewYears         = 10   // below which counts say hardly anything: judgement
 	fewEvents        = 5    // below which a rate says little: judgement
 	mostOfTheYear    = 180  // d a year above a band beyond which its events run into one another: judgement
+	leastValidDays   = 25   // days with measured rain of a usable month (rule of the US agriculture service for climate statistics, from memory)
+	mostFilledRain   = 0.05 // of a year's rain: judgement
 	shortRecordYears = 30   // least length advised for extremes of groundwater level (Geosciences 2020, 10, 373)
 )
 
@@ -217,6 +220,10 @@ func (p *prepared) recordWarnings(ws *warnings) {
 	case n < shortRecordYears:
 		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
 	}
+	if p.record.Monthly() {
+		ws.add(warn("monthly_steps"), "The steps are calendar months: a level is seen at the end of each month only, and days above a band come in whole months. Peaks within a month are missed; find daily weather where there is any.")
+	}
+	p.gapWarnings(ws)
 	for _, q := range p.record.Implausible() {
 		at := q.From
 		if q.To != q.From {
@@ -227,6 +234,91 @@ func (p *prepared) recordWarnings(ws *warnings) {
 	if p.replayer.warm.repeats {
 		ws.add(note("warm_up_repeats_record"), "The warm-up of %s is longer than the record, which was replayed from its beginning more than once to fill it.", plural(p.replayer.warm.years, "year"))
 	}
+}
+
+// gapWarnings say how much of the record was filled, and which counted years rest on it.
+func (p *prepared) gapWarnings(ws *warnings) {
+	r := p.record
+	if len(r.Filled) == 0 {
+		return
+	}
+	var steps, rain, pet int
+	for _, g := range r.Filled {
+		n := g.To - g.From
+		steps += n
+		if g.Rain {
+			rain += n
+		}
+		if g.PET {
+			pet += n
+		}
+	}
+	of := plural(rain, "step") + " without rain values"
+	if pet > 0 {
+		of += ", " + plural(pet, "step") + " without evapotranspiration"
+	}
+	if p.study.Weather.Gaps == string(weather.GapsZero) {
+		ws.add(warn("gaps_filled"), "Filled with zero: %s, of %d. Rain that fell and was not recorded is missing from every level, and evapotranspiration too; complete the record, or see what weather.gaps: month mean gives.", of, len(r.Rain))
+	} else {
+		ws.add(note("gaps_filled"), "Filled with the mean of the calendar month: %s, of %d. Means have no storms; complete the record from a station nearby where a wet time is missing.", of, len(r.Rain))
+	}
+	if years := p.filledYears(); len(years) > 0 {
+		ws.add(warn("years_much_filled"), "Much of the rain is filled in %s: %s. A month there has fewer than %d days of measured rain, or more than %.0f %% of the year's rain is filled. Their events rest on it; complete these years, or cut the record.",
+			plural(len(years), "counted year"), firstOf(years, 8), leastValidDays, 100*mostFilledRain)
+	}
+}
+
+// filledYears names the counted years that have a month with too few days of measured rain, or too much filled rain.
+func (p *prepared) filledYears() []string {
+	r, c := p.record, &p.counted
+	lost := make([][12]float64, c.years) // days without rain, by month
+	filled, fallen := make([]float64, c.years), make([]float64, c.years)
+	for _, g := range r.Filled {
+		for i := g.From; i < g.To; i++ {
+			if y := c.calendar.Year[i]; y >= 0 && g.Rain {
+				lost[y][c.calendar.Month[i]] += c.calendar.Days[i]
+				filled[y] += r.Rain[i]
+			}
+		}
+	}
+	for i, y := range c.calendar.Year {
+		if y >= 0 {
+			fallen[y] += r.Rain[i]
+		}
+	}
+	var names []string
+	first := r.Start(c.from).Year()
+	for y := range c.years {
+		much := filled[y] > mostFilledRain*fallen[y]
+		for m := range 12 {
+			year := first + y
+			if time.Month(m+1) < c.starts {
+				year++
+			}
+			days := time.Date(year, time.Month(m+2), 0, 0, 0, 0, 0, time.UTC).Day()
+			much = much || lost[y][m] > 0 && float64(days)-lost[y][m] < leastValidDays
+		}
+		if much {
+			names = append(names, c.yearName(first+y))
+		}
+	}
+	return names
+}
+
+// yearName names a counted year by the calendar years that it lies in.
+func (c *period) yearName(first int) string {
+	if c.starts == time.January {
+		return strconv.Itoa(first)
+	}
+	return fmt.Sprintf("%d/%02d", first, (first+1)%100)
+}
+
+// firstOf lists the first of some words, and how many more there are.
+func firstOf(words []string, most int) string {
+	if len(words) <= most {
+		return strings.Join(words, ", ")
+	}
+	return strings.Join(words[:most], ", ") + fmt.Sprintf(" and %d more", len(words)-most)
 }
 
 // drainWarnings hold each drain of an option against the levels without works and, where the option was replayed, against
