@@ -10,6 +10,7 @@ import (
 	"time"
 
 	"quietslope/scenario/result"
+	"quietslope/scenario/weather"
 	"quietslope/stats"
 )
 
@@ -75,6 +76,9 @@ func TestStudyWarnings(t *testing.T) {
 	drained := func(then func(*prepared)) func(*prepared) {
 		return func(p *prepared) { p.study.Options[1].Measures = trench(4, 0.05); then(p) }
 	}
+	measured := func(ms ...Measure) func(*prepared) {
+		return func(p *prepared) { p.study.Options[1].Measures = ms }
+	}
 	for _, tt := range []struct {
 		name   string
 		change func(*prepared)
@@ -92,6 +96,14 @@ func TestStudyWarnings(t *testing.T) {
 		{"iron and drains", drained(declare("iron_or_lime_in_water", "yes")), []string{"drains_may_clog"}},
 		{"outlet moves", drained(declare("outlet_on_moving_ground", "yes")), []string{"outlet_on_moving_ground"}},
 		{"wells", drained(declare("wells_or_buildings_nearby", "yes")), []string{"wells_or_buildings_nearby"}},
+
+		{"half kept out", measured(Measure{Cut: &SurfaceWater{KeptOut: 0.5}}), nil},
+		{"more than half kept out", measured(Measure{Cut: &SurfaceWater{KeptOut: 0.501}}), []string{"much_kept_out"}},
+		{"planting that does nothing", measured(Measure{Vegetation: &Vegetation{PETFactor: 1}}), nil},
+		{"planting that drinks", measured(Measure{Vegetation: &Vegetation{PETFactor: 1.01}}), []string{"planting_at_once"}},
+		{"planting that catches rain", measured(Measure{Vegetation: &Vegetation{PETFactor: 1, Interception: 0.01}}), []string{"planting_at_once"}},
+		{"most cut off", measured(Measure{CutOff: &CutOffDrain{Intercepted: 0.9}}), nil},
+		{"nearly all cut off", measured(Measure{CutOff: &CutOffDrain{Intercepted: 0.901}}), []string{"cut_off_complete"}},
 
 		{"band at the readings", func(p *prepared) { p.study.Ground.CalibratedTo = 2.5 }, nil},
 		{"band above the readings", func(p *prepared) { p.study.Ground.CalibratedTo = 2.4999 }, []string{"band_beyond_readings"}},
@@ -326,6 +338,93 @@ func TestGuideKnowsWarnings(t *testing.T) {
 	for _, m := range found {
 		if code := m[1] + m[2] + m[3]; !strings.Contains(guide, "`"+code+"`") {
 			t.Errorf("DEVELOPERS.md does not say where %s comes from", code)
+		}
+	}
+}
+
+// TestGapWarnings fills days of one winter until its year is flagged. Rain is 1 mm a day.
+func TestGapWarnings(t *testing.T) {
+	for _, tt := range []struct {
+		name   string
+		gaps   string
+		filled []weather.Gap // days from 1 October 1991
+		rain   float64       // on filled days
+		want   []string
+		years  string
+	}{
+		{"none", "month mean", nil, 1, nil, ""},
+		{"evapotranspiration only", "month mean", []weather.Gap{{From: 0, To: 60, PET: true}}, 1, []string{"gaps_filled"}, ""},
+		{"six days of October", "month mean", []weather.Gap{{From: 0, To: 6, Rain: true}}, 1, []string{"gaps_filled"}, ""},
+		{"seven days of October", "month mean", []weather.Gap{{From: 0, To: 7, Rain: true, PET: true}}, 1, []string{"gaps_filled", "years_much_filled"}, "1991/92"},
+		{"seven days in two months", "month mean", []weather.Gap{{From: 28, To: 35, Rain: true}}, 1, []string{"gaps_filled"}, ""},
+		// 29 days of February 1992 begin on day 123.
+		{"four days of February", "month mean", []weather.Gap{{From: 123, To: 127, Rain: true}}, 1, []string{"gaps_filled"}, ""},
+		{"five days of February", "month mean", []weather.Gap{{From: 123, To: 128, Rain: true}}, 1, []string{"gaps_filled", "years_much_filled"}, "1991/92"},
+		// Two wet days: 2*9.57 mm are just less than a twentieth of 364 + 2*9.57 mm.
+		{"a twentieth of the rain", "month mean", []weather.Gap{{From: 0, To: 2, Rain: true}}, 9.57, []string{"gaps_filled"}, ""},
+		{"more than a twentieth", "month mean", []weather.Gap{{From: 0, To: 2, Rain: true}}, 9.59, []string{"gaps_filled", "years_much_filled"}, "1991/92"},
+		{"before the counted years", "month mean", []weather.Gap{{From: -200, To: -150, Rain: true}}, 1, []string{"gaps_filled"}, ""},
+		{"two years, with zero", "zero", []weather.Gap{{From: 0, To: 20, Rain: true}, {From: 366, To: 380, Rain: true}}, 0, []string{"gaps_filled", "years_much_filled"}, "1991/92, 1992/93"},
+	} {
+		t.Run(tt.name, func(t *testing.T) {
+			p := quiet()
+			p.record = record("1991-01-01T00:00", 24*time.Hour, 4*365+1)
+			p.counted = countYears(p.record, time.October)
+			p.study.Weather.Gaps = tt.gaps
+			const october = 273
+			for i := range p.record.Rain {
+				p.record.Rain[i] = 1
+			}
+			for _, g := range tt.filled {
+				g.From, g.To = g.From+october, g.To+october
+				p.record.Filled = append(p.record.Filled, g)
+				for i := g.From; i < g.To && g.Rain; i++ {
+					p.record.Rain[i] = tt.rain
+				}
+			}
+			ws := warnings{}
+			p.gapWarnings(&ws)
+			if got := codes(ws); !slices.Equal(got, tt.want) {
+				t.Fatalf("got %q, want %q", got, tt.want)
+			}
+			if tt.years != "" && !strings.Contains(ws[1].Text, ": "+tt.years+". ") {
+				t.Errorf("%q does not name %s", ws[1].Text, tt.years)
+			}
+			if len(ws) > 0 && (ws[0].Severity == result.Warn) != (tt.gaps == "zero") {
+				t.Errorf("%s is a %s", ws[0].Code, ws[0].Severity)
+			}
+		})
+	}
+}
+
+func TestMonthlySteps(t *testing.T) {
+	p := quiet()
+	p.record.Step = 0
+	p.record.Rain, p.record.PET = make([]float64, 100), make([]float64, 100)
+	for i := range 100 {
+		p.record.Rain[i], p.record.PET[i] = 80, 50
+	}
+	ws := warnings{}
+	p.recordWarnings(&ws)
+	if got := codes(ws); !slices.Equal(got, []string{"monthly_steps"}) {
+		t.Errorf("got %q", got)
+	}
+}
+
+func TestConversionWarnings(t *testing.T) {
+	for _, tt := range []struct {
+		c    *result.Conversion
+		want []string
+	}{
+		{nil, nil},
+		{&result.Conversion{Scheme: "centred", StepDays: 1}, []string{"conversion_unchecked"}},
+		{&result.Conversion{LargestDifference: &result.LevelDifference{DeepM: 0.1, CoverM: 1}}, nil},
+		{&result.Conversion{LargestDifference: &result.LevelDifference{DeepM: 0.1001}}, []string{"conversion_differs"}},
+	} {
+		ws := warnings{}
+		conversionWarnings(&ws, tt.c)
+		if got := codes(ws); !slices.Equal(got, tt.want) {
+			t.Errorf("%+v: got %q, want %q", tt.c, got, tt.want)
 		}
 	}
 }

@@ -129,6 +129,13 @@ func TestParseErrors(t *testing.T) {
 		want string
 	}{
 		{"3", Length, `"3" has no unit; write 3 m`},
+		{"1:5", Angle, `"1:5" is a gradient, and an angle is written in deg; write 11.31 deg if one up in 5 along is meant`},
+		{"1 in 2.5", Angle, `"1 in 2.5" is a gradient, and an angle is written in deg; write 21.8 deg if one up in 2.5 along is meant`},
+		{"1:0", Angle, `"1:0": unknown unit ":0"; an angle is written in deg`},
+		{"20 %", Angle, `"20 %" is a share, and an angle is wanted here; an angle is written in deg; write 11.31 deg if a gradient is meant`},
+		{"1.95 t/m3", UnitWeight, `"1.95 t/m3" is a density, and a unit weight is wanted here; write 19.13 kN/m3`},
+		{"1950 kg/m3", UnitWeight, `"1950 kg/m3" is a density, and a unit weight is wanted here; write 19.13 kN/m3`},
+		{"1950 lb/ft3", UnitWeight, `"1950 lb/ft3": unknown unit "lb/ft3"; a unit weight is written in kN/m3`},
 		{"3", Duration, `"3" has no unit; write 3 d`},
 		{"0.02", Rate, `"0.02" has no unit; write 0.02 /d`},
 		{"0", Duration, `"0" has no unit; write 0 d`},
