@@ -20,6 +20,7 @@ import (
 	"pgregory.net/rapid"
 
 	"quietslope/cascade"
+	"quietslope/cascade/scheme"
 	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
@@ -421,8 +422,19 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 	for i := range r.Rain {
 		fmt.Fprintf(&b, "%s,%.1f,%.2f\n", r.Start(i).Format(time.DateOnly), r.Rain[i], r.PET[i])
 	}
-	path := filepath.Join(dir, "weather.csv")
-	if err := os.WriteFile(path, []byte(b.String()), 0o666); err != nil {
+	daily := filepath.Join(dir, "weather.csv")
+	if err := os.WriteFile(daily, []byte(b.String()), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	b.Reset()
+	b.WriteString("date,rain_mm,pet_mm\n")
+	for i := range 60 {
+		if i != 17 { // a gap
+			fmt.Fprintf(&b, "%d-%02d,%d,%d\n", 1990+i/12, i%12+1, 20*(i%7), 10*(i%12))
+		}
+	}
+	monthly := filepath.Join(dir, "monthly.csv")
+	if err := os.WriteFile(monthly, []byte(b.String()), 0o666); err != nil {
 		t.Fatal(err)
 	}
 	rapid.Check(t, func(t *rapid.T) {
@@ -435,8 +447,20 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 			Option{Name: "bores", Measures: []Measure{{Key: "bored_drains", Bored: &BoredDrains{
 				Rate: some("rate", 1e-300, 1e-3, 1, 1e6), Level: some("level", 0, 3, 9), Efficiency: 1, Ceiling: some("bored ceiling", 1e-5, 2, inf)}}}},
 			Option{Name: "dry", Measures: []Measure{{Key: "surface_water", Cut: &SurfaceWater{KeptOut: some("kept out", 0, 0.5, 0.9, 1)}}}},
+			Option{Name: "green", Measures: []Measure{
+				{Key: "vegetation", Vegetation: &Vegetation{PETFactor: some("pet factor", 0, 1, 1.2, 5), Interception: some("interception", 0, 0.1, 1)}},
+				{Key: "cut_off_drain", CutOff: &CutOffDrain{Intercepted: some("intercepted", 0, 0.6, 1)}},
+			}},
+			everything(),
 		)
-		s.Weather = WeatherSpec{File: "weather.csv", Path: path, Time: "date", Format: "YYYY-MM-DD", Rain: WeatherColumn{"rain_mm", "mm"}}
+		if rapid.Bool().Draw(t, "conditions") {
+			s.Conditions = []Condition{{Name: "old", Drains: some("drains left", 0, 0.45, 1), SurfaceWater: some("surface water left", 0, 0.6, 1), Vegetation: some("plants left", 0, 0.5, 1)}}
+		}
+		s.Weather = WeatherSpec{File: "weather.csv", Path: daily, Time: "date", Format: "YYYY-MM-DD", Rain: WeatherColumn{"rain_mm", "mm"}}
+		if rapid.Bool().Draw(t, "months") {
+			s.Weather.Path, s.Weather.Format = monthly, "YYYY-MM"
+			s.Weather.Gaps = rapid.SampledFrom([]string{"zero", "month mean"}).Draw(t, "gaps")
+		}
 		if rapid.Bool().Draw(t, "pet") {
 			s.Weather.PET = &WeatherColumn{"pet_mm", "mm"}
 		}
@@ -454,6 +478,11 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 		g.DeepPorosity, g.DeepSeepage, g.Lateral = some("deep porosity", 1e-5, 0.014, 1), some("deep seepage", 1e-5, 1e-3, 0.1, 1e6), some("lateral", 0, 0.1, 1e5)
 		g.DeepFullAt = some("deep full at", 9, 3, inf)
 		g.WarmUpYears = int(some("warm-up", -1, 0, 1, 8))
+		g.Scheme = rapid.SampledFrom([]scheme.Scheme{scheme.Exact, scheme.Centred, scheme.Explicit, scheme.Implicit}).Draw(t, "scheme")
+		g.SchemeStep = some("scheme step", 1, 1.0/24, 30)
+		if len(g.notConverted()) > 0 { // the decoder refuses it
+			g.Scheme = scheme.Exact
+		}
 		if rapid.Bool().Draw(t, "start given") {
 			g.Start = &StartLevels{Cover: some("start cover", 0, min(1, g.CoverFullAt)), Deep: some("start deep", 0, 3)}
 		}

@@ -559,11 +559,13 @@ func FuzzStudy(f *testing.F) {
 			f.Add([]byte(src))
 		}
 	}
-	wide, err := os.ReadFile("testdata/study/wide.yaml")
-	if err != nil {
-		f.Fatal(err)
+	for _, file := range []string{"testdata/study/wide.yaml", "../testdata/full/study.yaml"} {
+		src, err := os.ReadFile(file)
+		if err != nil {
+			f.Fatal(err)
+		}
+		f.Add(src)
 	}
-	f.Add(wide)
 	f.Fuzz(func(t *testing.T, src []byte) {
 		s, err := Parse("study.yaml", src)
 		if err != nil {
@@ -600,7 +602,29 @@ func invariant(s *Study) error {
 		}
 		last = b.Level
 	}
+	for i := range s.Conditions {
+		if c := &s.Conditions[i]; !(c.Drains >= 0 && c.Drains <= 1 && c.SurfaceWater >= 0 && c.SurfaceWater <= 1 && c.Vegetation >= 0 && c.Vegetation <= 1) {
+			return fmt.Errorf("condition %+v", c)
+		}
+	}
+	for i := range s.Options {
+		for _, m := range s.Options[i].Measures {
+			switch {
+			case m.Trench != nil && !(m.Trench.Depth > 0 && m.Trench.Rate+m.Trench.Spacing > 0 && m.Trench.Efficiency > 0),
+				m.Bored != nil && !(m.Bored.Rate > 0 && m.Bored.Level >= 0 && m.Bored.Efficiency > 0),
+				m.Cut != nil && !(m.Cut.KeptOut >= 0 && m.Cut.KeptOut <= 1),
+				m.Vegetation != nil && !(m.Vegetation.PETFactor >= 0 && m.Vegetation.Interception >= 0 && m.Vegetation.Interception <= 1),
+				m.CutOff != nil && !(m.CutOff.Intercepted >= 0 && m.CutOff.Intercepted <= 1):
+				return fmt.Errorf("measure %+v", m)
+			}
+		}
+		if w := newWorks(s, &s.Options[i], &asBuilt); w.ground.CoverPorosity > 1 || w.ground.DeepPorosity > 1 {
+			return fmt.Errorf("porosities of %s: %v and %v", s.Options[i].Name, w.ground.CoverPorosity, w.ground.DeepPorosity)
+		}
+	}
 	switch g := &s.Ground; {
+	case len(g.notConverted()) > 0:
+		return fmt.Errorf("%v", g.notConverted())
 	case baselines != 1, len(s.Bands) == 0, s.Count.DecideOn >= len(s.Bands), s.Count.DecideOn < 0 && len(s.Bands) > 1 && len(s.Options) > 1:
 		return fmt.Errorf("%d baselines, %d bands, decide_on %d", baselines, len(s.Bands), s.Count.DecideOn)
 	case !(g.CoverThickness > 0 && g.DeepThickness > 0 && g.CoverPorosity > 0 && g.DeepPorosity > 0 && g.CoverFullAt > 0 && g.DeepFullAt > 0):
