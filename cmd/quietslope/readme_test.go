@@ -9,6 +9,8 @@ import (
 	"regexp"
 	"strings"
 	"testing"
+
+	"quietslope/scenario"
 )
 
 // codeBlocks are the fenced blocks of a Markdown text with the given language.
@@ -43,6 +45,29 @@ func TestReadmeOutput(t *testing.T) {
 		if !strings.Contains(stdout, b) {
 			t.Errorf("the demo does not print this any more:\n%s", b)
 		}
+	}
+}
+
+// TestReadmeStudy: the piece of a study that the README shows is a legal end of the demo's.
+func TestReadmeStudy(t *testing.T) {
+	blocks := codeBlocks(readme(t), "yaml")
+	if len(blocks) != 1 {
+		t.Fatalf("%d pieces of a study", len(blocks))
+	}
+	demo, err := os.ReadFile(demoStudy)
+	if err != nil {
+		t.Fatal(err)
+	}
+	before, _, found := strings.Cut(string(demo), "\noptions:\n")
+	if !found {
+		t.Fatal("the demo has no options")
+	}
+	s, err := scenario.Parse(demoStudy, []byte(before+"\n"+blocks[0]))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(s.Options) != 5 || s.Options[2].Name != "trenches, spacing 12 m" || len(s.Conditions) != 1 {
+		t.Errorf("it makes the options %+v", s.Options)
 	}
 }
 
