@@ -123,7 +123,7 @@ type finding struct {
 
 type auditor struct {
 	*Record
-	days   []auditDay
+	days   []auditDay // of which any rain was measured
 	months []auditMonth
 	years  []YearRain
 	wetter [monthsPerYear]bool // months of the wetter half of the year; all false when not known
@@ -160,7 +160,9 @@ func (a *auditor) gather() {
 			sum.add(v)
 		}
 		rain := sum.value()
-		a.days = append(a.days, auditDay{i, end, rain})
+		if a.filledRain(i, end) < end-i {
+			a.days = append(a.days, auditDay{i, end, rain})
+		}
 		if n := len(a.months); n == 0 || !sameMonth(a.months[n-1].start, t) {
 			a.months = append(a.months, auditMonth{start: time.Date(y, m, 1, 0, 0, 0, 0, t.Location()), from: i})
 		}
@@ -302,7 +304,7 @@ func (a *auditor) filledRain(from, to int) int {
 
 // totals holds the means of a year and the wettest day against their limits.
 func (a *auditor) totals() {
-	if len(a.Rain) == 0 {
+	if len(a.days) == 0 {
 		return
 	}
 	wettest := slices.MaxFunc(a.days, func(x, y auditDay) int { return cmp.Compare(x.rain, y.rain) })
@@ -461,9 +463,7 @@ func (a *auditor) pet() {
 }
 
 func (a *auditor) wettest() []WetDay {
-	days := slices.DeleteFunc(slices.Clone(a.days), func(d auditDay) bool {
-		return d.rain == 0 || a.filledRain(d.from, d.to) == d.to-d.from
-	})
+	days := slices.DeleteFunc(slices.Clone(a.days), func(d auditDay) bool { return d.rain == 0 })
 	layout := time.DateOnly
 	if a.Monthly() {
 		layout = "2006-01"

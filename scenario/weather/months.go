@@ -8,17 +8,33 @@ import (
 // A record whose rows are a calendar month apart is placed by months: row.at and the times in series are then the number
 // of the month that a row is about, in months since the year 0, and the step is 1.
 
-// shortestMonth is the step from which rows may be months apart, s.
-const shortestMonth = 28 * daySeconds
+// Lengths of calendar months, s.
+const (
+	shortestMonth = 28 * daySeconds
+	longestMonth  = 31 * daySeconds
+)
 
-// settleMonths decides whether the first rows, which are commonly step seconds apart, are months, and what their times
-// name: the first of a month, or with stamps at the end its last day.
-func (r *reader) settleMonths(step int64) error {
+// alike puts one length in place of all that a month can have.
+func alike(differences []int64) []int64 {
+	for i, s := range differences {
+		if s >= shortestMonth && s <= longestMonth {
+			differences[i] = longestMonth
+		}
+	}
+	return differences
+}
+
+// settleMonths decides whether the first rows, which are commonly as far apart as months or further, are months, and what
+// their times name: the first of a month, or with stamps at the end its last day.
+func (r *reader) settleMonths() error {
 	var firsts, lasts, sameDay int
 	var apart []int64 // months from row to row
 	var before time.Time
 	for i := range r.head {
-		t := r.ownClock(&r.head[i])
+		t := r.civil(r.head[i].at)
+		if edgeOfMonth(t) == otherDay { // a row of another offset is told from others here, and refused later
+			t = r.ownClock(&r.head[i])
+		}
 		switch edgeOfMonth(t) {
 		case firstDay:
 			firsts++
@@ -37,7 +53,7 @@ func (r *reader) settleMonths(step int64) error {
 	}
 	if n := len(r.head); 2*(firsts+lasts) <= n {
 		if 2*sameDay <= n-1 {
-			return r.wrongStep(secondsText(step))
+			return r.wrongStep(secondsText(commonest(differences(r.head))))
 		}
 		first := &r.head[0]
 		t := r.ownClock(first)

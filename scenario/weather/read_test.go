@@ -745,15 +745,23 @@ func TestWriteRead(t *testing.T) {
 func FuzzRead(f *testing.F) {
 	const hours = "time,rain\n2019-10-27 01:00,0\n2019-10-27 02:00,1\n2019-10-27 02:00,1\n"
 	for _, format := range []string{"YYYY-MM-DD", "YYYY-MM-DD hh:mm", "iso", "DD.MM.YYYY", "yyyy"} {
-		f.Add([]byte("time,rain,pet\n2020-02-28,1.5,0.3\n2020-02-29,0,0.4\n2020-03-01,12,0\n"), format, "mm", "NA", true, false)
-		f.Add([]byte(hours), format, "mm/h", "-999", false, true)
-		f.Add([]byte("time;rain\n28.02.2020;1,5\n29.02.2020;\n"), format, "0.1 mm", "", false, false)
-		f.Add([]byte("time,rain\n2020-01-01T00:00:00+01:00,0\n2020-01-01T00:00:00Z,\"0\"\n"), format, "in", "", false, false)
-		f.Add([]byte("time,\"ra\"\"in\"\n\"a\nb\",1e5\n"), format, "in/h", "", false, false)
-		f.Add(compress(f, hours), format, "cm", "", false, false)
+		f.Add([]byte("time,rain,pet\n2020-02-28,1.5,0.3\n2020-02-29,0,0.4\n2020-03-01,12,0\n"), format, "mm", "NA", true, false, byte(0))
+		f.Add([]byte(hours), format, "mm/h", "-999", false, true, byte(0))
+		f.Add([]byte("time;rain\n28.02.2020;1,5\n29.02.2020;\n"), format, "0.1 mm", "", false, false, byte(1))
+		f.Add([]byte("time,rain\n2020-01-01T00:00:00+01:00,0\n2020-01-01T00:00:00Z,\"0\"\n"), format, "in", "", false, false, byte(0))
+		f.Add([]byte("time,\"ra\"\"in\"\n\"a\nb\",1e5\n"), format, "in/h", "", false, false, byte(0))
+		f.Add(compress(f, hours), format, "cm", "", false, false, byte(0))
 	}
-	f.Fuzz(func(t *testing.T, text []byte, format, unit, missing string, pet, end bool) {
-		src := Source{Path: "w.csv", Name: "w.csv", Time: "time", Format: format, Rain: Column{"rain", unit}, StampEnd: end, Missing: []string{missing}}
+	for gaps := range byte(3) {
+		f.Add([]byte("time,rain,pet\n2020-01-30,1,0.3\n2020-01-31,NA,0.4\n2020-02-01,1e-9,NA\n2020-02-04,12,0\n2020-02-05,3,1\n2020-02-06,NA,NA\n2020-02-07,1,1\n"), "YYYY-MM-DD", "mm", "NA", true, false, gaps)
+		f.Add([]byte("time,rain\n2019-03-31 00:00,1\n2019-03-31 01:00,2\n2019-03-31 03:00,3\n2019-03-31 04:00,0\n"), "YYYY-MM-DD hh:mm", "mm/h", "NA", false, true, gaps)
+		f.Add([]byte("time,rain,pet\n2019-02,3,1\n2019-03,5,NA\n2019-04,5,1\n2019-05,5,1\n2019-06,5,1\n2019-07,5,1\n2019-08,5,1\n2019-09,5,1\n2019-10,5,1\n2019-11,0,0\n2019-12,5,1\n2020-01,5,1\n2020-02,NA,1\n2020-03,4,1\n"), "YYYY-MM", "mm/d", "NA", true, false, gaps)
+		f.Add([]byte("time,rain\n2019-01-31,3\n2019-02-28,5\n2019-03-31,5\n2019-05-31,5\n"), "YYYY-MM-DD", "in", "", false, true, gaps)
+		f.Add([]byte("time,rain\n2019-02-01T00:00:00+01:00,3\n2019-03-01T00:00:00+01:00,5\n2019-03-31T23:00:00Z,5\n"), "iso", "mm", "", false, true, gaps)
+	}
+	f.Fuzz(func(t *testing.T, text []byte, format, unit, missing string, pet, end bool, gaps byte) {
+		src := Source{Path: "w.csv", Name: "w.csv", Time: "time", Format: format, Rain: Column{"rain", unit}, StampEnd: end, Missing: []string{missing},
+			Gaps: []Gaps{GapsRefuse, GapsZero, GapsMonthMean}[gaps%3]}
 		if pet {
 			src.PET = &Column{"pet", unit}
 		}
@@ -774,11 +782,15 @@ func FuzzRead(f *testing.F) {
 			at(err)
 			return
 		}
-		if r.Step < minStep || r.Step > maxStep || len(r.Rain) < 2 || pet != (r.PET != nil) || pet && len(r.PET) != len(r.Rain) {
+		if !r.Monthly() && (r.Step < minStep || r.Step > maxStep) || len(r.Rain) < 2 || pet != (r.PET != nil) || pet && len(r.PET) != len(r.Rain) {
 			t.Fatalf("%+v", r)
 		}
+		most := float64(maxRainPerDay)
+		if r.Monthly() {
+			most = maxRainPerMonth
+		}
 		for i := range r.Rain {
-			if !(r.Rain[i] >= 0 && r.Rain[i] <= maxRainPerDay) || pet && !(r.PET[i] >= 0) {
+			if !(r.Rain[i] >= 0 && r.Rain[i] <= most) || pet && !(r.PET[i] >= 0 && r.PET[i] <= maxPETPerDay*r.Span(i, i+1)*(1+1e-12)) {
 				t.Fatalf("step %d: rain %v", i, r.Rain[i])
 			}
 		}
@@ -786,12 +798,74 @@ func FuzzRead(f *testing.F) {
 		for i := 1; i < len(r.Rain); i++ {
 			a, _, ok := r.layout.parse([]byte(r.Stamp(i - 1)))
 			b, _, ok2 := r.layout.parse([]byte(r.Stamp(i)))
-			if !ok || !ok2 || b-a != int64(r.Step/time.Second) {
+			if !ok || !ok2 || !r.Monthly() && b-a != int64(r.Step/time.Second) || r.Monthly() && (b-a < shortestMonth || b-a > longestMonth) {
 				t.Fatalf("%s to %s", r.Stamp(i-1), r.Stamp(i))
 			}
 		}
+		checkFilled(t, r, src.Gaps)
 		r.Audit()
 	})
+}
+
+// checkFilled holds what was filled against what was measured.
+func checkFilled(t *testing.T, r *Record, gaps Gaps) {
+	t.Helper()
+	if gaps == GapsRefuse && r.Filled != nil {
+		t.Fatalf("filled %+v", r.Filled)
+	}
+	columns := []struct {
+		x      []float64
+		filled func(*Gap) bool
+	}{{r.Rain, rainFilled}, {r.PET, petFilled}}
+	for k, g := range r.Filled {
+		if g.From < 0 || g.To <= g.From || g.To > len(r.Rain) || !g.Rain && !g.PET || g.PET && r.PET == nil {
+			t.Fatalf("filled %+v of %d steps", r.Filled, len(r.Rain))
+		}
+		if k == 0 {
+			continue
+		}
+		if last := r.Filled[k-1]; g.From < last.To || g.From == last.To && g.Rain == last.Rain && g.PET == last.PET {
+			t.Fatalf("filled %+v", r.Filled)
+		}
+	}
+	for _, c := range columns {
+		least, most := map[time.Month]float64{}, map[time.Month]float64{}
+		intensity := func(i int) float64 { return c.x[i] / r.Span(i, i+1) }
+		var measured int
+		valid := make([]bool, len(c.x))
+		for i := range valid {
+			valid[i] = true
+		}
+		for k := range r.Filled {
+			if g := &r.Filled[k]; c.filled(g) {
+				clear(valid[g.From:g.To])
+			}
+		}
+		for i, ok := range valid {
+			if !ok {
+				continue
+			}
+			measured++
+			m, v := r.Start(i).Month(), intensity(i)
+			if old, ok := least[m]; !ok || v < old {
+				least[m] = v
+			}
+			most[m] = max(most[m], v)
+		}
+		if 2*measured < len(c.x) {
+			t.Fatalf("%d of %d steps were measured", measured, len(c.x))
+		}
+		for i, ok := range valid {
+			m, v := r.Start(i).Month(), intensity(i)
+			switch {
+			case ok:
+			case gaps == GapsZero && v != 0:
+				t.Fatalf("step %d is filled with %v", i, c.x[i])
+			case gaps == GapsMonthMean && !(v >= least[m]*(1-1e-12) && v <= most[m]*(1+1e-12)):
+				t.Fatalf("step %d is filled with %v, outside of %v to %v", i, v, least[m], most[m])
+			}
+		}
+	}
 }
 
 // BenchmarkRead reads forty years of hours as the commonest files have them.

@@ -108,7 +108,7 @@ func (r *reader) settle() error {
 		}
 		return r.fatal(r.head[0].line, "this is the only row; a record needs two at least, and a study some years of them")
 	}
-	step := commonest(differences(r.head))
+	step := commonest(alike(differences(r.head)))
 	a, b := &r.head[0], &r.head[1]
 	switch {
 	case step == 0 && len(r.problems) > 0:
@@ -120,7 +120,7 @@ func (r *reader) settle() error {
 	case step > int64(maxStep/time.Second) && r.unsure: // times were misread, which has been said
 		return errStop
 	case step >= shortestMonth:
-		if err := r.settleMonths(step); err != nil {
+		if err := r.settleMonths(); err != nil {
 			return err
 		}
 	case step > int64(maxStep/time.Second), step < int64(minStep/time.Second):
