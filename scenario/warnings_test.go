@@ -121,6 +121,7 @@ func TestStudyWarnings(t *testing.T) {
 		{"limit, over an hour", func(p *prepared) {
 			p.study.Ground.InfiltrationLimit, p.record.Step = 5, time.Hour+time.Minute
 		}, []string{"limit_hardly_acts"}},
+		{"limit, months", func(p *prepared) { p.study.Ground.InfiltrationLimit, p.record.Step = 5, 0 }, []string{"limit_hardly_acts", "monthly_steps", "implausible_weather"}},
 		{"porosity in range", func(p *prepared) { p.study.Ground.CoverPorosity, p.study.Ground.DeepPorosity = 0.30, 0.10 }, nil},
 		{"porosity of the cover", func(p *prepared) { p.study.Ground.CoverPorosity = 0.301 }, []string{"implausible_ground"}},
 		{"porosity of the cover, low", func(p *prepared) { p.study.Ground.CoverPorosity = 0.0019 }, []string{"implausible_ground"}},
