@@ -221,7 +221,7 @@ func (p *prepared) recordWarnings(ws *warnings) {
 		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
 	}
 	if p.record.Monthly() {
-		ws.add(warn("monthly_steps"), "The steps are calendar months: a level is seen at the end of each month only, and days above a band come in whole months. Peaks within a month are missed; find daily weather where there is any.")
+		ws.add(warn("monthly_steps"), "The steps are calendar months: a level is seen at the end of each month only, and days above a band come in whole months. Rain is spread evenly over the month, so peaks are damped and those within a month are missed; find daily weather where there is any.")
 	}
 	p.gapWarnings(ws)
 	for _, q := range p.record.Implausible() {

@@ -30,7 +30,7 @@ Examples:
   quietslope compare testdata/demo/study.yaml
   quietslope compare study.yaml --format json --out result.json
 `,
-		Flags:  []cli.Flag{formatFlag(), outFlag()},
+		Flags: []cli.Flag{formatFlag(), outFlag()},
 		Action: func(c *cli.Context) error {
 			compare := func(ctx context.Context, s *scenario.Study) (*result.Comparison, error) {
 				return scenario.Compare(ctx, s, scenario.CompareQuery{})
