@@ -84,7 +84,7 @@ func loadStudy(ctx context.Context, path string, o *output) (*scenario.Study, er
 
 // answer is what a command does that finds a result from a study: it reads the study, finds the result, and writes it in
 // the format asked for.
-func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (*R, error), text func(io.Writer, *R) error) error {
+func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (*R, error), lay func(*R) *render.Page) error {
 	ctx := c.Context
 	o, err := outputFrom(c)
 	if err != nil {
@@ -102,6 +102,6 @@ func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (
 		if o.json {
 			return render.JSON(w, found)
 		}
-		return text(w, found)
+		return lay(found).Text(w)
 	})
 }

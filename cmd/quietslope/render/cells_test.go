@@ -1,7 +1,6 @@
 package render
 
 import (
-	"bytes"
 	"strings"
 	"testing"
 
@@ -14,11 +13,8 @@ func TestUncountedEvents(t *testing.T) {
 	f := &c.Cases[0].Options[2].Bands[0]
 	f.Events, f.EventsPerYear, f.EventsPerYearCI = 0, 0, result.Interval{0, 0.077}
 	c.Warnings = append(c.Warnings, result.Warning{Code: "events_peak_outside", Severity: result.Warn, Option: demoOptions[2].name, Band: "watch", Text: "Passed."})
-	var b bytes.Buffer
-	if err := Comparison(&b, c); err != nil {
-		t.Fatal(err)
-	}
-	_, table, _ := strings.Cut(b.String(), "watch: deep level above")
+	text := written(t, Comparison(c))
+	_, table, _ := strings.Cut(text, "watch: deep level above")
 	_, row, _ := strings.Cut(table, "\nC  ")
 	row, _, _ = strings.Cut(row, "\n")
 	if cells := strings.Fields(strings.TrimPrefix(row, demoOptions[2].name)); cells[0] != "–" || strings.HasPrefix(cells[1], "(") {
@@ -34,11 +30,8 @@ func TestSpells(t *testing.T) {
 			f := &c.Cases[0].Options[0].Bands[1]
 			f.Spells = append(f.Spells, result.Spell{From: "2001-01-01", To: "2001-01-02", Days: 2, PeakExcessM: 0.5})
 		}
-		var b bytes.Buffer
-		if err := Comparison(&b, c); err != nil {
-			t.Fatal(err)
-		}
-		if text := strings.Join(strings.Fields(b.String()), " "); !strings.Contains(text, want) || strings.Count(text, "2001-01-01 to") != 12 {
+		text := written(t, Comparison(c))
+		if text := strings.Join(strings.Fields(text), " "); !strings.Contains(text, want) || strings.Count(text, "2001-01-01 to") != 12 {
 			t.Errorf("%d events: no %q", n, want)
 		}
 	}

@@ -2,47 +2,45 @@ package render
 
 import (
 	"fmt"
-	"io"
 	"math"
 	"strconv"
 
 	"quietslope/scenario/result"
 )
 
-// Check writes the result of check as text.
-func Check(w io.Writer, c *result.Check) error {
-	var p page
+// Check lays out the result of check.
+func Check(c *result.Check) *Page {
+	p := &Page{}
 	ns := newNotes(c.Warnings)
 	letters := map[string]string{}
 	for i, o := range c.Options {
 		letters[o.Name] = letter(i)
 	}
-	title(&p, &c.Head)
-	inputs(&p, c.Inputs)
+	opening(p, &c.Head)
+	inputs(p, c.Inputs)
 
-	understood(&p, c.Understood)
-	checkOptions(&p, c, ns)
+	understood(p, c.Understood)
+	checkOptions(p, c, ns)
 	p.heading("Bands of the deep level")
-	bandTable(&p, c.Bands, func(name string) string { return ns.refs(nil, "", name) })
+	bandTable(p, c.Bands, func(name string) string { return ns.refs(nil, "", name) })
 	p.heading("Period and start")
 	p.field("years", "%s", yearsText(&c.Record, c.YearStarts))
-	recordFields(&p, &c.Record)
+	recordFields(p, &c.Record)
 	p.field("start", "baseline from %s m in the cover and %s m in the deep layer", centimetres(c.Start.CoverM), centimetres(c.Start.DeepM))
-	audit(&p, c)
+	audit(p, c)
 	if len(ns) > 0 {
 		p.heading("Notes")
 		if refs := ns.refs(nil, "", ""); refs != "" {
 			p.para("%s; about the whole study: %s.", ns.count(), refs)
 		}
-		ns.write(&p, func(name string) string { return letters[name] })
+		ns.write(p, func(name string) string { return letters[name] })
 	}
-	cautions(&p, c.Cautions)
-	_, err := w.Write(p.Bytes())
-	return err
+	cautions(p, c.Cautions)
+	return p
 }
 
 // understood lists every key with the value in force.
-func understood(p *page, keys []result.Understood) {
+func understood(p *Page, keys []result.Understood) {
 	p.heading("What was understood")
 	defaults := 0
 	width := 0
@@ -54,29 +52,29 @@ func understood(p *page, keys []result.Understood) {
 	}
 	p.para("%s; %d of them, marked *, were not given and stand at their default.", plural(len(keys), "key"), defaults)
 	for _, k := range keys {
-		mark := " "
+		kind := named
 		if k.Default {
-			mark = "*"
+			kind = marked
 		}
-		p.hang(mark+" "+clean(k.Key), width+4, k.Value)
+		p.add(item{kind, clean(k.Key), width + 4, clean(k.Value)})
 	}
 }
 
 // checkOptions lists what every option was understood to be.
-func checkOptions(p *page, c *result.Check, ns notes) {
+func checkOptions(p *Page, c *result.Check, ns notes) {
 	p.heading("Options and their rates")
 	p.para("Stores of the baseline: %s.", ratesText(&c.Rates))
 	for i, o := range c.Options {
 		text := o.Name
 		if refs := ns.refs(nil, o.Name, ""); refs != "" {
-			text += "  [" + noun(refs) + "]"
+			text += " [" + noun(refs) + "]"
 		}
-		p.hang("  "+letter(i), 5, text)
+		p.item(lettered, letter(i), text)
 		if !sameRates(&o.Rates, &c.Rates) {
-			p.hang("", 5, "stores: "+ratesText(&o.Rates))
+			p.item(below, "", "stores: "+ratesText(&o.Rates))
 		}
 		if len(o.Drains) == 0 {
-			p.hang("", 5, "no drains")
+			p.item(below, "", "no drains")
 		}
 		for _, d := range o.Drains {
 			text := fmt.Sprintf("%s, acting above %s m over the base of %s: rate %s /d", words(d.Measure), centimetres(d.InvertM), layerName(d.Layer), typed(d.RatePerDay, 4))
@@ -89,7 +87,7 @@ func checkOptions(p *page, c *result.Check, ns notes) {
 			if d.From != "" {
 				text += "; the rate is " + d.From
 			}
-			p.hang("", 5, text)
+			p.item(below, "", text)
 		}
 	}
 }
@@ -120,32 +118,32 @@ func sameRates(a, b *result.Rates) bool {
 }
 
 // audit lists what a person should look at in the record.
-func audit(p *page, c *result.Check) {
+func audit(p *Page, c *result.Check) {
 	a := &c.Audit
 	p.heading("The weather record")
-	var wet []string
-	for _, d := range a.Wettest {
-		wet = append(wet, fmt.Sprintf("%s  %s", d.Date, padLeft(strconv.FormatFloat(d.RainMM, 'f', 1, 64), 6)))
+	step := "day"
+	if c.Record.StepDays == nil {
+		step = "month"
 	}
-	if len(wet) > 0 {
-		steps := "days"
-		if c.Record.StepDays == nil {
-			steps = "months"
-		}
-		p.para("Wettest %s, mm of rain:", steps)
-		p.grid(wet)
+	wet := grid{head: []string{step, "mm", ""}, width: 6}
+	for _, d := range a.Wettest {
+		wet.rows = append(wet.rows, []string{d.Date, strconv.FormatFloat(d.RainMM, 'f', 1, 64), ""})
+	}
+	if len(wet.rows) > 0 {
+		p.para("Wettest %ss, mm of rain:", step)
+		p.add(wet)
 	}
 	if len(a.Years) > 0 {
 		p.para("Rain in calendar years, mm (share of the year that the record holds, where not all of it):")
-		var years []string
+		years := grid{head: []string{"year", "mm", "share"}, width: 5}
 		for _, y := range a.Years {
-			cell := fmt.Sprintf("%d  %s", y.Year, padLeft(strconv.FormatFloat(y.RainMM, 'f', 0, 64), 5))
+			held := ""
 			if y.ValidShare < 1 {
-				cell += " (" + percent(y.ValidShare) + ")"
+				held = percent(y.ValidShare)
 			}
-			years = append(years, cell)
+			years.rows = append(years.rows, []string{strconv.Itoa(y.Year), strconv.FormatFloat(y.RainMM, 'f', 0, 64), held})
 		}
-		p.grid(years)
+		p.add(years)
 	}
 	if len(a.Suspicious) == 0 {
 		p.para("Nothing suspicious found.")
@@ -157,31 +155,6 @@ func audit(p *page, c *result.Check) {
 		if s.To != s.From {
 			at += " to " + s.To
 		}
-		p.hang("  -", 4, at+", "+words(s.Kind)+": "+s.Text)
+		p.item(plain, "", at+", "+words(s.Kind)+": "+s.Text)
 	}
-}
-
-// grid writes cells in as many columns as fit, read downwards.
-func (p *page) grid(cells []string) {
-	widest := 0
-	for _, c := range cells {
-		widest = max(widest, len([]rune(c)))
-	}
-	const indent, gap = 2, 4
-	perLine := max(1, (pageWidth-indent+gap)/(widest+gap))
-	lines := (len(cells) + perLine - 1) / perLine
-	for l := range lines {
-		text := ""
-		for i := l; i < len(cells); i += lines {
-			text += pad(cells[i], widest+gap)
-		}
-		p.line("  %s", text)
-	}
-}
-
-func padLeft(s string, width int) string {
-	for len(s) < width {
-		s = " " + s
-	}
-	return s
 }

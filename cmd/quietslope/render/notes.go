@@ -122,7 +122,7 @@ func numbers(ns []int) string {
 }
 
 // write prints the notes. letter gives the key of an option's name.
-func (ns notes) write(p *page, letter func(string) string) {
+func (ns notes) write(p *Page, letter func(string) string) {
 	for i, n := range ns {
 		kind := "remark"
 		if n.first.Severity == result.Warn {
@@ -133,7 +133,7 @@ func (ns notes) write(p *page, letter func(string) string) {
 		if len(of) > 0 {
 			text += ", " + strings.Join(of, "; ")
 		}
-		p.hang(fmt.Sprintf("%3d", i+1), 5, text+": "+n.first.Text)
+		p.item(numbered, strconv.Itoa(i+1), text+": "+n.first.Text)
 	}
 }
 

@@ -1,82 +1,151 @@
 package render
 
 import (
-	"bytes"
 	"fmt"
-	"math"
+	"slices"
 	"strings"
 	"unicode"
 
 	"github.com/clipperhouse/displaywidth"
-	"github.com/olekukonko/tablewriter"
-	"github.com/olekukonko/tablewriter/renderer"
-	"github.com/olekukonko/tablewriter/tw"
 )
 
-// pageWidth is the number of columns that the text is designed for.
-const pageWidth = 100
+// Page is what a command says to people, block by block. Text and Markdown write it: the words, the figures and their
+// order are the same in both.
+//
+// Blocks hold plain text, without any markup, and a name from a study stands in them as it was written there.
+type Page struct{ blocks []block }
 
-// page collects the text. Lines never end in a blank.
-type page struct{ bytes.Buffer }
+// block is one of the types below.
+type block interface{}
 
-// line appends one line as it is.
-func (p *page) line(format string, args ...any) {
-	p.WriteString(strings.TrimRight(fmt.Sprintf(format, args...), " "))
-	p.WriteByte('\n')
+type (
+	title   string
+	heading string
+	para    string   // running text
+	gap     struct{} // a blank line, where blocks are not set apart anyway
+)
+
+// item is an entry of a list.
+type item struct {
+	kind   itemKind
+	label  string
+	indent int // column at which the words of a text begin
+	words  string
 }
 
-func (p *page) gap() { p.WriteByte('\n') }
+type itemKind int
+
+const (
+	named    itemKind = iota // what the entry is about, then what is said of it
+	marked                   // the same, with a mark
+	lettered                 // the letter of an option, then its name
+	numbered                 // a number that the page refers to
+	plain                    // no label
+	below                    // a further line of the entry before
+)
+
+// table has a first column of labels and further columns of cells. Where it is too wide for the page of the text, the
+// labels give way.
+type table struct {
+	caption string     // what it holds, where no heading or paragraph says so
+	first   string     // head of the labels
+	head    [][]string // lines of the head, each with one text per further column
+	groups  []string   // what columns have in common, for each; nil for none
+	cut     bool       // whether groups may be set below each other where they do not fit side by side
+	left    []bool     // columns aligned to the left; nil for none
+	labels  []label
+	rows    [][]string
+}
+
+// label begins a row: an option's letter and name, or a name alone.
+type label struct{ key, name string }
+
+// grid lists short pairs of a name and a figure, some with a remark.
+type grid struct {
+	head  []string // of the names, the figures and the remarks
+	rows  [][]string
+	width int // of the figures
+}
+
+func (p *Page) add(b block) { p.blocks = append(p.blocks, b) }
+
+func (p *Page) gap() { p.add(gap{}) }
+
+func (p *Page) title(text string) { p.add(title(clean(text))) }
 
 // heading starts a section.
-func (p *page) heading(format string, args ...any) {
-	text := clean(fmt.Sprintf(format, args...))
-	if p.Len() > 0 {
-		p.gap()
-	}
-	for _, l := range wrap(text, pageWidth) {
-		p.line("%s", l)
-	}
-	p.line("%s", strings.Repeat("-", min(displaywidth.String(text), pageWidth)))
+func (p *Page) heading(format string, args ...any) {
+	p.add(heading(clean(fmt.Sprintf(format, args...))))
 }
 
-// para appends running text, wrapped.
-func (p *page) para(format string, args ...any) {
-	p.hang("", 0, fmt.Sprintf(format, args...))
+// para appends running text.
+func (p *Page) para(format string, args ...any) { p.add(para(clean(fmt.Sprintf(format, args...)))) }
+
+// item appends an entry of a list.
+func (p *Page) item(kind itemKind, label, words string) {
+	indent := 5
+	switch kind {
+	case named:
+		indent = 16
+	case plain:
+		indent = 4
+	}
+	p.add(item{kind, clean(label), indent, clean(words)})
 }
 
-// hang appends running text behind a label, wrapped, with every line starting at the column indent.
-func (p *page) hang(label string, indent int, text string) {
-	if displaywidth.String(label) >= indent && label != "" {
-		indent = displaywidth.String(label) + 1
+// field appends a named entry of a list.
+func (p *Page) field(name, format string, args ...any) {
+	p.item(named, name, fmt.Sprintf(format, args...))
+}
+
+// table appends a table, unless it has no rows.
+func (p *Page) table(t table) {
+	if len(t.rows) == 0 {
+		return
 	}
-	for i, l := range wrap(clean(text), pageWidth-indent) {
-		if i > 0 {
-			label = ""
+	labels := slices.Clone(t.labels)
+	for i := range labels {
+		labels[i].name = clean(labels[i].name)
+	}
+	t.labels = labels
+	p.add(t)
+}
+
+// columns are the table with those columns only for which keep holds.
+func (t table) columns(keep func(int) bool) table {
+	pick := func(row []string) []string {
+		var out []string
+		for c, cell := range row {
+			if keep(c) {
+				out = append(out, cell)
+			}
 		}
-		p.line("%s%s", pad(label, indent), l)
+		return out
 	}
+	out := t
+	out.head, out.rows, out.left = nil, nil, nil
+	for _, r := range t.head {
+		out.head = append(out.head, pick(r))
+	}
+	for _, r := range t.rows {
+		out.rows = append(out.rows, pick(r))
+	}
+	for c, left := range t.left {
+		if keep(c) {
+			out.left = append(out.left, left)
+		}
+	}
+	if t.groups != nil {
+		out.groups = pick(t.groups)
+	}
+	return out
 }
 
-// field appends a named item of a list.
-func (p *page) field(name, format string, args ...any) {
-	p.hang("  "+name, 16, fmt.Sprintf(format, args...))
-}
-
-// wrap cuts text into lines of at most width columns, between words. A longer word has a line of its own.
-func wrap(text string, width int) []string {
-	var lines []string
-	line, used := "", 0
-	for _, w := range strings.Fields(text) {
-		n := displaywidth.String(w)
-		if line != "" && used+1+n > width {
-			lines, line, used = append(lines, line), "", 0
-		}
-		if line != "" {
-			line, used = line+" ", used+1
-		}
-		line, used = line+w, used+n
-	}
-	return append(lines, line)
+// dropEmpty leaves out the columns whose cells are all empty.
+func (t table) dropEmpty() table {
+	return t.columns(func(c int) bool {
+		return slices.ContainsFunc(t.rows, func(r []string) bool { return r[c] != "" })
+	})
 }
 
 // clean keeps text that came from a file from steering the terminal.
@@ -90,128 +159,6 @@ func clean(text string) string {
 		}
 		return r
 	}, text)
-}
-
-// pad fills text with blanks on the right up to width columns.
-func pad(text string, width int) string {
-	return text + strings.Repeat(" ", max(0, width-displaywidth.String(text)))
-}
-
-// shorten keeps the beginning and the end of text, since names often differ at the end, in at most width columns.
-func shorten(text string, width int) string {
-	if displaywidth.String(text) <= width {
-		return text
-	}
-	if width < 1 {
-		return ""
-	}
-	var parts []string
-	var widths []int
-	for g := displaywidth.StringGraphemes(text); g.Next(); {
-		parts, widths = append(parts, g.Value()), append(widths, g.Width())
-	}
-	left := width - 1
-	head, room := 0, (left+1)/2
-	for widths[head] <= room {
-		room -= widths[head]
-		left -= widths[head]
-		head++
-	}
-	tail := len(parts)
-	for widths[tail-1] <= left {
-		left -= widths[tail-1]
-		tail--
-	}
-	return strings.Join(parts[:head], "") + "…" + strings.Join(parts[tail:], "")
-}
-
-// table is a table of text cells. Its first column may be shortened to make it fit the page.
-type table struct {
-	head [][]string // lines of the head, each with one text per column
-	left []bool     // columns aligned to the left; the first always is
-	rows [][]string
-	// label gives the first cell of a row in at most width columns; nil leaves the first column as it is.
-	label func(row, width int) string
-}
-
-// minLabel is the narrowest first column: an option's letter.
-const minLabel = 2
-
-// table draws a table. Where it is too wide for the page, the first column gives way.
-func (p *page) table(t table) {
-	if len(t.rows) == 0 {
-		return
-	}
-	text := t.draw(math.MaxInt)
-	if over := widest(text) - pageWidth; over > 0 && t.label != nil {
-		first := 0
-		for i := range t.rows {
-			first = max(first, displaywidth.String(t.label(i, math.MaxInt)))
-		}
-		text = t.draw(max(first-over, minLabel))
-	}
-	for line := range strings.Lines(text) {
-		p.line("%s", strings.TrimSuffix(line, "\n"))
-	}
-}
-
-// draw draws the table with a first column of at most the given width.
-func (t table) draw(first int) string {
-	var b strings.Builder
-	align := tw.Alignment{tw.AlignLeft}
-	for c := range t.head[0][1:] {
-		if t.left != nil && t.left[c+1] {
-			align = append(align, tw.AlignLeft)
-		} else {
-			align = append(align, tw.AlignRight)
-		}
-	}
-	w := tablewriter.NewTable(&b,
-		tablewriter.WithRenderer(renderer.NewBlueprint(tw.Rendition{
-			Borders:  tw.BorderNone,
-			Symbols:  tw.NewSymbols(tw.StyleNone),
-			Settings: tw.Settings{Lines: tw.LinesNone, Separators: tw.SeparatorsNone},
-		})),
-		tablewriter.WithHeaderAutoFormat(tw.Off), tablewriter.WithHeaderAutoWrap(tw.WrapNone),
-		tablewriter.WithRowAutoWrap(tw.WrapNone), tablewriter.WithTrimSpace(tw.Off), tablewriter.WithTrimLine(tw.Off),
-		tablewriter.WithPadding(tw.Padding{Right: "  ", Overwrite: true}),
-		tablewriter.WithAlignment(align),
-	)
-	head := make([]string, len(t.head[0]))
-	for c := range head {
-		for l, line := range t.head {
-			cell := line[c]
-			if c == 0 && first < math.MaxInt {
-				cell = shorten(cell, first)
-			}
-			if l > 0 {
-				head[c] += "\n"
-			}
-			head[c] += cell
-		}
-	}
-	w.Header(head)
-	for i, row := range t.rows {
-		if t.label != nil {
-			row = append([]string{t.label(i, first)}, row[1:]...)
-		}
-		if err := w.Append(row); err != nil {
-			panic(err) // it writes to memory, and every row has the columns of the head
-		}
-	}
-	if err := w.Render(); err != nil {
-		panic(err)
-	}
-	return b.String()
-}
-
-// widest is the width of the widest line, less the blanks that end it.
-func widest(text string) int {
-	w := 0
-	for line := range strings.Lines(text) {
-		w = max(w, displaywidth.String(strings.TrimRight(line, " \n")))
-	}
-	return w
 }
 
 // column joins figures and their ranges into cells: the figures with their decimal points below each other, the

@@ -38,6 +38,16 @@ func compareGolden(t *testing.T, name, got string) {
 	}
 }
 
+// written is a page as text.
+func written(t *testing.T, p *Page) string {
+	t.Helper()
+	var b bytes.Buffer
+	if err := p.Text(&b); err != nil {
+		t.Fatal(err)
+	}
+	return b.String()
+}
+
 // fits fails for lines wider than the page, with blanks at their end, or with control characters.
 func fits(t *testing.T, text string) {
 	t.Helper()
@@ -66,12 +76,9 @@ func TestComparison(t *testing.T) {
 		{"compare-never", never()},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
-			var b bytes.Buffer
-			if err := Comparison(&b, tt.c); err != nil {
-				t.Fatal(err)
-			}
-			fits(t, b.String())
-			compareGolden(t, tt.name, b.String())
+			text := written(t, Comparison(tt.c))
+			fits(t, text)
+			compareGolden(t, tt.name, text)
 		})
 	}
 }
@@ -80,12 +87,9 @@ func TestComparison(t *testing.T) {
 func TestHostileNames(t *testing.T) {
 	c := fixture([]strengths{{"a\x1b[31mred", nil, 1}, {strings.Repeat("深", 30), nil, 0.5}, {"e\u0301 combining \u202e", nil, 0.2}}, []string{"深い水位", "movement onset"})
 	c.Study = "x\x1b]0;title\x07"
-	var b bytes.Buffer
-	if err := Comparison(&b, c); err != nil {
-		t.Fatal(err)
-	}
-	fits(t, b.String())
-	if strings.ContainsAny(b.String(), "\x1b\x07\u202e") {
+	text := written(t, Comparison(c))
+	fits(t, text)
+	if strings.ContainsAny(text, "\x1b\x07\u202e") {
 		t.Error("a control character reached the text")
 	}
 }
@@ -94,13 +98,10 @@ func TestHostileNames(t *testing.T) {
 func TestDisagreement(t *testing.T) {
 	c := fixture(demoOptions[:3], threeBands)
 	c.Cases[0].Options[2].Bands[1].EventsPerYear = 3
-	var b bytes.Buffer
-	if err := Comparison(&b, c); err != nil {
-		t.Fatal(err)
-	}
+	text := written(t, Comparison(c))
 	for _, want := range []string{"The measures disagree on the order of the options: events against load.", "by load       B < C < A", "by events     B < A < C"} {
-		if !strings.Contains(b.String(), want) {
-			t.Errorf("no %q in:\n%s", want, &b)
+		if !strings.Contains(text, want) {
+			t.Errorf("no %q in:\n%s", want, text)
 		}
 	}
 }
@@ -135,12 +136,9 @@ func TestCheck(t *testing.T) {
 		}
 		c.Options = append(c.Options, co)
 	}
-	var b bytes.Buffer
-	if err := Check(&b, c); err != nil {
-		t.Fatal(err)
-	}
-	fits(t, b.String())
-	compareGolden(t, "check-demo", b.String())
+	text := written(t, Check(c))
+	fits(t, text)
+	compareGolden(t, "check-demo", text)
 }
 
 func TestFigures(t *testing.T) {
@@ -259,7 +257,7 @@ func TestLevels(t *testing.T) {
 	if err := Levels(failing{}, s); !errors.Is(err, errFull) {
 		t.Errorf("a failed write gave %v", err)
 	}
-	if err := Comparison(failing{}, never()); !errors.Is(err, errFull) {
+	if err := Comparison(never()).Text(failing{}); !errors.Is(err, errFull) {
 		t.Errorf("a failed write gave %v", err)
 	}
 }
@@ -275,12 +273,9 @@ func TestRankedBy(t *testing.T) {
 	for key, unit := range map[string]string{"load": "m·d per year", "days": "days per year", "events": "events per year", "annual_probability": "% of years"} {
 		c := fixture(demoOptions, threeBands)
 		c.Settings.DecideBy = key
-		var b bytes.Buffer
-		if err := Comparison(&b, c); err != nil {
-			t.Fatal(err)
-		}
-		fits(t, b.String())
-		_, rest, _ := strings.Cut(b.String(), "\nRanking on movement onset by ")
+		text := written(t, Comparison(c))
+		fits(t, text)
+		_, rest, _ := strings.Cut(text, "\nRanking on movement onset by ")
 		first, second, ok := strings.Cut(rest, "\nchange against A")
 		if !ok || !strings.Contains(first, unit) || strings.Contains(strings.SplitN(second, "\n\n", 2)[0], unit) {
 			t.Errorf("by %s:\n%s", key, rest)
@@ -295,16 +290,13 @@ func TestCases(t *testing.T) {
 	wet.Climate = "wetter winters"
 	c.Cases = append(c.Cases, wet)
 	c.Warnings = append(c.Warnings, result.Warning{Code: "x", Severity: result.Warn, Climate: "wetter winters", Option: "as it stands", Band: "watch", Text: "Only there."})
-	var b bytes.Buffer
-	if err := Comparison(&b, c); err != nil {
-		t.Fatal(err)
-	}
-	fits(t, b.String())
-	before, after, ok := strings.Cut(b.String(), "Case: weather wetter winters, works as built")
+	text := written(t, Comparison(c))
+	fits(t, text)
+	before, after, ok := strings.Cut(text, "Case: weather wetter winters, works as built")
 	if !ok || !strings.Contains(before, "Case: weather as recorded, works as built") {
 		t.Fatal("no heading for each case")
 	}
 	if strings.Contains(before, "See the notes: A") || !strings.Contains(after, "See the notes: A 2.") {
-		t.Errorf("the note is not named where it belongs:\n%s", &b)
+		t.Errorf("the note is not named where it belongs:\n%s", text)
 	}
 }

@@ -1,0 +1,238 @@
+package render
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"quietslope/scenario/result"
+	"quietslope/stats"
+)
+
+// against says in a cell how an option stands against the baseline.
+func against(d *result.Difference, apart bool) string {
+	switch {
+	case !apart:
+		return "not told apart"
+	case d.Difference > 0:
+		return "more"
+	}
+	return "less"
+}
+
+// measure is one of the figures that options can be ranked by.
+type measure struct {
+	key, name, unit string
+	scale           float64
+	figure          func(*result.BandFigure) float64
+	change          func(*result.Change) *result.Difference
+}
+
+var measures = []measure{
+	{"load", "load", "m·d per year", 1,
+		func(f *result.BandFigure) float64 { return f.LoadMDaysPerYear },
+		func(c *result.Change) *result.Difference { return &c.LoadMDaysPerYear }},
+	{"days", "days", "days per year", 1,
+		func(f *result.BandFigure) float64 { return f.DaysPerYear },
+		func(c *result.Change) *result.Difference { return &c.DaysPerYear }},
+	{"events", "events", "events per year", 1,
+		func(f *result.BandFigure) float64 { return f.EventsPerYear },
+		func(c *result.Change) *result.Difference { return &c.EventsPerYear }},
+	{"annual_probability", "share of years", "% of years", 100,
+		func(f *result.BandFigure) float64 { return f.AnnualProbability },
+		func(c *result.Change) *result.Difference { return &c.AnnualProbability }},
+}
+
+// measureOf finds a measure by its key; the first for a key that is not known.
+func measureOf(key string) *measure {
+	for i := range measures {
+		if measures[i].key == key {
+			return &measures[i]
+		}
+	}
+	return &measures[0]
+}
+
+// change writes the ranking on the deciding band and the change against the baseline.
+func (v *view) change(c *result.Case) {
+	band := v.deciding()
+	if band < 0 || len(c.Options) < 2 || v.nothingPassed(c, band) {
+		return
+	}
+	by := measureOf(v.c.Settings.DecideBy)
+	options := pointers(c)
+	slices.SortStableFunc(options, func(a, b *result.Option) int { return rank(a) - rank(b) })
+
+	v.heading("Ranking on %s by %s, and the change against %s", v.c.Bands[band].Name, by.name, v.baseline)
+	t := table{
+		head: [][]string{
+			{"", "change", "ratio to", "better", "years", ""},
+			{"rank", by.unit, v.baseline, "(same)", "b/s/w", "against " + v.baseline},
+		},
+		left: []bool{false, true, true, true, true, true},
+	}
+	var diff, ratio column
+	for _, o := range options {
+		ch := o.Bands[band].Change
+		if ch == nil {
+			diff.add("", "")
+			ratio.add("", "")
+			continue
+		}
+		d := by.change(ch)
+		diff.add(ranged(by.scale*d.Difference, scaled(d.DifferenceCI, by.scale), tiny))
+		if d.Ratio == nil {
+			ratio.add("–", "")
+		} else {
+			ratio.add(ranged(*d.Ratio, d.RatioCI, -2))
+		}
+	}
+	for i, o := range options {
+		rank := "–"
+		if o.Decision != nil {
+			rank = strconv.Itoa(o.Decision.Rank)
+		}
+		row := []string{rank, diff.cells()[i], ratio.cells()[i], "", "", "baseline"}
+		if ch := o.Bands[band].Change; ch != nil {
+			d := by.change(ch)
+			row[3] = percent(d.ShareBetter)
+			if d.DifferenceCI == nil && d.ShareEqual < 1 { // too few years to resample
+				row[3] = "–"
+			} else if d.ShareEqual >= 0.005 {
+				row[3] += " (" + percent(d.ShareEqual) + ")"
+			}
+			row[4] = fmt.Sprintf("%d/%d/%d", d.YearsBetter, d.YearsEqual, d.YearsWorse)
+			row[5] = against(d, ch.ToldApart)
+		}
+		t.rows = append(t.rows, row)
+	}
+	v.rows(t, options)
+	v.para("A change below zero is an improvement. Better (same): share of the resamples. b/s/w: years better, same, worse. Less and more are said where the two can be told apart: the range of the change leaves out zero and the years better and worse are too uneven "+
+		"for chance (sign test at %s). It says that there is a change, not that it is large enough to matter. Ranks follow the figures alone. To see the change between two works, mark one of them baseline: true in the study.", v.confidence())
+
+	v.otherChanges(options, band, by)
+	v.orders(c, band, by)
+}
+
+// otherChanges writes the change in the measures that do not rank.
+func (v *view) otherChanges(options []*result.Option, band int, by *measure) {
+	v.gap()
+	head := [][]string{nil, nil}
+	var cols []column
+	for i := range measures {
+		m := &measures[i]
+		if m == by {
+			continue
+		}
+		var col column
+		for _, o := range options {
+			if ch := o.Bands[band].Change; ch == nil {
+				col.add("", "")
+			} else {
+				d := m.change(ch)
+				col.add(ranged(m.scale*d.Difference, scaled(d.DifferenceCI, m.scale), tiny))
+			}
+		}
+		unit := m.unit
+		if m.scale == 100 {
+			unit = "percentage points"
+		}
+		head[0], head[1] = append(head[0], m.name), append(head[1], unit)
+		cols = append(cols, col)
+	}
+	t := table{caption: "change against " + v.baseline, head: head, left: []bool{true, true, true}}
+	for i, o := range options {
+		var row []string
+		for _, col := range cols {
+			row = append(row, col.cells()[i])
+		}
+		if o.Bands[band].Change == nil {
+			row[0] = "baseline"
+		}
+		t.rows = append(t.rows, row)
+	}
+	v.rows(t, options)
+}
+
+func scaled(ci *result.Interval, by float64) *result.Interval {
+	if ci == nil {
+		return nil
+	}
+	return &result.Interval{by * ci[0], by * ci[1]}
+}
+
+func rank(o *result.Option) int {
+	if o.Decision == nil {
+		return math.MaxInt
+	}
+	return o.Decision.Rank
+}
+
+// orders says whether the measures put the options in the same order on a band.
+func (v *view) orders(c *result.Case, band int, by *measure) {
+	figures := func(m *measure) []float64 { return v.figuresBy(c, band, m) }
+	base := figures(by)
+	var against []*measure
+	for i := range measures {
+		if m := &measures[i]; m != by && disagree(base, figures(m)) {
+			against = append(against, m)
+		}
+	}
+	v.gap()
+	if len(against) == 0 {
+		v.para("By no other measure do two options change places, though some may be equal.")
+		return
+	}
+	var names []string
+	for _, m := range against {
+		names = append(names, m.name)
+	}
+	v.para("The measures disagree on the order of the options: %s against %s. From the least:", strings.Join(names, " and "), by.name)
+	for _, m := range append([]*measure{by}, against...) {
+		v.field("by "+m.name, "%s", v.order(c, figures(m)))
+	}
+	if slices.ContainsFunc(against, func(m *measure) bool { return m.key == "events" }) || by.key == "events" {
+		v.para("A drain can split one long event into several, so that the count rises while days and load fall: read the count with them.")
+	}
+}
+
+// disagree reports whether some pair of options stands in opposite orders by the two figures.
+func disagree(a, b []float64) bool {
+	for i := range a {
+		for j := range a {
+			if stats.Less(a[i], a[j]) && stats.Less(b[j], b[i]) {
+				return true
+			}
+		}
+	}
+	return false
+}
+
+// order lists the options by a figure, from the least, as in "C = D < A".
+func (v *view) order(c *result.Case, xs []float64) string {
+	index := make([]int, len(xs))
+	for i := range index {
+		index[i] = i
+	}
+	slices.SortStableFunc(index, func(a, b int) int {
+		switch {
+		case stats.Less(xs[a], xs[b]):
+			return -1
+		case stats.Less(xs[b], xs[a]):
+			return 1
+		}
+		return 0
+	})
+	var b strings.Builder
+	for k, i := range index {
+		if k > 0 && !stats.Less(xs[index[k-1]], xs[i]) {
+			b.WriteString(" = ")
+		} else if k > 0 {
+			b.WriteString(" < ")
+		}
+		b.WriteString(v.letters[c.Options[i].Name])
+	}
+	return b.String()
+}

@@ -1,0 +1,108 @@
+package render
+
+import (
+	"fmt"
+	"regexp"
+	"slices"
+	"strconv"
+	"strings"
+
+	"quietslope/scenario"
+	"quietslope/scenario/result"
+)
+
+func (v *view) warnings() {
+	if len(v.notes) == 0 {
+		return
+	}
+	v.heading("Notes")
+	v.notes.write(&v.Page, func(name string) string { return v.letters[name] })
+}
+
+func (v *view) settings() {
+	s := &v.c.Settings
+	v.heading("Settings and inputs")
+	v.field("settings", "year starts in %s, events %s d apart, confidence %s, %d resamples of %s-year blocks, seed %d",
+		s.YearStarts, days(s.ApartDays), v.confidence(), s.Resamples, rate(s.BlockYears), s.Seed)
+	inputs(&v.Page, v.c.Inputs)
+	if len(v.c.Defaults) > 0 {
+		v.field("defaults", "%s", strings.Join(v.merged(v.c.Defaults), "; "))
+	}
+	if len(v.c.Declared) > 0 {
+		var parts []string
+		for _, key := range scenario.DeclaredKeys {
+			if answer := v.c.Declared[key]; answer != "" {
+				parts = append(parts, words(key)+" "+answer)
+			}
+		}
+		v.field("declared", "%s", strings.Join(parts, "; "))
+	}
+}
+
+var indexed = regexp.MustCompile(`^([a-z_]+)\[(\d+)\]\.(.*)$`)
+
+// merged lists keys with their values. Those that differ only in the option or band share an entry, as in
+// B, C, H: trench_drains.law linear. Which option is no baseline is said with the options.
+func (v *view) merged(keys []result.KeyValue) []string {
+	type entry struct {
+		list, rest, value string
+		at                []string
+	}
+	var entries []entry
+	for _, k := range keys {
+		if strings.HasPrefix(k.Key, "declared.") || strings.HasSuffix(k.Key, "].baseline") { // said elsewhere
+			continue
+		}
+		e := entry{rest: k.Key, value: k.Value}
+		if m := indexed.FindStringSubmatch(k.Key); m != nil {
+			if n, err := strconv.Atoi(m[2]); err == nil {
+				e = entry{m[1], m[3], k.Value, []string{v.nameOf(m[1], n)}}
+			}
+		}
+		same := func(o entry) bool { return e.list != "" && o.list == e.list && o.rest == e.rest && o.value == e.value }
+		if i := slices.IndexFunc(entries, same); i >= 0 {
+			entries[i].at = append(entries[i].at, e.at...)
+		} else {
+			entries = append(entries, e)
+		}
+	}
+	var texts []string
+	for _, e := range entries {
+		text := e.rest + " " + e.value
+		if e.list != "" {
+			text = strings.Join(e.at, ", ") + ": " + text
+		}
+		texts = append(texts, text)
+	}
+	return texts
+}
+
+// nameOf is how the text calls item n of a list of the study.
+func (v *view) nameOf(list string, n int) string {
+	switch {
+	case list == "options":
+		return letter(n)
+	case list == "bands" && n < len(v.c.Bands):
+		return v.c.Bands[n].Name
+	}
+	return fmt.Sprintf("%s[%d]", list, n)
+}
+
+// shortHash is how many hex digits of a hash are enough to tell two files apart by eye.
+const shortHash = 12
+
+func inputs(p *Page, in []result.Input) {
+	for _, f := range in {
+		p.field(f.Role, "%s (SHA-256 %s…)", f.File, f.SHA256[:min(shortHash, len(f.SHA256))])
+	}
+}
+
+func cautions(p *Page, texts []string) {
+	if len(texts) == 0 {
+		return
+	}
+	p.heading("Before anybody relies on this")
+	for _, c := range texts {
+		p.item(plain, "", c)
+	}
+}

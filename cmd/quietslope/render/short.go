@@ -1,0 +1,102 @@
+package render
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"quietslope/scenario/result"
+)
+
+// inShort says in a few lines what the tables say on the deciding band, without a judgement of its own.
+func (v *view) inShort() {
+	band := v.deciding()
+	if band < 0 || len(v.c.Cases) == 0 {
+		return
+	}
+	c := &v.c.Cases[0]
+	name, T := v.c.Bands[band].Name, v.c.Record.YearsCounted
+	by := measureOf(v.c.Settings.DecideBy)
+	v.heading("In short")
+	for i, n := range v.notes {
+		if n.first.Code == "implausible_weather" || n.first.Code == "record_short" && T < veryFewYears {
+			v.para("Check first: %s (note %d)", n.first.Text, i+1)
+		}
+	}
+	if v.nothingPassed(c, band) {
+		base := baselineOf(c)
+		v.para("No option passes %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
+			name, plural(T, "year"), v.letters[base.Name], centimetres(base.Level.MaxM), metres(v.c.Bands[band].LevelM))
+		v.para("%s.", v.notes.headline())
+		return
+	}
+	var none, worse, same []string
+	for _, o := range pointers(c) {
+		f := &o.Bands[band]
+		switch {
+		case o.Baseline && notPassed(f):
+			v.para("%s, the baseline, does not pass %s in %s.", v.letters[o.Name], name, plural(T, "year"))
+		case o.Baseline:
+			days, limits := ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
+			v.para("%s, the baseline, passes %s in %.0f of %s, on %s days a year.", v.letters[o.Name], name,
+				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), strings.TrimSpace(days+" "+limits))
+		case notPassed(f):
+			none = append(none, v.letters[o.Name])
+		}
+		switch {
+		case f.Change == nil:
+		case !f.Change.ToldApart:
+			same = append(same, v.letters[o.Name])
+		case by.change(f.Change).Difference > 0:
+			worse = append(worse, v.letters[o.Name])
+		}
+	}
+	if len(none) > 0 {
+		v.para("With %s the record holds no event, which does not mean that none can come.", strings.Join(none, ", "))
+	}
+	if len(c.Options) > 1 {
+		text := fmt.Sprintf("From the least by %s: %s.", by.name, v.order(c, v.figuresBy(c, band, by)))
+		if len(worse) > 0 {
+			text += fmt.Sprintf(" Worse than %s: %s.", v.baseline, strings.Join(worse, ", "))
+		}
+		if len(same) > 0 {
+			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.baseline, strings.Join(same, ", "))
+		}
+		if refs := v.notes.numbersOf("order_not_told_apart"); refs != "" {
+			text += fmt.Sprintf(" Some neighbours in this order are not told apart from each other: see %s.", noun(refs))
+		}
+		v.para("%s", text)
+	}
+	if len(v.notes) > 0 {
+		v.para("%s. What is weak about these figures stands there.", v.notes.headline())
+	}
+}
+
+// deciding is the index of the band that ranks the options, -1 for none.
+func (v *view) deciding() int {
+	return slices.IndexFunc(v.c.Bands, func(b result.Band) bool { return b.Name == v.c.Settings.DecideOn })
+}
+
+// nothingPassed reports whether no option of a case passes a band.
+func (v *view) nothingPassed(c *result.Case, band int) bool {
+	return !slices.ContainsFunc(c.Options, func(o result.Option) bool { return !notPassed(&o.Bands[band]) })
+}
+
+func baselineOf(c *result.Case) *result.Option {
+	for i := range c.Options {
+		if c.Options[i].Baseline {
+			return &c.Options[i]
+		}
+	}
+	return &c.Options[0]
+}
+
+// figuresBy are the options' figures on a band by one measure, in the order of the case.
+func (v *view) figuresBy(c *result.Case, band int, m *measure) []float64 {
+	xs := make([]float64, len(c.Options))
+	for i := range c.Options {
+		xs[i] = m.figure(&c.Options[i].Bands[band])
+	}
+	return xs
+}

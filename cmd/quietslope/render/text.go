@@ -1,0 +1,312 @@
+package render
+
+import (
+	"bytes"
+	"fmt"
+	"io"
+	"math"
+	"strings"
+
+	"github.com/clipperhouse/displaywidth"
+	"github.com/olekukonko/tablewriter"
+	"github.com/olekukonko/tablewriter/renderer"
+	"github.com/olekukonko/tablewriter/tw"
+)
+
+// pageWidth is the number of columns that the text is designed for.
+const pageWidth = 100
+
+// Text writes the page for a terminal or a plain file: 100 columns, no colour, no line that ends in a blank.
+func (p *Page) Text(w io.Writer) error {
+	var t lines
+	for _, b := range p.blocks {
+		switch b := b.(type) {
+		case title:
+			t.hang("", 0, string(b))
+		case heading:
+			t.heading(string(b))
+		case para:
+			t.hang("", 0, string(b))
+		case gap:
+			t.WriteByte('\n')
+		case item:
+			t.hang(b.mark(), b.indent, b.words)
+		case table:
+			t.table(b)
+		case grid:
+			t.grid(b)
+		}
+	}
+	_, err := w.Write(t.Bytes())
+	return err
+}
+
+// mark is what stands before the words of an entry.
+func (i *item) mark() string {
+	switch i.kind {
+	case marked:
+		return "* " + i.label
+	case numbered:
+		return fmt.Sprintf("%3s", i.label)
+	case plain:
+		return "  -"
+	case below:
+		return ""
+	}
+	return "  " + i.label
+}
+
+// lines collects text.
+type lines struct{ bytes.Buffer }
+
+func (t *lines) line(line string) {
+	t.WriteString(strings.TrimRight(line, " "))
+	t.WriteByte('\n')
+}
+
+func (t *lines) heading(of string) {
+	if t.Len() > 0 {
+		t.WriteByte('\n')
+	}
+	for _, l := range wrap(of, pageWidth) {
+		t.line(l)
+	}
+	t.line(strings.Repeat("-", min(displaywidth.String(of), pageWidth)))
+}
+
+// hang appends running text behind a label, wrapped, with every line starting at the column indent.
+func (t *lines) hang(label string, indent int, of string) {
+	if displaywidth.String(label) >= indent && label != "" {
+		indent = displaywidth.String(label) + 1
+	}
+	for i, l := range wrap(of, pageWidth-indent) {
+		if i > 0 {
+			label = ""
+		}
+		t.line(pad(label, indent) + l)
+	}
+}
+
+// wrap cuts text into lines of at most width columns, between words. A longer word has a line of its own.
+func wrap(text string, width int) []string {
+	var lines []string
+	line, used := "", 0
+	for _, w := range strings.Fields(text) {
+		n := displaywidth.String(w)
+		if line != "" && used+1+n > width {
+			lines, line, used = append(lines, line), "", 0
+		}
+		if line != "" {
+			line, used = line+" ", used+1
+		}
+		line, used = line+w, used+n
+	}
+	return append(lines, line)
+}
+
+// pad fills text with blanks on the right up to width columns.
+func pad(text string, width int) string {
+	return text + strings.Repeat(" ", max(0, width-displaywidth.String(text)))
+}
+
+// shorten keeps the beginning and the end of text, since names often differ at the end, in at most width columns.
+func shorten(text string, width int) string {
+	if displaywidth.String(text) <= width {
+		return text
+	}
+	if width < 1 {
+		return ""
+	}
+	var parts []string
+	var widths []int
+	for g := displaywidth.StringGraphemes(text); g.Next(); {
+		parts, widths = append(parts, g.Value()), append(widths, g.Width())
+	}
+	left := width - 1
+	head, room := 0, (left+1)/2
+	for widths[head] <= room {
+		room -= widths[head]
+		left -= widths[head]
+		head++
+	}
+	tail := len(parts)
+	for widths[tail-1] <= left {
+		left -= widths[tail-1]
+		tail--
+	}
+	return strings.Join(parts[:head], "") + "…" + strings.Join(parts[tail:], "")
+}
+
+// in joins a label to at most width columns. The name is shortened, or left out where there is no room for it.
+func (l label) in(width int) string {
+	if l.key == "" {
+		return shorten(l.name, width)
+	}
+	if room := width - len(l.key) - 2; room >= 5 {
+		return l.key + "  " + shorten(l.name, room)
+	}
+	return l.key
+}
+
+// Widths of the labels.
+const (
+	minLabel = 2  // an option's letter
+	cutLabel = 30 // to which they are shortened before a table is cut
+)
+
+// table draws a table.
+func (t *lines) table(b table) {
+	if !b.cut || fitting(b, len(b.groups)) == len(b.groups) {
+		t.whole(b)
+		return
+	}
+	for from := 0; from < len(b.groups); {
+		rest := b.columns(func(c int) bool { return c >= from })
+		n := fitting(rest, len(rest.groups))
+		if from > 0 {
+			t.WriteByte('\n')
+		}
+		t.whole(rest.columns(func(c int) bool { return c < n }))
+		from += n
+	}
+}
+
+// fitting is the number of the first columns, in whole groups, at least one, that fit the page with labels that can still
+// be read.
+func fitting(b table, most int) int {
+	for n := most; ; {
+		of := b.columns(func(c int) bool { return c < n })
+		over := widest(of.draw(math.MaxInt)) - pageWidth
+		last := n - 1 // first column of the last group
+		for last > 0 && b.groups[last-1] == b.groups[n-1] {
+			last--
+		}
+		if over <= 0 || of.widestLabel()-over >= cutLabel || last == 0 {
+			return n
+		}
+		n = last
+	}
+}
+
+// whole draws a table in one piece.
+func (t *lines) whole(b table) {
+	drawn := b.draw(math.MaxInt)
+	if over := widest(drawn) - pageWidth; over > 0 {
+		drawn = b.draw(max(b.widestLabel()-over, minLabel))
+	}
+	for line := range strings.Lines(drawn) {
+		t.line(strings.TrimSuffix(line, "\n"))
+	}
+}
+
+func (b *table) widestLabel() int {
+	widest := 0
+	for _, l := range b.labels {
+		widest = max(widest, displaywidth.String(l.in(math.MaxInt)))
+	}
+	return widest
+}
+
+// draw draws the table with labels of at most the given width.
+func (b *table) draw(width int) string {
+	lines := b.head
+	if b.groups != nil { // each where its columns begin
+		once := make([]string, len(b.groups))
+		for c, g := range b.groups {
+			if c == 0 || g != b.groups[c-1] {
+				once[c] = g
+			}
+		}
+		lines = append([][]string{once}, lines...)
+	}
+	head := make([]string, 1+len(lines[0]))
+	for l, line := range lines {
+		first := ""
+		switch l {
+		case len(lines) - 1:
+			first = b.first
+		case 0:
+			first = b.caption
+		}
+		if width < math.MaxInt {
+			first = shorten(first, width)
+		}
+		for c, cell := range append([]string{first}, line...) {
+			if l > 0 {
+				head[c] += "\n"
+			}
+			head[c] += cell
+		}
+	}
+	var rows [][]string
+	for i, row := range b.rows {
+		rows = append(rows, append([]string{b.labels[i].in(width)}, row...))
+	}
+	return drawTable(head, rows, b.left, tablewriter.WithPadding(tw.Padding{Right: "  ", Overwrite: true}),
+		tablewriter.WithRenderer(renderer.NewBlueprint(tw.Rendition{
+			Borders:  tw.BorderNone,
+			Symbols:  tw.NewSymbols(tw.StyleNone),
+			Settings: tw.Settings{Lines: tw.LinesNone, Separators: tw.SeparatorsNone},
+		})))
+}
+
+// drawTable draws cells in columns. The first column is aligned to the left, and so are those that left names of the
+// others.
+func drawTable(head []string, rows [][]string, left []bool, options ...tablewriter.Option) string {
+	var b strings.Builder
+	align := tw.Alignment{tw.AlignLeft}
+	for c := range head[1:] {
+		if left != nil && left[c] {
+			align = append(align, tw.AlignLeft)
+		} else {
+			align = append(align, tw.AlignRight)
+		}
+	}
+	w := tablewriter.NewTable(&b, append(options,
+		tablewriter.WithHeaderAutoFormat(tw.Off), tablewriter.WithHeaderAutoWrap(tw.WrapNone),
+		tablewriter.WithRowAutoWrap(tw.WrapNone), tablewriter.WithTrimSpace(tw.Off), tablewriter.WithTrimLine(tw.Off),
+		tablewriter.WithAlignment(align))...)
+	w.Header(head)
+	for _, row := range rows {
+		if err := w.Append(row); err != nil {
+			panic(err) // it writes to memory, and every row has the columns of the head
+		}
+	}
+	if err := w.Render(); err != nil {
+		panic(err)
+	}
+	return b.String()
+}
+
+// widest is the width of the widest line, less the blanks that end it.
+func widest(text string) int {
+	w := 0
+	for line := range strings.Lines(text) {
+		w = max(w, displaywidth.String(strings.TrimRight(line, " \n")))
+	}
+	return w
+}
+
+// grid writes pairs in as many columns as fit, read downwards.
+func (t *lines) grid(g grid) {
+	var cells []string
+	widest := 0
+	for _, r := range g.rows {
+		cell := fmt.Sprintf("%s  %*s", r[0], g.width, r[1])
+		if r[2] != "" {
+			cell += " (" + r[2] + ")"
+		}
+		cells = append(cells, cell)
+		widest = max(widest, displaywidth.String(cell))
+	}
+	const indent, gap = 2, 4
+	perLine := max(1, (pageWidth-indent+gap)/(widest+gap))
+	lines := (len(cells) + perLine - 1) / perLine
+	for l := range lines {
+		line := strings.Repeat(" ", indent)
+		for i := l; i < len(cells); i += lines {
+			line += pad(cells[i], widest+gap)
+		}
+		t.line(line)
+	}
+}
