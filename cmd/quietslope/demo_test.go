@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"encoding/csv"
 	"encoding/json"
 	"errors"
 	"fmt"
@@ -9,6 +10,7 @@ import (
 	"os"
 	"path/filepath"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -27,6 +29,7 @@ func TestDemo(t *testing.T) {
 	}{
 		{"demo-compare.golden", []string{"compare", demoStudy}},
 		{"demo-check.golden", []string{"check", demoStudy}},
+		{"demo-compare-markdown.golden", []string{"compare", demoStudy, "--format", "markdown"}},
 		{"demo-compare-json.golden", []string{"compare", demoStudy, "--format", "json"}},
 		{"demo-check-json.golden", []string{"check", demoStudy, "--format", "json"}},
 	} {
@@ -35,9 +38,10 @@ func TestDemo(t *testing.T) {
 			if code != 0 || stderr != "" {
 				t.Fatalf("status %d\n%s", code, stderr)
 			}
-			if strings.Contains(tt.golden, "json") {
+			switch {
+			case strings.Contains(tt.golden, "json"):
 				stdout = sixDigits(stdout)
-			} else {
+			case !strings.Contains(tt.golden, "markdown"):
 				for line := range strings.Lines(stdout) {
 					if len([]rune(line)) > 101 || strings.HasSuffix(line, " \n") {
 						t.Errorf("too wide, or a blank at the end: %q", line)
@@ -92,6 +96,33 @@ func TestDemoJSON(t *testing.T) {
 		}
 		if strings.Contains(stdout, filepath.Dir(filepath.Dir(here))) {
 			t.Errorf("%s: an absolute path", command)
+		}
+	}
+}
+
+// TestDemoCSV: the CSV has the numbers of the JSON, each by its text.
+func TestDemoCSV(t *testing.T) {
+	for _, command := range []string{"compare", "check"} {
+		_, asJSON, _ := program(t.Context(), command, demoStudy, "--format", "json")
+		code, stdout, stderr := program(t.Context(), command, demoStudy, "--format", "csv")
+		if code != 0 || stderr != "" {
+			t.Fatalf("status %d\n%s", code, stderr)
+		}
+		rows, err := csv.NewReader(strings.NewReader(stdout)).ReadAll()
+		if err != nil {
+			t.Fatal(err)
+		}
+		var got, want []string
+		for _, r := range rows[1:] {
+			got = append(got, slices.DeleteFunc(r[5:8], func(s string) bool { return s == "" })...)
+		}
+		for _, m := range regexp.MustCompile(`(?m)^\s*(?:"[^"]*": )?(-?[0-9][0-9.eE+-]*),?$`).FindAllStringSubmatch(asJSON, -1) {
+			want = append(want, m[1])
+		}
+		slices.Sort(got) // an interval may stand some keys behind its figure
+		slices.Sort(want)
+		if len(want) < 200 && command == "compare" || !slices.Equal(got, want) {
+			t.Errorf("%s: the CSV has %d numbers, the JSON %d, or they differ", command, len(got), len(want))
 		}
 	}
 }

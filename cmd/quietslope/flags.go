@@ -2,12 +2,14 @@ package main
 
 import (
 	"context"
+	"fmt"
 	"io"
 
 	"github.com/urfave/cli/v2"
 
 	"quietslope/cmd/quietslope/render"
 	"quietslope/scenario"
+	"quietslope/scenario/fault"
 )
 
 // Names of options.
@@ -21,10 +23,42 @@ const (
 	flagTo        = "to"
 )
 
+// format is a way to write a result.
+type format struct {
+	name, says string
+	// write writes a result, which lay lays out for people.
+	write func(w io.Writer, result any, lay func() *render.Page) error
+}
+
+// formats are the values of --format. The first is the default.
+var formats = []format{
+	{"text", "for people, laid out for 100 columns (the default)",
+		func(w io.Writer, _ any, lay func() *render.Page) error { return lay().Text(w) }},
+	{"markdown", "the same for a report, with tables (CommonMark and pipe tables)",
+		func(w io.Writer, _ any, lay func() *render.Page) error { return lay().Markdown(w) }},
+	{"csv", "a row for every figure, at full precision",
+		func(w io.Writer, result any, _ func() *render.Page) error { return render.CSV(w, result) }},
+	{"json", "everything, at full precision",
+		func(w io.Writer, result any, _ func() *render.Page) error { return render.JSON(w, result) }},
+}
+
+// formatNames are the values of --format, in the order in which they are named.
+func formatNames() []string {
+	var names []string
+	for _, f := range formats {
+		names = append(names, f.name)
+	}
+	return names
+}
+
 // The usage of an option is "VALUE: what it does", with further lines below it.
 
 func formatFlag() cli.Flag {
-	return &cli.StringFlag{Name: flagFormat, Value: "text", Usage: "text|json: text, for people (the default), or json, with every figure at full precision"}
+	usage := "FORMAT: how to write the result:"
+	for _, f := range formats {
+		usage += fmt.Sprintf("\n  %-10s%s", f.name, f.says)
+	}
+	return &cli.StringFlag{Name: flagFormat, Value: formats[0].name, Usage: usage}
 }
 
 func outFlag() cli.Flag {
@@ -33,7 +67,7 @@ func outFlag() cli.Flag {
 
 // output is where a result goes, and in what format.
 type output struct {
-	json   bool
+	format format
 	file   *outFile // nil for standard output
 	stdout io.Writer
 }
@@ -41,17 +75,9 @@ type output struct {
 // outputFrom reads --format, where the command has it, and --out.
 func outputFrom(c *cli.Context) (*output, error) {
 	o := &output{stdout: c.App.Writer}
-	switch format := c.String(flagFormat); format {
-	case "text", "":
-		if c.IsSet(flagFormat) && format == "" {
-			return nil, usagef(c.Command.Name, "--format needs a value; use text or json")
-		}
-	case "json":
-		o.json = true
-	case "csv", "markdown":
-		return nil, usagef(c.Command.Name, "--format %s is not supported yet; use text or json", format)
-	default:
-		return nil, usagef(c.Command.Name, "unknown format %q; use text or json", format)
+	var err error
+	if o.format, err = formatNamed(c); err != nil {
+		return nil, err
 	}
 	if c.IsSet(flagOut) {
 		file, err := openOut(c.Command.Name, c.String(flagOut))
@@ -61,6 +87,25 @@ func outputFrom(c *cli.Context) (*output, error) {
 		o.file = file
 	}
 	return o, nil
+}
+
+// formatNamed is the format that --format names.
+func formatNamed(c *cli.Context) (format, error) {
+	name := c.String(flagFormat)
+	for _, f := range formats {
+		if f.name == name {
+			return f, nil
+		}
+	}
+	switch near := fault.Nearest(name, formatNames()); {
+	case !c.IsSet(flagFormat): // a command without the option
+		return formats[0], nil
+	case name == "":
+		return format{}, usagef(c.Command.Name, "--format needs a value; use %s", orWords(formatNames()))
+	case near != "":
+		return format{}, usagef(c.Command.Name, "unknown format %q; did you mean %s?", name, near)
+	}
+	return format{}, usagef(c.Command.Name, "unknown format %q; use %s", name, orWords(formatNames()))
 }
 
 // loadStudy reads a study and makes sure that the result would replace neither it nor its weather.
@@ -99,9 +144,6 @@ func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (
 		return err
 	}
 	return o.write(ctx, func(w io.Writer) error {
-		if o.json {
-			return render.JSON(w, found)
-		}
-		return lay(found).Text(w)
+		return o.format.write(w, found, func() *render.Page { return lay(found) })
 	})
 }

@@ -167,7 +167,7 @@ func TestUsage(t *testing.T) {
 		{"compare", "--frmat", "json", "study.yaml"}, {"compare", "study.yaml", "-x"}, {"compare", "study.yaml", "--=3"}, {"check", "study.yaml", "--option", "a"},
 		{"compare", "study.yaml", "--out"}, {"compare", "--out", "--format", "json", "study.yaml"}, {"levels", "study.yaml", "--option", "--"},
 		{"compare", "study.yaml", "--out", "a", "--out=b"}, {"compare", "study.yaml", "--format", "text", "-format", "json"},
-		{"compare", "study.yaml", "--format", "csv"}, {"check", "study.yaml", "--format=markdown"}, {"compare", "study.yaml", "--format", "xml"}, {"compare", "study.yaml", "--format="},
+		{"compare", "study.yaml", "--format", "jsno"}, {"check", "study.yaml", "--format=Markdwn"}, {"compare", "study.yaml", "--format", "xml"}, {"compare", "study.yaml", "--format="},
 		{"compare", "study.yaml", "--out="}, {"compare", "study.yaml", "--out", "-"}, {"compare", "study.yaml", "--out=-x"}, {"compare", "study.yaml", "--out", "testdata"},
 		{"compare", "study.yaml", "--out", "testdata/"}, {"compare", "study.yaml", "--out", "no/such/folder/x.txt"}, {"compare", "study.yaml", "--out", "run_test.go/x.txt"},
 		{"compare", "study.yaml", "--out", "nofile/"}, {"compare", "study.yaml", "--out", "/dev/null"}, {"compare", "study.yaml", "--out", "/dev/../dev/stdout"}, {"levels", "study.yaml", "--from="},

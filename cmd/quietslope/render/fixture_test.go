@@ -2,6 +2,7 @@ package render
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"quietslope/scenario/result"
@@ -195,5 +196,23 @@ func never() *result.Comparison {
 			}
 		}
 	}
+	return c
+}
+
+// severalCases is the demo under two further climates, and with works that hold up badly.
+func severalCases() *result.Comparison {
+	c := fixture(demoOptions, threeBands)
+	scaled := func(climate, condition string, by float64) {
+		options := slices.Clone(demoOptions)
+		for i := range options {
+			options[i].strength = min(1, by*options[i].strength+max(0, by-1)/4)
+		}
+		other := fixture(options, threeBands).Cases[0]
+		other.Climate, other.Condition = climate, condition
+		c.Cases = append(c.Cases, other)
+	}
+	scaled("wetter winters", "as built", 1.3)
+	scaled("drier, by the middle of the century", "as built", 0.6)
+	scaled("as recorded", "neglected", 1.1)
 	return c
 }

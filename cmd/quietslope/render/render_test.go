@@ -106,7 +106,8 @@ func TestDisagreement(t *testing.T) {
 	}
 }
 
-func TestCheck(t *testing.T) {
+// checkFixture makes a result of check out of that of compare.
+func checkFixture() *result.Check {
 	demo := fixture(demoOptions, threeBands)
 	c := &result.Check{
 		Head: demo.Head,
@@ -136,7 +137,11 @@ func TestCheck(t *testing.T) {
 		}
 		c.Options = append(c.Options, co)
 	}
-	text := written(t, Check(c))
+	return c
+}
+
+func TestCheck(t *testing.T) {
+	text := written(t, Check(checkFixture()))
 	fits(t, text)
 	compareGolden(t, "check-demo", text)
 }
