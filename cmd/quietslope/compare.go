@@ -19,8 +19,9 @@ func compareCommand() *cli.Command {
   Replays the whole weather record of the study for every option, after a warm-up, and counts on
   complete years how the deep level passes each band: events, days, load (metre-days), the share of
   years, the longest and the highest. Events, days, load and years have a range, and so has every
-  change. Options are set against the baseline year by year and ranked on one band. The notes name
-  what is weak about the figures. The text is laid out for 100 columns.
+  change. Options are set against the baseline year by year and ranked on one band. The works as
+  built are one case, each of the study's conditions another. The notes name what is weak about the
+  figures.
 
 What it needs:
   A study file (YAML) that names the weather record, the ground as calibrated, the bands and the
@@ -28,12 +29,20 @@ What it needs:
 
 Examples:
   quietslope compare testdata/demo/study.yaml
-  quietslope compare study.yaml --format json --out result.json
+  quietslope compare study.yaml --format markdown --out report.md
+  quietslope compare study.yaml --against "trenches 24 m apart"
 `,
-		Flags: []cli.Flag{formatFlag(), outFlag()},
+		Flags: []cli.Flag{
+			&cli.StringFlag{Name: flagAgainst, Usage: "NAME: measure every change against this option instead of the baseline. The years\nand the start stay those of the baseline"},
+			formatFlag(), outFlag(),
+		},
 		Action: func(c *cli.Context) error {
+			q := scenario.CompareQuery{Against: c.String(flagAgainst)}
+			if c.IsSet(flagAgainst) && q.Against == "" {
+				return usagef(c.Command.Name, "--%s needs a value", flagAgainst)
+			}
 			compare := func(ctx context.Context, s *scenario.Study) (*result.Comparison, error) {
-				return scenario.Compare(ctx, s, scenario.CompareQuery{})
+				return scenario.Compare(ctx, s, q)
 			}
 			return answer(c, compare, render.Comparison)
 		},

@@ -16,6 +16,7 @@ import (
 const (
 	flagFormat    = "format"
 	flagOut       = "out"
+	flagAgainst   = "against"
 	flagOption    = "option"
 	flagClimate   = "climate"
 	flagCondition = "condition"

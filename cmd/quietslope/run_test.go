@@ -170,7 +170,7 @@ func TestUsage(t *testing.T) {
 		{"compare", "study.yaml", "--format", "jsno"}, {"check", "study.yaml", "--format=Markdwn"}, {"compare", "study.yaml", "--format", "xml"}, {"compare", "study.yaml", "--format="},
 		{"compare", "study.yaml", "--out="}, {"compare", "study.yaml", "--out", "-"}, {"compare", "study.yaml", "--out=-x"}, {"compare", "study.yaml", "--out", "testdata"},
 		{"compare", "study.yaml", "--out", "testdata/"}, {"compare", "study.yaml", "--out", "no/such/folder/x.txt"}, {"compare", "study.yaml", "--out", "run_test.go/x.txt"},
-		{"compare", "study.yaml", "--out", "nofile/"}, {"compare", "study.yaml", "--out", "/dev/null"}, {"compare", "study.yaml", "--out", "/dev/../dev/stdout"}, {"levels", "study.yaml", "--from="},
+		{"compare", "study.yaml", "--out", "nofile/"}, {"compare", "study.yaml", "--out", "/dev/null"}, {"compare", "study.yaml", "--out", "/dev/../dev/stdout"}, {"levels", "study.yaml", "--from="}, {"compare", "study.yaml", "--against="},
 	} {
 		code, stdout, stderr := program(t.Context(), args...)
 		if code != 2 || stdout != "" {

@@ -45,7 +45,7 @@ func TestNotesMerge(t *testing.T) {
 	if len(ns) != 2 {
 		t.Fatalf("%d notes, want one of each text", len(ns))
 	}
-	if of := ns[0].concerns(func(string) string { return "B" }); len(of) != 1 || of[0] != "option B" {
+	if of := ns[0].concerns(func(string) string { return "B" }, nil); len(of) != 1 || of[0] != "option B" {
 		t.Errorf("the first is about %q", of)
 	}
 }

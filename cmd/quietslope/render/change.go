@@ -11,15 +11,22 @@ import (
 	"quietslope/stats"
 )
 
-// against says in a cell how an option stands against the baseline.
+// How an option stands against another.
+const (
+	toldNot  = "not told apart"
+	toldMore = "more"
+	toldLess = "less"
+)
+
+// against says in a cell how an option stands against the reference.
 func against(d *result.Difference, apart bool) string {
 	switch {
 	case !apart:
-		return "not told apart"
+		return toldNot
 	case d.Difference > 0:
-		return "more"
+		return toldMore
 	}
-	return "less"
+	return toldLess
 }
 
 // measure is one of the figures that options can be ranked by.
@@ -55,7 +62,7 @@ func measureOf(key string) *measure {
 	return &measures[0]
 }
 
-// change writes the ranking on the deciding band and the change against the baseline.
+// change writes the ranking on the deciding band and the change against the reference.
 func (v *view) change(c *result.Case) {
 	band := v.deciding()
 	if band < 0 || len(c.Options) < 2 || v.nothingPassed(c, band) {
@@ -65,11 +72,11 @@ func (v *view) change(c *result.Case) {
 	options := pointers(c)
 	slices.SortStableFunc(options, func(a, b *result.Option) int { return rank(a) - rank(b) })
 
-	v.heading("Ranking on %s by %s, and the change against %s", v.c.Bands[band].Name, by.name, v.baseline)
+	v.section(c, "Ranking on %s by %s, and the change against %s", v.c.Bands[band].Name, by.name, v.reference)
 	t := table{
 		head: [][]string{
 			{"", "change", "ratio to", "better", "years", ""},
-			{"rank", by.unit, v.baseline, "(same)", "b/s/w", "against " + v.baseline},
+			{"rank", by.unit, v.reference, "(same)", "b/s/w", "against " + v.reference},
 		},
 		left: []bool{false, true, true, true, true, true},
 	}
@@ -94,7 +101,7 @@ func (v *view) change(c *result.Case) {
 		if o.Decision != nil {
 			rank = strconv.Itoa(o.Decision.Rank)
 		}
-		row := []string{rank, diff.cells()[i], ratio.cells()[i], "", "", "baseline"}
+		row := []string{rank, diff.cells()[i], ratio.cells()[i], "", "", v.referenceText()}
 		if ch := o.Bands[band].Change; ch != nil {
 			d := by.change(ch)
 			row[3] = percent(d.ShareBetter)
@@ -109,11 +116,26 @@ func (v *view) change(c *result.Case) {
 		t.rows = append(t.rows, row)
 	}
 	v.rows(t, options)
+	if v.indexOf(c) > 0 {
+		if text := v.neighbours(c); text != "" {
+			v.para("%s", strings.TrimSpace(text))
+		}
+		v.orders(c, band, by)
+		return
+	}
 	v.para("A change below zero is an improvement. Better (same): share of the resamples. b/s/w: years better, same, worse. Less and more are said where the two can be told apart: the range of the change leaves out zero and the years better and worse are too uneven "+
-		"for chance (sign test at %s). It says that there is a change, not that it is large enough to matter. Ranks follow the figures alone. To see the change between two works, mark one of them baseline: true in the study.", v.confidence())
+		"for chance (sign test at %s). It says that there is a change, not that it is large enough to matter. Ranks follow the figures alone. To see the change against another option, name it with --against.", v.confidence())
 
 	v.otherChanges(options, band, by)
 	v.orders(c, band, by)
+}
+
+// referenceText stands in the row of the option that the others are measured against.
+func (v *view) referenceText() string {
+	if v.reference == v.baseline {
+		return "baseline"
+	}
+	return "reference"
 }
 
 // otherChanges writes the change in the measures that do not rank.
@@ -142,14 +164,14 @@ func (v *view) otherChanges(options []*result.Option, band int, by *measure) {
 		head[0], head[1] = append(head[0], m.name), append(head[1], unit)
 		cols = append(cols, col)
 	}
-	t := table{caption: "change against " + v.baseline, head: head, left: []bool{true, true, true}}
+	t := table{caption: "change against " + v.reference, head: head, left: []bool{true, true, true}}
 	for i, o := range options {
 		var row []string
 		for _, col := range cols {
 			row = append(row, col.cells()[i])
 		}
 		if o.Bands[band].Change == nil {
-			row[0] = "baseline"
+			row[0] = v.referenceText()
 		}
 		t.rows = append(t.rows, row)
 	}

@@ -21,6 +21,7 @@ func Check(c *result.Check) *Page {
 
 	understood(p, c.Understood)
 	checkOptions(p, c, ns)
+	conversion(p, c.Conversion)
 	p.heading("Bands of the deep level")
 	bandTable(p, c.Bands, func(name string) string { return ns.refs(nil, "", name) })
 	p.heading("Period and start")
@@ -30,10 +31,10 @@ func Check(c *result.Check) *Page {
 	audit(p, c)
 	if len(ns) > 0 {
 		p.heading("Notes")
-		if refs := ns.refs(nil, "", ""); refs != "" {
+		if refs := ns.wholeStudy(); refs != "" {
 			p.para("%s; about the whole study: %s.", ns.count(), refs)
 		}
-		ns.write(p, func(name string) string { return letters[name] })
+		ns.write(p, func(name string) string { return letters[name] }, nil)
 	}
 	cautions(p, c.Cautions)
 	return p
@@ -109,6 +110,46 @@ func ratesText(r *result.Rates) string {
 	}
 	text += fmt.Sprintf(", so that it halves in %s d", significant(math.Ln2/(r.CoverSeepagePerDay+r.CoverPercolationPerDay), 2))
 	return text + fmt.Sprintf("; deep seepage %s /d, halves in %s d", typed(r.DeepSeepagePerDay, 6), significant(math.Ln2/r.DeepSeepagePerDay, 2))
+}
+
+// bareRates names the rates of both stores and nothing else.
+func bareRates(r *result.Rates) string {
+	return fmt.Sprintf("cover seepage %s /d, percolation %s /d, deep seepage %s /d",
+		typed(r.CoverSeepagePerDay, 6), typed(r.CoverPercolationPerDay, 6), typed(r.DeepSeepagePerDay, 6))
+}
+
+// conversion says what became of rates that were calibrated with a stepping scheme.
+func conversion(p *Page, c *result.Conversion) {
+	if c == nil {
+		return
+	}
+	p.heading("Rates converted from the %s scheme with steps of %s d", c.Scheme, typed(c.StepDays, 6))
+	t := table{
+		first: "layer",
+		head:  [][]string{{"rate given", "rate converted", "porosity given", "porosity converted"}, {"/d", "/d", "%", "%"}},
+	}
+	for _, s := range []struct {
+		name string
+		of   *result.StoreConversion
+	}{{"cover", &c.Cover}, {"deep", &c.Deep}} {
+		t.labels = append(t.labels, label{name: s.name})
+		t.rows = append(t.rows, []string{typed(s.of.GivenPerDay, 6), typed(s.of.ExactPerDay, 6), typed(100*s.of.GivenPorosity, 6), typed(100*s.of.Porosity, 6)})
+	}
+	p.table(t)
+	if d := c.LargestDifference; d != nil {
+		p.para("Replayed by the scheme itself, the ground without measures has levels that differ from those of the converted rates by %s in the cover and by %s in the deep layer.",
+			atMost(d.CoverM, d.CoverAt), atMost(d.DeepM, d.DeepAt))
+	} else {
+		p.para("The record has other steps than the scheme, so the two were not replayed side by side.")
+	}
+}
+
+// atMost prints the largest of the differences of a level, and when it is reached.
+func atMost(m float64, at string) string {
+	if m < 0.001 {
+		return "less than a millimetre"
+	}
+	return fmt.Sprintf("at most %s m (%s)", significant(m, 2), at)
 }
 
 func sameRates(a, b *result.Rates) bool {

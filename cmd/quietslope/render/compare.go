@@ -22,13 +22,18 @@ func Comparison(c *result.Comparison) *Page {
 			}
 		}
 	}
+	v.reference = v.baseline
+	if l := v.letters[c.Settings.Against]; l != "" {
+		v.reference = l
+	}
 	opening(&v.Page, &c.Head)
 	v.inShort()
+	v.standings()
 	v.counted()
 	v.options()
 	v.bands()
 	for i := range c.Cases {
-		v.oneCase(&c.Cases[i])
+		v.oneCase(i)
 	}
 	v.warnings()
 	v.settings()
@@ -39,10 +44,11 @@ func Comparison(c *result.Comparison) *Page {
 // view lays out one comparison.
 type view struct {
 	Page
-	c        *result.Comparison
-	notes    notes
-	letters  map[string]string // of the options, by name
-	baseline string            // its letter
+	c         *result.Comparison
+	notes     notes
+	letters   map[string]string // of the options, by name
+	baseline  string            // its letter
+	reference string            // the letter of the option that changes are measured against
 }
 
 // letter names the i-th option in tables: A to Z, then AA, AB and so on.
@@ -75,21 +81,6 @@ func noun(refs string) string {
 
 // words turns a key into words.
 func words(key string) string { return strings.ReplaceAll(key, "_", " ") }
-
-// oneCase writes all that belongs to one climate and one condition.
-func (v *view) oneCase(c *result.Case) {
-	if len(v.c.Cases) > 1 {
-		v.heading("Case: weather %s, works %s", c.Climate, c.Condition)
-	}
-	for i := range v.c.Bands {
-		v.exceedance(c, i)
-	}
-	v.change(c)
-	v.months(c)
-	v.levels(c)
-	v.drains(c)
-	v.balance(c)
-}
 
 // rows fills a table with one row per option, in the given order, and writes it.
 func (v *view) rows(t table, options []*result.Option) {

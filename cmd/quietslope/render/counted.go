@@ -12,8 +12,11 @@ func (v *view) counted() {
 	v.heading("What was counted")
 	v.field("years", "%s", yearsText(r, s.YearStarts))
 	recordFields(&v.Page, r)
-	if len(v.c.Cases) == 1 {
-		v.field("case", "weather %s, works %s", v.c.Cases[0].Climate, v.c.Cases[0].Condition)
+	switch {
+	case len(v.c.Cases) == 1:
+		v.field("case", "%s", caseText(&v.c.Cases[0]))
+	case v.deciding() < 0: // not listed above
+		v.cases()
 	}
 	events := "one event is a run of steps above a band's level"
 	if s.ApartDays > 0 {
@@ -21,6 +24,9 @@ func (v *view) counted() {
 	}
 	v.field("events", "%s. Load is the height above the level times the days spent there; peak is the greatest height above it; longest is the days above in the longest event, pauses not counted.", events)
 	v.field("ranges", "%s", v.rangesText())
+	if v.reference != v.baseline {
+		v.field("changes", "measured against %s, %s. The years and the start are still those of the baseline, %s.", v.reference, v.c.Settings.Against, v.baseline)
+	}
 	if v.c.Settings.DecideOn == "" && len(v.notes) > 0 {
 		v.field("notes", "%s.", v.notes.headline())
 	}
@@ -53,7 +59,14 @@ func monthBefore(name string) string {
 func recordFields(p *Page, r *result.Record) {
 	gaps := "no gaps filled"
 	if r.GapsFilled > 0 {
-		gaps = fmt.Sprintf("%d gaps filled", r.GapsFilled)
+		gaps = plural(r.GapsFilled, "step") + " filled"
+	}
+	switch r.GapFilling {
+	case "":
+	case "zero":
+		gaps += " with zero"
+	default:
+		gaps += " by " + r.GapFilling
 	}
 	p.field("record", "%s to %s, %s of %s (time names the %s of a step), %s",
 		r.From, r.To, plural(r.Rows, "step"), r.Step, r.Stamp, gaps)

@@ -20,7 +20,7 @@ const (
 // exceedance writes the table of one band: how often, how long and by how much.
 func (v *view) exceedance(c *result.Case, band int) {
 	b := &v.c.Bands[band]
-	v.heading("%s: deep level above %s m", b.Name, metres(b.LevelM))
+	v.section(c, "%s: deep level above %s m", b.Name, metres(b.LevelM))
 	T := v.c.Record.YearsCounted
 	options := pointers(c)
 	if v.nothingPassed(c, band) {
@@ -42,15 +42,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 	}
 	for _, o := range options {
 		f := &o.Bands[band]
-		value, limits := ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents)
-		uncounted := v.notes.has("events_peak_outside", o.Name, b.Name)
-		if uncounted || v.notes.has("few_events", o.Name, b.Name) {
-			value = "–" // too few for a rate
-		}
-		if uncounted {
-			limits = ""
-		}
-		events.add(value, limits)
+		events.add(v.eventsOf(c, o, band))
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
 		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), percentRange(f.AnnualProbability, f.AnnualProbabilityCI))
@@ -75,10 +67,23 @@ func (v *view) exceedance(c *result.Case, band int) {
 	}
 	v.toldApart(options, band)
 	for _, o := range options {
-		if o.Baseline && len(o.Bands[band].Spells) > 0 {
+		if v.indexOf(c) == 0 && o.Baseline && len(o.Bands[band].Spells) > 0 {
 			v.spells(o, o.Bands[band].Spells)
 		}
 	}
+}
+
+// eventsOf are the events a year of an option on a band, as far as they can be told, and their range.
+func (v *view) eventsOf(c *result.Case, o *result.Option, band int) (value, limits string) {
+	f := &o.Bands[band]
+	value, limits = ranged(f.EventsPerYear, &f.EventsPerYearCI, leastEvents)
+	switch {
+	case v.notes.has("events_peak_outside", c, o.Name, f.Name):
+		return "–", ""
+	case v.notes.has("few_events", c, o.Name, f.Name): // too few for a rate
+		return "–", limits
+	}
+	return value, limits
 }
 
 // notPassed reports whether a band is not passed at all in the years counted.
@@ -111,7 +116,7 @@ func percentRange(p float64, ci result.Interval) string {
 	return "(" + between(lo, hi) + ")"
 }
 
-// toldApart says which options have less or more than the baseline on one band, beyond the record's chance.
+// toldApart says which options have less or more than the reference on one band, beyond the record's chance.
 func (v *view) toldApart(options []*result.Option, band int) {
 	by := measureOf(v.c.Settings.DecideBy)
 	var less, more, no []string
@@ -136,6 +141,6 @@ func (v *view) toldApart(options []*result.Option, band int) {
 		}
 	}
 	if len(parts) > 0 {
-		v.para("Against %s by %s: %s.", v.baseline, by.name, strings.Join(parts, "; "))
+		v.para("Against %s by %s: %s.", v.reference, by.name, strings.Join(parts, "; "))
 	}
 }

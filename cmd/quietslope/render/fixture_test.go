@@ -214,5 +214,36 @@ func severalCases() *result.Comparison {
 	scaled("wetter winters", "as built", 1.3)
 	scaled("drier, by the middle of the century", "as built", 0.6)
 	scaled("as recorded", "neglected", 1.1)
+
+	// The same words about every option in the second case, about some in two of them, and about a case as such.
+	add := func(code string, of *result.Case, option, band, text string) {
+		c.Warnings = append(c.Warnings, result.Warning{Code: code, Severity: result.Warn, Climate: of.Climate, Condition: of.Condition, Option: option, Band: band, Text: text})
+	}
+	for i := range c.Cases {
+		of := &c.Cases[i]
+		for k, o := range demoOptions {
+			if i == 1 || i == 2 && k < 3 {
+				add("few_events", of, o.name, threeBands[2], "Fewer than 5 events, too few for a rate; read the ranges.")
+			}
+			if i > 1 && k == 1 {
+				add("start_still_felt", of, o.name, "", "The first counted years rest on the start.")
+			}
+		}
+		if i != 2 {
+			add("order_not_told_apart", of, "", threeBands[1], fmt.Sprintf("Neighbours that this record cannot tell apart: %d.", i))
+		}
+	}
+	c.Warnings = append(c.Warnings, result.Warning{Code: "climate_far", Severity: result.Note, Climate: "wetter winters", Text: "This climate lies beyond the record."})
+	return c
+}
+
+// againstOther is the demo with its changes measured against the third option.
+func againstOther() *result.Comparison {
+	c := fixture(demoOptions, threeBands)
+	c.Settings.Against = demoOptions[2].name
+	options := c.Cases[0].Options
+	for b := range threeBands {
+		options[0].Bands[b].Change, options[2].Bands[b].Change = options[2].Bands[b].Change, nil
+	}
 	return c
 }

@@ -134,7 +134,7 @@ func (g grid) table() table {
 }
 
 // escape writes plain text so that markdown shows just that text: a backslash before each character that could be taken
-// for markup where it stands (CommonMark 0.31.2, section 2.4; GitHub Flavored Markdown 0.29, tables). It serves inside a
+// for markup where it stands (CommonMark 0.31, section 2.4; GitHub Flavored Markdown 0.29, tables). It serves inside a
 // line and in a cell of a table.
 func escape(text string) string {
 	text = strings.TrimSpace(text)

@@ -218,8 +218,9 @@ func TestMarkdown(t *testing.T) {
 	}{
 		{"compare-demo-markdown", Comparison(fixture(demoOptions, threeBands))},
 		{"check-demo-markdown", Check(checkFixture())},
+		{"compare-cases-markdown", Comparison(severalCases())},
 		{"compare-hostile-markdown", Comparison(fixture(hostile[:5], hostileNames[5:8]))},
-		{"", Comparison(fixture(longNames(), threeBands))}, {"", Comparison(always())}, {"", Comparison(never())},
+		{"", Comparison(fixture(longNames(), threeBands))}, {"", Comparison(always())}, {"", Comparison(againstOther())}, {"", Comparison(never())},
 		{"", Comparison(fixture(demoOptions[:1], threeBands))}, {"", Comparison(fixture(hostile, threeBands))},
 	} {
 		readsAsMeant(t, tt.page)
@@ -232,6 +233,9 @@ func TestMarkdown(t *testing.T) {
 		c.Study, c.Cautions = name, []string{name}
 		c.Cases[0].Options[1].Name, c.Cases[0].Options[1].Measures = name, []string{name}
 		c.Inputs[0].File = name
+		other := c.Cases[0]
+		other.Climate, other.Condition = name, name
+		c.Cases = append(c.Cases, other)
 		c.Warnings = append(c.Warnings, result.Warning{Code: "x", Severity: result.Warn, Option: name, Band: name, Text: name})
 		readsAsMeant(t, Comparison(c))
 	}

@@ -59,39 +59,48 @@ func (ns notes) count() string {
 // headline says how many notes there are and where.
 func (ns notes) headline() string {
 	text := ns.count() + ", numbered under Notes and named beside the figures"
-	if refs := ns.refs(nil, "", ""); refs != "" {
+	if refs := ns.wholeStudy(); refs != "" {
 		text += "; about the whole study: " + refs
 	}
 	return text
 }
 
-// has reports whether there is a warning of this code about an option on a band.
-func (ns notes) has(code, option, band string) bool {
-	return slices.ContainsFunc(ns, func(n note) bool {
-		return n.first.Code == code && slices.ContainsFunc(n.places, func(w result.Warning) bool { return w.Option == option && w.Band == band })
+// has reports whether there is a warning of this code about an option on a band in a case.
+func (ns notes) has(code string, c *result.Case, option, band string) bool {
+	return ns.which(func(w result.Warning) bool {
+		return w.Code == code && w.Option == option && w.Band == band && ofCase(w, c)
+	}) != ""
+}
+
+// numbersOf are the numbers of the notes with a code in a case.
+func (ns notes) numbersOf(code string, c *result.Case) string {
+	return ns.which(func(w result.Warning) bool { return w.Code == code && ofCase(w, c) })
+}
+
+// refs are the numbers of the notes about exactly this option and band, either of which may be "", in this case, or in
+// any where it is nil.
+func (ns notes) refs(c *result.Case, option, band string) string {
+	return ns.which(func(w result.Warning) bool { return w.Option == option && w.Band == band && ofCase(w, c) })
+}
+
+// wholeStudy are the numbers of the notes that name nothing in particular.
+func (ns notes) wholeStudy() string {
+	return ns.which(func(w result.Warning) bool { return w.Option+w.Band+w.Climate+w.Condition == "" })
+}
+
+// ofCaseOnly are the numbers of the notes about a case that name nothing else.
+func (ns notes) ofCaseOnly(c *result.Case) string {
+	return ns.which(func(w result.Warning) bool {
+		return w.Option+w.Band == "" && w.Climate+w.Condition != "" && ofCase(w, c)
 	})
 }
 
-// numbersOf are the numbers of the notes with a code, for print.
-func (ns notes) numbersOf(code string) string {
+// which are the numbers, for print, of the notes about something that is asked for.
+func (ns notes) which(asked func(result.Warning) bool) string {
 	var found []int
 	for i, n := range ns {
-		if n.first.Code == code {
+		if slices.ContainsFunc(n.places, asked) {
 			found = append(found, i+1)
-		}
-	}
-	return numbers(found)
-}
-
-// refs lists the numbers of the notes about exactly this option and band, either of which may be "", in this case.
-func (ns notes) refs(c *result.Case, option, band string) string {
-	var found []int
-	for i, n := range ns {
-		for _, w := range n.places {
-			if w.Option == option && w.Band == band && ofCase(w, c) {
-				found = append(found, i+1)
-				break
-			}
 		}
 	}
 	return numbers(found)
@@ -122,36 +131,92 @@ func numbers(ns []int) string {
 }
 
 // write prints the notes. letter gives the key of an option's name.
-func (ns notes) write(p *Page, letter func(string) string) {
+func (ns notes) write(p *Page, letter func(string) string, cases []result.Case) {
 	for i, n := range ns {
 		kind := "remark"
 		if n.first.Severity == result.Warn {
 			kind = "WARNING"
 		}
-		of := n.concerns(letter)
 		text := kind
-		if len(of) > 0 {
+		if of := n.concerns(letter, cases); len(of) > 0 {
 			text += ", " + strings.Join(of, "; ")
 		}
 		p.item(numbered, strconv.Itoa(i+1), text+": "+n.first.Text)
 	}
 }
 
-// concerns says what a note is about: the options of each band, or what else it names.
-func (n note) concerns(letter func(string) string) []string {
+// concerns says what a note is about: the options of each band, or what else it names, and in which cases.
+func (n note) concerns(letter func(string) string, cases []result.Case) []string {
+	// What is said in the same cases goes together, and of every option and band it is known in which cases it is said.
+	type what struct{ option, band string }
+	var whats []what
+	in := map[what][]bool{} // by case
+	for _, w := range n.places {
+		q := what{w.Option, w.Band}
+		if in[q] == nil {
+			whats, in[q] = append(whats, q), make([]bool, len(cases))
+		}
+		for i := range cases {
+			in[q][i] = in[q][i] || ofCase(w, &cases[i])
+		}
+	}
+	var texts []string
+	var done [][]bool
+	for _, q := range whats {
+		same := func(b []bool) bool { return slices.Equal(b, in[q]) }
+		if slices.ContainsFunc(done, same) {
+			continue
+		}
+		done = append(done, in[q])
+		var places []result.Warning
+		for _, r := range whats {
+			if same(in[r]) {
+				places = append(places, result.Warning{Option: r.option, Band: r.band})
+			}
+		}
+		of := inWords(places, letter)
+		switch where := casesText(in[q]); {
+		case where == "":
+			texts = append(texts, of...)
+		case len(of) == 0:
+			texts = append(texts, where)
+		default:
+			texts = append(texts, andWords(of)+" in "+where)
+		}
+	}
+	return texts
+}
+
+// casesText names some of the cases; "" where it is all of them.
+func casesText(in []bool) string {
+	var ns []int
+	for i, yes := range in {
+		if yes {
+			ns = append(ns, i+1)
+		}
+	}
+	switch len(ns) {
+	case 0, len(in):
+		return ""
+	case 1:
+		return caseName(ns[0] - 1)
+	}
+	return "cases " + numbers(ns)
+}
+
+// inWords names options and bands: the options of each band together.
+func inWords(places []result.Warning, letter func(string) string) []string {
 	var of, bands, alone []string    // alone are the letters of options that no band is named with
 	options := map[string][]string{} // letters, by band
-	for _, w := range n.places {
+	for _, w := range places {
 		switch {
-		case w.Band != "" && w.Option != "" && w.Climate+w.Condition == "":
+		case w.Band != "" && w.Option != "":
 			bands = with(bands, w.Band)
 			options[w.Band] = with(options[w.Band], letter(w.Option))
-		case w.Option != "" && w.Climate+w.Condition == "":
+		case w.Option != "":
 			alone = with(alone, letter(w.Option))
-		default:
-			if text := place(w, letter); text != "" {
-				of = with(of, text)
-			}
+		case w.Band != "":
+			of = with(of, "band "+w.Band)
 		}
 	}
 	switch len(alone) {
@@ -173,24 +238,6 @@ func with(list []string, text string) []string {
 		return list
 	}
 	return append(list, text)
-}
-
-// place says what a warning is about.
-func place(w result.Warning, letter func(string) string) string {
-	var parts []string
-	if w.Option != "" {
-		parts = append(parts, strings.TrimSpace("option "+letter(w.Option)))
-	}
-	if w.Band != "" {
-		parts = append(parts, fmt.Sprintf("band %s", w.Band))
-	}
-	if w.Climate != "" {
-		parts = append(parts, w.Climate)
-	}
-	if w.Condition != "" {
-		parts = append(parts, w.Condition)
-	}
-	return strings.Join(parts, ", ")
 }
 
 func plural(n int, what string) string {

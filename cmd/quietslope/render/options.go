@@ -30,7 +30,7 @@ func (v *view) bands() {
 	v.heading("Bands of the deep level")
 	bandTable(&v.Page, v.c.Bands, func(name string) string { return v.notes.refs(nil, "", name) })
 	if v.c.Settings.DecideOn != "" && len(v.letters) > 1 {
-		v.para("The options are ranked on %q by %s.", v.c.Settings.DecideOn, measureOf(v.c.Settings.DecideBy).name)
+		v.para("The options are ranked on \"%s\" by %s.", v.c.Settings.DecideOn, measureOf(v.c.Settings.DecideBy).name)
 	}
 }
 
@@ -44,6 +44,7 @@ func bandTable(p *Page, bands []result.Band, refs func(string) string) {
 	if refs != nil {
 		t.head[0], t.head[1], t.left = append(t.head[0], ""), append(t.head[1], "notes"), append(t.left, true)
 	}
+	safety := false
 	for _, b := range bands {
 		elevation, within, until := "–", "not known", "–"
 		if b.ElevationM != nil {
@@ -55,11 +56,18 @@ func bandTable(p *Page, bands []result.Band, refs func(string) string) {
 		if b.UntilM != b.LevelM {
 			until = metres(b.UntilM)
 		}
-		row := []string{words(b.GivenAs), metres(b.LevelM), metres(b.BelowGroundM), elevation, until, within}
+		given := words(b.GivenAs)
+		if b.FactorOfSafety != nil {
+			given, safety = "safety "+typed(*b.FactorOfSafety, 6), true
+		}
+		row := []string{given, metres(b.LevelM), metres(b.BelowGroundM), elevation, until, within}
 		if refs != nil {
 			row = append(row, refs(b.Name))
 		}
 		t.labels, t.rows = append(t.labels, label{name: b.Name}), append(t.rows, row)
 	}
 	p.table(t)
+	if safety {
+		p.para("Safety: the band begins where the level brings the slope to this factor of safety.")
+	}
 }

@@ -16,7 +16,7 @@ import (
 type Page struct{ blocks []block }
 
 // block is one of the types below.
-type block interface{}
+type block any
 
 type (
 	title   string

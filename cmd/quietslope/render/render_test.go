@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"flag"
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -74,6 +75,8 @@ func TestComparison(t *testing.T) {
 		{"compare-long-names", fixture(longNames(), threeBands)},
 		{"compare-always", always()},
 		{"compare-never", never()},
+		{"compare-cases", severalCases()},
+		{"compare-against", againstOther()},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
 			text := written(t, Comparison(tt.c))
@@ -297,11 +300,124 @@ func TestCases(t *testing.T) {
 	c.Warnings = append(c.Warnings, result.Warning{Code: "x", Severity: result.Warn, Climate: "wetter winters", Option: "as it stands", Band: "watch", Text: "Only there."})
 	text := written(t, Comparison(c))
 	fits(t, text)
-	before, after, ok := strings.Cut(text, "Case: weather wetter winters, works as built")
-	if !ok || !strings.Contains(before, "Case: weather as recorded, works as built") {
+	before, after, ok := strings.Cut(text, "\nCase 2: weather wetter winters, works as built\n")
+	if !ok || !strings.Contains(before, "\nCase 1: weather as recorded, works as built\n") {
 		t.Fatal("no heading for each case")
 	}
 	if strings.Contains(before, "See the notes: A") || !strings.Contains(after, "See the notes: A 2.") {
 		t.Errorf("the note is not named where it belongs:\n%s", text)
+	}
+}
+
+// TestManyCases: however many cases there are and however long the names, the table that sets them side by side fits the
+// page, no name is shortened beyond reading, and every figure is in it.
+func TestManyCases(t *testing.T) {
+	for n := 2; n < 12; n++ {
+		for _, options := range [][]strengths{demoOptions, longNames(), {{"A", nil, 1}, {"B", nil, 0.3}}} {
+			c := fixture(options, threeBands)
+			for i := 1; i < n; i++ {
+				other := c.Cases[0]
+				other.Condition = fmt.Sprintf("condition %d, of which the name is as long as a name may be", i)
+				c.Cases = append(c.Cases, other)
+			}
+			text := written(t, Comparison(c))
+			fits(t, text)
+			_, rest, _ := strings.Cut(text, "the rank in the case:\n")
+			tables, _, _ := strings.Cut(rest, "\nWhat was counted")
+			if got := strings.Count(tables, "rank"); got != n {
+				t.Errorf("%d cases, %d columns:\n%s", n, got, tables)
+			}
+			for row := range strings.Lines(tables) {
+				if strings.HasPrefix(row, "A ") && !strings.Contains(row, options[0].name[:min(10, len(options[0].name))]) {
+					t.Errorf("the name is too short in %q", row)
+				}
+			}
+		}
+	}
+}
+
+// TestCasesOfNothing: a first case in which nothing happens does not hide what happens in another.
+func TestCasesOfNothing(t *testing.T) {
+	c := never()
+	c.Cases = append(c.Cases, fixture([]strengths{{"as it stands", nil, 1}, {"lined channels", nil, 0}}, []string{"watch", "movement onset"}).Cases...)
+	c.Cases[1].Climate = "wetter winters"
+	text := strings.Join(strings.Fields(written(t, Comparison(c))), " ")
+	for _, want := range []string{"No option passes movement onset in 39 years", "In case 2, wetter winters: A passes it too; the order becomes B < A."} {
+		if !strings.Contains(text, want) {
+			t.Errorf("no %q in %s", want, text)
+		}
+	}
+	c.Cases[0], c.Cases[1] = c.Cases[1], c.Cases[0]
+	if text := strings.Join(strings.Fields(written(t, Comparison(c))), " "); !strings.Contains(text, "no option passes it.") {
+		t.Error(text)
+	}
+	c = severalCases()
+	c.Settings.DecideOn = ""
+	if text := written(t, Comparison(c)); !strings.Contains(text, "\n  case 4        weather as recorded, works neglected\n") {
+		t.Errorf("the cases are not listed:\n%s", text)
+	}
+}
+
+// TestDecidersOfCases: whatever ranks the options is what the cases are compared by.
+func TestDecidersOfCases(t *testing.T) {
+	for key, want := range map[string]string{
+		"load": "Load above movement onset, its range,", "days": "Days above movement onset,", "events": "Events above movement onset,", "annual_probability": "Share of years above movement onset,",
+	} {
+		c := severalCases()
+		c.Settings.DecideBy = key
+		if text := written(t, Comparison(c)); !strings.Contains(text, want) {
+			t.Errorf("no %q in:\n%s", want, text)
+		}
+	}
+}
+
+// TestRecordFields: what was filled is said with how, and a band given as a factor of safety with its number.
+func TestRecordFields(t *testing.T) {
+	for _, tt := range []struct {
+		gaps    int
+		filling string
+		want    string
+	}{{0, "", "no gaps filled"}, {1, "zero", "1 step filled with zero"}, {31, "month mean", "31 steps filled by month mean"}, {2, "", "2 steps filled"}} {
+		c := fixture(demoOptions[:2], threeBands)
+		c.Record.GapsFilled, c.Record.GapFilling = tt.gaps, tt.filling
+		c.Bands[0].GivenAs, c.Bands[0].FactorOfSafety = "factor_of_safety", ptr(1.05)
+		c.Cases[0].Options[0].Rates = result.Rates{CoverSeepagePerDay: 0.011, CoverPercolationPerDay: 0.0045, DeepSeepagePerDay: 0.007,
+			Given: &result.Rates{CoverSeepagePerDay: 0.0109, CoverPercolationPerDay: 0.00448, DeepSeepagePerDay: 0.00699}}
+		text := strings.Join(strings.Fields(written(t, Comparison(c))), " ")
+		for _, want := range []string{tt.want, "watch safety 1.05 3.60", "Safety: the band begins where", "converted: cover seepage 0.011 /d, percolation 0.0045 /d, deep seepage 0.007 /d. Given were cover seepage 0.0109 /d, percolation 0.00448 /d, deep seepage 0.00699 /d"} {
+			if !strings.Contains(text, want) {
+				t.Errorf("no %q in %s", want, text)
+			}
+		}
+	}
+}
+
+// TestConversion: what became of the rates of a stepping scheme is set side by side.
+func TestConversion(t *testing.T) {
+	c := checkFixture()
+	c.Conversion = &result.Conversion{Scheme: "centred", StepDays: 1,
+		Cover:             result.StoreConversion{GivenPerDay: 0.0155, ExactPerDay: 0.0155003, GivenPorosity: 0.06, Porosity: 0.0599988},
+		Deep:              result.StoreConversion{GivenPerDay: 0.5, ExactPerDay: 0.510826, GivenPorosity: 0.014, Porosity: 0.0137033},
+		LargestDifference: &result.LevelDifference{CoverM: 0.00012, DeepM: 0.0213, CoverAt: "1998-11-03", DeepAt: "2001-02-03"}}
+	text := written(t, Check(c))
+	fits(t, text)
+	readsAsMeant(t, Check(c))
+	_, text, _ = strings.Cut(text, "\nRates converted")
+	text, _, _ = strings.Cut(text, "\n\n")
+	want := ` from the centred scheme with steps of 1 d
+---------------------------------------------------------
+       rate given  rate converted  porosity given  porosity converted
+layer          /d              /d               %                   %
+cover      0.0155       0.0155003               6             5.99988
+deep          0.5        0.510826             1.4             1.37033
+Replayed by the scheme itself, the ground without measures has levels that differ from those of the
+converted rates by less than a millimetre in the cover and by at most 0.021 m (2001-02-03) in the
+deep layer.`
+	if d := cmp.Diff(want, text); d != "" {
+		t.Error(d)
+	}
+	c.Conversion.LargestDifference = nil
+	if text := written(t, Check(c)); !strings.Contains(text, "The record has other steps than the scheme") {
+		t.Error(text)
 	}
 }

@@ -16,7 +16,7 @@ func (v *view) warnings() {
 		return
 	}
 	v.heading("Notes")
-	v.notes.write(&v.Page, func(name string) string { return v.letters[name] })
+	v.notes.write(&v.Page, func(name string) string { return v.letters[name] }, v.c.Cases)
 }
 
 func (v *view) settings() {
@@ -24,6 +24,9 @@ func (v *view) settings() {
 	v.heading("Settings and inputs")
 	v.field("settings", "year starts in %s, events %s d apart, confidence %s, %d resamples of %s-year blocks, seed %d",
 		s.YearStarts, days(s.ApartDays), v.confidence(), s.Resamples, rate(s.BlockYears), s.Seed)
+	if g := v.givenRates(); g != nil {
+		v.field("rates", "those of a stepping scheme were converted: %s. Given were %s", bareRates(g), bareRates(g.Given))
+	}
 	inputs(&v.Page, v.c.Inputs)
 	if len(v.c.Defaults) > 0 {
 		v.field("defaults", "%s", strings.Join(v.merged(v.c.Defaults), "; "))
@@ -37,6 +40,17 @@ func (v *view) settings() {
 		}
 		v.field("declared", "%s", strings.Join(parts, "; "))
 	}
+}
+
+// givenRates are the rates of the baseline where they were converted from a stepping scheme, nil elsewhere.
+func (v *view) givenRates() *result.Rates {
+	if len(v.c.Cases) == 0 || len(v.c.Cases[0].Options) == 0 {
+		return nil
+	}
+	if r := &baselineOf(&v.c.Cases[0]).Rates; r.Given != nil {
+		return r
+	}
+	return nil
 }
 
 var indexed = regexp.MustCompile(`^([a-z_]+)\[(\d+)\]\.(.*)$`)
@@ -84,6 +98,22 @@ func (v *view) nameOf(list string, n int) string {
 		return letter(n)
 	case list == "bands" && n < len(v.c.Bands):
 		return v.c.Bands[n].Name
+	case list == "climates":
+		return v.further(n, list, func(c *result.Case) string { return c.Climate })
+	case list == "conditions":
+		return v.further(n, list, func(c *result.Case) string { return c.Condition })
+	}
+	return fmt.Sprintf("%s[%d]", list, n)
+}
+
+// further is the n-th name of a list of the study, found in the cases, the first of which has a name of ours.
+func (v *view) further(n int, list string, name func(*result.Case) string) string {
+	var names []string
+	for i := range v.c.Cases {
+		names = with(names, name(&v.c.Cases[i]))
+	}
+	if n+1 < len(names) {
+		return names[n+1]
 	}
 	return fmt.Sprintf("%s[%d]", list, n)
 }

@@ -24,10 +24,14 @@ func (v *view) inShort() {
 			v.para("Check first: %s (note %d)", n.first.Text, i+1)
 		}
 	}
+	if v.several() {
+		v.para("In %s, %s:", caseName(0), caseText(c))
+	}
 	if v.nothingPassed(c, band) {
 		base := baselineOf(c)
 		v.para("No option passes %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
 			name, plural(T, "year"), v.letters[base.Name], centimetres(base.Level.MaxM), metres(v.c.Bands[band].LevelM))
+		v.otherCases(band, by)
 		v.para("%s.", v.notes.headline())
 		return
 	}
@@ -58,19 +62,26 @@ func (v *view) inShort() {
 	if len(c.Options) > 1 {
 		text := fmt.Sprintf("From the least by %s: %s.", by.name, v.order(c, v.figuresBy(c, band, by)))
 		if len(worse) > 0 {
-			text += fmt.Sprintf(" Worse than %s: %s.", v.baseline, strings.Join(worse, ", "))
+			text += fmt.Sprintf(" Worse than %s: %s.", v.reference, strings.Join(worse, ", "))
 		}
 		if len(same) > 0 {
-			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.baseline, strings.Join(same, ", "))
+			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.reference, strings.Join(same, ", "))
 		}
-		if refs := v.notes.numbersOf("order_not_told_apart"); refs != "" {
-			text += fmt.Sprintf(" Some neighbours in this order are not told apart from each other: see %s.", noun(refs))
-		}
-		v.para("%s", text)
+		v.para("%s", text+v.neighbours(c))
 	}
+	v.otherCases(band, by)
 	if len(v.notes) > 0 {
 		v.para("%s. What is weak about these figures stands there.", v.notes.headline())
 	}
+}
+
+// neighbours says where it is noted that the order of a case is not certain; "" where it is not.
+func (v *view) neighbours(c *result.Case) string {
+	refs := v.notes.numbersOf("order_not_told_apart", c)
+	if refs == "" {
+		return ""
+	}
+	return fmt.Sprintf(" Some neighbours in this order are not told apart from each other: see %s.", noun(refs))
 }
 
 // deciding is the index of the band that ranks the options, -1 for none.

@@ -18,7 +18,7 @@ func (v *view) months(c *result.Case) {
 	if band < 0 || v.nothingPassed(c, band) {
 		return
 	}
-	v.heading("Days above %s by month, mean per year", v.c.Bands[band].Name)
+	v.section(c, "Days above %s by month, mean per year", v.c.Bands[band].Name)
 	var head []string
 	for m := time.January; m <= time.December; m++ {
 		head = append(head, m.String()[:3])
@@ -50,7 +50,7 @@ func monthly(d float64) string {
 
 // levels writes the summary of the deep levels.
 func (v *view) levels(c *result.Case) {
-	v.heading("Deep level at the ends of the counted steps, m above the base of the deep layer")
+	v.section(c, "Deep level at the ends of the counted steps, m above the base of the deep layer")
 	t := table{head: [][]string{
 		{"", "", "", "", "", "recharge", "actual ET"},
 		{"mean", "median", "95 %", "99 %", "highest", "mm a year", "mm a year"},
@@ -111,7 +111,7 @@ func (v *view) drains(c *result.Case) {
 		t.rows = append(t.rows, []string{words(d.Measure), d.Layer, rates.cells()[i], centimetres(d.InvertM),
 			ceilings.cells()[i], percent(d.RunningShare), means.cells()[i], peaks.cells()[i], flows.cells()[i]})
 	}
-	v.heading("Drains over the counted years")
+	v.section(c, "Drains over the counted years")
 	v.rows(t.dropEmpty(), options)
 	v.para("Runs: share of steps that end with water above the invert, which is given above the base of the drain's layer. Flows are spread over the plan area.")
 }
@@ -119,7 +119,7 @@ func (v *view) drains(c *result.Case) {
 // balance writes the water balance, one line per option.
 func (v *view) balance(c *result.Case) {
 	years := recordYears(&v.c.Record)
-	v.heading("Water balance of the whole record, mm a year")
+	v.section(c, "Water balance of the whole record, mm a year")
 	type part struct {
 		store, name string
 		of          func(*result.Balance) float64

@@ -1,0 +1,205 @@
+package render
+
+import (
+	"fmt"
+	"slices"
+	"strconv"
+	"strings"
+
+	"quietslope/scenario/result"
+)
+
+// several reports whether there is more than one case, so that each must be named.
+func (v *view) several() bool { return len(v.c.Cases) > 1 }
+
+// caseText says what a case is.
+func caseText(c *result.Case) string {
+	return fmt.Sprintf("weather %s, works %s", c.Climate, c.Condition)
+}
+
+// differs says what sets a case apart from the first.
+func differs(first, c *result.Case) string {
+	switch {
+	case c.Climate == first.Climate:
+		return c.Condition
+	case c.Condition == first.Condition:
+		return c.Climate
+	}
+	return c.Climate + ", " + c.Condition
+}
+
+// caseName names the i-th case.
+func caseName(i int) string { return "case " + strconv.Itoa(i+1) }
+
+// section starts a section about a case, which is named where there are several.
+func (v *view) section(c *result.Case, format string, args ...any) {
+	text := fmt.Sprintf(format, args...)
+	if i := v.indexOf(c); v.several() {
+		text += " (" + caseName(i) + ")"
+	}
+	v.heading("%s", text)
+}
+
+func (v *view) indexOf(c *result.Case) int {
+	for i := range v.c.Cases {
+		if &v.c.Cases[i] == c {
+			return i
+		}
+	}
+	return 0
+}
+
+// oneCase writes what belongs to one climate and one condition: all of it for the first, the bands and the ranking for
+// any other.
+func (v *view) oneCase(i int) {
+	c := &v.c.Cases[i]
+	if v.several() {
+		v.heading("Case %d: %s", i+1, caseText(c))
+		text := "All tables of this case follow. Of the others there are the bands and the ranking; CSV and JSON hold the rest."
+		if i > 0 {
+			text = "The bands and the ranking of this case follow; CSV and JSON hold the rest."
+		}
+		if refs := v.notes.ofCaseOnly(c); refs != "" {
+			text += " About the whole case: see " + noun(refs) + "."
+		}
+		v.para("%s", text)
+	}
+	for b := range v.c.Bands {
+		v.exceedance(c, b)
+	}
+	v.change(c)
+	if i > 0 {
+		return
+	}
+	v.months(c)
+	v.levels(c)
+	v.drains(c)
+	v.balance(c)
+}
+
+// standings sets the figures that rank the options side by side, case by case.
+func (v *view) standings() {
+	band := v.deciding()
+	if band < 0 || !v.several() {
+		return
+	}
+	by := measureOf(v.c.Settings.DecideBy)
+	v.heading("How the options stand in each case")
+	v.cases()
+	t := table{head: [][]string{nil}, cut: true}
+	options := pointers(&v.c.Cases[0])
+	t.rows = make([][]string, len(options))
+	for i := range v.c.Cases {
+		c := &v.c.Cases[i]
+		t.groups = append(t.groups, caseName(i), caseName(i))
+		t.head[0] = append(t.head[0], by.unit, "rank")
+		t.left = append(t.left, true, false)
+		var figures column
+		for k := range c.Options {
+			figures.add(v.deciderOf(c, &c.Options[k], band, by))
+		}
+		for k, cell := range figures.cells() {
+			rank := "–"
+			if d := c.Options[k].Decision; d != nil {
+				rank = strconv.Itoa(d.Rank)
+			}
+			t.rows[k] = append(t.rows[k], cell, rank)
+		}
+	}
+	v.para("%s above %s, its range, and the rank in the case:", upperFirst(by.name), v.c.Bands[band].Name)
+	v.rows(t, options)
+}
+
+// cases lists the cases with their numbers.
+func (v *view) cases() {
+	for i := range v.c.Cases {
+		v.field(caseName(i), "%s", caseText(&v.c.Cases[i]))
+	}
+}
+
+// deciderOf is the figure that ranks an option, and its range.
+func (v *view) deciderOf(c *result.Case, o *result.Option, band int, by *measure) (value, limits string) {
+	f := &o.Bands[band]
+	switch by.key {
+	case "events":
+		return v.eventsOf(c, o, band)
+	case "annual_probability":
+		return percent(f.AnnualProbability), percentRange(f.AnnualProbability, f.AnnualProbabilityCI)
+	case "days":
+		return ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
+	}
+	return ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad)
+}
+
+// otherCases says in a line for each further case what changes on a band.
+func (v *view) otherCases(band int, by *measure) {
+	first := &v.c.Cases[0]
+	before := v.order(first, v.figuresBy(first, band, by))
+	for i := 1; i < len(v.c.Cases); i++ {
+		c := &v.c.Cases[i]
+		lead := fmt.Sprintf("In %s, %s: ", caseName(i), differs(first, c))
+		if v.nothingPassed(c, band) {
+			v.para("%sno option passes it.", lead)
+			continue
+		}
+		var now, no, apart, worse []string
+		for k := range c.Options {
+			was, is := &first.Options[k].Bands[band], &c.Options[k].Bands[band]
+			l := v.letters[c.Options[k].Name]
+			switch {
+			case notPassed(was) && !notPassed(is):
+				now = append(now, l)
+			case !notPassed(was) && notPassed(is):
+				no = append(no, l)
+			}
+			if was.Change == nil || is.Change == nil {
+				continue
+			}
+			switch against(by.change(is.Change), is.Change.ToldApart) {
+			case against(by.change(was.Change), was.Change.ToldApart):
+			case toldNot:
+				apart = append(apart, l)
+			case toldMore:
+				worse = append(worse, l)
+			}
+		}
+		var parts []string
+		for _, part := range []struct {
+			letters  []string
+			one, all string
+		}{
+			{now, "%s passes it too", "%s pass it too"},
+			{no, "%s passes it no more", "%s pass it no more"},
+			{apart, "%s is not told apart from " + v.reference, "%s are not told apart from " + v.reference},
+			{worse, "%s is worse than " + v.reference, "%s are worse than " + v.reference},
+		} {
+			switch len(part.letters) {
+			case 0:
+			case 1:
+				parts = append(parts, fmt.Sprintf(part.one, part.letters[0]))
+			default:
+				parts = append(parts, fmt.Sprintf(part.all, andWords(part.letters)))
+			}
+		}
+		if len(now)+len(no) == 0 {
+			parts = slices.Insert(parts, 0, "the same options pass it")
+		}
+		if after := v.order(c, v.figuresBy(c, band, by)); len(c.Options) > 1 && after != before {
+			parts = append(parts, "the order becomes "+after)
+		} else if len(c.Options) > 1 {
+			parts = append(parts, "the order stays")
+		}
+		v.para("%s%s.", lead, strings.Join(parts, "; "))
+	}
+}
+
+// andWords joins words as a sentence does.
+func andWords(words []string) string {
+	if len(words) < 2 {
+		return strings.Join(words, "")
+	}
+	return strings.Join(words[:len(words)-1], ", ") + " and " + words[len(words)-1]
+}
+
+// upperFirst begins a sentence with one of our words.
+func upperFirst(word string) string { return strings.ToUpper(word[:1]) + word[1:] }
