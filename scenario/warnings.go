@@ -439,7 +439,7 @@ func (p *prepared) ofCases(raised []warnings) []result.Warning {
 		for _, w := range ws {
 			switch {
 			case in[w] < len(raised):
-				w.Condition = p.cases[k].condition
+				w.Climate, w.Condition = AsRecorded, p.cases[k].condition
 			case k > 0: // said of the first
 				continue
 			}

@@ -8,8 +8,6 @@ import (
 	"io"
 	"strconv"
 	"strings"
-
-	"quietslope/scenario/result"
 )
 
 // csvHead are the columns of CSV.
@@ -21,7 +19,7 @@ var csvHead = []string{"climate", "condition", "option", "band", "quantity", "va
 // The quantity is the path in the JSON, its keys joined by dots, from the option or the band down where a row belongs to
 // one. Entries of a list are counted from 1; those with a key of their own go by it. An interval stands in the row of its
 // figure: KEY_ci of KEY, ci of the figure before it. Texts stand in the last column, true and false as yes and no. A
-// warning is a row warning.CODE, one of less weight a row note.CODE, a caution a row caution.
+// warning is a row warning.CODE, with warning.CODE.severity below it, a caution a row caution.
 func CSV(w io.Writer, v any) error {
 	var b bytes.Buffer
 	if err := JSON(&b, v); err != nil {
@@ -198,14 +196,10 @@ func (t *tabler) entry(of owner, path, key string, number int, n node) {
 		of.band = name
 		t.object(of, path, n, "name")
 	case key == "warnings" && path == "":
-		kind := "warning."
-		if n.word("severity") == result.Note {
-			kind = "note."
-		}
 		of := owner{n.word("climate"), n.word("condition"), n.word("option"), n.word("band")}
-		code := kind + n.word("code")
+		code := "warning." + n.word("code")
 		t.row(of, code, "", [2]string{}, n.word("text"))
-		t.object(of, code, n, "code", "severity", "climate", "condition", "option", "band", "text")
+		t.object(of, code, n, "code", "climate", "condition", "option", "band", "text")
 	case key == "cautions" && path == "":
 		text, _ := n.scalar.(string)
 		t.row(of, "caution", "", [2]string{}, text)

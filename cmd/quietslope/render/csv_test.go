@@ -60,9 +60,10 @@ func leaves(v any, row [4]string, path []string, into map[string][]string) {
 				put("caution", "text", e.(string))
 				continue
 			case "warnings":
-				kind := map[string]string{result.Warn: "warning.", result.Note: "note."}[text("severity")]
 				in = [4]string{text("climate"), text("condition"), text("option"), text("band")}
-				leaves(rest["text"], in, []string{kind + rest["code"].(string)}, into)
+				code := "warning." + rest["code"].(string)
+				leaves(rest["text"], in, []string{code}, into)
+				leaves(rest["severity"], in, []string{code, "severity"}, into)
 				continue
 			default:
 				leaves(e, in, append(slices.Clone(path), strconv.Itoa(i+1)), into)
@@ -169,7 +170,7 @@ func TestCSVRows(t *testing.T) {
 	for _, want := range []string{
 		`||||study||||Bank, the "upper"`,
 		"wetter||trenches|onset|warning.few_events||||Few.",
-		"||||note.perched_water||||Perched, perhaps.",
+		"||||warning.perched_water||||Perched, perhaps.", "||||warning.perched_water.severity||||note",
 		"||||caution||||Take care.",
 		"||||declared.perched_water||||yes",
 		"||||defaults.bands[0].until.value||||3 m",
