@@ -9,15 +9,10 @@ import (
 	"quietslope/scenario/fault"
 )
 
-const completionWord = "--generate-bash-completion"
-
 // arrange prepares a command line for the library, which would take every word after the first argument for an
 // argument too: options come first, then "--", then the arguments. What the library would misread or report badly is
 // refused here. An option is written -name or --name, its value after = or as the next word.
 func arrange(app *cli.App, args []string) ([]string, error) {
-	if len(args) > 0 && args[len(args)-1] == completionWord {
-		return args, nil
-	}
 	if len(args) == 0 {
 		return nil, nil
 	}
@@ -56,7 +51,7 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := oneStudy(name, arguments); err != nil {
+	if err := oneArgument(command, arguments); err != nil {
 		return nil, err
 	}
 	return slices.Concat([]string{name}, options, []string{"--"}, arguments), nil
@@ -64,15 +59,29 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 
 func isHelp(word string) bool { return word == "-h" || word == "--help" || word == "-help" }
 
-// oneStudy demands a single argument.
-func oneStudy(command string, arguments []string) error {
+// What a command takes as its argument, as its ArgsUsage says it.
+const (
+	studyArgument  = "STUDY.yaml"
+	folderArgument = "DIR"
+)
+
+// oneArgument demands the single argument of a command.
+func oneArgument(command *cli.Command, arguments []string) error {
+	what, such := "study file", "study.yaml"
+	switch command.ArgsUsage {
+	case studyArgument:
+	case folderArgument:
+		what, such = "folder", "my-slope"
+	default: // one of some words
+		what, such = "shell", shells[0]
+	}
 	switch {
 	case len(arguments) == 0:
-		return usagef(command, "name the study file, as in: quietslope %s study.yaml", command)
+		return usagef(command.Name, "name the %s, as in: quietslope %s %s", what, command.Name, such)
 	case len(arguments) > 1:
-		return usagef(command, "one study file at a time, got %q and %q", arguments[0], arguments[1])
+		return usagef(command.Name, "one %s at a time, got %q and %q", what, arguments[0], arguments[1])
 	case arguments[0] == "":
-		return usagef(command, "the name of the study file is empty")
+		return usagef(command.Name, "the name of the %s is empty", what)
 	}
 	return nil
 }
@@ -99,7 +108,7 @@ func split(command *cli.Command, words []string) (options, arguments []string, e
 		}
 		given[name] = true
 		options = append(options, word)
-		if valued, ok := flag.(cli.DocGenerationFlag); joined || !ok || !valued.TakesValue() {
+		if joined || !takesValue(flag) {
 			continue
 		}
 		if i++; i == len(words) || strings.HasPrefix(words[i], "--") {
@@ -119,13 +128,21 @@ func flagOf(command *cli.Command, name string) cli.Flag {
 	return nil
 }
 
+func takesValue(flag cli.Flag) bool {
+	d, ok := flag.(cli.DocGenerationFlag)
+	return ok && d.TakesValue()
+}
+
 func unknownOption(command *cli.Command, word, name string) error {
 	var known []string
 	for _, f := range command.Flags {
 		known = append(known, f.Names()[0])
 	}
-	if near := fault.Nearest(name, known); near != "" {
+	switch near := fault.Nearest(name, known); {
+	case near != "":
 		return usagef(command.Name, "unknown option %s; did you mean --%s?", word, near)
+	case len(known) == 0:
+		return usagef(command.Name, "unknown option %s; this command has none", word)
 	}
 	return usagef(command.Name, "unknown option %s; there are --%s", word, strings.Join(known, ", --"))
 }

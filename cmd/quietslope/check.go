@@ -10,7 +10,7 @@ import (
 // checkCommand says what a study means, before anything is replayed but the baseline.
 func checkCommand() *cli.Command {
 	return &cli.Command{
-		Name: "check", Category: lookFirst, ArgsUsage: "STUDY.yaml",
+		Name: "check", Category: lookFirst, ArgsUsage: studyArgument,
 		Usage: "say what a study means and what its weather record looks like",
 		Description: `What it does:
   Lists every key of the study with the value in force and marks the defaults, the rates of every

@@ -13,7 +13,7 @@ import (
 // compareCommand replays every option of a study on the same weather and sets the results side by side.
 func compareCommand() *cli.Command {
 	return &cli.Command{
-		Name: "compare", Category: comparing, ArgsUsage: "STUDY.yaml",
+		Name: "compare", Category: comparing, ArgsUsage: studyArgument,
 		Usage: "replay the weather for every option and set them side by side",
 		Description: `What it does:
   Replays the whole weather record of the study for every option, after a warm-up, and counts on

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"io"
+	"strings"
 
 	"github.com/urfave/cli/v2"
 
@@ -52,7 +53,18 @@ func formatNames() []string {
 	return names
 }
 
-// The usage of an option is "VALUE: what it does", with further lines below it.
+// The usage of an option is "VALUE: what it does", with further lines below it; that of one without a value, what it
+// does. VALUE is FILE, FORMAT, NAME or TIME: shells complete by it.
+
+// usageOf parts the usage of an option.
+func usageOf(flag cli.Flag) (value, does string) {
+	usage := flag.(cli.DocGenerationFlag).GetUsage()
+	if !takesValue(flag) {
+		return "", usage
+	}
+	value, does, _ = strings.Cut(usage, ": ")
+	return value, does
+}
 
 func formatFlag() cli.Flag {
 	usage := "FORMAT: how to write the result:"

@@ -14,10 +14,15 @@ import (
 
 // Categories group the commands by what a person is doing.
 const (
+	beginning   = "Begin"
 	lookFirst   = "Look before you replay"
 	comparing   = "Compare options"
 	takeNumbers = "Take the numbers elsewhere"
+	shellSetUp  = "Set up your shell"
 )
+
+// categories stand in the order of the work.
+var categories = []string{beginning, lookFirst, comparing, takeNumbers, shellSetUp}
 
 const exitStatus = `Exit status:
   0 done; 2 the study, its weather or the command line is at fault; 1 a fault of the program or the
@@ -35,23 +40,24 @@ record for every option and says how often, how long and by how much the deep wa
 each critical band. It is no stability analysis and no warning system.
 
 Usage:
+  quietslope new DIR                           a starter study in the folder DIR
   quietslope COMMAND STUDY.yaml [options]      options may stand before or after the study
   quietslope help COMMAND                      what a command does, what it needs, examples
   quietslope help study                        every key of the study file, units, rules, examples
   quietslope --version
 `)
-	for _, category := range []string{lookFirst, comparing, takeNumbers} {
+	for _, category := range categories {
 		fmt.Fprintf(&b, "\n%s:\n", category)
 		for _, c := range app.Commands {
 			if c.Category == category {
-				fmt.Fprintf(&b, "  %-9s%s\n", c.Name, c.Usage)
+				fmt.Fprintf(&b, "  %-12s%s\n", c.Name, c.Usage)
 			}
 		}
 	}
 	b.WriteString(`
-To start, look at the demo from a copy of the source:
-  quietslope check testdata/demo/study.yaml
-  quietslope compare testdata/demo/study.yaml
+To start, let it write a study of an invented slope, compare its options, and make it your own:
+  quietslope new my-slope
+  quietslope compare my-slope/study.yaml
 
 ` + exitStatus)
 	return b.String()
@@ -60,15 +66,23 @@ To start, look at the demo from a copy of the source:
 // commandHelp is the text of "quietslope help COMMAND": the command's description, its options, the exit status.
 func commandHelp(app *cli.App, c *cli.Command) string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s %s [options]\n\n%s\n", app.Name, c.Name, c.Usage, app.Name, c.Name, c.ArgsUsage, c.Description)
-	b.WriteString("The study file:\n  \"quietslope help study\" lists its keys, units and rules, with examples.\n\nOptions:\n")
+	options := ""
+	if len(c.Flags) > 0 {
+		options = " [options]"
+	}
+	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s %s%s\n\n%s", app.Name, c.Name, c.Usage, app.Name, c.Name, c.ArgsUsage, options, c.Description)
+	if c.ArgsUsage != strings.ToLower(c.ArgsUsage) { // it is about a study
+		b.WriteString("\nThe study file:\n  \"quietslope help study\" lists its keys, units and rules, with examples.\n")
+	}
+	if len(c.Flags) > 0 {
+		b.WriteString("\nOptions:\n")
+	}
 	for _, f := range c.Flags {
-		d := f.(cli.DocGenerationFlag)
-		usage := strings.Split(d.GetUsage(), "\n")
-		value, does, _ := strings.Cut(usage[0], ": ")
-		fmt.Fprintf(&b, "  %-22s%s\n", "--"+f.Names()[0]+" "+value, does)
-		for _, more := range usage[1:] {
-			fmt.Fprintf(&b, "  %-22s%s\n", "", more)
+		value, does := usageOf(f)
+		lead := "--" + f.Names()[0] + " " + value
+		for _, line := range strings.Split(does, "\n") {
+			fmt.Fprintf(&b, "  %-22s%s\n", lead, line)
+			lead = ""
 		}
 	}
 	b.WriteString("\n" + exitStatus)

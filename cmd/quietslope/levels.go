@@ -13,7 +13,7 @@ import (
 // levelsCommand writes the replayed series themselves.
 func levelsCommand() *cli.Command {
 	return &cli.Command{
-		Name: "levels", Category: takeNumbers, ArgsUsage: "STUDY.yaml",
+		Name: "levels", Category: takeNumbers, ArgsUsage: studyArgument,
 		Usage: "write the replayed levels of every step as CSV",
 		Description: `What it does:
   Replays the options and writes one line per step of the record: time, rain_mm, and for every

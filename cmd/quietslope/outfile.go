@@ -48,12 +48,7 @@ func openOut(command, name string) (*outFile, error) {
 		if o.path, err = filepath.EvalSymlinks(name); err != nil {
 			return nil, &outputError{name, err}
 		}
-		// A file that may not be written is left alone, though its folder would let it be replaced.
-		f, err := os.OpenFile(o.path, os.O_WRONLY, 0)
-		if err != nil {
-			return nil, &outputError{name, err}
-		}
-		return o, f.Close()
+		return o, o.writable()
 	case !errors.Is(err, fs.ErrNotExist) && !isNotFolder(err):
 		return nil, &outputError{name, err}
 	}
@@ -73,6 +68,19 @@ func openOut(command, name string) (*outFile, error) {
 		return nil, refuse("there is no such folder, and no file name")
 	}
 	return o, nil
+}
+
+// writable reports an earlier file that may not be written. It is left alone, though its folder would let it be
+// replaced.
+func (o *outFile) writable() error {
+	if o.earlier == nil {
+		return nil
+	}
+	f, err := os.OpenFile(o.path, os.O_WRONLY, 0)
+	if err != nil {
+		return &outputError{o.name, err}
+	}
+	return f.Close()
 }
 
 // spare refuses to replace a file that the run reads, by whatever name or link.
@@ -98,39 +106,77 @@ func (o *output) write(ctx context.Context, f func(io.Writer) error) error {
 }
 
 // replace writes beside the file and then takes its place.
-func (o *outFile) replace(ctx context.Context, f func(io.Writer) error) (err error) {
+func (o *outFile) replace(ctx context.Context, f func(io.Writer) error) error {
+	return replaceAll(ctx, []*outFile{o}, f)
+}
+
+// replaceAll writes files beside those that they will replace, each with its own f, and puts them in their places once
+// all are whole. When one cannot be written or ctx ends before that, nothing is left of any. When one cannot be put in
+// its place, those before it are taken away again where there was no earlier file.
+func replaceAll(ctx context.Context, files []*outFile, write ...func(io.Writer) error) (err error) {
+	var whole []string // names of the files written beside
+	var placed []*outFile
+	defer func() {
+		for _, name := range whole[len(placed):] {
+			os.Remove(name)
+		}
+		if len(placed) == len(files) {
+			return
+		}
+		for _, o := range placed {
+			if o.earlier == nil {
+				os.Remove(o.path)
+			}
+		}
+	}()
+	for i, o := range files {
+		name, err := o.writeBeside(ctx, write[i])
+		if err != nil {
+			return err
+		}
+		whole = append(whole, name)
+	}
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	for i, o := range files {
+		if err := os.Rename(whole[i], o.path); err != nil {
+			return &outputError{o.name, err}
+		}
+		placed = append(placed, o)
+	}
+	return nil
+}
+
+// writeBeside writes a file whole, in the same folder and under a name of its own, which it returns.
+func (o *outFile) writeBeside(ctx context.Context, f func(io.Writer) error) (name string, err error) {
 	temporary, err := createBeside(o.path)
 	if err != nil {
-		return &outputError{o.name, err}
+		return "", &outputError{o.name, err}
 	}
+	whole := false
 	defer func() {
-		if temporary != nil {
+		if !whole {
 			temporary.Close()
 			os.Remove(temporary.Name())
 		}
 	}()
 	if err := f(&guarded{ctx, temporary, o.name}); err != nil {
-		return err
+		return "", err
 	}
 	if o.earlier != nil {
 		if err := temporary.Chmod(o.earlier.Mode().Perm()); err != nil {
-			return &outputError{o.name, err}
+			return "", &outputError{o.name, err}
 		}
 	}
 	if err := temporary.Sync(); err != nil {
-		return &outputError{o.name, err}
+		return "", &outputError{o.name, err}
 	}
 	if err := temporary.Close(); err != nil {
-		return &outputError{o.name, err}
+		return "", &outputError{o.name, err}
 	}
-	if err := ctx.Err(); err != nil {
-		return err
-	}
-	if err := os.Rename(temporary.Name(), o.path); err != nil {
-		return &outputError{o.name, err}
-	}
-	temporary = nil
-	return nil
+	whole = true
+	return temporary.Name(), nil
 }
 
 // createBeside makes a new file in the folder of path. Unlike os.CreateTemp it leaves the mode to the user's umask.

@@ -36,6 +36,10 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) (code int
 	}()
 	out := &firstError{w: stdout}
 	app := newApp(out, stderr)
+	if len(args) > 0 && args[0] == completeWord {
+		complete(ctx, app, args[1:])
+		return exitDone
+	}
 	args, err := arrange(app, args)
 	if err == nil {
 		err = app.RunContext(ctx, append([]string{app.Name}, args...))
@@ -53,11 +57,10 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 		Version:                   scenario.Version,
 		Writer:                    stdout,
 		ErrWriter:                 stderr,
-		EnableBashCompletion:      true,
 		DisableSliceFlagSeparator: true, // an option's name may hold a comma
 		OnUsageError:              onUsage,
 		ExitErrHandler:            func(*cli.Context, error) {}, // run returns the status
-		Commands:                  []*cli.Command{checkCommand(), compareCommand(), levelsCommand()},
+		Commands:                  []*cli.Command{newCommand(), checkCommand(), compareCommand(), levelsCommand(), completionCommand()},
 	}
 	app.CustomAppHelpTemplate = appHelp(app)
 	for _, c := range app.Commands {

@@ -136,6 +136,8 @@ func TestHelp(t *testing.T) {
 		{"help-check.golden", [][]string{{"help", "check"}, {"check", "-h"}}},
 		{"help-compare.golden", [][]string{{"help", "compare"}, {"compare", "--help"}, {"compare", "study.yaml", "-h"}, {"compare", "--out", "x", "study.yaml", "--help", "--nope"}}},
 		{"help-study.golden", [][]string{{"help", "study"}, {"h", "study"}, {"help", "study", "--help"}}},
+		{"help-new.golden", [][]string{{"help", "new"}, {"new", "d", "--force", "--help"}}},
+		{"help-completion.golden", [][]string{{"help", "completion"}, {"completion", "-h", "bash"}}},
 		{"help-levels.golden", [][]string{{"help", "levels"}, {"levels", "--help", "--", "x"}}},
 	} {
 		for _, args := range tt.ways {
@@ -171,6 +173,8 @@ func TestUsage(t *testing.T) {
 		{"compare", "study.yaml", "--out="}, {"compare", "study.yaml", "--out", "-"}, {"compare", "study.yaml", "--out=-x"}, {"compare", "study.yaml", "--out", "testdata"},
 		{"compare", "study.yaml", "--out", "testdata/"}, {"compare", "study.yaml", "--out", "no/such/folder/x.txt"}, {"compare", "study.yaml", "--out", "run_test.go/x.txt"},
 		{"compare", "study.yaml", "--out", "nofile/"}, {"compare", "study.yaml", "--out", "/dev/null"}, {"compare", "study.yaml", "--out", "/dev/../dev/stdout"}, {"levels", "study.yaml", "--from="}, {"compare", "study.yaml", "--against="},
+		{"new"}, {"new", ""}, {"new", "a", "b"}, {"new", "--frce", "a"}, {"new", "--", "-x"}, {"new", "run_test.go"}, {"new", "run_test.go/x"}, {"new", "no/such/folder"},
+		{"new", "starter"}, {"completion"}, {"completion", "bash", "zsh"}, {"completion", "bsh"}, {"completion", "tcsh"}, {"completion", "--format", "bash"},
 	} {
 		code, stdout, stderr := program(t.Context(), args...)
 		if code != 2 || stdout != "" {
@@ -211,8 +215,8 @@ func TestArrange(t *testing.T) {
 		{"compare study", "compare -- study"},
 		{"help study", "--help"},
 		{"levels --option a s.yaml --option b,c", "levels --option a --option b,c -- s.yaml"},
-		{"compare s.yaml --generate-bash-completion", "compare s.yaml --generate-bash-completion"},
-		{"--generate-bash-completion", "--generate-bash-completion"},
+		{"new --force d", "new --force -- d"},
+		{"completion zsh", "completion -- zsh"},
 		{"help", "--help"},
 		{"", ""},
 	} {

@@ -1,10 +1,11 @@
 //go:build ignore
 
-// This program writes weather.csv, the daily weather of the demo slope. The data are invented: the place does not exist, and
-// no station's record went into them. Only the yearly sums and the shape of the seasons are meant to be those of a wet,
-// temperate hillside. The same program always writes the same bytes.
+// This program writes weather.csv, the daily weather of the demo slope, and that of the starter study. The data are
+// invented: the places do not exist, and no station's record went into them. Only the yearly sums and the shape of the
+// seasons are meant to be those of a wet, temperate hillside. The same options always write the same bytes.
 //
 //	go run testdata/demo/weather.go > testdata/demo/weather.csv
+//	go run testdata/demo/weather.go -seed 7 -first 2012 -years 12 > cmd/quietslope/starter/weather.csv
 //
 // Rain: a two-state Markov chain says whether a day is wet (Gabriel & Neumann 1962, from memory), with a chance of rain after a
 // dry day and after a wet day that follow the season. Amounts on wet days are drawn independently of each other (Richardson
@@ -15,6 +16,7 @@ package main
 
 import (
 	"bufio"
+	"flag"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -22,25 +24,24 @@ import (
 	"time"
 )
 
-const (
-	seed      = 30
-	firstYear = 1984
-	years     = 40
-)
-
 func main() {
+	seed := flag.Uint64("seed", 30, "where the random draws begin")
+	firstYear := flag.Int("first", 1984, "first `year`")
+	years := flag.Int("years", 40, "number of `years`")
+	flag.Parse()
+
 	out := bufio.NewWriter(os.Stdout)
 	fmt.Fprintln(out, "date,rain_mm,pet_mm")
 
 	// Every quantity has a stream of its own, so that a change to one leaves the others as they are.
-	chain := rand.New(rand.NewPCG(seed, 1))
-	amount := rand.New(rand.NewPCG(seed, 2))
-	demand := rand.New(rand.NewPCG(seed, 3))
-	factor := yearFactors(rand.New(rand.NewPCG(seed, 4)))
+	chain := rand.New(rand.NewPCG(*seed, 1))
+	amount := rand.New(rand.NewPCG(*seed, 2))
+	demand := rand.New(rand.NewPCG(*seed, 3))
+	factor := yearFactors(rand.New(rand.NewPCG(*seed, 4)), *years)
 
 	wet, noise := false, 0.0
-	end := time.Date(firstYear+years, time.January, 1, 0, 0, 0, 0, time.UTC)
-	for day := time.Date(firstYear, time.January, 1, 0, 0, 0, 0, time.UTC); day.Before(end); day = day.AddDate(0, 0, 1) {
+	end := time.Date(*firstYear+*years, time.January, 1, 0, 0, 0, 0, time.UTC)
+	for day := time.Date(*firstYear, time.January, 1, 0, 0, 0, 0, time.UTC); day.Before(end); day = day.AddDate(0, 0, 1) {
 		// season is +1 at the turn of November and December, when rain is most frequent, and -1 half a year later.
 		season := math.Cos(2 * math.Pi * (float64(day.YearDay()) - 335) / 365.25)
 		chance := 0.29 + 0.07*season
@@ -57,7 +58,7 @@ func main() {
 				mean = 12.2
 			}
 			// The factor of the year runs from one autumn to the next without a jump.
-			at := float64(day.Year()-firstYear) + float64(day.YearDay())/365.25 + 0.25
+			at := float64(day.Year()-*firstYear) + float64(day.YearDay())/365.25 + 0.25
 			i := int(at)
 			f := factor[i] + (factor[i+1]-factor[i])*smooth(at-float64(i))
 			rain = size * mean * (1 + 0.14*season) * f
@@ -82,7 +83,7 @@ func main() {
 }
 
 // yearFactors returns a factor near 1 for every year and the two beyond: log-normal, each a little like the one before.
-func yearFactors(r *rand.Rand) []float64 {
+func yearFactors(r *rand.Rand, years int) []float64 {
 	f := make([]float64, years+2)
 	x := r.NormFloat64()
 	for i := range f {
