@@ -52,7 +52,9 @@ func readBash(line, breaks string) bashLine {
 		default:
 			text.WriteByte(c)
 			if b.quote == 0 && strings.IndexByte(breaks, c) >= 0 {
-				afterBreak = text.Len()
+				if afterBreak = text.Len(); c == '@' { // which bash replaces too
+					afterBreak--
+				}
 			}
 		}
 	}

@@ -71,7 +71,7 @@ Examples:
 const completeWord = "--complete"
 
 // completeWithin is how long a completion may take, so that a slow disk or a pipe does not keep the shell.
-const completeWithin = time.Second
+const completeWithin = 2 * time.Second
 
 // complete answers a shell that completes a command line.
 func complete(ctx context.Context, app *cli.App, args []string) {
@@ -266,7 +266,7 @@ func namesFor(option, path string, given map[string][]string) []word {
 	}
 	var names []string
 	switch option {
-	case flagOption:
+	case flagOption, "against":
 		for i := range s.Options {
 			names = append(names, s.Options[i].Name)
 		}
