@@ -274,6 +274,9 @@ func namesFor(option, path string, given map[string][]string) []word {
 		names = append(names, "as recorded")
 	case flagCondition:
 		names = append(names, "as built")
+		for i := range s.Conditions {
+			names = append(names, s.Conditions[i].Name)
+		}
 	}
 	var words []word
 	for _, n := range names {

@@ -24,7 +24,7 @@ var hardNames = []string{
 	"at a:b=c@d, e", `back\slash`, "what!now", "~tilde", "#3", "<b>|{x,y}[z]",
 }
 
-// hardStudy is a study with hardNames.
+// hardStudy is a study with hardNames, and with some of them for its conditions.
 func hardStudy() string {
 	head, _, _ := strings.Cut(smallStudy, "  - name: as it stands\n")
 	var b strings.Builder
@@ -32,6 +32,7 @@ func hardStudy() string {
 	for _, n := range hardNames {
 		fmt.Fprintf(&b, "  - name: '%s'\n", strings.ReplaceAll(n, "'", "''"))
 	}
+	b.WriteString("conditions:\n  - {name: \"it's worn\", drains: 50 %}\n  - {name: $5 (half), drains: 70 %}\n")
 	return b.String()
 }
 
@@ -82,7 +83,7 @@ func TestPropose(t *testing.T) {
 		{"compare|--|-", "studies", "", ""},
 		{"compare|--|s.yaml|-", "", "", ""},
 		{"levels|s.yaml|--from|", "", "", ""},
-		{"levels|s.yaml|--condition|", "words", "", "as built"},
+		{"levels|s.yaml|--condition|", "words", "", "as built it's worn $5 (half)"},
 		{"levels|s.yaml|--climate=", "words", "--climate=", "as recorded"},
 		{"levels|--option|", "", "", ""}, // no study yet
 		{"levels|none.yaml|--option|", "words", "", ""},
@@ -97,9 +98,6 @@ func TestPropose(t *testing.T) {
 			}
 		}
 		want := tt.want
-		if strings.HasPrefix(want, "as ") { // one name
-			texts = []string{strings.Join(texts, "|")}
-		}
 		if got.kind != tt.kind || got.before != tt.before || strings.Join(texts, " ") != want {
 			t.Errorf("%s: %q %q %q, want %q %q %q", tt.line, got.kind, got.before, texts, tt.kind, tt.before, want)
 		}
@@ -288,7 +286,7 @@ var inEveryShell = []completed{
 	{"quietslope compare hard.yaml --format j", []string{"json"}, []string{"text"}},
 	{"quietslope levels hard.yaml --option ", hardNames, []string{"text"}},
 	{"quietslope levels --option tren", []string{""}, hardNames}, // no study yet
-	{"quietslope levels hard.yaml --condition ", []string{"as built"}, []string{"as it stands"}},
+	{"quietslope levels hard.yaml --condition ", []string{"as built", "it's worn", "$5 (half)"}, []string{"as it stands"}},
 	{"quietslope levels hard.yaml --option Gr", []string{"Gräben für das Wasser"}, []string{"as it stands"}},
 	{"quietslope nope ", []string{""}, []string{"hard.yaml"}},
 }
