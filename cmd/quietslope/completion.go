@@ -191,7 +191,11 @@ func propose(app *cli.App, words []string) proposal {
 	case command.ArgsUsage == folderArgument:
 		return proposal{kind: foldersKind}
 	}
-	return choice(command.ArgsUsage)
+	p := proposal{kind: wordsKind}
+	for _, s := range strings.Split(command.ArgsUsage, "|") {
+		p.words = append(p.words, word{text: s})
+	}
+	return p
 }
 
 // commandWords are the commands with what they do, in the order of help.
@@ -213,35 +217,25 @@ func optionWords(command *cli.Command, given map[string][]string) []word {
 			continue
 		}
 		_, says := usageOf(f)
-		says, _, _ = strings.Cut(strings.ReplaceAll(says, "\n", " "), ". ")
-		words = append(words, word{"--" + name, says})
+		says, _, _ = strings.Cut(says, "\n")
+		says, _, _ = strings.Cut(says, ". ")
+		words = append(words, word{"--" + name, strings.TrimSuffix(says, ":")})
 	}
 	return append(words, word{"--help", "what the command does, what it needs, examples"})
 }
 
 // values proposes values of an option, as the first word of its usage says what they are.
 func values(flag cli.Flag, arguments []string, given map[string][]string) proposal {
-	value, _ := usageOf(flag)
-	switch value {
-	case "FILE":
-		return proposal{kind: filesKind}
-	case "NAME":
-		if len(arguments) != 1 {
-			return proposal{}
-		}
-		return proposal{kind: wordsKind, words: namesFor(flag.Names()[0], arguments[0], given)}
-	}
-	return choice(value)
-}
-
-// choice proposes the words of a usage such as text|json, and nothing of any other.
-func choice(usage string) proposal {
-	if usage != strings.ToLower(usage) {
-		return proposal{}
-	}
 	p := proposal{kind: wordsKind}
-	for _, w := range strings.Split(usage, "|") {
-		p.words = append(p.words, word{text: w})
+	switch value, _ := usageOf(flag); {
+	case value == "FILE":
+		return proposal{kind: filesKind}
+	case value == "FORMAT":
+		for _, f := range formats {
+			p.words = append(p.words, word{f.name, f.says})
+		}
+	case value == "NAME" && len(arguments) == 1:
+		p.words = namesFor(flag.Names()[0], arguments[0], given)
 	}
 	return p
 }
@@ -266,7 +260,7 @@ func namesFor(option, path string, given map[string][]string) []word {
 	}
 	var names []string
 	switch option {
-	case flagOption, "against":
+	case flagOption, flagAgainst:
 		for i := range s.Options {
 			names = append(names, s.Options[i].Name)
 		}

@@ -51,7 +51,7 @@ func TestPropose(t *testing.T) {
 	if err := os.WriteFile("s.yaml", []byte(hardStudy()), 0o666); err != nil {
 		t.Fatal(err)
 	}
-	commands, options := strings.Join(commandsNow(), " "), "--format --out --help"
+	commands, options := strings.Join(commandsNow(), " "), "--against --format --out --help"
 	for _, tt := range []struct{ line, kind, before, want string }{ // | parts the words of the line
 		{"", "words", "", commands + " help"},
 		{"co", "words", "", commands + " help"}, // the shell chooses
@@ -68,12 +68,12 @@ func TestPropose(t *testing.T) {
 		{"compare|s.y", "studies", "", ""},
 		{"compare|--", "words", "", options},
 		{"compare|s.yaml|", "words", "", options},
-		{"compare|s.yaml|--out|x|--", "words", "", "--format --help"},
-		{"compare|s.yaml|--out=x|--", "words", "", "--format --help"},
-		{"compare|--format|", "words", "", "text json"},
+		{"compare|s.yaml|--out|x|--", "words", "", "--against --format --help"},
+		{"compare|s.yaml|--out=x|--", "words", "", "--against --format --help"},
+		{"compare|--format|", "words", "", strings.Join(formatNames(), " ")},
 		{"compare|--format|json|", "studies", "", ""},
-		{"compare|--format=", "words", "--format=", "text json"},
-		{"compare|--format=j", "words", "--format=", "text json"},
+		{"compare|--format=", "words", "--format=", strings.Join(formatNames(), " ")},
+		{"compare|--format=j", "words", "--format=", strings.Join(formatNames(), " ")},
 		{"compare|--nope=", "", "", ""},
 		{"compare|--nope|", "studies", "", ""},
 		{"compare|--out|", "files", "", ""},
@@ -82,10 +82,10 @@ func TestPropose(t *testing.T) {
 		{"compare|--|", "studies", "", ""},
 		{"compare|--|-", "studies", "", ""},
 		{"compare|--|s.yaml|-", "", "", ""},
-		{"levels|s.yaml|--from|", "", "", ""},
+		{"levels|s.yaml|--from|", "words", "", ""},
 		{"levels|s.yaml|--condition|", "words", "", "as built it's worn $5 (half)"},
 		{"levels|s.yaml|--climate=", "words", "--climate=", "as recorded"},
-		{"levels|--option|", "", "", ""}, // no study yet
+		{"levels|--option|", "words", "", ""}, // no study yet
 		{"levels|none.yaml|--option|", "words", "", ""},
 		{"levels|.|--option|", "words", "", ""},
 	} {
@@ -113,6 +113,9 @@ func TestPropose(t *testing.T) {
 	if d := cmp.Diff(hardNames, names("levels", "s.yaml", "--option", "")); d != "" {
 		t.Error(d)
 	}
+	if d := cmp.Diff(hardNames, names("compare", "s.yaml", "--against", "")); d != "" {
+		t.Error(d)
+	}
 	if d := cmp.Diff(hardNames[2:], names("levels", "--option", hardNames[1], "s.yaml", "--option="+hardNames[0], "--option", "")); d != "" {
 		t.Error(d)
 	}
@@ -123,8 +126,7 @@ func TestOptionsComplete(t *testing.T) {
 	for _, c := range newApp(io.Discard, io.Discard).Commands {
 		for _, f := range c.Flags {
 			value, does := usageOf(f)
-			known := slices.Contains([]string{"", "FILE", "NAME", "TIME"}, value) || value == strings.ToLower(value) && strings.Contains(value, "|")
-			if !known || does == "" || takesValue(f) != (value != "") {
+			if !slices.Contains([]string{"", "FILE", "FORMAT", "NAME", "TIME"}, value) || does == "" || takesValue(f) != (value != "") {
 				t.Errorf("%s --%s: %q: %q", c.Name, f.Names()[0], value, does)
 			}
 		}
@@ -282,7 +284,7 @@ var inEveryShell = []completed{
 	{"quietslope help s", []string{"study"}, []string{"compare"}},
 	{"quietslope completion ", []string{"bash", "zsh", "fish"}, []string{"hard.yaml"}},
 	{"quietslope compare --f", []string{"--format"}, []string{"--out"}},
-	{"quietslope compare --format ", []string{"text", "json"}, []string{"hard.yaml"}},
+	{"quietslope compare --format ", formatNames(), []string{"hard.yaml"}},
 	{"quietslope compare hard.yaml --format j", []string{"json"}, []string{"text"}},
 	{"quietslope levels hard.yaml --option ", hardNames, []string{"text"}},
 	{"quietslope levels --option tren", []string{""}, hardNames}, // no study yet
