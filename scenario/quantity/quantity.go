@@ -107,7 +107,7 @@ func (k Kind) Units() []string {
 //	number   = ["+" | "-"] whole ["." digit {digit}] [("e" | "E") ["+" | "-"] digit {digit}]
 //	whole    = "0" | digit of 1 to 9 {digit}
 //
-// Thin, figure and non-breaking blanks count as blanks; ², ³, ° and °C as 2, 3, deg and degC. A share may also be
+// Thin, figure and non-breaking blanks count as blanks; in a unit ², ³, ° and °C as 2, 3, deg and degC. A share may also be
 // a bare 0 or a bare number between 0 and 1. A change must carry its sign and may not be below -100 %.
 //
 // The error quotes the text and says what to write instead. Range is the caller's business: Parse takes a negative

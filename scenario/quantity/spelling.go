@@ -13,7 +13,7 @@ var plainer = strings.NewReplacer(
 	"\u2007", " ", // figure blank, non-breaking
 	"\u2009", " ", // thin blank
 	"\u202f", " ", // narrow non-breaking blank
-	"²", "2", "³", "3",
+	"m²", "m2", "t²", "t2", "m³", "m3", // in a unit only: 10² is not 102
 	"°C", "degC", "°", "deg",
 )
 
