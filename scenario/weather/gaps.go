@@ -3,7 +3,6 @@ package weather
 import (
 	"fmt"
 	"math"
-	"math/big"
 	"slices"
 	"strings"
 	"time"
@@ -140,47 +139,12 @@ func orList(names []string) string {
 
 // monthMean is what fell, or was drawn, in the valid steps of one month of the year, all years together.
 type monthMean struct {
-	depth  exactSum // mm
-	length float64  // of these steps: days for months, otherwise the number of steps
-
-	step, mean float64 // the length that over was asked for last, and its answer
+	depth  total   // mm
+	length float64 // of these steps: days for months, otherwise the number of steps
 }
 
-// over is the depth in mm of a step of the given length that gets as much a day as the valid ones do on average. It is
-// rounded once.
-func (m *monthMean) over(length float64) float64 {
-	if length == m.step {
-		return m.mean
-	}
-	const bits = 1200 // hold any sum of weather, from 2^-1074 up to 2^40 mm
-	x := new(big.Float).SetPrec(bits)
-	for _, part := range m.depth.parts {
-		x.Add(x, big.NewFloat(part))
-	}
-	x.Mul(x, big.NewFloat(length))
-	m.step = length
-	m.mean, _ = x.Quo(x, big.NewFloat(m.length)).Float64()
-	return m.mean
-}
-
-// exactSum is a sum without rounding, so that no order of adding can change it: that of parts which share no bits
-// (Shewchuk 1997, Discrete & Computational Geometry 18:305, grow-expansion; from memory).
-type exactSum struct{ parts []float64 }
-
-func (s *exactSum) add(v float64) {
-	kept := s.parts[:0]
-	for _, p := range s.parts {
-		if math.Abs(v) < math.Abs(p) {
-			v, p = p, v
-		}
-		sum := v + p
-		if lost := p - (sum - v); lost != 0 {
-			kept = append(kept, lost)
-		}
-		v = sum
-	}
-	s.parts = append(kept, v)
-}
+// over is the depth in mm of a step of the given length that gets as much a day as the valid ones do on average.
+func (m *monthMean) over(length float64) float64 { return m.depth.value() * length / m.length }
 
 // monthMeans adds up a column by the month of the year, January first, in which its steps start, and says which months
 // lack values.
