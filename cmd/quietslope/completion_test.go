@@ -241,6 +241,8 @@ func shellFolder(t *testing.T) (typed string) {
 	t.Chdir(work)
 	t.Setenv("PATH", bin+string(filepath.ListSeparator)+os.Getenv("PATH"))
 	t.Setenv("HOME", dir)
+	t.Setenv("XDG_CONFIG_HOME", dir) // of fish
+	t.Setenv("XDG_DATA_HOME", dir)
 	t.Setenv("LC_ALL", "C.UTF-8")
 	t.Setenv("TERM", "dumb")
 	return typed

@@ -127,10 +127,11 @@ func starterFolder(dir string) (missing bool, err error) {
 	case !errors.Is(err, fs.ErrNotExist):
 		return false, &outputError{dir, err}
 	}
-	if _, err := os.Lstat(dir); err == nil {
+	clean := filepath.Clean(dir) // without a / at the end, which would follow a link
+	if _, err := os.Lstat(clean); err == nil {
 		return refuse("is a link to nothing; name a folder")
 	}
-	parent := filepath.Dir(filepath.Clean(dir))
+	parent := filepath.Dir(clean)
 	if _, err := os.Stat(parent); errors.Is(err, fs.ErrNotExist) {
 		return refuse("cannot be made, since there is no folder %q; make that first", parent)
 	}

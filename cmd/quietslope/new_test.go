@@ -131,6 +131,7 @@ func TestNewFolders(t *testing.T) {
 		{[]string{"half/weather.csv"}, 2, "is a file"},
 		{[]string{"file/below"}, 2, "leads through a file"},
 		{[]string{"lost"}, 2, "is a link to nothing"},
+		{[]string{"lost/"}, 2, "is a link to nothing"},
 		{[]string{"no/where"}, 2, `there is no folder "no"`},
 		{[]string{strings.Repeat("x", 300)}, 2, "is no name that a folder can have"},
 		{[]string{"odd", "--force"}, 2, "is there already and no plain file"},
