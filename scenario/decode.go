@@ -119,13 +119,21 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 		case f.need != "" && b.partial:
 			b.values[f.name] = &value{place: at, bad: true, num: math.NaN()}
 		case f.need != "":
-			d.add(at, "the key is missing; give %s", f.need)
+			d.add(at, "the key is missing; give %s", f.needed())
 			b.values[f.name] = &value{place: at, bad: true, num: math.NaN()}
 		default:
 			b.values[f.name] = d.standIn(f, at)
 		}
 	}
 	return b
+}
+
+// needed is what must be given for the key.
+func (f *field) needed() string {
+	if strings.HasSuffix(strings.TrimSuffix(f.need, ":"), "such as") {
+		return f.need + " " + f.eg
+	}
+	return f.need
 }
 
 // join adds a key to the path of its block. A key that no study has, and that would only spoil a message, is left out.
@@ -418,7 +426,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		whole, err = quantity.ParseWhole(n.text)
 		v.num = float64(whole)
 	case formQuantity, formYears:
-		if s.bare {
+		if s.bare != "" {
 			if x, err := quantity.ParseNumber(n.text); err == nil { // its range is for whoever knows what it is
 				v.num, v.bare = x, true
 				return v

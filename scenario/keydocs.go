@@ -31,20 +31,55 @@ func keyDocs(docs []KeyDoc, fields []field, path string) []KeyDoc {
 		if f.later {
 			continue
 		}
-		s := &f.shape
-		doc := KeyDoc{
-			Path: join(path, f.name), Says: f.says, Form: s.form.name(s.kind), Words: s.shownWords(), Range: s.rangeWords(),
-			Required: f.need != "", Default: f.def, Absent: f.absent, List: strings.HasPrefix(path, "options[].") && f.listable(),
-		}
-		switch s.form {
-		case formQuantity:
-			doc.Units = s.kind.Units()
-		case formTexts:
-			doc.Default = "[" + f.def + "]"
-		}
-		docs = keyDocs(append(docs, doc), s.fields, inside(doc.Path, s))
+		doc := docOf(f, path)
+		docs = keyDocs(append(docs, doc), f.shape.fields, inside(doc.Path, &f.shape))
 	}
 	return docs
+}
+
+// docOf describes one key of the block at a path.
+func docOf(f *field, path string) KeyDoc {
+	s := &f.shape
+	doc := KeyDoc{
+		Path: join(path, f.name), Says: f.says, Form: s.form.name(s.kind), Words: s.shownWords(), Range: s.rangeWords(),
+		Required: f.need != "", Default: f.def, Absent: f.absent, List: strings.HasPrefix(path, "options[].") && f.listable(),
+	}
+	switch s.form {
+	case formQuantity:
+		doc.Units = s.kind.Units()
+	case formTexts:
+		doc.Default = "[" + f.def + "]"
+	}
+	return doc
+}
+
+// Written says how the value of the key is written, its range, and what holds when it is left out: "length above 0 m and
+// at most 500 m; required".
+func (k KeyDoc) Written() string {
+	text := k.Form
+	switch {
+	case k.Form == "word" && len(k.Words) == 1:
+		return k.Words[0] + ", and no other yet"
+	case k.Form == "word":
+		text = joinWords(k.Words, "or")
+	case k.Range != "":
+		text += " " + k.Range
+	}
+	if k.Form != "word" && len(k.Words) > 0 {
+		text += ", or " + joinWords(k.Words, "or")
+	}
+	if k.List {
+		text += ", or a list"
+	}
+	switch {
+	case k.Required:
+		return text + "; required"
+	case k.Default != "":
+		return text + "; default " + k.Default
+	case k.Absent != "":
+		return text + "; " + k.Absent
+	}
+	return text + "; may be left out"
 }
 
 // inside is the path of the keys of a block, or of the blocks of a list.

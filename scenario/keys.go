@@ -32,8 +32,10 @@ type shape struct {
 	words  []string      // words that may stand instead, such as none or auto
 	later  []string      // words that are known but not supported yet
 	fields []field       // of a block, or of each block of a list
+	choice []string      // of a block: keys of which one is given
+	filled bool          // of a block: it has at least one key
 	most   int           // largest number of items of a list of texts
-	bare   bool          // a quantity that may also be a bare number, for the decoder to tell apart
+	bare   string        // of a quantity: the key beside which it is a bare number, for the decoder to tell apart
 	meant  [][2]string   // other words that a person may write, and which of the shape's words is meant
 }
 
@@ -48,11 +50,13 @@ type field struct {
 	name   string
 	says   string // what it is, for the reference that Keys makes: one line without a full stop
 	shape  shape
-	need   string // what must be given; "" for a key that may be left out
-	def    string // what stands in for a key that is left out, as it would be typed
-	absent string // for the reference: what holds when it is left out, where need and def do not say it
-	quiet  bool   // says nothing when it is left out, and is not listed then
-	later  bool   // refused: not supported yet
+	need   string   // what must be given, up to "such as" where eg shall follow; "" for a key that may be left out
+	def    string   // what stands in for a key that is left out, as it would be typed
+	absent string   // for the reference: what holds when it is left out, where need and def do not say it
+	eg     string   // for the schema: a value as it would be typed; "" where the default or the shape has one
+	not    []string // keys of the block that have no place beside it
+	quiet  bool     // says nothing when it is left out, and is not listed then
+	later  bool     // refused: not supported yet
 }
 
 // Limits beyond which a number is taken for a slip. Where no reason stands beside it, a limit is a judgement, and far
@@ -109,46 +113,46 @@ var (
 var (
 	surfaceFields = []field{
 		{name: "infiltration", says: "share of the rain that enters the ground; the rest runs off",
-			shape: shareShape, def: "100 %"},
+			shape: shareShape, def: "100 %", eg: "85 %"},
 		{name: "infiltration_limit", says: "largest intensity at which water enters; the rest runs off",
-			shape: amount(quantity.Intensity, above(0, maxIntensity), "none"), def: "none"},
+			shape: amount(quantity.Intensity, above(0, maxIntensity), "none"), def: "none", eg: "20 mm/h"},
 	}
 	soilFields = []field{
 		{name: "available_water", says: "water that plants can draw from a soil at field capacity",
-			shape: amount(quantity.WaterDepth, above(0, maxWater)), need: "the water that plants can draw from the soil, such as 120 mm"},
+			shape: amount(quantity.WaterDepth, above(0, maxWater)), need: "the water that plants can draw from the soil, such as", eg: "120 mm"},
 		{name: "readily_available", says: "share of available_water that plants draw at their full demand",
-			shape: amount(quantity.Share, atLeast(0, maxReadily)), def: "50 %"},
+			shape: amount(quantity.Share, atLeast(0, maxReadily)), def: "50 %", eg: "55 %"},
 		{name: "crop_factor", says: "what the evapotranspiration of the record is multiplied by",
-			shape: shape{form: formNumber, limits: atLeast(0, 5)}, def: "1"},
+			shape: shape{form: formNumber, limits: atLeast(0, 5)}, def: "1", eg: "1.1"},
 	}
 	coverFields = []field{
 		{name: "thickness", says: "from the ground down to the contact with the deep layer",
-			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the cover, such as 4.0 m"},
+			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the cover, such as", eg: "4.0 m"},
 		{name: "drainable_porosity", says: "share of the cover that fills and drains as its level moves",
-			shape: someShareShape, need: "the share of the cover that fills and drains, such as 6 %"},
+			shape: someShareShape, need: "the share of the cover that fills and drains, such as", eg: "6 %"},
 		{name: "seepage", says: "rate at which stored water leaves along the contact and out at the toe",
-			shape: rateShape, need: "the rate at which water leaves along the contact, such as 0.01 /d"},
+			shape: rateShape, need: "the rate at which water leaves along the contact, such as", eg: "0.01 /d"},
 		{name: "percolation", says: "rate at which stored water sinks into the deep layer; 0 /d for none",
-			shape: rateShape, need: "the rate at which water sinks into the deep layer, such as 0.005 /d, or 0 /d"},
+			shape: rateShape, need: "the rate at which water sinks into the deep layer, such as 0.005 /d, or 0 /d", eg: "0.005 /d"},
 		{name: "percolation_ceiling", says: "most that the deep layer takes in, however full the cover is",
-			shape: ceilingShape, def: "none"},
+			shape: ceilingShape, def: "none", eg: "2 mm/d"},
 		{name: "conductivity", says: "hydraulic conductivity of the cover, for trenches that are given by their spacing", absent: "may be left out",
-			shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
+			shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.02 m/d"},
 		{name: "full_at", says: "level above the contact at which the cover is full and overflows", absent: "by default the thickness of the cover",
-			shape: fullAtShape},
+			shape: fullAtShape, eg: "3.5 m"},
 	}
 	deepFields = []field{
 		{name: "thickness", says: "from the contact down to the base of the deep layer, the slip surface",
-			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the deep layer, such as 9.0 m"},
+			shape: amount(quantity.Length, above(0, maxThickness)), need: "the thickness of the deep layer, such as", eg: "9.0 m"},
 		{name: "drainable_porosity", says: "share of the deep layer that fills and drains: its fissures only",
-			shape: someShareShape, need: "the share of the deep layer that its fissures take up, such as 1.4 %"},
+			shape: someShareShape, need: "the share of the deep layer that its fissures take up, such as", eg: "1.4 %"},
 		{name: "seepage", says: "rate at which stored water leaves the deep layer by itself",
-			shape: rateShape, need: "the rate at which water leaves the deep layer, such as 0.007 /d"},
+			shape: rateShape, need: "the rate at which water leaves the deep layer, such as", eg: "0.007 /d"},
 		{name: "lateral_inflow", says: "steady inflow from the side or from uphill",
-			shape: amount(quantity.Flux, atLeast(0, maxFlux)), def: "0 mm/d"},
+			shape: amount(quantity.Flux, atLeast(0, maxFlux)), def: "0 mm/d", eg: "0.05 mm/d"},
 		notYet("consolidation"),
 		{name: "full_at", says: "level above the base at which the deep layer is full and refuses more", absent: "by default the thickness of the deep layer",
-			shape: fullAtShape},
+			shape: fullAtShape, eg: "8.5 m"},
 	}
 )
 
@@ -161,7 +165,7 @@ var settable = func() []field {
 	}{{"surface", surfaceFields}, {"soil", soilFields}, {"cover", coverFields}, {"deep", deepFields}} {
 		for _, f := range part.fields {
 			if f.name != "thickness" && !f.later {
-				all = append(all, field{name: part.name + "." + f.name, says: f.says, absent: "by default as in ground", shape: f.shape, quiet: true})
+				all = append(all, field{name: part.name + "." + f.name, says: f.says, absent: "by default as in ground", shape: f.shape, eg: f.eg, quiet: true})
 			}
 		}
 	}
@@ -171,11 +175,11 @@ var settable = func() []field {
 // studyShape is the whole file. The order is that of the documentation.
 var studyShape = block(
 	field{name: "study", says: "title of the study, on one line",
-		shape: filledShape, need: "a title on one line, such as: Bank above the mill, drainage options"},
+		shape: filledShape, need: "a title on one line, such as:", eg: "Bank above the mill, drainage options"},
 	field{name: "prepared_by", says: "who made the study", absent: "by default blank",
-		shape: textShape, def: ""},
+		shape: textShape, def: "", eg: "A. N. Engineer"},
 	field{name: "checked_by", says: "who checked the study", absent: "by default blank",
-		shape: textShape, def: ""},
+		shape: textShape, def: "", eg: "A. Checker"},
 	field{name: "weather", says: "the record that is replayed for every option",
 		shape: weatherShape, need: "the record of rain: a block with file and columns"},
 	field{name: "ground", says: "the slope as calibrated: two layers, each one store of drainable water",
@@ -183,7 +187,7 @@ var studyShape = block(
 	field{name: "slope", says: "the slope above the slip surface, for bands given as a factor of safety",
 		shape: slopeShape, def: "none"},
 	field{name: "bands", says: "the critical deep levels, from the lowest to the highest",
-		shape: shape{form: formList, fields: bandFields}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
+		shape: shape{form: formList, fields: bandFields, choice: datums}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
 	field{name: "count", says: "how exceedances are counted and options ranked",
 		shape: countShape},
 	notYet("money"),
@@ -195,9 +199,9 @@ var studyShape = block(
 	field{name: "site", says: "where and how large the slope is",
 		shape: block(
 			field{name: "plan_area", says: "area of the slope in plan, to turn depths of water into volumes",
-				shape: amount(quantity.Area, above(0, maxArea)), def: "none"},
+				shape: amount(quantity.Area, above(0, maxArea)), def: "none", eg: "12000 m2"},
 			field{name: "ground_level", says: "elevation of the ground on the site's datum, for bands given as an elevation",
-				shape: datumShape, def: "none"},
+				shape: datumShape, def: "none", eg: "418.0 m"},
 		)},
 	field{name: "declared", says: "what no calculation can know; unknown is an honest answer, and is listed with the results",
 		shape: block(declaredFields()...)},
@@ -207,38 +211,41 @@ var studyShape = block(
 
 var weatherShape = block(
 	field{name: "file", says: "path of the CSV file, from the folder of the study",
-		shape: filledShape, need: "the path of the record from the folder of the study, such as weather.csv"},
+		shape: filledShape, need: "the path of the record from the folder of the study, such as", eg: "weather.csv"},
 	field{name: "columns", says: "which columns of the file are read; others may stand there too",
 		shape: block(
 			field{name: "time", says: "the column of times",
 				shape: block(
 					field{name: "name", says: "header of the column, as it stands in the file",
-						shape: filledShape, need: "the header of the column of times"},
+						shape: filledShape, need: "the header of the column of times", eg: "date"},
 					field{name: "format", says: "how the times are written, such as YYYY-MM-DD hh:mm, or iso",
-						shape: filledShape, need: "how times are written, such as YYYY-MM-DD or iso"},
+						shape: filledShape, need: "how times are written, such as YYYY-MM-DD or iso", eg: "YYYY-MM-DD"},
 				), need: "the column of times: {name: HEADER, format: YYYY-MM-DD}"},
 			field{name: "rain", says: "the column of rain",
-				shape: columnShape, need: "the column of rain: {name: HEADER, unit: mm}"},
+				shape: columnShape("rain_mm"), need: "the column of rain: {name: HEADER, unit: mm}"},
 			field{name: "pet", says: "the column of potential evapotranspiration of grass",
-				shape: columnShape, def: "none"},
+				shape: columnShape("pet_mm"), def: "none"},
 			notYet("temperature"),
 		), need: "the columns to read: a block with time and rain"},
 	notYet("pet_from"),
 	notYet("snow"),
 	field{name: "stamp", says: "whether a time names the start or the end of its step",
-		shape: oneOf("start", "end"), def: "start"},
+		shape: oneOf("start", "end"), def: "start", eg: "end"},
 	field{name: "missing", says: "cells that stand for a missing value; a list given here replaces the default",
 		shape: shape{form: formTexts, most: 100}, def: `"", NA`},
 	field{name: "gaps", says: "what to do about missing values; filled ones are counted and reported",
-		shape: shape{form: formWord, words: []string{"refuse", "zero", "month mean"}, later: []string{"{from: …}"}}, def: "refuse"},
+		shape: shape{form: formWord, words: []string{"refuse", "zero", "month mean"}, later: []string{"{from: …}"}}, def: "refuse", eg: "month mean"},
 )
 
-var columnShape = block(
-	field{name: "name", says: "header of the column, as it stands in the file",
-		shape: filledShape, need: "the header of the column"},
-	field{name: "unit", says: "a depth per step (mm, cm, in), a rate (mm/h, mm/d, in/h), or multiples such as 0.1 mm",
-		shape: filledShape, need: "the unit of the column, such as mm for a depth per step or mm/h for a rate"},
-)
+// columnShape is a column of depths of water. Name is a header that one may have.
+func columnShape(name string) shape {
+	return block(
+		field{name: "name", says: "header of the column, as it stands in the file",
+			shape: filledShape, need: "the header of the column", eg: name},
+		field{name: "unit", says: "a depth per step (mm, cm, in), a rate (mm/h, mm/d, in/h), or multiples such as 0.1 mm",
+			shape: filledShape, need: "the unit of the column, such as mm for a depth per step or mm/h for a rate", eg: "mm"},
+	)
+}
 
 var groundShape = block(
 	field{name: "surface", says: "how rain enters the ground",
@@ -255,21 +262,21 @@ var groundShape = block(
 				shape: shape{form: formWord, words: []string{"exact", "centred", "explicit", "implicit"}, meant: [][2]string{
 					{"centered", "centred"}, {"central", "centred"}, {"trapezoidal", "centred"}, {"trapezium", "centred"}, {"crank-nicolson", "centred"},
 					{"forward", "explicit"}, {"euler", "explicit"}, {"backward", "implicit"}, {"analytical", "exact"}, {"exponential", "exact"},
-				}}, def: "exact"},
+				}}, def: "exact", eg: "centred"},
 			field{name: "step", says: "the step that the formula was used with",
 				shape: amount(quantity.Duration, above(0, 366)), def: "1 d"},
 		)},
 	field{name: "start", says: "where the replay begins: the steady levels under each option's own mean recharge, or levels",
 		shape: shape{form: formBlock, words: []string{"steady"}, fields: []field{
 			{name: "cover", says: "level in the cover at the start, above the contact",
-				shape: levelShape, need: "the level in the cover at the start, such as 1.2 m"},
+				shape: levelShape, need: "the level in the cover at the start, such as", eg: "1.2 m"},
 			{name: "deep", says: "level in the deep layer at the start, above its base",
-				shape: levelShape, need: "the level in the deep layer at the start, such as 3.4 m"},
+				shape: levelShape, need: "the level in the deep layer at the start, such as", eg: "3.4 m"},
 		}}, def: "steady"},
 	field{name: "warm_up", says: "years of the record that are replayed before it, so that the start no longer matters", absent: "by default auto, or 0 y where start gives levels",
-		shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(0, maxWarmUp), words: []string{"auto"}}},
+		shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(0, maxWarmUp), words: []string{"auto"}}, eg: "4 y"},
 	field{name: "calibrated_to", says: "highest deep level in the readings used for calibration; bands above it are extrapolated",
-		shape: amount(quantity.Length, above(0, maxLevel), "unknown"), def: "unknown"},
+		shape: amount(quantity.Length, above(0, maxLevel), "unknown"), def: "unknown", eg: "4.9 m"},
 	notYet("ensemble"),
 )
 
@@ -278,17 +285,17 @@ const oneLevel = "one of level, elevation, below_ground and factor_of_safety is 
 
 var bandFields = []field{
 	{name: "name", says: "what begins at this level, such as movement onset",
-		shape: nameShape, need: "a name, such as movement onset"},
+		shape: nameShape, need: "a name, such as", eg: "movement onset"},
 	{name: "level", says: "height above the base of the deep layer", absent: oneLevel,
-		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
+		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true, eg: "4.2 m"},
 	{name: "elevation", says: "height on the site's datum; needs site.ground_level", absent: oneLevel,
-		shape: datumShape, quiet: true},
+		shape: datumShape, quiet: true, eg: "409.2 m"},
 	{name: "below_ground", says: "depth below ground", absent: oneLevel,
-		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true},
+		shape: amount(quantity.Length, atLeast(-maxLevel, maxLevel)), quiet: true, eg: "8.8 m"},
 	{name: "factor_of_safety", says: "factor of safety at whose level the band begins; needs slope", absent: oneLevel,
-		shape: shape{form: formNumber, limits: above(0, maxSafety)}, quiet: true},
-	{name: "until", says: "level at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
-		shape: shape{form: formQuantity, kind: quantity.Length, limits: atLeast(-1000, 10000), bare: true}},
+		shape: shape{form: formNumber, limits: above(0, maxSafety)}, quiet: true, eg: "1.0"},
+	{name: "until", says: "level, or factor of safety, at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
+		shape: shape{form: formQuantity, kind: quantity.Length, limits: atLeast(-1000, 10000), bare: bySafety}, eg: "3.9 m"},
 	notYet("loss_per_event"),
 	notYet("loss_per_day"),
 }
@@ -297,7 +304,7 @@ var countShape = block(
 	field{name: "apart", says: "exceedances no further apart than this are one event; with 0 d only until joins them",
 		shape: amount(quantity.Duration, atLeast(0, 3660)), def: "10 d"},
 	field{name: "year_starts", says: "month in which the counted years begin; auto is the month with the lowest level",
-		shape: shape{form: formMonth, words: []string{"auto"}}, def: "auto"},
+		shape: shape{form: formMonth, words: []string{"auto"}}, def: "auto", eg: "October"},
 	field{name: "confidence", says: "confidence of the ranges beside the figures",
 		shape: amount(quantity.Share, limits{lo: 0.5, hi: 0.999, loOpen: true, hiOpen: true}), def: "90 %"},
 	field{name: "resamples", says: "how often the years are drawn anew for the ranges of days, load and changes",
@@ -305,9 +312,9 @@ var countShape = block(
 	field{name: "seed", says: "where the random draws begin; the same seed gives the same figures",
 		shape: shape{form: formWhole, limits: atLeast(0, 1<<53-1)}, def: "1"}, // every reader of JSON keeps these apart
 	field{name: "decide_on", says: "name of the band that ranks the options", absent: "by default the only band; required with several bands and several options",
-		shape: filledShape},
+		shape: filledShape, eg: "movement onset"},
 	field{name: "decide_by", says: "figure that ranks the options; load is the height above the band times days",
-		shape: oneOf("load", "days", "events", "annual_probability"), def: "load"},
+		shape: oneOf("load", "days", "events", "annual_probability"), def: "load", eg: "days"},
 	field{name: "mean_block", says: "mean length of the runs of years that are drawn together",
 		shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "2 y"},
 	notYet("target"),
@@ -316,9 +323,9 @@ var countShape = block(
 
 var optionFields = []field{
 	{name: "name", says: "what the option is called in every result",
-		shape: nameShape, need: "a name, such as trenches"},
+		shape: nameShape, need: "a name, such as", eg: "trenches"},
 	{name: "baseline", says: "whether this is the option that all others are compared with; only one can be", absent: "by default the first option is, where none is marked",
-		shape: oneOf("true", "false")},
+		shape: oneOf("true", "false"), eg: "true"},
 	notYet("minimum"),
 	{name: "trench_drains", says: "parallel trenches that drain the cover, down to their own level and no further", absent: "may be left out",
 		shape: trenchShape, quiet: true},
@@ -327,85 +334,85 @@ var optionFields = []field{
 	{name: "surface_water", says: "lined channels, grading and the like, which keep water out of the ground", absent: "may be left out",
 		shape: block(
 			field{name: "kept_out", says: "share of the infiltration that no longer enters, over the whole plan area",
-				shape: shareShape, need: "the share of the infiltration that no longer enters, such as 10 %"},
+				shape: shareShape, need: "the share of the infiltration that no longer enters, such as", eg: "10 %"},
 			likeField,
 		), quiet: true},
 	{name: "vegetation", says: "planting, which uses more water and keeps some rain off the ground", absent: "may be left out",
 		shape: block(
 			field{name: "pet_factor", says: "what the evapotranspiration is multiplied by, besides soil.crop_factor",
-				shape: shape{form: formNumber, limits: atLeast(0, 5)}, need: "what the evapotranspiration is multiplied by, such as 1.10"},
+				shape: shape{form: formNumber, limits: atLeast(0, 5)}, need: "what the evapotranspiration is multiplied by, such as", eg: "1.10"},
 			field{name: "interception", says: "share of the rain that never reaches the ground",
-				shape: shareShape, def: "0 %"},
+				shape: shareShape, def: "0 %", eg: "4 %"},
 			likeField,
 		), quiet: true},
 	{name: "cut_off_drain", says: "a drain uphill of the slope, which takes part of deep.lateral_inflow", absent: "may be left out",
 		shape: block(
 			field{name: "intercepted", says: "share of deep.lateral_inflow that no longer arrives",
-				shape: shareShape, need: "the share of deep.lateral_inflow that no longer arrives, such as 60 %"},
+				shape: shareShape, need: "the share of deep.lateral_inflow that no longer arrives, such as", eg: "60 %"},
 			likeField,
 		), quiet: true},
 	{name: "set", says: "numbers of ground that this option changes, before its other measures act", absent: "may be left out",
-		shape: block(settable...), quiet: true},
+		shape: shape{form: formBlock, fields: settable, filled: true}, quiet: true},
 	notYet("cost"),
 }
 
 // likeField takes the measure of another option. The reader puts that option's keys in its place, before it is decoded.
 var likeField = field{name: "like", says: "name of an option above whose same measure is taken; keys beside it override", absent: "may be left out",
-	shape: filledShape, quiet: true}
+	shape: filledShape, quiet: true, eg: "trenches"}
 
-var trenchShape = block(
-	field{name: "depth", says: "depth of the trenches below ground, no deeper than the cover is thick",
-		shape: amount(quantity.Length, above(0, maxThickness)), need: "the depth of the trenches below ground, such as 3.0 m"},
-	field{name: "rate", says: "rate at which the trenches empty the cover above their level, measured or worked out elsewhere", absent: "either rate or spacing is required",
-		shape: drainRateShape, quiet: true},
-	field{name: "spacing", says: "distance from trench to trench, from which the rate is worked out", absent: "either rate or spacing is required",
-		shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true},
-	field{name: "conductivity", says: "hydraulic conductivity of the cover; only with spacing", absent: "by default ground.cover.conductivity",
-		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true},
+var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fields: []field{
+	{name: "depth", says: "depth of the trenches below ground, no deeper than the cover is thick",
+		shape: amount(quantity.Length, above(0, maxThickness)), need: "the depth of the trenches below ground, such as", eg: "3.0 m"},
+	{name: "rate", says: "rate at which the trenches empty the cover above their level, measured or worked out elsewhere", absent: "either rate or spacing is required",
+		shape: drainRateShape, quiet: true, eg: "0.02 /d", not: withSpacing},
+	{name: "spacing", says: "distance from trench to trench, from which the rate is worked out", absent: "either rate or spacing is required",
+		shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true, eg: "12 m"},
+	{name: "conductivity", says: "hydraulic conductivity of the cover; only with spacing", absent: "by default ground.cover.conductivity",
+		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.02 m/d"},
 	notYet("conductivity_below"),
 	notYet("drain_radius"),
-	field{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
-		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true},
-	field{name: "working_head", says: "height of the water above the trenches that the rate is worked out for; only with spacing", absent: "by default half of depth, the only value supported yet",
-		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true},
-	field{name: "law", says: "how the outflow grows with the height of the water above the trenches; only with spacing",
+	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
+		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true, eg: "0.80 m"},
+	{name: "working_head", says: "height of the water above the trenches that the rate is worked out for; only with spacing", absent: "by default half of depth, the only value supported yet",
+		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true, eg: "1.5 m"},
+	{name: "law", says: "how the outflow grows with the height of the water above the trenches; only with spacing",
 		shape: shape{form: formWord, words: []string{"linear"}, later: []string{"quadratic"}}, def: "linear"},
-	field{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
-		shape: someShareShape, def: "100 %"},
-	field{name: "ceiling", says: "most that the trenches carry away",
-		shape: ceilingShape, def: "none"},
+	{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
+		shape: someShareShape, def: "100 %", eg: "80 %"},
+	{name: "ceiling", says: "most that the trenches carry away",
+		shape: ceilingShape, def: "none", eg: "12 mm/d"},
 	notYet("decline"),
 	likeField,
-)
+}}
 
 var boredShape = block(
 	field{name: "rate", says: "rate at which the drains empty the deep layer above their level",
-		shape: drainRateShape, need: "the rate at which the drains empty the deep layer above their level, such as 0.005 /d"},
+		shape: drainRateShape, need: "the rate at which the drains empty the deep layer above their level, such as", eg: "0.005 /d"},
 	field{name: "level", says: "level of the drains above the base of the deep layer",
-		shape: levelShape, need: "the level of the drains above the base of the deep layer, such as 3.0 m"},
+		shape: levelShape, need: "the level of the drains above the base of the deep layer, such as", eg: "3.0 m"},
 	field{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
-		shape: someShareShape, def: "100 %"},
+		shape: someShareShape, def: "100 %", eg: "80 %"},
 	field{name: "ceiling", says: "most that the drains carry away",
-		shape: ceilingShape, def: "none"},
+		shape: ceilingShape, def: "none", eg: "5 mm/d"},
 	field{name: "number", says: "how many bores there are; no figure depends on it",
-		shape: shape{form: formWhole, limits: atLeast(1, maxDrains)}, def: "none"},
+		shape: shape{form: formWhole, limits: atLeast(1, maxDrains)}, def: "none", eg: "12"},
 	field{name: "length", says: "length of each bore; only a warning depends on it",
-		shape: amount(quantity.Length, above(0, maxLevel)), def: "none"},
+		shape: amount(quantity.Length, above(0, maxLevel)), def: "none", eg: "45 m"},
 	notYet("decline"),
 	likeField,
 )
 
 var slopeShape = block(
 	field{name: "angle", says: "angle of the ground, and of the slip surface below it, to the horizontal",
-		shape: angleShape, need: "the angle of the slope, such as 11 deg"},
+		shape: angleShape, need: "the angle of the slope, such as", eg: "11 deg"},
 	field{name: "slip_depth", says: "depth of the slip surface below ground, measured vertically", absent: "by default the thickness of cover and deep layer",
-		shape: amount(quantity.Length, above(0, maxThickness))},
+		shape: amount(quantity.Length, above(0, maxThickness)), eg: "13 m"},
 	field{name: "unit_weight", says: "weight of the ground above the slip surface, with its water",
-		shape: amount(quantity.UnitWeight, atLeast(8, 35)), need: "the unit weight of the ground, such as 19.5 kN/m3"},
+		shape: amount(quantity.UnitWeight, atLeast(8, 35)), need: "the unit weight of the ground, such as", eg: "19.5 kN/m3"},
 	field{name: "friction", says: "effective angle of friction on the slip surface; residual, where it has moved before",
-		shape: angleShape, need: "the angle of friction on the slip surface, such as 13.8 deg"},
+		shape: angleShape, need: "the angle of friction on the slip surface, such as", eg: "13.8 deg"},
 	field{name: "cohesion", says: "effective cohesion on the slip surface",
-		shape: amount(quantity.Stress, atLeast(0, 1e4)), def: "0 kPa"},
+		shape: amount(quantity.Stress, atLeast(0, 1e4)), def: "0 kPa", eg: "2 kPa"},
 	field{name: "flow", says: "how the water stands: parallel, seeping along the slope; standing, in open fissures without flow",
 		shape: shape{form: formWord, words: []string{"parallel", "standing"}, meant: [][2]string{
 			{"along", "parallel"}, {"slope", "parallel"}, {"hydrostatic", "standing"}, {"vertical", "standing"}, {"none", "standing"},
@@ -414,13 +421,13 @@ var slopeShape = block(
 
 var conditionFields = []field{
 	{name: "name", says: "what the condition is called in every result",
-		shape: nameShape, need: "a name, such as neglected"},
+		shape: nameShape, need: "a name, such as", eg: "neglected"},
 	{name: "drains", says: "share that is left of the rate of trench and bored drains, and of what a cut-off drain takes",
-		shape: shareShape, def: "100 %"},
+		shape: shareShape, def: "100 %", eg: "45 %"},
 	{name: "surface_water", says: "share that is left of what surface_water keeps out",
-		shape: shareShape, def: "100 %"},
+		shape: shareShape, def: "100 %", eg: "60 %"},
 	{name: "vegetation", says: "share that is left of the interception, and of what pet_factor adds",
-		shape: shareShape, def: "100 %"},
+		shape: shareShape, def: "100 %", eg: "80 %"},
 }
 
 // declaredSays describes the keys of DeclaredKeys.

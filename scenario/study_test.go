@@ -18,7 +18,7 @@ import (
 	"quietslope/scenario/fault"
 )
 
-var updateStudy = flag.Bool("update-study", false, "rewrite the expected messages in testdata/study")
+var updateStudy = flag.Bool("update-study", false, "rewrite the expected messages in testdata/study, and testdata/study.schema.json")
 
 func baseStudy(t testing.TB) string {
 	t.Helper()

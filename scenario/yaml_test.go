@@ -45,6 +45,9 @@ func drawTree(t *rapid.T, depth int) *node {
 	return &node{text: text}
 }
 
+// rawText begins a text that is to be written without quotes, whatever it is then read as.
+const rawText = "\x00"
+
 // writer writes a tree as a person may.
 type writer struct {
 	t *rapid.T
@@ -58,6 +61,9 @@ func plainText(s string) bool {
 }
 
 func (w *writer) text(s string) string {
+	if plain, ok := strings.CutPrefix(s, rawText); ok {
+		return plain
+	}
 	style := rapid.IntRange(0, 3).Draw(w.t, "style")
 	switch {
 	case plainText(s) && style < 2, s == "-999" || s == "-999.0" || s == ".inf" || s == ".nan" || s == "=1":
@@ -112,7 +118,7 @@ func (w *writer) block(n *node, indent int, first bool) {
 		}
 		first = false
 		w.b.WriteString(head)
-		if v.is == textNode || rapid.IntRange(0, 2).Draw(w.t, "flow") == 0 {
+		if v.is == textNode || len(v.entries)+len(v.items) == 0 || rapid.IntRange(0, 2).Draw(w.t, "flow") == 0 {
 			w.b.WriteString(" " + strings.Repeat(" ", rapid.IntRange(0, 2).Draw(w.t, "gap")) + w.flow(v))
 			w.end()
 			return

@@ -51,7 +51,11 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := oneArgument(command, arguments); err != nil {
+	if command.ArgsUsage == "" {
+		if len(arguments) > 0 {
+			return nil, usagef(name, "takes no argument, got %q", arguments[0])
+		}
+	} else if err := oneArgument(command, arguments); err != nil {
 		return nil, err
 	}
 	return slices.Concat([]string{name}, options, []string{"--"}, arguments), nil

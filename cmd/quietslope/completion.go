@@ -182,9 +182,9 @@ func propose(app *cli.App, words []string) proposal {
 		p := values(flag, arguments, given)
 		p.before = before + "="
 		return p
-	case !argumentsOnly && (strings.HasPrefix(current, "-") || len(arguments) > 0):
+	case !argumentsOnly && (strings.HasPrefix(current, "-") || len(arguments) > 0 || command.ArgsUsage == ""):
 		return proposal{kind: wordsKind, words: optionWords(command, given)}
-	case len(arguments) > 0:
+	case len(arguments) > 0, command.ArgsUsage == "":
 		return proposal{}
 	case command.ArgsUsage == studyArgument:
 		return proposal{kind: studiesKind}

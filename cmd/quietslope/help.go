@@ -70,7 +70,8 @@ func commandHelp(app *cli.App, c *cli.Command) string {
 	if len(c.Flags) > 0 {
 		options = " [options]"
 	}
-	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s %s%s\n\n%s", app.Name, c.Name, c.Usage, app.Name, c.Name, c.ArgsUsage, options, c.Description)
+	line := strings.TrimRight(c.Name+" "+c.ArgsUsage, " ") + options
+	fmt.Fprintf(&b, "%s %s: %s\n\nUsage:\n  %s %s\n\n%s", app.Name, c.Name, c.Usage, app.Name, line, c.Description)
 	if c.ArgsUsage != strings.ToLower(c.ArgsUsage) { // it is about a study
 		b.WriteString("\nThe study file:\n  \"quietslope help study\" lists its keys, units and rules, with examples.\n")
 	}
@@ -115,13 +116,19 @@ Rules of the format:
   - A share may also be a bare 0 or a number between 0 and 1: 0.85 is 85 %. A bare 1 is refused.
   - A name has 1 to 60 characters, no blank at either end, does not begin with = + - or @, and
     differs from the others of its list in more than case. "as recorded" and "as built" are taken.
+  - Where "or a list" is said, a list such as spacing: [8 m, 12 m] makes one option of each value:
+    "trenches, spacing 8 m" and "trenches, spacing 12 m". An option has one list at most.
+  - like: NAME in a measure takes the same measure of an option above, where it is written out. No
+    other key is required then; those given beside it override, and a list there is given anew.
+  - Conditions say what is left of the works: drains: 45 % leaves 45 % of the rate of every drain.
+    The ground as calibrated stays as it is, and all is replayed as built too.
   - Levels: level is above the base of the key's own layer, depth and below_ground are below ground,
     elevation is on the site's datum.
   - A missing code that is a number matches the same value, so that -999 covers -999.0; any other
     matches the cell exactly, but for blanks around it.
 
 Below, [] stands for each item of a list, and "required" means: wherever its block stands. The
-examples put together in this order are a whole study; the second weather replaces the first.
+examples put together in this order are a whole study; a second text of a block replaces the first.
 `)
 	for _, s := range sections(scenario.Keys()) {
 		b.WriteString("\n" + wrap(s.heading(), "  ") + "\n")
@@ -184,7 +191,7 @@ func (s *section) heading() string {
 	if s.path == "" {
 		return "Outside any block:"
 	}
-	return fmt.Sprintf("%s: %s (%s)", s.path, s.head.Says, valueOf(s.head))
+	return fmt.Sprintf("%s: %s (%s)", s.path, s.head.Says, s.head.Written())
 }
 
 // writeKeys lists the keys of a section, by their path inside it.
@@ -200,41 +207,14 @@ func (s *section) writeKeys(b *strings.Builder) {
 		widest = max(widest, utf8.RuneCountInString(name))
 	}
 	if strings.HasSuffix(s.path, "].set") { // the keys of ground once more
-		b.WriteString(wrap("  Its keys, written and meant as in ground: "+strings.Join(names, ", ")+".", "  ") + "\n")
+		b.WriteString(wrap("  Its keys, written and meant as in ground, and each may be a list: "+strings.Join(names, ", ")+".", "  ") + "\n")
 		return
 	}
 	for i, k := range s.keys {
 		lead := fmt.Sprintf("  %-*s  ", widest, names[i])
 		below := strings.Repeat(" ", len(lead))
-		b.WriteString(wrap(lead+k.Says, below) + "\n" + wrap(below+valueOf(k), below) + "\n")
+		b.WriteString(wrap(lead+k.Says, below) + "\n" + wrap(below+k.Written(), below) + "\n")
 	}
-}
-
-// valueOf says how the value of a key is written, its range, and what holds when it is left out.
-func valueOf(k scenario.KeyDoc) string {
-	text := k.Form
-	switch {
-	case k.Form == "word" && len(k.Words) == 1:
-		return k.Words[0] + ", and no other yet"
-	case k.Form == "word":
-		text = orWords(k.Words)
-	case k.Range != "":
-		text += " " + k.Range
-	}
-	if k.Form != "word" && len(k.Words) > 0 {
-		text += ", or " + orWords(k.Words)
-	}
-	switch {
-	case k.Required:
-		text += "; required"
-	case k.Default != "":
-		text += "; default " + k.Default
-	case k.Absent != "":
-		text += "; " + k.Absent
-	default:
-		text += "; may be left out"
-	}
-	return text
 }
 
 // writeUnits lists the units of every kind of quantity that the keys use, in the order of their first use.
@@ -320,13 +300,14 @@ prepared_by: A. N. Engineer
     pet: {name: pet_mm, unit: mm}
   missing: ["", NA, -999]
 `},
-	{"weather", "Tips of a gauge, in local time with its offset, stamped at the end of the step", `weather:
+	{"weather", "Tips of a gauge, in local time with its offset, stamped at the end of the step, with gaps", `weather:
   file: records/gauge.csv.gz
   columns:
     time: {name: time, format: iso}
     rain: {name: tips, unit: 0.2 mm}
     pet: {name: et0, unit: mm/h}
   stamp: end
+  gaps: month mean
 `},
 	{"ground", "With levels that were read at the start of the record; without start it begins steady", `ground:
   surface: {infiltration: 85 %}
@@ -341,34 +322,61 @@ prepared_by: A. N. Engineer
     thickness: 9.0 m
     drainable_porosity: 1.4 %
     seepage: 0.007 /d
+    lateral_inflow: 0.05 mm/d
   start: {cover: 1.2 m, deep: 3.4 m}
   calibrated_to: 4.9 m
 `},
-	{"bands", "One band in each datum; with this ground and site they begin at 3.6, 4.2 and 5.0 m", `bands:
+	{"ground", "With rates that were calibrated by a stepping formula, which are converted", `ground:
+  cover:
+    thickness: 4.0 m
+    drainable_porosity: 8 %
+    conductivity: 0.044 m/d
+    seepage: 0.011 /d
+    percolation: 0.0045 /d
+  deep:
+    thickness: 9.0 m
+    drainable_porosity: 1.4 %
+    seepage: 0.007 /d
+    lateral_inflow: 0.05 mm/d
+  rates_from: {scheme: centred, step: 1 d}
+`},
+	{"slope", "Example", `slope: {angle: 11 deg, unit_weight: 19.5 kN/m3, friction: 13.8 deg, flow: parallel}
+`},
+	{"bands", "One band of each kind; with this ground, slope and site they begin at 3.6, 4.2, 5.0 and 5.4 m", `bands:
   - {name: watch, level: 3.6 m}
   - {name: movement onset, elevation: 409.2 m, until: 408.9 m}
   - {name: fast movement, below_ground: 8.0 m}
+  - {name: failure, factor_of_safety: 1.0, until: 1.02}
 `},
 	{"count", "Example", `count: {apart: 10 d, year_starts: October, decide_on: movement onset, decide_by: load}
 `},
 	{"options", "The ground as it is, to compare with", `options:
   - name: as it stands
 `},
-	{"options[].trench_drains", "By spacing, and by a rate that was worked out elsewhere", `  - name: trenches 12 m apart
+	{"options[].trench_drains", "By spacing, and by rates that were worked out elsewhere, each of which makes an option", `  - name: trenches 12 m apart
     trench_drains: {spacing: 12 m, depth: 3.0 m, equivalent_depth: 0.80 m, efficiency: 80 %}
 
-  - name: trenches at a given rate
-    trench_drains: {rate: 0.02 /d, depth: 3.0 m}
+  - name: trenches at given rates
+    trench_drains: {rate: [0.01 /d, 0.02 /d], depth: 3.0 m}
 `},
 	{"options[].bored_drains", "Example", `  - name: bored drains
     bored_drains: {rate: 0.005 /d, level: 3.0 m, number: 12, length: 45 m}
 `},
-	{"options[].surface_water", "Measures combine", `  - name: trenches 24 m apart with channels
-    trench_drains: {spacing: 24 m, depth: 3.0 m, equivalent_depth: 0.89 m, efficiency: 80 %}
+	{"options[].surface_water", "Measures combine; these trenches differ from those above in two keys", `  - name: trenches 24 m apart with channels
+    trench_drains: {like: trenches 12 m apart, spacing: 24 m, equivalent_depth: 0.89 m}
     surface_water: {kept_out: 10 %}
+`},
+	{"options[].vegetation", "Example", `  - name: planting
+    vegetation: {pet_factor: 1.10, interception: 4 %}
+`},
+	{"options[].cut_off_drain", "Example", `  - name: drain uphill
+    cut_off_drain: {intercepted: 60 %}
 `},
 	{"options[].set", "Example", `  - name: seepage from a trial
     set: {cover.seepage: 0.02 /d}
+`},
+	{"conditions", "Example", `conditions:
+  - {name: neglected, drains: 45 %, surface_water: 60 %}
 `},
 	{"site", "Example", `site: {plan_area: 1.2 ha, ground_level: 418.0 m}
 `},

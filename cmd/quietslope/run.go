@@ -60,7 +60,7 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 		DisableSliceFlagSeparator: true, // an option's name may hold a comma
 		OnUsageError:              onUsage,
 		ExitErrHandler:            func(*cli.Context, error) {}, // run returns the status
-		Commands:                  []*cli.Command{newCommand(), checkCommand(), compareCommand(), levelsCommand(), completionCommand()},
+		Commands:                  []*cli.Command{newCommand(), schemaCommand(), checkCommand(), compareCommand(), levelsCommand(), completionCommand()},
 	}
 	app.CustomAppHelpTemplate = appHelp(app)
 	for _, c := range app.Commands {
