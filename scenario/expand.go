@@ -266,6 +266,9 @@ func (x *expander) each(item *node) []*node {
 	if mark := item.entry("baseline"); mark != nil && item.text1("baseline") == "true" && len(first.value.items) > 1 {
 		return refuse(x.at(mark.line, mark.col, mark.key), "the list of %s makes several options, and only one can be the baseline; mark another one", first.key)
 	}
+	if e := item.entry("name"); e != nil && e.value != nil && e.value.is == textNode && checkName(e.value.text) != "" {
+		return []*node{with(item, spots[0], first.value.items[0], e.value.text)} // so that the name is refused as it is written
+	}
 	var made []*node
 	seen := map[string]bool{}
 	for _, v := range first.value.items {
