@@ -32,8 +32,8 @@ func TestSchemaFile(t *testing.T) {
 	}
 }
 
-// compiledSchema is the schema, or the part of it at a JSON pointer, ready to validate.
-func compiledSchema(t testing.TB, pointer string) *jsonschema.Schema {
+// schemaParts returns the schema as a value, and a function that gives its part at a JSON pointer ready to validate.
+func schemaParts(t testing.TB) (doc any, part func(pointer string) *jsonschema.Schema) {
 	t.Helper()
 	doc, err := jsonschema.UnmarshalJSON(bytes.NewReader(Schema()))
 	if err != nil {
@@ -43,19 +43,18 @@ func compiledSchema(t testing.TB, pointer string) *jsonschema.Schema {
 	if err := c.AddResource("urn:quietslope:study", doc); err != nil {
 		t.Fatal(err)
 	}
-	s, err := c.Compile("urn:quietslope:study#" + pointer)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return s
+	return doc, func(pointer string) *jsonschema.Schema { return c.MustCompile("urn:quietslope:study#" + pointer) }
+}
+
+// compiledSchema is the whole schema, ready to validate.
+func compiledSchema(t testing.TB) *jsonschema.Schema {
+	_, part := schemaParts(t)
+	return part("")
 }
 
 // TestSchemaIsOne: the schema itself meets the schema of schemas, which the validator brings along.
 func TestSchemaIsOne(t *testing.T) {
-	doc, err := jsonschema.UnmarshalJSON(bytes.NewReader(Schema()))
-	if err != nil {
-		t.Fatal(err)
-	}
+	doc, _ := schemaParts(t)
 	meta := jsonschema.NewCompiler().MustCompile("https://json-schema.org/draft/2020-12/schema")
 	if err := meta.Validate(doc); err != nil {
 		t.Error(err)
@@ -64,10 +63,7 @@ func TestSchemaIsOne(t *testing.T) {
 
 // TestSchemaValues: every default and example meets the schema of its key, and those of single values are read.
 func TestSchemaValues(t *testing.T) {
-	doc, err := jsonschema.UnmarshalJSON(bytes.NewReader(Schema()))
-	if err != nil {
-		t.Fatal(err)
-	}
+	doc, part := schemaParts(t)
 	keys := 0
 	var walk func(v any, pointer string)
 	walk = func(v any, pointer string) {
@@ -89,7 +85,7 @@ func TestSchemaValues(t *testing.T) {
 			if def, ok := block["default"]; ok {
 				values = append(values, def)
 			}
-			s := compiledSchema(t, pointer)
+			s := part(pointer)
 			for _, value := range values {
 				if err := s.Validate(value); err != nil {
 					t.Errorf("%s: %v: %v", pointer, value, err)
@@ -193,7 +189,7 @@ func valueOf(src string) (any, bool) {
 
 // TestSchemaMeetsStudies: the studies of the repository meet the schema.
 func TestSchemaMeetsStudies(t *testing.T) {
-	s := compiledSchema(t, "")
+	s := compiledSchema(t)
 	for _, file := range []string{"testdata/study/base.yaml", "testdata/study/wide.yaml", "../testdata/demo/study.yaml", "../testdata/seattle/study.yaml", "../testdata/full/study.yaml"} {
 		src, err := os.ReadFile(file)
 		if err != nil {
@@ -220,7 +216,7 @@ func TestSchemaMeetsCases(t *testing.T) {
 			known[name] = reason
 		}
 	}
-	s := compiledSchema(t, "")
+	s := compiledSchema(t)
 	base := baseStudy(t)
 	for _, file := range caseFiles(t) {
 		for _, c := range readCases(t, file) {
