@@ -15,7 +15,7 @@ import (
 
 // Schema returns the JSON Schema (draft 2020-12) of the study file, made from the table by which studies are read. It
 // holds every key that is supported, and expects scalars as the YAML 1.2 core schema types them: name: 012 arrives as a
-// number, and still is a name. A study that is read meets the schema, but for freaks of spelling such as -0; one that
+// number, and still is a name. A study that is read meets the schema, but for freaks of spelling such as -0 m or blanks before the number; one that
 // meets it can still be refused, for what schemaCannot lists.
 func Schema() []byte {
 	b := &schemaBuilder{}
@@ -76,11 +76,7 @@ func (b *schemaBuilder) block(s *shape, path string) object {
 		if f.need != "" {
 			required = append(required, f.name)
 		}
-		if len(f.not) > 0 {
-			var never object
-			for _, other := range f.not {
-				never = append(never, member{other, false})
-			}
+		if never := s.excluded(f); never != nil {
 			excluded = append(excluded, member{f.name, object{{"properties", never}}})
 		}
 		if f.shape.bare != "" {
@@ -96,12 +92,12 @@ func (b *schemaBuilder) block(s *shape, path string) object {
 	if len(required) > 0 {
 		needs = append(needs, member{"required", required})
 	}
-	if len(s.choice) > 0 {
+	if len(s.choice) > 0 { // that it is one only, excluded says: editors have better words for that than for oneOf
 		var each []object
 		for _, key := range s.choice {
 			each = append(each, object{{"required", []string{key}}})
 		}
-		needs = append(needs, member{"oneOf", each})
+		needs = append(needs, member{"anyOf", each})
 	}
 	out := object{{"type", "object"}, {"properties", keys}, {"additionalProperties", false}}
 	if like { // what is needed may come from the other option
@@ -119,6 +115,18 @@ func (b *schemaBuilder) block(s *shape, path string) object {
 		out = append(out, member{"allOf", conditions})
 	}
 	return out
+}
+
+// excluded are the keys that cannot stand beside a key of the block.
+func (s *shape) excluded(f *field) object {
+	var never object
+	for i := range s.fields {
+		other := s.fields[i].name
+		if slices.Contains(f.not, other) || other != f.name && slices.Contains(s.choice, f.name) && slices.Contains(s.choice, other) {
+			never = append(never, member{other, false})
+		}
+	}
+	return never
 }
 
 // key is the schema of one key: what it is, what holds when it is left out, a legal value, and what its value may be.
@@ -170,7 +178,7 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 		values = append(values, object{{"enum", words}})
 	}
 	if len(words) < len(s.words) { // plain true is no text
-		values = append(values, object{{"type", "boolean"}}, object{{"enum", []string{"true", "false"}}})
+		values = append(values, object{{"type", "boolean"}}, object{{"type", "string"}, {"pattern", "^(true|false)$"}})
 	}
 	switch s.form {
 	case formText, formFilled, formName:
@@ -178,11 +186,14 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 	case formTexts:
 		values = append(values, object{{"type", "array"}, {"items", b.text(formText)}, {"maxItems", s.most}})
 	case formMonth:
-		values = append(values, object{{"type", "string"}, {"pattern", "^(?:" + anyCase(words[len(s.words):]...) + ")$"}})
+		values = append(values, object{{"type", "string"}, {"pattern", "^(" + anyCase(words[len(s.words):]...) + ")$"}})
 	case formNumber:
 		values = append(values, bareNumber(s.limits))
 	case formWhole:
-		values = append(values, append(object{{"type", []string{"integer", "string"}}, {"pattern", quantity.WholePattern(s.limits.sign())}}, s.limits.members()...))
+		values = append(values, append(object{
+			{"type", []string{"integer", "string"}}, {"pattern", quantity.WholePattern(s.limits.sign())},
+			{"errorMessage", "write a whole number" + atOrAbove[s.limits.sign()]},
+		}, s.limits.members()...))
 	case formQuantity, formYears:
 		if s.bare != "" { // its block says which of both
 			values = append(values, object{{"type", []string{"string", "number"}}})
@@ -197,14 +208,21 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 	return values
 }
 
-// quantity is the schema of a number with a unit. That of a share can also be a number by itself.
+// quantity is the schema of a number with a unit. That of a share can also be a number by itself. The member errorMessage,
+// which is no part of the standard, is what many editors show in place of a pattern.
 func (b *schemaBuilder) quantity(s *shape) object {
-	name := strings.ReplaceAll(formQuantity.name(s.kind), " ", "_") + map[quantity.Sign]string{quantity.NotNegative: "_from_0", quantity.Positive: "_above_0"}[s.limits.sign()]
-	def := object{{"type", "string"}, {"pattern", quantity.Pattern(s.kind, s.limits.sign())}}
+	sign := s.limits.sign()
+	name := strings.ReplaceAll(formQuantity.name(s.kind), " ", "_") + map[quantity.Sign]string{quantity.NotNegative: "_from_0", quantity.Positive: "_above_0"}[sign]
+	wanted := "write " + s.kind.String() + atOrAbove[sign]
+	def := object{
+		{"type", "string"}, {"pattern", quantity.Pattern(s.kind, sign)},
+		{"errorMessage", wanted + " with its unit: " + joinWords(s.kind.Units(), "or")},
+	}
 	if s.kind != quantity.Share {
 		return b.ref(name, def)
 	}
 	def[0].value = []string{"string", "number"}
+	def[2].value = wanted + " and at most 100 %, or a number below 1"
 	bare := s.limits
 	if bare.hi >= 1 { // a bare 1 could mean 1 % or 100 %
 		bare.hi, bare.hiOpen = 1, true
@@ -212,9 +230,15 @@ func (b *schemaBuilder) quantity(s *shape) object {
 	return append(b.ref(name, def), bare.members()...)
 }
 
+// atOrAbove says the sign of a number in words.
+var atOrAbove = map[quantity.Sign]string{quantity.NotNegative: " of 0 or more", quantity.Positive: " above 0"}
+
 // bareNumber is the schema of a number without a unit.
 func bareNumber(l limits) object {
-	return append(object{{"type", []string{"number", "string"}}, {"pattern", quantity.NumberPattern(l.sign())}}, l.members()...)
+	return append(object{
+		{"type", []string{"number", "string"}}, {"pattern", quantity.NumberPattern(l.sign())},
+		{"errorMessage", "write a number" + atOrAbove[l.sign()] + " without a unit"},
+	}, l.members()...)
 }
 
 // sign is what numbers in the range may have.
@@ -258,10 +282,11 @@ func (b *schemaBuilder) text(f form) object {
 		return b.ref("filled_text", append(def, member{"pattern", "^[^" + unseen + "]*[^" + unblank + "][^" + unseen + "]*$"}))
 	case formName:
 		return b.ref("name", append(def,
-			member{"pattern", "^[^=+@" + unblank + "-](?:[^" + unseen + "]*[^" + unblank + "])?$"},
+			member{"pattern", "^[^=+@" + unblank + "-]([^" + unseen + "]*[^" + unblank + "])?$"},
 			member{"maxLength", longestName},
 			member{"minimum", 0}, // a name does not begin with -
-			member{"not", object{{"type", "string"}, {"pattern", "^(?:" + anyCase(reservedNames...) + ")$"}}}))
+			member{"errorMessage", fmt.Sprintf("a name has 1 to %d characters, begins with none of = + - @, and neither begins nor ends with a blank", longestName)},
+			member{"not", object{{"type", "string"}, {"pattern", "^(" + anyCase(reservedNames...) + ")$"}}}))
 	}
 	return b.ref("text", append(def, member{"pattern", "^[^" + unseen + "]*$"}))
 }

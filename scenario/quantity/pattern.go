@@ -12,14 +12,12 @@ const (
 	Positive
 )
 
-// Pieces of patterns. Nothing in them is read differently by Go and by ECMA-262, whose expressions JSON Schema uses:
-// no classes such as \s or \d, and no look ahead.
+// Pieces of patterns. They are shown to people, so they are kept short. Nothing in them is read differently by Go and by
+// ECMA-262, whose expressions JSON Schema uses.
 const (
-	// Blanks may stand around a number and its unit: what strings.TrimSpace takes away, but for control characters.
-	blank    = "[ \u00a0\u1680\u2000-\u200a\u202f\u205f\u3000]"
-	blanks   = blank + "*"
-	plainNum = `(?:0|[1-9][0-9]*)(?:\.[0-9]+)?`
-	moreThan = `(?:[1-9][0-9]*(?:\.[0-9]+)?|0\.[0-9]*[1-9][0-9]*)` // a plainNum that is not 0
+	blank    = "[ \u00a0\u2007\u2009\u202f]"
+	plainNum = `(0|[1-9][0-9]*)(\.[0-9]+)?`
+	moreThan = `([1-9][0-9]*(\.[0-9]+)?|0\.[0-9]*[1-9][0-9]*)` // a plainNum that is not 0
 	power    = `[eE][+-]?[0-9]+`
 )
 
@@ -39,45 +37,48 @@ func (s Sign) prefix() string {
 
 // Pattern returns a regular expression, anchored, for the texts that [Parse] reads as a quantity of the kind with a number
 // of the sign. A share is never negative, and over 100 % it does not match unless it is written with an exponent; of
-// other kinds the size of the number is of no account. -0, which Parse reads as 0, has AnySign only.
+// other kinds the size of the number is of no account. Parse reads a little more: blanks at the ends, blanks of other
+// widths, -0 where the sign is NotNegative.
 func Pattern(kind Kind, s Sign) string {
-	number := mantissa(s) + "(?:" + power + ")?"
+	number := mantissa(s) + "(" + power + ")?"
 	if kind != Share {
-		return "^" + blanks + s.prefix() + number + unitPattern(kind) + blanks + "$"
+		return "^" + s.prefix() + number + unitPattern(kind) + "$"
 	}
 	s = max(s, NotNegative)
-	percent, bare := `(?:100(?:\.0+)?|[1-9]?[0-9](?:\.[0-9]+)?)`, `0(?:\.[0-9]+)?`
+	percent, bare := `(100(\.0+)?|[1-9]?[0-9](\.[0-9]+)?)`, `0(\.[0-9]+)?`
 	if s == Positive {
-		percent, bare = `(?:100(?:\.0+)?|[1-9][0-9]?(?:\.[0-9]+)?|0\.[0-9]*[1-9][0-9]*)`, `0\.[0-9]*[1-9][0-9]*`
+		percent, bare = `(100(\.0+)?|[1-9][0-9]?(\.[0-9]+)?|0\.[0-9]*[1-9][0-9]*)`, `0\.[0-9]*[1-9][0-9]*`
 	}
-	return "^" + blanks + s.prefix() + "(?:" + percent + blanks + "%|" + bare + "|" + mantissa(s) + power + "(?:" + blanks + "%)?)" + blanks + "$"
+	return "^" + s.prefix() + "(" + percent + blank + "*%|" + bare + "|" + mantissa(s) + power + "(" + blank + "*%)?)$"
 }
 
-// NumberPattern returns a regular expression, anchored, for the texts that [ParseNumber] reads as a number of the sign.
-func NumberPattern(s Sign) string {
-	return "^" + blanks + s.prefix() + mantissa(s) + "(?:" + power + ")?" + blanks + "$"
-}
+// NumberPattern returns a regular expression, anchored, for the texts that [ParseNumber] reads as a number of the sign, but
+// for blanks at the ends.
+func NumberPattern(s Sign) string { return "^" + s.prefix() + mantissa(s) + "(" + power + ")?$" }
 
-// WholePattern returns a regular expression, anchored, for the texts that [ParseWhole] reads as a number of the sign.
+// WholePattern returns a regular expression, anchored, for the texts that [ParseWhole] reads as a number of the sign, but
+// for blanks at the ends.
 func WholePattern(s Sign) string {
-	digits := `(?:0|[1-9][0-9]*)`
 	if s == Positive {
-		digits = `[1-9][0-9]*`
+		return "^" + s.prefix() + "[1-9][0-9]*$"
 	}
-	return "^" + blanks + s.prefix() + digits + blanks + "$"
+	return "^" + s.prefix() + "(0|[1-9][0-9]*)$"
 }
 
 // unitPattern matches the units of a kind in every spelling, with the blanks before them.
 func unitPattern(kind Kind) string {
-	spell := strings.NewReplacer("degC", "(?:degC|°C)", "deg", "(?:deg|°)", "m2", "m[2²]", "t2", "t[2²]", "m3", "m[3³]")
-	before := blanks
+	spell := strings.NewReplacer("degC", "(degC|°C)", "deg", "(deg|°)", "m2", "m[2²]", "t2", "t[2²]", "m3", "m[3³]")
+	before := blank + "*"
 	var all []string
 	for _, u := range kind.Units() {
 		if strings.HasPrefix(u, "1/") { // without a blank the 1 belongs to the number
-			before = "(?:" + blanks + "|" + blank + "+1)"
+			before = "(" + blank + "*|" + blank + "+1)"
 			continue
 		}
 		all = append(all, spell.Replace(u))
 	}
-	return before + "(?:" + strings.Join(all, "|") + ")"
+	if len(all) == 1 {
+		return before + all[0]
+	}
+	return before + "(" + strings.Join(all, "|") + ")"
 }

@@ -25,13 +25,13 @@ func TestPatterns(t *testing.T) {
 		}
 	}
 	known = append(known, "m²", "ft²", "kN/m³", "m³/d", "°", "°C", "mm/°C/d", "m2²", "º", "", "")
-	blank := rapid.SampledFrom([]string{"", "", " ", "\u2009", "\u00a0", "\u3000", "  "})
+	blank := rapid.SampledFrom([]string{"", "", " ", "\u2009", "\u00a0", "\u202f", "  "})
 	number := rapid.OneOf(
 		rapid.StringMatching(`[+-]?(0|[1-9][0-9]{0,3})(\.[0-9]{1,3})?([eE][+-]?[0-9]{1,2})?`),
 		rapid.SampledFrom([]string{"0", "0.0", "1", "0.999", "100", "100.00", "100.01", "99.9", "1,5", "1 800", "010", ".5", "5.", "1_0", "0x1F", "1²", "\u22123", "", "e5", "00.5"}),
 	)
 	rapid.Check(t, func(t *rapid.T) {
-		text := blank.Draw(t, "before") + number.Draw(t, "number") + blank.Draw(t, "between") + rapid.SampledFrom(known).Draw(t, "unit") + blank.Draw(t, "after")
+		text := strings.TrimSpace(number.Draw(t, "number") + blank.Draw(t, "between") + rapid.SampledFrom(known).Draw(t, "unit"))
 		for kind := range kinds {
 			if kind == Change { // its sign is a rule of its own
 				continue
@@ -63,7 +63,7 @@ func TestNumberPatterns(t *testing.T) {
 	}{
 		{"0", []Sign{AnySign, NotNegative}, []Sign{AnySign, NotNegative}},
 		{"12", []Sign{AnySign, NotNegative, Positive}, []Sign{AnySign, NotNegative, Positive}},
-		{" +12 ", []Sign{AnySign, NotNegative, Positive}, []Sign{AnySign, NotNegative, Positive}},
+		{"+12", []Sign{AnySign, NotNegative, Positive}, []Sign{AnySign, NotNegative, Positive}},
 		{"-12", []Sign{AnySign}, []Sign{AnySign}},
 		{"1.10", []Sign{AnySign, NotNegative, Positive}, nil},
 		{"0.0", []Sign{AnySign, NotNegative}, nil},
