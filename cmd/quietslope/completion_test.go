@@ -61,6 +61,8 @@ func TestPropose(t *testing.T) {
 		{"nope|", "", "", ""},
 		{"completion|", "words", "", "bash zsh fish"},
 		{"completion|bash|", "words", "", "--help"},
+		{"schema|", "words", "", "--out --help"},
+		{"schema|x|", "words", "", "--out --help"},
 		{"new|", "folders", "", ""},
 		{"new|-", "words", "", "--force --help"},
 		{"new|--force|", "folders", "", ""},

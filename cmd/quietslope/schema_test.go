@@ -34,13 +34,17 @@ func TestSchema(t *testing.T) {
 	}
 }
 
-// TestSchemaMeetsExamples: the examples of the reference meet the schema.
+// TestSchemaMeetsExamples: the examples of the reference and the starter study meet the schema.
 func TestSchemaMeetsExamples(t *testing.T) {
 	s, err := jsonschema.NewCompiler().Compile("../../testdata/study.schema.json")
 	if err != nil {
 		t.Fatal(err)
 	}
-	for _, text := range exampleStudies() {
+	first, err := starter.ReadFile("starter/study.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, text := range append(exampleStudies(), string(first)) {
 		var v any
 		if err := yaml.Unmarshal([]byte(text), &v); err != nil {
 			t.Fatal(err)
