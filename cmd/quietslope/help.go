@@ -274,7 +274,12 @@ var studyNotes = map[string]string{
   The file: looked for from the folder of the study, wherever the program is started; an absolute
   path is taken as it is. Its first line is the header. Columns are separated by commas, semicolons
   or tabs; with the last two a decimal comma is read. It may be packed with gzip. The step is
-  constant, from a minute to a day, or each row is a calendar month, and no row is missing.
+  constant, from a minute to a day, or each row is a calendar month.
+
+  Gaps are missing rows and cells of weather.missing. gaps: refuse lists them; zero takes each such
+  value of rain and of pet as 0; month mean gives it the mean of its column over all measured steps
+  of the record in the same month of the year. Results count what was filled, and name the years
+  that rest on it.
 
   Times: YYYY MM DD hh mm ss are year, month, day, hour, minute and second, and any other character
   stands for itself: YYYY-MM-DD, DD.MM.YYYY hh:mm, YYYYMMDDThhmm. The format iso reads times with
