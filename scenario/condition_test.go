@@ -257,6 +257,9 @@ func TestSafetyBands(t *testing.T) {
 				t.Errorf("%s, %s: level %v until %v, want %v", flow, b.Name, b.Level, b.Until, want)
 			}
 		}
+		if i := slices.IndexFunc(s.Understood, func(e Entry) bool { return e.Key == "bands[1].until" }); i < 0 || s.Understood[i].Value != "1.08" {
+			t.Errorf("until is understood as %+v", s.Understood)
+		}
 		if s.Bands[1].Safety != 1.05 || s.Bands[1].GivenAs != "factor_of_safety" {
 			t.Errorf("given as %s %v", s.Bands[1].GivenAs, s.Bands[1].Safety)
 		}

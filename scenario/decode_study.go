@@ -812,6 +812,8 @@ func (v *value) inForce(f *field) string {
 		return "blank"
 	case math.IsNaN(v.num):
 		return v.text
+	case v.bare:
+		return quantity.FormatNumber(v.num)
 	}
 	switch f.shape.form {
 	case formQuantity:
