@@ -296,7 +296,7 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 	running := 0
 	counted := levels[p.counted.from:p.counted.to]
 	for _, h := range counted {
-		if h > d.invert {
+		if h > d.invert && d.rate > 0 {
 			running++
 		}
 	}

@@ -129,8 +129,8 @@ func TestCases(t *testing.T) {
 			t.Errorf("%s: neglected it passes the band on %v d a year, as built on %v", o.Name, o.Bands[1].DaysPerYear, built.Bands[1].DaysPerYear)
 		}
 		for k, d := range c.Cases[2].Options[i].Drains {
-			if d.RatePerDay != 0 || d.MeanMMPerDay != 0 {
-				t.Errorf("%s: drain %d carries %v mm/d at %v /d after it stopped", o.Name, k, d.MeanMMPerDay, d.RatePerDay)
+			if d.RatePerDay != 0 || d.MeanMMPerDay != 0 || d.RunningShare != 0 {
+				t.Errorf("%s: after drain %d stopped it is %+v", o.Name, k, d)
 			}
 		}
 	}

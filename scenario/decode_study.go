@@ -308,7 +308,7 @@ func (d *decoder) bands(s *Study, list *value) {
 			default:
 				return x
 			}
-			return math.Round(x/tie) * tie // without the dust of the subtraction
+			return math.Round(x*1e9) / 1e9 // without the dust of the subtraction
 		}
 		onset, until := b.get(band.GivenAs), b.get("until")
 		if band.GivenAs == "elevation" && !s.hasKey("site.ground_level") {

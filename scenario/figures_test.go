@@ -199,8 +199,11 @@ func TestNeighboursByRank(t *testing.T) {
 		return f
 	}
 	var ws warnings
-	p.choiceWarnings(&ws, []optionFigures{option("base", 9, 9), option("least", 1, 1), option("most", 3, 5), option("least too", 1, 1)}, 0, r)
-	if len(ws) != 1 || !strings.Contains(ws[0].Text, "tell apart: least / least too.") {
+	nearly := option("nearly", 4, 5)
+	nearly.passed[0].LoadByYear[3] = 6 // one year does not tell two options apart
+	p.choiceWarnings(&ws, []optionFigures{option("base", 9, 9), option("least", 1, 1), option("most", 5, 8), option("least too", 1, 1),
+		option("less", 3, 5), nearly, option("and too", 1, 1)}, 0, r)
+	if len(ws) != 2 || !strings.Contains(ws[0].Text, "counted year: least = least too = and too.") || !strings.Contains(ws[1].Text, "tell apart: less / nearly.") {
 		t.Errorf("%+v", ws)
 	}
 }

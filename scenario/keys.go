@@ -256,7 +256,7 @@ var groundShape = block(
 		shape: block(coverFields...), need: "the upper layer: a block with thickness, drainable_porosity, seepage and percolation"},
 	field{name: "deep", says: "the lower layer: clay with open fissures",
 		shape: block(deepFields...), need: "the lower layer: a block with thickness, drainable_porosity and seepage"},
-	field{name: "rates_from", says: "the stepping formula that the rates were calibrated with",
+	field{name: "rates_from", says: "the formula that the rates of ground and set were calibrated with; rates of drains are as given",
 		shape: block(
 			field{name: "scheme", says: "the formula: centred is also called trapezoidal, explicit forward, implicit backward",
 				shape: shape{form: formWord, words: []string{"exact", "centred", "explicit", "implicit"}, meant: [][2]string{

@@ -103,7 +103,13 @@ func (q *LevelsQuery) check(s *Study) error {
 }
 
 func unknownName(flag, name string, known []string) error {
-	return &fault.Error{Key: flag, Text: fmt.Sprintf("the study has no %q; it has: %s", name, strings.Join(known, "; "))}
+	hint := ""
+	if near := fault.Nearest(name, known); near != "" {
+		hint = fmt.Sprintf("; did you mean %q?", near)
+	} else if flag == "--option" || flag == "--against" {
+		hint = "; give its name, not its letter in the tables"
+	}
+	return &fault.Error{Key: flag, Text: fmt.Sprintf("the study has no %q%s\n  it has: %s", name, hint, strings.Join(known, "\n          "))}
 }
 
 // cut finds the rows to write: those whose times, as the weather has them, lie between From and To; of months, those that

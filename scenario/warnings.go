@@ -3,6 +3,7 @@ package scenario
 import (
 	"fmt"
 	"math"
+	"reflect"
 	"slices"
 	"strconv"
 	"strings"
@@ -25,7 +26,7 @@ const (
 	fewEvents        = 5    // below which a rate says little: judgement
 	mostOfTheYear    = 180  // d a year above a band beyond which its events run into one another: judgement
 	leastValidDays   = 25   // days with measured rain of a usable month (rule of the US agriculture service for climate statistics, from memory)
-	mostFilledRain   = 0.05 // of a year's rain: judgement
+	mostFilled       = 0.05 // of a year's days, or of its rain: judgement
 	shortRecordYears = 30   // least length advised for extremes of groundwater level (Geosciences 2020, 10, 373)
 )
 
@@ -33,6 +34,8 @@ const (
 const (
 	leastConductivity = 1e-11 * 86400 // m/d, of any soil: judgement
 	mostConductivity  = 1e-3 * 86400
+	leastInfiltration = 0.05  // share of the rain: judgement
+	leastArea         = 100.0 // m2 of a slope in plan: judgement
 	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
 	mostPorosity      = 0.30  // the same
 	mostClayPorosity  = 0.10  // of a clay: judgement, after the same
@@ -80,9 +83,24 @@ func (p *prepared) studyWarnings(options []optionFigures) []result.Warning {
 	ws := warnings{}
 	p.declaredWarnings(&ws)
 	p.bandWarnings(&ws)
-	p.groundWarnings(&ws)
+	p.rechargeWarnings(&ws)
+	raised := p.groundWarnings(&p.study.Ground, "")
+	ws = append(ws, raised...)
 	p.recordWarnings(&ws)
+	if a := p.study.Site.PlanArea; a > 0 && a < leastArea {
+		ws.add(warn("implausible_area"), "site.plan_area is %s m2, less than any slope that is drained. Check the unit: 1 ha is 10000 m2.", short(a))
+	}
+	p.conditionWarnings(&ws)
 	for i, w := range p.works {
+		if slices.ContainsFunc(w.option.Measures, func(m Measure) bool { return m.Set != nil }) {
+			for _, found := range p.groundWarnings(w.calibrated(), w.option.Name) {
+				same := found
+				same.Option = ""
+				if !slices.Contains(raised, same) {
+					ws = append(ws, found)
+				}
+			}
+		}
 		var replayed []result.Drain
 		if options != nil {
 			replayed = options[i].Drains
@@ -91,6 +109,21 @@ func (p *prepared) studyWarnings(options []optionFigures) []result.Warning {
 		p.practiceWarnings(&ws, w)
 	}
 	return ws
+}
+
+// conditionWarnings name the conditions that change nothing.
+func (p *prepared) conditionWarnings(ws *warnings) {
+	for k, c := range p.cases {
+		acts := slices.ContainsFunc(c.works, func(w *works) bool {
+			built := p.works[slices.Index(c.works, w)]
+			return w.uptake != built.uptake || !reflect.DeepEqual(w.model, built.model)
+		})
+		if k > 0 && !acts {
+			w := warn("condition_changes_nothing")
+			w.Condition = c.condition
+			ws.add(w, "The condition leaves every option as it is built. Give the shares that are left, such as drains: 45 %%, or leave the condition out.")
+		}
+	}
 }
 
 func (p *prepared) declaredWarnings(ws *warnings) {
@@ -113,24 +146,28 @@ func (p *prepared) declaredWarnings(ws *warnings) {
 	if len(open) > 0 {
 		ws.add(warn("declared_unanswered"), "Not answered under declared: %s. Answer each with yes or no, and weigh what a yes would change.", strings.Join(open, ", "))
 	}
-	drained := slices.ContainsFunc(p.works, func(w *works) bool { return len(w.drains) > 0 })
+	has := func(is func(Measure) bool) bool {
+		return slices.ContainsFunc(p.works, func(w *works) bool { return slices.ContainsFunc(w.option.Measures, is) })
+	}
+	drained := has(func(m Measure) bool { return m.Trench != nil || m.Bored != nil || m.CutOff != nil })
+	outlets := drained || has(func(m Measure) bool { return m.Cut != nil })
 	for _, yes := range []struct {
 		key, code, severity string
-		drains              bool // matters to drains only
+		matters             bool
 		text                string
 	}{
-		{"ground_changed_since_calibration", "ground_changed", result.Warn, false,
+		{"ground_changed_since_calibration", "ground_changed", result.Warn, true,
 			"The ground has changed since the calibration. Rates, porosities and critical levels may no longer hold; calibrate again, or set the bands anew from movement since the change."},
-		{"iron_or_lime_in_water", "drains_may_clog", result.Warn, true,
-			"Iron or lime in the water clogs drains. The figures hold for drains as built; plan access, flushing and inspection, and look at the baseline as the case in which they have stopped."},
-		{"perched_water", "perched_water", result.Note, false,
+		{"iron_or_lime_in_water", "drains_may_clog", result.Warn, drained,
+			"Iron or lime in the water clogs drains. Plan access, flushing and inspection, and give a condition in which little is left of the drains, to see what hangs on them."},
+		{"perched_water", "perched_water", result.Note, true,
 			"Perched water is not in the model. Drains may lower the deep level and leave it."},
-		{"outlet_on_moving_ground", "outlet_on_moving_ground", result.Warn, true,
+		{"outlet_on_moving_ground", "outlet_on_moving_ground", result.Warn, outlets,
 			"An outlet on moving ground can shear or leak and then feeds the slide. Lead the water to stable ground and inspect the outlet."},
-		{"wells_or_buildings_nearby", "wells_or_buildings_nearby", result.Note, true,
+		{"wells_or_buildings_nearby", "wells_or_buildings_nearby", result.Note, drained,
 			"A lower water level can dry wells and settle foundations nearby. Check them, and what consents are needed."},
 	} {
-		if d[yes.key] == "yes" && (drained || !yes.drains) {
+		if d[yes.key] == "yes" && yes.matters {
 			ws.add(result.Warning{Code: yes.code, Severity: yes.severity}, "%s", yes.text)
 		}
 	}
@@ -157,6 +194,9 @@ func (p *prepared) bandWarnings(ws *warnings) {
 				b.Level-s.Ground.CoverThickness-s.Ground.DeepThickness)
 		}
 	}
+	if readings > s.Ground.DeepFullAt {
+		ws.add(warn("readings_above_full"), "ground.calibrated_to is %.2f m, and the deep layer is full at %.2f m above its base: no reading of that level can be that high. Make sure that it is not a depth or an elevation.", readings, s.Ground.DeepFullAt)
+	}
 	if math.IsNaN(readings) {
 		ws.add(warn("readings_unknown"), "ground.calibrated_to is not given, so no band is known to lie within the readings. Give the highest deep level in the readings used for calibration.")
 	}
@@ -170,17 +210,25 @@ func (p *prepared) bandWarnings(ws *warnings) {
 	}
 }
 
-func (p *prepared) groundWarnings(ws *warnings) {
-	s := p.study
-	g := &s.Ground
+// rechargeWarnings say what the weather and the ground leave out of the recharge.
+func (p *prepared) rechargeWarnings(ws *warnings) {
 	switch {
-	case p.record.PET != nil && g.Soil == nil:
+	case p.record.PET != nil && p.study.Ground.Soil == nil:
 		ws.add(note("drying_overstated"), "Evapotranspiration is drawn from the cover at the full rate, which overstates drying where the water table is deep. Give ground.soil to keep a soil-water balance.")
 	case p.record.PET == nil:
 		ws.add(note("no_evapotranspiration"), "The weather has no evapotranspiration: all that infiltrates is recharge, in summer too. Give weather.columns.pet and ground.soil unless the infiltration share was calibrated so.")
 	}
+}
+
+// groundWarnings hold the numbers of a ground, that of the study or of an option that changes it, against what is usual.
+func (p *prepared) groundWarnings(g *Ground, option string) warnings {
+	var ws warnings
+	at := func(w result.Warning) result.Warning {
+		w.Option = option
+		return w
+	}
 	if !math.IsInf(g.InfiltrationLimit, 1) && (p.record.Monthly() || p.record.Step > time.Hour) {
-		ws.add(note("limit_hardly_acts"), "An infiltration limit hardly acts with steps of %s, over which rain is spread evenly. Give hourly or shorter steps, or lower the infiltration share instead.", p.record.StepText())
+		ws.add(at(note("limit_hardly_acts")), "An infiltration limit hardly acts with steps of %s, over which rain is spread evenly. Give hourly or shorter steps, or lower the infiltration share instead.", p.record.StepText())
 	}
 	for _, q := range []struct {
 		key         string
@@ -189,28 +237,24 @@ func (p *prepared) groundWarnings(ws *warnings) {
 		unit        string
 		scale       float64
 	}{
+		{"surface.infiltration", g.Infiltration, leastInfiltration, 1, "%", 100},
 		{"cover.drainable_porosity", g.CoverPorosity, leastPorosity, mostPorosity, "%", 100},
 		{"deep.drainable_porosity", g.DeepPorosity, 0, mostClayPorosity, "%", 100},
 		{"cover.conductivity", g.CoverConductivity, leastConductivity, mostConductivity, "m/d", 1},
+		{"cover.seepage", g.CoverSeepage, leastRate, mostRate, "/d", 1},
+		{"cover.percolation", g.Percolation, leastRate, mostRate, "/d", 1},
+		{"deep.seepage", g.DeepSeepage, leastRate, mostRate, "/d", 1},
 	} {
 		if q.value != 0 && !(q.value >= q.least && q.value <= q.most) {
-			ws.add(warn("implausible_ground"), "ground.%s is %s %s; usual are %s to %s %s. Check the unit and the source.",
+			ws.add(at(warn("implausible_ground")), "%s is %s %s; usual are %s to %s %s. Check the unit and the source.",
 				q.key, short(q.value*q.scale), q.unit, short(q.least*q.scale), short(q.most*q.scale), q.unit)
 		}
 	}
-	for _, r := range []struct {
-		key  string
-		rate float64
-	}{{"cover.seepage", g.CoverSeepage}, {"cover.percolation", g.Percolation}, {"deep.seepage", g.DeepSeepage}} {
-		if r.rate != 0 && !plausibleRate(r.rate) {
-			ws.add(warn("implausible_ground"), "ground.%s is %s /d; usual are %s to %s /d. Check the unit and the calibration.",
-				r.key, short(r.rate), short(leastRate), short(mostRate))
-		}
-	}
 	if fast := g.CoverSeepage + g.Percolation; g.DeepSeepage > fast {
-		ws.add(warn("deep_faster_than_cover"), "The deep layer empties faster (%s /d) than the cover (%s /d). In fissured clay under a permeable cover it is usually the other way round; check that the rates are not swapped.",
+		ws.add(at(warn("deep_faster_than_cover")), "The deep layer empties faster (%s /d) than the cover (%s /d). In fissured clay under a permeable cover it is usually the other way round; check that the rates are not swapped.",
 			short(g.DeepSeepage), short(fast))
 	}
+	return ws
 }
 
 func (p *prepared) recordWarnings(ws *warnings) {
@@ -221,7 +265,11 @@ func (p *prepared) recordWarnings(ws *warnings) {
 		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
 	}
 	if p.record.Monthly() {
-		ws.add(warn("monthly_steps"), "The steps are calendar months: a level is seen at the end of each month only, and days above a band come in whole months. Rain is spread evenly over the month, so peaks are damped and those within a month are missed; find daily weather where there is any.")
+		soil := ""
+		if p.study.Ground.Soil != nil {
+			soil = ", and with a soil the recharge of wet days in dry months is missed"
+		}
+		ws.add(warn("monthly_steps"), "The steps are calendar months: a level is seen at the end of each month only, and days above a band come in whole months. Rain is spread evenly over the month, so peaks are damped and those within a month are missed%s. Find daily weather where there is any.", soil)
 	}
 	p.gapWarnings(ws)
 	for _, q := range p.record.Implausible() {
@@ -253,18 +301,22 @@ func (p *prepared) gapWarnings(ws *warnings) {
 			pet += n
 		}
 	}
-	of := plural(rain, "step") + " without rain values"
-	if pet > 0 {
-		of += ", " + plural(pet, "step") + " without evapotranspiration"
+	var of, lost []string
+	if rain > 0 {
+		of, lost = append(of, plural(rain, "step")+" without rain"), append(lost, "rain that fell and was not recorded is missing from every level")
 	}
+	if pet > 0 {
+		of, lost = append(of, plural(pet, "step")+" without evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
+	}
+	what := strings.Join(of, " and ")
 	if p.study.Weather.Gaps == string(weather.GapsZero) {
-		ws.add(warn("gaps_filled"), "Filled with zero: %s, of %d. Rain that fell and was not recorded is missing from every level, and evapotranspiration too; complete the record, or see what weather.gaps: month mean gives.", of, len(r.Rain))
+		ws.add(warn("gaps_filled"), "Filled with zero: %s, of %d steps; %s. Complete the record, or see what weather.gaps: month mean gives.", what, len(r.Rain), strings.Join(lost, ", and "))
 	} else {
-		ws.add(note("gaps_filled"), "Filled with the mean of the calendar month: %s, of %d. Means have no storms; complete the record from a station nearby where a wet time is missing.", of, len(r.Rain))
+		ws.add(note("gaps_filled"), "Filled with the mean of the calendar month: %s, of %d steps. Means have no storms; complete the record from a station nearby where a wet time is missing.", what, len(r.Rain))
 	}
 	if years := p.filledYears(); len(years) > 0 {
-		ws.add(warn("years_much_filled"), "Much of the rain is filled in %s: %s. A month there has fewer than %d days of measured rain, or more than %.0f %% of the year's rain is filled. Their events rest on it; complete these years, or cut the record.",
-			plural(len(years), "counted year"), firstOf(years, 8), leastValidDays, 100*mostFilledRain)
+		ws.add(warn("years_much_filled"), "Much of the rain is filled in %s: %s. A month there has fewer than %d days of measured rain, or more than %.0f %% of the year's days or rain are filled. Their events rest on it; complete these years, or cut the record.",
+			plural(len(years), "counted year"), firstOf(years, 8), leastValidDays, 100*mostFilled)
 	}
 }
 
@@ -273,23 +325,26 @@ func (p *prepared) filledYears() []string {
 	r, c := p.record, &p.counted
 	lost := make([][12]float64, c.years) // days without rain, by month
 	filled, fallen := make([]float64, c.years), make([]float64, c.years)
+	missing, length := make([]float64, c.years), make([]float64, c.years)
 	for _, g := range r.Filled {
 		for i := g.From; i < g.To; i++ {
 			if y := c.calendar.Year[i]; y >= 0 && g.Rain {
 				lost[y][c.calendar.Month[i]] += c.calendar.Days[i]
 				filled[y] += r.Rain[i]
+				missing[y] += c.calendar.Days[i]
 			}
 		}
 	}
 	for i, y := range c.calendar.Year {
 		if y >= 0 {
 			fallen[y] += r.Rain[i]
+			length[y] += c.calendar.Days[i]
 		}
 	}
 	var names []string
 	first := r.Start(c.from).Year()
 	for y := range c.years {
-		much := filled[y] > mostFilledRain*fallen[y]
+		much := filled[y] > mostFilled*fallen[y] || missing[y] > mostFilled*length[y]
 		for m := range 12 {
 			year := first + y
 			if time.Month(m+1) < c.starts {
@@ -541,11 +596,17 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, against
 	if !passed {
 		w := warn("nothing_to_decide_on")
 		w.Band = band
-		ws.add(w, "No option passes this band in the counted years, so the record cannot compare them on it. Check the band, or decide on a lower one.")
+		ws.add(w, "No option's level rises above this band in the counted years, so the record cannot compare them on it. Make sure of the band's level; if it is right, read this as none in %s, and decide on a lower band.", plural(p.counted.years, "year"))
 		return
 	}
 	for i := range options {
-		if c := options[i].Bands[on].Change; c != nil && !c.ToldApart {
+		switch c := options[i].Bands[on].Change; {
+		case c == nil || c.ToldApart:
+		case m.of(c).YearsEqual == p.counted.years:
+			w := note("no_effect")
+			w.Option, w.Band = options[i].Name, band
+			ws.add(w, "By %s the same as %s in every counted year: on this band the difference between the two does nothing.", measureTitle(m.name), p.called(against))
+		default:
 			w := warn("not_told_apart")
 			w.Option, w.Band = options[i].Name, band
 			ws.add(w, "Not told apart from %s on this record by %s. Do not read a benefit, or none, into the difference.", p.called(against), measureTitle(m.name))
@@ -559,13 +620,26 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, against
 		}
 	}
 	slices.SortStableFunc(order, func(a, b int) int { return options[a].Decision.Rank - options[b].Decision.Rank })
-	var pairs []string
+	var pairs, equals []string
+	last := 0 // place of the option that was found equal last
 	for k := 1; k < len(order); k++ {
 		first, next := &options[order[k-1]], &options[order[k]]
-		c := r.Compare(m.byYear(&first.passed[on]), m.byYear(&next.passed[on]), p.study.Count.Confidence)
-		if !c.ToldApart(p.study.Count.Confidence) {
+		switch c := r.Compare(m.byYear(&first.passed[on]), m.byYear(&next.passed[on]), p.study.Count.Confidence); {
+		case c.YearsEqual == p.counted.years:
+			if len(equals) > 0 && last == k-1 {
+				equals[len(equals)-1] += " = " + next.Name
+			} else {
+				equals = append(equals, first.Name+" = "+next.Name)
+			}
+			last = k
+		case !c.ToldApart(p.study.Count.Confidence):
 			pairs = append(pairs, first.Name+" / "+next.Name)
 		}
+	}
+	if len(equals) > 0 {
+		w := note("equal_every_year")
+		w.Band = band
+		ws.add(w, "Alike by %s in every counted year: %s. Choose between them on other grounds.", measureTitle(m.name), strings.Join(equals, "; "))
 	}
 	if len(pairs) > 0 {
 		w := warn("order_not_told_apart")

@@ -94,6 +94,18 @@ func TestStudyWarnings(t *testing.T) {
 		{"perched water", declare("perched_water", "yes"), []string{"perched_water"}},
 		{"iron, no drain", declare("iron_or_lime_in_water", "yes"), nil},
 		{"iron and drains", drained(declare("iron_or_lime_in_water", "yes")), []string{"drains_may_clog"}},
+		{"outlet of channels moves", func(p *prepared) {
+			measured(Measure{Cut: &SurfaceWater{KeptOut: 0.1}})(p)
+			declare("outlet_on_moving_ground", "yes")(p)
+		}, []string{"outlet_on_moving_ground"}},
+		{"iron and a cut-off drain", func(p *prepared) {
+			measured(Measure{CutOff: &CutOffDrain{Intercepted: 0.1}})(p)
+			declare("iron_or_lime_in_water", "yes")(p)
+		}, []string{"drains_may_clog"}},
+		{"iron and channels", func(p *prepared) {
+			measured(Measure{Cut: &SurfaceWater{KeptOut: 0.1}})(p)
+			declare("iron_or_lime_in_water", "yes")(p)
+		}, nil},
 		{"outlet moves", drained(declare("outlet_on_moving_ground", "yes")), []string{"outlet_on_moving_ground"}},
 		{"wells", drained(declare("wells_or_buildings_nearby", "yes")), []string{"wells_or_buildings_nearby"}},
 
@@ -137,11 +149,18 @@ func TestStudyWarnings(t *testing.T) {
 		{"29 years", func(p *prepared) { p.counted.years = 29 }, []string{"record_short"}},
 		{"9 years", func(p *prepared) { p.counted.years = 9 }, []string{"record_short"}},
 		{"band at ground", func(p *prepared) {
-			p.study.Bands[0].Level, p.study.Ground.CalibratedTo = 13, 13
+			p.study.Bands[0].Level, p.study.Ground.CalibratedTo, p.study.Ground.DeepFullAt = 13, 13, inf
 		}, nil},
 		{"band above ground", func(p *prepared) {
-			p.study.Bands[0].Level, p.study.Ground.CalibratedTo = 13.01, 14
+			p.study.Bands[0].Level, p.study.Ground.CalibratedTo, p.study.Ground.DeepFullAt = 13.01, 14, inf
 		}, []string{"band_above_ground"}},
+		{"readings up to the brim", func(p *prepared) { p.study.Ground.CalibratedTo = 9 }, nil},
+		{"readings above it", func(p *prepared) { p.study.Ground.CalibratedTo = 9.01 }, []string{"readings_above_full"}},
+		{"small infiltration", func(p *prepared) { p.study.Ground.Infiltration = 0.05 }, nil},
+		{"hardly any infiltration", func(p *prepared) { p.study.Ground.Infiltration = 0.049 }, []string{"implausible_ground"}},
+		{"small area", func(p *prepared) { p.study.Site.PlanArea = 100 }, nil},
+		{"hectares taken for square metres", func(p *prepared) { p.study.Site.PlanArea = 1.2 }, []string{"implausible_area"}},
+		{"porosity set", measured(Measure{Set: []Assignment{{Key: "cover.drainable_porosity", Value: 0.31}}}), []string{"implausible_ground"}},
 		{"a rate per hour taken for one per day", func(p *prepared) { p.study.Ground.CoverSeepage = 5.01 }, []string{"implausible_ground"}},
 		{"no percolation", func(p *prepared) { p.study.Ground.Percolation = 0 }, nil},
 		{"warm-up again", func(p *prepared) { p.replayer.warm = warmUp{years: 4, repeats: true} }, []string{"warm_up_repeats_record"}},
@@ -274,7 +293,7 @@ func TestCountWarnings(t *testing.T) {
 		{"four events", yearly("works", false, in(4, 1), in(4, 10)), []string{"few_events"}},
 		{"none", yearly("works", false, in(0, 1), in(0, 10)), []string{"no_events"}},
 		{"days but no counted event", yearly("works", false, in(0, 1), in(1, 10)), []string{"events_peak_outside"}},
-		{"the same", yearly("works", false, in(20, 1), in(20, 20)), []string{"not_told_apart"}},
+		{"the same", yearly("works", false, in(20, 1), in(20, 20)), []string{"no_effect"}},
 		{"better in four years only", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(4, 5)(y) }), []string{"not_told_apart"}},
 		{"better in five", yearly("works", false, in(20, 1), func(y int) float64 { return in(20, 20)(y) - in(5, 5)(y) }), nil},
 		{"fewer days, more events", yearly("works", false, in(25, 1), in(10, 20)), []string{"days_and_events_disagree"}},
@@ -303,9 +322,14 @@ func TestCountWarnings(t *testing.T) {
 func TestNeighboursInOrder(t *testing.T) {
 	s := load(t, "../testdata/demo/study.yaml")
 	c := compare(t, s)
-	i := slices.IndexFunc(c.Warnings, func(w result.Warning) bool { return w.Code == "order_not_told_apart" })
-	if i < 0 || !strings.Contains(c.Warnings[i].Text, "trenches 8 m apart / trenches 12 m apart") {
-		t.Error("nobody says that 8 m and 12 m are not told apart")
+	for code, want := range map[string]string{
+		"equal_every_year":     "trenches 8 m apart = trenches 12 m apart",
+		"order_not_told_apart": "trenches 12 m apart / 24 m with channels",
+	} {
+		i := slices.IndexFunc(c.Warnings, func(w result.Warning) bool { return w.Code == code })
+		if i < 0 || !strings.Contains(c.Warnings[i].Text, want) {
+			t.Errorf("nobody says %s, %s", code, want)
+		}
 	}
 }
 
@@ -343,6 +367,14 @@ func TestGuideKnowsWarnings(t *testing.T) {
 	}
 }
 
+// sprinkled are single days of a winter, one a week.
+func sprinkled(days int) (gaps []weather.Gap) {
+	for i := range days {
+		gaps = append(gaps, weather.Gap{From: 7 * i, To: 7*i + 1, Rain: true})
+	}
+	return gaps
+}
+
 // TestGapWarnings fills days of one winter until its year is flagged. Rain is 1 mm a day.
 func TestGapWarnings(t *testing.T) {
 	for _, tt := range []struct {
@@ -365,6 +397,9 @@ func TestGapWarnings(t *testing.T) {
 		{"a twentieth of the rain", "month mean", []weather.Gap{{From: 0, To: 2, Rain: true}}, 9.57, []string{"gaps_filled"}, ""},
 		{"more than a twentieth", "month mean", []weather.Gap{{From: 0, To: 2, Rain: true}}, 9.59, []string{"gaps_filled", "years_much_filled"}, "1991/92"},
 		{"before the counted years", "month mean", []weather.Gap{{From: -200, To: -150, Rain: true}}, 1, []string{"gaps_filled"}, ""},
+		// A year of 366 days, and five days of a month at most.
+		{"eighteen days, with zero", "zero", sprinkled(18), 0, []string{"gaps_filled"}, ""},
+		{"nineteen days, with zero", "zero", sprinkled(19), 0, []string{"gaps_filled", "years_much_filled"}, "1991/92"},
 		{"two years, with zero", "zero", []weather.Gap{{From: 0, To: 20, Rain: true}, {From: 366, To: 380, Rain: true}}, 0, []string{"gaps_filled", "years_much_filled"}, "1991/92, 1992/93"},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
@@ -427,5 +462,53 @@ func TestConversionWarnings(t *testing.T) {
 		if got := codes(ws); !slices.Equal(got, tt.want) {
 			t.Errorf("%+v: got %q, want %q", tt.c, got, tt.want)
 		}
+	}
+}
+
+// TestGroundOfOptions: what an option's set makes of the ground is held against what is usual too, once.
+func TestGroundOfOptions(t *testing.T) {
+	p := quiet()
+	p.record.Step = 2 * time.Hour
+	p.study.Ground.InfiltrationLimit = 5
+	p.study.Ground.CoverPorosity = 0.4
+	p.study.Options[1].Measures = []Measure{{Set: []Assignment{{Key: "deep.drainable_porosity", Value: 0.2}, {Key: "cover.seepage", Value: 6}}}}
+	p.rework()
+	var got []string
+	for _, w := range p.studyWarnings(nil) {
+		got = append(got, w.Option+" "+w.Code)
+	}
+	if want := []string{" limit_hardly_acts", " implausible_ground", "works implausible_ground", "works implausible_ground"}; !slices.Equal(got, want) {
+		t.Errorf("got %q, want %q", got, want)
+	}
+}
+
+func TestConditionChangesNothing(t *testing.T) {
+	for _, tt := range []struct {
+		c    Condition
+		want []string
+	}{
+		{Condition{Name: "old", Drains: 1, SurfaceWater: 0.5, Vegetation: 0.5}, []string{"condition_changes_nothing"}},
+		{Condition{Name: "old", Drains: 0.99, SurfaceWater: 1, Vegetation: 1}, nil},
+	} {
+		p := quiet()
+		p.study.Options[1].Measures = []Measure{{Bored: &BoredDrains{Rate: 0.01, Level: 3, Efficiency: 0.5, Ceiling: math.Inf(1)}}}
+		p.study.Conditions = []Condition{tt.c}
+		if err := p.work(); err != nil {
+			t.Fatal(err)
+		}
+		ws := warnings{}
+		p.conditionWarnings(&ws)
+		if got := codes(ws); !slices.Equal(got, tt.want) {
+			t.Errorf("%+v: got %q, want %q", tt.c, got, tt.want)
+		}
+	}
+}
+
+func TestNothingToDecideOn(t *testing.T) {
+	s := load(t, "../testdata/demo/study.yaml")
+	s.Bands[2].Level, s.Bands[2].Until, s.Count.DecideOn = 8.9, 8.9, 2
+	got := codes(compare(t, s).Warnings)
+	if !slices.Contains(got, "nothing_to_decide_on") || slices.Contains(got, "not_told_apart") || slices.Contains(got, "no_effect") {
+		t.Errorf("%q", got)
 	}
 }

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+	"strings"
 
 	"quietslope/cascade"
 	"quietslope/cascade/drain"
@@ -97,6 +98,14 @@ func newWorks(s *Study, o *Option, c *Condition) *works {
 	return w
 }
 
+// calibrated is the ground with the rates and porosities that it was calibrated with.
+func (w *works) calibrated() *Ground {
+	if w.given != nil {
+		return w.given
+	}
+	return &w.ground
+}
+
 // both is the share that two measures keep back together: each acts on what the other lets through.
 func both(a, b float64) float64 { return 1 - (1-a)*(1-b) }
 
@@ -129,6 +138,9 @@ func storage(level, porosity float64) float64 { return 1000 * porosity * level }
 func (w *works) addDrain(m Measure, d drainage, c *Condition) {
 	d.measure, d.place = m.Key, m.Place
 	d.rate *= c.Drains
+	if w.given != nil && strings.HasPrefix(d.from, asGiven) {
+		d.from += "; rates of drains are not converted"
+	}
 	store, porosity := &w.model.Cover, w.ground.CoverPorosity
 	if d.layer == inDeep {
 		store, porosity = &w.model.Deep, w.ground.DeepPorosity
@@ -148,7 +160,7 @@ func trench(m Measure, g *Ground) drainage {
 	d := drainage{layer: inCover, ceiling: t.Ceiling, invert: max(0, g.CoverThickness-t.Depth)}
 	if t.Spacing == 0 {
 		d.rate = t.Efficiency * t.Rate
-		d.from = "as given" + timesEfficiency(t.Efficiency)
+		d.from = asGiven + timesEfficiency(t.Efficiency)
 		return d
 	}
 	conductivity := t.Conductivity
@@ -171,9 +183,12 @@ func bored(m Measure) drainage {
 	b := m.Bored
 	return drainage{
 		layer: inDeep, rate: b.Efficiency * b.Rate, invert: b.Level, ceiling: b.Ceiling,
-		from: "as given" + timesEfficiency(b.Efficiency),
+		from: asGiven + timesEfficiency(b.Efficiency),
 	}
 }
+
+// asGiven is said of a drain's rate that was not worked out.
+const asGiven = "as given"
 
 func timesEfficiency(e float64) string {
 	if e == 1 {
@@ -252,6 +267,8 @@ func (w *works) rates() result.Rates {
 	r := w.ground.rates()
 	if w.given != nil {
 		given := w.given.rates()
+		r.CoverPorosity, r.DeepPorosity = &w.ground.CoverPorosity, &w.ground.DeepPorosity
+		given.CoverPorosity, given.DeepPorosity = &w.given.CoverPorosity, &w.given.DeepPorosity
 		r.Given = &given
 	}
 	return r

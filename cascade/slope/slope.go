@@ -34,7 +34,7 @@ type Slope struct {
 //
 // Sources: A. W. Skempton & F. A. DeLory 1957, Stability of natural slopes in London clay, Proc. 4th Int. Conf. Soil
 // Mech. Found. Eng., London, vol. 2, 378-381 (flow parallel to the slope; from memory); the same formula, with the
-// water at the surface, in B. M. Das, Principles of Geotechnical Engineering, ch. 15 (read in a transcription). The
+// water at the surface, in B. M. Das, Principles of Geotechnical Engineering, ch. 15 (read second-hand). The
 // pressure of standing water is plain hydrostatics; to use it for open fissures is common practice, no source.
 func (s Slope) FactorOfSafety(h float64) float64 {
 	g := s.gravity()

@@ -23,7 +23,7 @@ func level(h, weight float64) float64 { return h * weight / 9.81 }
 // TestPublished holds worked examples to half a unit of their last printed digit, and to what they give when worked out
 // in full.
 func TestPublished(t *testing.T) {
-	// B. M. Das, Principles of Geotechnical Engineering, example 15.1, read in a transcription: water at the surface;
+	// B. M. Das, Principles of Geotechnical Engineering, example 15.1, read second-hand: water at the surface;
 	// 0.98 = 0.375 + 0.61, in full 0.98427 = 0.37453 + 0.60973.
 	das := slope.Slope{Angle: 15, Depth: 6, UnitWeight: 17.8, Friction: 20, Cohesion: 10}
 	near(t, "Das 15.1", das.FactorOfSafety(6), 0.98, 0.5e-2)

@@ -137,6 +137,8 @@ type Rates struct {
 	CoverPercolationPerDay     float64  `json:"cover_percolation_per_day"`
 	PercolationCeilingMMPerDay *float64 `json:"percolation_ceiling_mm_per_day,omitempty"`
 	DeepSeepagePerDay          float64  `json:"deep_seepage_per_day"`
+	CoverPorosity              *float64 `json:"cover_porosity,omitempty"` // where it was converted too
+	DeepPorosity               *float64 `json:"deep_porosity,omitempty"`
 	Given                      *Rates   `json:"given,omitempty"` // before they were converted from a stepping scheme
 }
 
