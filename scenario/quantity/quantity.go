@@ -113,6 +113,17 @@ func (k Kind) Units() []string {
 // The error quotes the text and says what to write instead. Range is the caller's business: Parse takes a negative
 // length. The value is always finite, and zero only where the text says zero.
 func Parse(text string, kind Kind) (float64, error) {
+	v, err := parse(text, kind)
+	if err != nil {
+		if better := notOne(text); better != nil {
+			err = better
+		}
+		return 0, err
+	}
+	return v, nil
+}
+
+func parse(text string, kind Kind) (float64, error) {
 	number, name := split(plain(text))
 	if number == "" {
 		return 0, notANumber(text, name, kind)
@@ -178,7 +189,7 @@ func gradient(text string) error {
 	return fmt.Errorf("%s is a gradient, and an angle is written in deg; write %s deg if one up in %s along is meant", quote(text), four(degrees(1/n)), m[1])
 }
 
-// degrees is the angle of a gradient.
+// degrees is the angle of a gradient in degrees.
 func degrees(gradient float64) float64 { return math.Atan(gradient) * 180 / math.Pi }
 
 // bare handles a number without a unit.
@@ -204,6 +215,10 @@ func bare(text, number string, kind Kind) (float64, error) {
 			return 0, fmt.Errorf("%s: a change carries its sign and %%; write %s if a factor is meant", quote(text), meant)
 		}
 		return 0, fmt.Errorf("%s has no unit; write %s %%", quote(text), number)
+	case Angle:
+		if v > 0 && v < 1 {
+			return 0, fmt.Errorf("%s has no unit; write %s deg if a gradient is meant, or %s deg", quote(text), four(degrees(v)), number)
+		}
 	}
 	return 0, fmt.Errorf("%s has no unit; write %s %s", quote(text), number, kind.Unit())
 }
@@ -246,38 +261,50 @@ func (u unit) base(number string) (float64, error) {
 
 // wrongUnit explains a unit that the kind does not have.
 func wrongUnit(text, number, name string, kind Kind) error {
-	for _, u := range table[kind].units {
-		if strings.EqualFold(u.name, name) {
-			return fmt.Errorf("%s: unknown unit %s; write %s", quote(text), quote(name), u.name)
-		}
-	}
-	list := "; " + kind.String() + " is written in " + orList(kind.Units())
+	list := kind.String() + " is written in " + orList(kind.Units())
 	if kind == Rate {
-		list = "; a rate is written in /d, /h, /min, /s or /y"
+		list = "a rate is written in /d, /h, /min, /s or /y"
+	}
+	plainly := usualUnit(name)
+	if u, ok := kind.unitOf(plainly); ok {
+		return fmt.Errorf("%s: unknown unit %s; write %s %s", quote(text), quote(name), number, u.name)
 	}
 	for other := Kind(0); other < kinds; other++ {
-		if other == kind || other == Change {
+		u, ok := other.unitOf(plainly)
+		if !ok {
+			u, ok = foreign(other, plainly)
+		}
+		if !ok || other == Change {
 			continue
 		}
-		for _, u := range table[other].units {
-			if u.name != name {
-				continue
+		v, err := u.base(number)
+		if other == kind {
+			if err != nil {
+				break
 			}
-			hint := ""
-			if v, err := u.base(number); err == nil {
-				hint = instead(v, other, kind)
-			}
-			return fmt.Errorf("%s is %s, and %s is wanted here%s%s", quote(text), other, kind, list, hint)
+			return fmt.Errorf("%s: unknown unit %s; write %s", quote(text), quote(name), Format(rounded(v), kind))
 		}
+		hint := ""
+		if err == nil {
+			hint = instead(v, other, kind)
+		}
+		wanted := kind.String() + " is wanted here"
+		if kind == Rate && hint == "" {
+			wanted += ", the share of a store that leaves in a time"
+		}
+		return fmt.Errorf("%s is %s, and %s; %s%s", quote(text), other, wanted, list, hint)
 	}
 	if kind == UnitWeight {
 		for _, d := range densities {
-			if v, err := (unit{mul: d.tonnes * gravity}).base(number); d.name == name && err == nil {
+			if v, err := (unit{mul: d.tonnes * gravity}).base(number); d.name == plainly && err == nil {
 				return fmt.Errorf("%s is a density, and a unit weight is wanted here; write %s kN/m3", quote(text), four(v))
 			}
 		}
 	}
-	return fmt.Errorf("%s: unknown unit %s%s", quote(text), quote(name), list)
+	if err := moreThanUnit(text, number, name, kind); err != nil {
+		return err
+	}
+	return fmt.Errorf("%s: unknown unit %s; %s", quote(text), quote(name), list)
 }
 
 // gravity turns a density in t/m3 into a unit weight in kN/m3.
@@ -313,11 +340,13 @@ func instead(v float64, from, to Kind) string {
 	return fmt.Sprintf("; write %s if %s is meant", as, why)
 }
 
-// four rounds to four figures, enough for a hint.
-func four(v float64) string {
+// rounded rounds to four figures, enough for a hint.
+func rounded(v float64) float64 {
 	r, _ := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 4, 64), 64)
-	return FormatNumber(r)
+	return r
 }
+
+func four(v float64) string { return FormatNumber(rounded(v)) }
 
 // Format writes a value in the base unit of the kind, as the shortest text that Parse reads back to the same value.
 // Infinite values and NaN, which no study holds, are written as "none" and "unknown".
@@ -392,14 +421,20 @@ func ParseNumber(text string) (float64, error) {
 		if fix := notFinite(name); fix != "" {
 			return 0, fmt.Errorf("%s: %s", quote(text), fix)
 		}
-		return 0, fmt.Errorf("%s is not a number", quote(text))
+		return 0, fmt.Errorf("%s is not a number; write one such as 12", quote(text))
 	}
 	if err := misspelt(text, number, ""); err != nil {
 		return 0, err
 	}
 	if name != "" {
-		if v, err := number64(number, -2); name == "%" && err == nil {
+		switch v, err := number64(number, -2); {
+		case err != nil:
+		case name == "%" && (number[0] == '+' || number[0] == '-') && v > -1:
+			return 0, fmt.Errorf("%s: a number without a unit is wanted here; write %s if that change of 1 is meant", quote(text), four(1+v))
+		case name == "%":
 			number = FormatNumber(v)
+		case name == "k":
+			number = FormatNumber(v * 1e5)
 		}
 		return 0, fmt.Errorf("%s: a number without a unit is wanted here; write %s", quote(text), number)
 	}
@@ -416,12 +451,18 @@ const largestWhole = 1<<53 - 1
 
 // ParseWhole reads a whole number of magnitude below 2^53, written in digits only.
 func ParseWhole(text string) (int64, error) {
+	if whole := groups(plain(text)); wellSpelt(whole) && digits(whole) == len(whole) {
+		return 0, fmt.Errorf("%s: thousands are not marked; write %s", quote(text), whole)
+	}
 	v, err := ParseNumber(text)
 	if err != nil {
 		return 0, err
 	}
+	if whole := pointed(plain(text)); whole != "" {
+		return 0, fmt.Errorf("%s: a whole number is written in digits only; write %s if the point marks thousands", quote(text), whole)
+	}
 	if v != math.Trunc(v) {
-		return 0, fmt.Errorf("%s is not a whole number", quote(text))
+		return 0, fmt.Errorf("%s is not a whole number; write one such as %s", quote(text), FormatNumber(max(1, math.Round(min(v, 1e15)))))
 	}
 	if math.Abs(v) > largestWhole {
 		return 0, fmt.Errorf("%s is too large; whole numbers go up to %d", quote(text), int64(largestWhole))

@@ -2,6 +2,7 @@ package quantity
 
 import (
 	"fmt"
+	"regexp"
 	"strconv"
 	"strings"
 	"unicode"
@@ -30,10 +31,13 @@ func split(text string) (number, unit string) {
 		case isDigit(c):
 			digit = true
 			i++
-		case c == '.' || c == ',' || c == '_' || c == '\'' || (c == '+' || c == '-'):
+		case c == '.' || c == ',' || c == '_' || c == '+' || c == '-':
 			i++
-		case strings.HasPrefix(text[i:], "\u2019"): // an apostrophe between thousands
-			i += len("\u2019")
+		case (c == '\'' || strings.HasPrefix(text[i:], "\u2019")) && digits(strings.TrimLeft(text[i:], "'\u2019")) > 0: // an apostrophe between thousands
+			i++
+			if c != '\'' {
+				i += len("\u2019") - 1
+			}
 		case strings.HasPrefix(text[i:], "\u2212") || strings.HasPrefix(text[i:], "\u2013"): // minus sign, dash
 			i += len("\u2212")
 		case c == ' ' && i+1 < len(text) && isDigit(text[i+1]) && !strings.HasPrefix(text[i+1:], "1/"):
@@ -177,7 +181,18 @@ func misspelt(text, number, unit string) error {
 			return write("a number does not begin with a zero that means nothing", sign+cut)
 		}
 	}
+	if whole, rest, ok := strings.Cut(s, ","); ok && wellSpelt(pointed(whole)+"."+rest) {
+		return write("thousands are not marked, and a decimal point is a full stop", sign+pointed(whole)+"."+rest)
+	}
 	return fmt.Errorf("%s: one decimal number is wanted, such as 12 or 0.5", quote(text))
+}
+
+// pointed removes the points between groups of three digits, and returns "" for a text that is not grouped so.
+func pointed(s string) string {
+	if !strings.Contains(s, ".") || strings.Contains(s, ",") {
+		return ""
+	}
+	return groups(strings.ReplaceAll(s, ".", ","))
 }
 
 // groups removes the marks between groups of three digits, with a decimal part allowed after them, and returns ""
@@ -217,8 +232,17 @@ func notANumber(text, rest string, kind Kind) error {
 	if fix := notFinite(rest); fix != "" {
 		return fmt.Errorf("%s: %s%s", quote(text), fix, want)
 	}
+	if m := ornament.FindStringSubmatch(text); m != nil {
+		if _, err := Parse(m[1], kind); err == nil {
+			return fmt.Errorf("%s is not %s; write %s", quote(text), kind, m[1])
+		}
+	}
 	return fmt.Errorf("%s is not %s%s", quote(text), kind, strings.Replace(want, kind.String(), "a number with its unit,", 1))
 }
+
+// ornament matches a quantity with signs or a word around it that mean more or less, or with the quotes of a word
+// processor.
+var ornament = regexp.MustCompile("^(?i:[~≈<>=≤≥“”„«»‘’\"'` ]+|(?:ca|c|approx|about|circa|around)\\.? )+([-+]?[0-9].*?)[“”„«»‘’\"'` ]*$")
 
 // example is a quantity of the kind, to show the form.
 func example(kind Kind) string {
