@@ -10,6 +10,7 @@ import (
 	"io"
 	"io/fs"
 	"os"
+	"path/filepath"
 	"slices"
 	"strings"
 	"syscall"
@@ -37,7 +38,13 @@ func Load(path string) (*Study, error) {
 	f, err := os.Open(path)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return nil, whole("there is no such file")
+		hint := ""
+		if near := fault.NearestFile(path, func(name string) bool {
+			return strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml")
+		}); near != "" {
+			hint = fmt.Sprintf("; did you mean %s?", filepath.ToSlash(filepath.Join(filepath.Dir(path), near)))
+		}
+		return nil, whole("there is no such file%s", hint)
 	case errors.Is(err, syscall.ENOTDIR), errors.Is(err, syscall.ENAMETOOLONG), errors.Is(err, syscall.EINVAL):
 		return nil, whole("this names no file that there could be")
 	case err != nil:
@@ -112,6 +119,8 @@ func readable(file string, src []byte) (string, error) {
 		return fail(0, 0, "the file is empty; a study begins with a line such as: study: Bank above the mill, drainage options")
 	case bytes.HasPrefix(src, []byte{0xff, 0xfe}) || bytes.HasPrefix(src, []byte{0xfe, 0xff}):
 		return fail(0, 0, "the file is UTF-16 text; save it as UTF-8")
+	case bytes.HasPrefix(src, []byte("PK\x03\x04")):
+		return fail(0, 0, "the file is a document of an office program or a zip archive; a study is plain text, saved as UTF-8")
 	case bytes.HasPrefix(src, []byte{0x1f, 0x8b}):
 		return fail(0, 0, "the file is compressed; a study is plain text")
 	}

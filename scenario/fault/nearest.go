@@ -1,6 +1,8 @@
 package fault
 
 import (
+	"os"
+	"path/filepath"
 	"strings"
 	"unicode/utf8"
 )
@@ -23,6 +25,33 @@ func Nearest(word string, known []string) string {
 		}
 	}
 	return best
+}
+
+// NearestFile returns the name of the file in the same folder that a path to none most likely stands for: one with the same
+// name but for what follows its first point, otherwise one whose name is close. It returns "" where there is none, and
+// looks only at names that the caller accepts.
+func NearestFile(path string, accept func(name string) bool) string {
+	entries, err := os.ReadDir(filepath.Dir(path))
+	if err != nil {
+		return ""
+	}
+	base := filepath.Base(path)
+	stem, _, _ := strings.Cut(base, ".")
+	var stems []string
+	names := map[string]string{}
+	for _, e := range entries {
+		if e.IsDir() || !accept(e.Name()) {
+			continue
+		}
+		s, _, _ := strings.Cut(e.Name(), ".")
+		if stem != "" && strings.EqualFold(s, stem) {
+			return e.Name()
+		}
+		if names[s] == "" {
+			stems, names[s] = append(stems, s), e.Name()
+		}
+	}
+	return names[Nearest(stem, stems)]
 }
 
 // distance is the least number of characters to insert, delete, replace or swap with their neighbour that makes a of b

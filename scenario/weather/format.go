@@ -61,7 +61,11 @@ func newLayout(format string) (*layout, error) {
 	if err == nil {
 		return l, nil
 	}
-	if meant := meantFormat(format); meant != "" && meant != format {
+	meant := meantFormat(format)
+	if formats := formatsOf(format); len(formats) > 0 { // a time in place of the format
+		meant = formats[0]
+	}
+	if meant != "" && meant != format {
 		return nil, fmt.Errorf("%q is not a time format: %w; write %q", format, err, meant)
 	}
 	return nil, fmt.Errorf("%q is not a time format: %w; write one such as %q, or iso", format, err, "YYYY-MM-DD hh:mm")
@@ -179,9 +183,9 @@ func meantFormat(format string) string {
 		p := -1
 		switch {
 		case end == i:
-		case c == 'y':
+		case c == 'y', (c == 'j' || c == 'a') && end-i == 4: // Jahr, année, año
 			p = year
-		case c == 'd':
+		case c == 'd', (c == 't' || c == 'j') && end-i == 2: // Tag, jour
 			p = dayOfMonth
 		case c == 'h':
 			p = hour
@@ -388,10 +392,13 @@ func (l *layout) explain(b []byte) *trouble {
 		return l.explainISO(string(b))
 	}
 	if v, ok := l.read(b); ok {
+		if d := v[dayOfMonth]; v[month] > 12 && v[month] <= 31 && d >= 1 && d <= 12 && l.hasDay() {
+			return wrong("%q has no month %d; write the format as %s if that is the day", b, v[month], swapped(l.format))
+		}
 		return wrongPart(b, v)
 	}
-	return wrong("%q does not match the format %s, in which a time reads %q", b, l.format,
-		l.text(time.Date(2019, 3, 31, 14, 5, 0, 0, time.UTC), ""))
+	return wrong("%q does not match the format %s, in which a time reads %q%s", b, l.format,
+		l.text(time.Date(2019, 3, 31, 14, 5, 0, 0, time.UTC), ""), l.meantTime(string(b)))
 }
 
 func (l *layout) explainISO(text string) *trouble {

@@ -5,7 +5,9 @@ import (
 	"fmt"
 	"io"
 	"slices"
+	"strconv"
 	"strings"
+	"unicode"
 
 	"quietslope/scenario/fault"
 )
@@ -136,7 +138,7 @@ func (r *reader) missingColumns(names, wanted []string) error {
 			"text before the header is not supported yet", at, quoteList(wanted))
 	}
 	if len(names) < 2 {
-		what := "no comma, semicolon or tab"
+		what := "no comma, semicolon or tab to separate them"
 		if names == nil {
 			what = "quotes that do not fit"
 		}
@@ -147,17 +149,52 @@ func (r *reader) missingColumns(names, wanted []string) error {
 	if slices.ContainsFunc(names, func(n string) bool { _, ok := parseNumber([]byte(n), true); return ok }) {
 		hint = "; the first line must be the header, and this one has numbers"
 	}
+	near := map[string]string{}
+	for _, w := range wanted {
+		if n := meantColumn(w, names); n != "" && !slices.Contains(wanted, n) {
+			near[w] = fmt.Sprintf("; is %q meant?", n)
+		}
+	}
+	if len(near) == 0 && !slices.ContainsFunc(names, func(n string) bool { return slices.Contains(wanted, n) }) {
+		return r.fatal(first, "the header has none of the columns %s, only %s%s", quoteList(wanted), quoteList(names), hint)
+	}
 	for _, w := range wanted {
 		if slices.Contains(names, w) {
 			continue
 		}
-		near := ""
-		if n := fault.Nearest(w, names); n != "" {
-			near = fmt.Sprintf("; is %q meant?", n)
-		}
-		r.problem(first, w, "the header has no such column, only %s%s%s", quoteList(names), near, hint)
+		r.problem(first, w, "the header has no such column, only %s%s%s", quoteList(names), near[w], hint)
 	}
 	return errStop
+}
+
+// meantColumn is the column that a name may stand for: one with the same letters, one close to it, or the one that a
+// spreadsheet's letter or a number counts to. It is "" where there is none.
+func meantColumn(name string, names []string) string {
+	letters := func(s string) string {
+		s, _, _ = strings.Cut(strings.ReplaceAll(s, "(", "["), " [") // without a unit
+		return strings.Map(func(c rune) rune {
+			if unicode.IsLetter(c) || unicode.IsDigit(c) {
+				return unicode.ToLower(c)
+			}
+			return -1
+		}, s)
+	}
+	for _, n := range names {
+		if letters(n) == letters(name) {
+			return n
+		}
+	}
+	if n := fault.Nearest(name, names); n != "" {
+		return n
+	}
+	at, err := strconv.Atoi(name)
+	if len(name) == 1 && name[0]|0x20 >= 'a' && name[0]|0x20 <= 'z' {
+		at, err = int(name[0]|0x20-'a')+1, nil
+	}
+	if err == nil && at >= 1 && at <= len(names) {
+		return names[at-1]
+	}
+	return ""
 }
 
 // headerBelow looks for the header in the lines below the first; 0 when it is not there.

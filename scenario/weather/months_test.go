@@ -110,7 +110,7 @@ func TestMonthRefusals(t *testing.T) {
 		{"a month has no end", monthly("YYYY-MM", true), months("2020-01", "2020-02"),
 			`w.csv: column "time": the format YYYY-MM names a month and no end of it; write weather.stamp: start, with which each row is of the month that it names`},
 		{"a day in the format of months", monthly("YYYY-MM", false), months("2020-01-01", "2020-02-01"),
-			`w.csv:2: column "time": "2020-01-01" does not match the format YYYY-MM, in which a time reads "2019-03" (and in 1 more row)`},
+			`w.csv:2: column "time": "2020-01-01" does not match the format YYYY-MM, in which a time reads "2019-03"; write the format as YYYY-MM-DD (and in 1 more row)`},
 		{"month 13", monthly("YYYY-MM", false), months("2020-12", "2020-13"), `w.csv:3: column "time": "2020-13" has no month 13; is the order of day and month right in the format?`},
 
 		{"the fifteenth", monthly("YYYY-MM-DD", first), months("2020-01-15", "2020-02-15", "2020-03-15"),

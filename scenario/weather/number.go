@@ -107,15 +107,16 @@ func (c *codes) hasText(cell []byte) bool {
 }
 
 // notNumber says why a cell is refused that is neither a number nor a missing code, and what to write.
-func notNumber(cell []byte, comma bool) *trouble {
-	const orMissing = "if it stands for a missing value, list it in weather.missing"
+func notNumber(cell []byte, comma bool, missing []string) *trouble {
+	const orMissing = "if it stands for a missing value, list it in weather.missing%s"
 	text := string(cell)
+	list := listed(text, missing)
 	if text == "" {
 		return wrong(`"" is not a number; if a blank cell stands for a missing value, list "" in weather.missing`)
 	}
 	switch strings.ToLower(strings.TrimLeft(text, "+-")) {
 	case "nan", "inf", "infinity":
-		return wrong("%q is not accepted as a value; "+orMissing, text)
+		return wrong("%q is not accepted as a value; "+orMissing, text, list)
 	}
 	if _, err := strconv.ParseFloat(text, 64); err != nil && strings.Contains(err.Error(), strconv.ErrRange.Error()) {
 		return wrong("%q is too large for a number", text)
@@ -128,5 +129,13 @@ func notNumber(cell []byte, comma bool) *trouble {
 	if bytes.ContainsAny(cell, ",") {
 		return wrong("%q is not a number; write it without a thousands mark, with a point as decimal mark", text)
 	}
-	return wrong("%q is not a number; "+orMissing, text)
+	switch m := withMore.FindStringSubmatch(text); {
+	case m != nil:
+		return wrong("%q is a number with something after it; write %s alone, and its unit in the study", text, m[1])
+	case below.MatchString(text):
+		return wrong("%q is not a number; write 0 for a trace", text)
+	case strings.EqualFold(text, "t"), strings.EqualFold(text, "tr"), strings.EqualFold(text, "trace"):
+		return wrong("%q is not a number; write 0 for a trace, or, "+orMissing, text, list)
+	}
+	return wrong("%q is not a number; "+orMissing, text, list)
 }

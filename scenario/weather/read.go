@@ -12,9 +12,11 @@ import (
 	"fmt"
 	"io"
 	"io/fs"
+	"math"
 	"os"
 	"path/filepath"
 	"slices"
+	"strconv"
 	"strings"
 	"syscall"
 	"time"
@@ -81,7 +83,7 @@ func open(ctx context.Context, src Source) (*os.File, int64, error) {
 	}
 	switch {
 	case errors.Is(o.err, fs.ErrNotExist):
-		return bad("there is no such file; the path of a weather file starts at the folder of the study file")
+		return bad("there is no such file; the path of a weather file starts at the folder of the study file" + meantFile(src))
 	case errors.Is(o.err, fs.ErrInvalid), errors.Is(o.err, syscall.ENOTDIR), errors.Is(o.err, syscall.ENAMETOOLONG):
 		return bad("this is not the path of a file")
 	case o.err != nil:
@@ -383,6 +385,10 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 		return false, nil
 	}
 	w.time = trim(r.fields[r.timeAt])
+	if w.line == 2 && r.notValues() {
+		r.inRow(w.line, "", wrong("this row has neither a time nor numbers; delete a second line of names or units below the header"))
+		return false, nil
+	}
 	at, offset, ok := r.layout.parse(w.time)
 	if !ok {
 		r.inRow(w.line, r.src.Time, r.layout.explain(w.time))
@@ -397,6 +403,24 @@ func (r *reader) parse(b []byte, w *row) (ok bool, err error) {
 		w.petV = r.value(w, w.pet, r.src.PET.Name, petMissing)
 	}
 	return ok, nil
+}
+
+// notValues says whether none of the columns of a row has what belongs there.
+func (r *reader) notValues() bool {
+	if _, _, ok := r.layout.parse(trim(r.fields[r.timeAt])); ok {
+		return false
+	}
+	at := []int{r.rainAt, r.petAt}
+	if r.petAt < 0 {
+		at = at[:1]
+	}
+	for _, i := range at {
+		cell := trim(r.fields[i])
+		if len(cell) == 0 || bytes.ContainsAny(cell, "0123456789") || r.missing.hasText(cell) {
+			return false
+		}
+	}
+	return true
 }
 
 // trim cuts the blanks off a cell. Most cells have none, and that is seen from their ends.
@@ -426,18 +450,26 @@ func (r *reader) value(w *row, cell []byte, column string, bit uint8) float64 {
 		w.missing |= bit
 		return 0
 	case !ok:
-		r.badCell(w.line, column, cell, notNumber(cell, r.comma))
+		r.badCell(w.line, column, cell, notNumber(cell, r.comma, r.src.Missing))
 		return 0
 	case v < 0 && bit == rainMissing:
 		r.badCell(w.line, column, cell, wrong("%q is negative rain; a negative code for a missing value belongs in "+
-			"weather.missing, and a trace of rain is written as 0", cell))
+			"weather.missing%s, and a trace of rain is written as 0", cell, r.listedCode(v)))
 		return 0
 	case v < 0:
 		r.badCell(w.line, column, cell, wrong("%q is negative evapotranspiration; a negative code for a missing value "+
-			"belongs in weather.missing, and dew is written as 0", cell))
+			"belongs in weather.missing%s, and dew is written as 0", cell, r.listedCode(v)))
 		return 0
 	}
 	return v
+}
+
+// listedCode shows how a number that looks like a code is listed as missing.
+func (r *reader) listedCode(v float64) string {
+	if v > -9 || v != math.Trunc(v) {
+		return ""
+	}
+	return listed(strconv.FormatFloat(v, 'f', -1, 64), r.src.Missing)
 }
 
 // trouble is what is wrong with a row. Troubles of one format are of one kind.

@@ -260,11 +260,9 @@ func TestRefusals(t *testing.T) {
 			"w.csv:1: column \"rain\": the header has no such column, only \"date\", \"rain_mm\", \"Pet\"\n" +
 				"w.csv:1: column \"pet\": the header has no such column, only \"date\", \"rain_mm\", \"Pet\"; is \"Pet\" meant?"},
 		{"no header", daily(), "2020-01-01,1,2\n2020-01-02,1,2\n",
-			"w.csv:1: column \"date\": the header has no such column, only \"2020-01-01\", \"1\", \"2\"; the first line must be the header, and this one has numbers\n" +
-				"w.csv:1: column \"rain\": the header has no such column, only \"2020-01-01\", \"1\", \"2\"; the first line must be the header, and this one has numbers\n" +
-				"w.csv:1: column \"pet\": the header has no such column, only \"2020-01-01\", \"1\", \"2\"; the first line must be the header, and this one has numbers"},
+			`w.csv:1: the header has none of the columns "date", "rain", "pet", only "2020-01-01", "1", "2"; the first line must be the header, and this one has numbers`},
 		{"no separator", daily(), "date rain pet\n2020-01-01 1 2\n",
-			`w.csv:1: the first line must be the header with the names of the columns ("date", "rain", "pet"), but it has no comma, semicolon or tab`},
+			`w.csv:1: the first line must be the header with the names of the columns ("date", "rain", "pet"), but it has no comma, semicolon or tab to separate them`},
 		{"text above the header", daily(), "Station 7\nrain in mm, pet too\n\n" + days("2020-01-01,1,2"),
 			`w.csv:1: the first line is not the header; line 4 has the columns "date", "rain", "pet". Delete the lines above it; text before the header is not supported yet`},
 		{"name twice", daily(), "date,rain,rain,pet\n2020-01-01,1,1,2\n", `w.csv:1: column "rain": the header has this name twice, in columns 2 and 3; rename one`},
@@ -292,15 +290,15 @@ func TestRefusals(t *testing.T) {
 		{"thousands", daily(), "date;rain;pet\n2020-01-01;1.234,5;2\n2020-01-02;1;2\n",
 			`w.csv:2: column "rain": "1.234,5" is not a number; write it without a thousands mark, with a point as decimal mark`},
 		{"word", daily(), days("2020-01-01,dry,2", "2020-01-02,1,2 mm"),
-			"w.csv:2: column \"rain\": \"dry\" is not a number; if it stands for a missing value, list it in weather.missing\n" +
-				"w.csv:3: column \"pet\": \"2 mm\" is not a number; if it stands for a missing value, list it in weather.missing"},
+			"w.csv:2: column \"rain\": \"dry\" is not a number; if it stands for a missing value, list it in weather.missing, as in missing: [\"\", \"NA\", \"dry\"]\n" +
+				"w.csv:3: column \"pet\": \"2 mm\" is a number with something after it; write 2 alone, and its unit in the study"},
 		{"blank cell", hourly(), "time,rain\n2020-01-01 00:00,\n2020-01-01 01:00,1\n",
 			`w.csv:2: column "rain": "" is not a number; if a blank cell stands for a missing value, list "" in weather.missing`},
 		{"NaN and Inf", daily(), days("2020-01-01,NaN,-inf", "2020-01-02,1,+Infinity"),
-			"w.csv:2: column \"rain\": \"NaN\" is not accepted as a value; if it stands for a missing value, list it in weather.missing\n" +
-				"w.csv:2: column \"pet\": \"-inf\" is not accepted as a value; if it stands for a missing value, list it in weather.missing (and in 1 more row; also \"+Infinity\")"},
+			"w.csv:2: column \"rain\": \"NaN\" is not accepted as a value; if it stands for a missing value, list it in weather.missing, as in missing: [\"\", \"NA\", \"NaN\"]\n" +
+				"w.csv:2: column \"pet\": \"-inf\" is not accepted as a value; if it stands for a missing value, list it in weather.missing, as in missing: [\"\", \"NA\", \"-inf\"] (and in 1 more row; also \"+Infinity\")"},
 		{"hexadecimal", daily(), days("2020-01-01,0x1p3,2", "2020-01-02,1,2"),
-			`w.csv:2: column "rain": "0x1p3" is not a number; if it stands for a missing value, list it in weather.missing`},
+			`w.csv:2: column "rain": "0x1p3" is not a number; if it stands for a missing value, list it in weather.missing, as in missing: ["", "NA", "0x1p3"]`},
 		{"too large a number", daily(), days("2020-01-01,1e999,2", "2020-01-02,1,2"), `w.csv:2: column "rain": "1e999" is too large for a number`},
 		{"negative rain", daily(), days("2020-01-01,-1,2", "2020-01-02,-1,2", "2020-01-03,-0.5,2", "2020-01-04,-1,2"),
 			`w.csv:2: column "rain": "-1" is negative rain; a negative code for a missing value belongs in weather.missing, and a trace of rain is written as 0 (and in 3 more rows; also "-0.5")`},
@@ -322,7 +320,7 @@ func TestRefusals(t *testing.T) {
 		{"29 February", daily(), days("2019-02-28,1,2", "2019-02-29,1,2", "2019-03-01,1,2"), `w.csv:3: column "date": "2019-02-29" does not exist: 2019 is not a leap year`},
 		{"29 February 1900", daily(), days("1900-02-28,1,2", "1900-02-29,1,2", "1900-03-01,1,2"), `w.csv:3: column "date": "1900-02-29" does not exist: 1900 is not a leap year`},
 		{"31 April", daily(), days("2019-04-30,1,2", "2019-04-31,1,2", "2019-05-01,1,2"), `w.csv:3: column "date": "2019-04-31" does not exist: April 2019 has 30 days`},
-		{"month 13", daily(), days("2019-12-31,1,2", "2019-13-01,1,2"), `w.csv:3: column "date": "2019-13-01" has no month 13; is the order of day and month right in the format?`},
+		{"month 13", daily(), days("2019-12-31,1,2", "2019-13-01,1,2"), `w.csv:3: column "date": "2019-13-01" has no month 13; write the format as YYYY-DD-MM if that is the day`},
 		{"year 0219", daily(), days("0219-12-31,1,2", "2020-01-01,1,2", "2020-01-02,1,2"), `w.csv:2: column "date": "0219-12-31" is in the year 219; years from 1600 to 2500 are read`},
 		{"hour 24", hourly(), hours("2020-01-01 23:00", "2020-01-01 24:00", "2020-01-02 01:00"), `w.csv:3: column "time": "2020-01-01 24:00" has the hour 24; write 00 of the next day`},
 		{"hour 25", hourly(), hours("2020-01-01 23:00", "2020-01-01 25:00", "2020-01-02 01:00"), `w.csv:3: column "time": "2020-01-01 25:00" has the hour 25; hours run from 00 to 23`},
@@ -330,7 +328,7 @@ func TestRefusals(t *testing.T) {
 		{"second 60", iso, hours("2020-01-01T23:00:00Z", "2020-01-01T23:59:60Z", "2020-01-02T01:00:00Z"), `w.csv:3: column "time": "2020-01-01T23:59:60Z" has the second 60; seconds run from 00 to 59`},
 		{"no time", daily(), days("2020-01-01,1,2", ",1,2", "2020-01-03,1,2"), `w.csv:3: column "date": "" is no time; every row needs one`},
 		{"another format", daily(), days("01/02/2020,1,2", "2020-1-2,1,2"),
-			`w.csv:2: column "date": "01/02/2020" does not match the format YYYY-MM-DD, in which a time reads "2019-03-31" (and in 1 more row)`},
+			`w.csv:2: column "date": "01/02/2020" does not match the format YYYY-MM-DD, in which a time reads "2019-03-31"; write the format as DD/MM/YYYY if the days come first, or MM/DD/YYYY if the months do (and in 1 more row)`},
 		{"letters in a time", daily(), days("2020-01-01,1,2", "2020-Ja-02,1,2", "2020-01-03,1,2"),
 			`w.csv:3: column "date": "2020-Ja-02" does not match the format YYYY-MM-DD, in which a time reads "2019-03-31"`},
 		{"iso without offset", iso, hours("2020-01-01T00:00:00", "2020-01-01T01:00:00Z", "2020-01-01T02:00:00Z"),
@@ -387,7 +385,7 @@ func TestRefusals(t *testing.T) {
 		{"every other row unreadable", daily(), days("2020-01-01,1,2", "2020-01-02,1,2", "2020-01-03,1,2", "x", "2020-01-05,1,2", "x", "2020-01-07,1,2", "x", "2020-01-09,1,2", "x", "2020-01-11,1,2"),
 			"w.csv:5: the row has 1 field where the header has 3 (and in 3 more rows)"},
 		{"months read as days", hourlyOf("MM/DD/YYYY"), hours("11/01/2020", "12/01/2020", "13/01/2020", "14/01/2020", "30/01/2020", "31/01/2020", "01/02/2020", "02/02/2020", "03/02/2020"),
-			`w.csv:4: column "time": "13/01/2020" has no month 13; is the order of day and month right in the format? (and in 3 more rows)`},
+			`w.csv:4: column "time": "13/01/2020" has no month 13; write the format as DD/MM/YYYY if that is the day (and in 3 more rows)`},
 		{"centuries apart", hourlyOf("YYYY-MM-DD"), hours("1600-01-01", "2500-01-01"), "w.csv: the rows are 900 years apart; steps run from 1 min to 1 d, or are calendar months"},
 		{"off the step by centuries", hourly(), hours("1600-01-01 00:00", "1600-01-01 01:00", "2400-01-01 01:30", "2400-01-01 02:30"),
 			`w.csv:4: column "time": "2400-01-01 01:30" comes 420759390 min after "1600-01-01 01:00" in line 3, but the step is 1 h; every time must be one step after the one before`},

@@ -51,7 +51,8 @@ const maxGaps = 10
 // series puts rows in the order of time, or says which are out of it. Its times are stamps in seconds since 1970, of
 // months the numbers of the months.
 type series struct {
-	head []row // the first rows, until the step is known
+	head   []row // the first rows, until the step is known
+	inDays bool  // most of them have the day of the one before and no hour
 
 	step      int64 // s, or 1 month; 0 until it is known
 	months    bool  // the steps are calendar months
@@ -108,6 +109,13 @@ func (r *reader) settle() error {
 		}
 		return r.fatal(r.head[0].line, "this is the only row; a record needs two at least, and a study some years of them")
 	}
+	same := 0
+	for i := range r.head[1:] {
+		if r.head[i].at == r.head[i+1].at {
+			same++
+		}
+	}
+	r.inDays = 2*same > len(r.head) && !r.layout.iso && r.layout.at[hour] < 0
 	step := commonest(alike(differences(r.head)))
 	a, b := &r.head[0], &r.head[1]
 	switch {
@@ -283,6 +291,9 @@ func (r *reader) misplaced(w *row, d int64) (keep bool) {
 	var t *trouble
 	switch {
 	case d == 0:
+		if r.inDays {
+			hint = "; most times repeat the one before, so give the hour in this column too, as in YYYY-MM-DD hh:mm"
+		}
 		t = wrong("%q repeats line %d"+hint, w.time, r.lastLine)
 	case d < 0:
 		t = wrong("%q comes before %q in line %d"+hint, w.time, before, r.lastLine)

@@ -57,6 +57,10 @@ func DepthUnit(unit string) (Unit, error) {
 	case "in/h":
 		u.mul, u.per = mmPerInch, time.Hour
 	default:
+		switch lower := strings.ToLower(name); lower {
+		case "mm", "cm", "in", "mm/h", "mm/d", "in/h":
+			return Unit{}, fmt.Errorf("unknown unit %q; write %q", unit, strings.TrimSpace(number+" "+lower))
+		}
 		if meant := meantUnit[strings.ToLower(name)]; meant != "" {
 			return Unit{}, fmt.Errorf("unknown unit %q; write %q", unit, strings.TrimSpace(number+" "+meant))
 		}
