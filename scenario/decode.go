@@ -3,6 +3,7 @@ package scenario
 import (
 	"fmt"
 	"math"
+	"regexp"
 	"slices"
 	"strings"
 	"time"
@@ -68,6 +69,8 @@ func (v *value) or(instead float64) float64 {
 type decoder struct {
 	*problems
 	places map[string]Place
+	// What is said once, though it holds for several bands or options.
+	misordered, noConductivity bool
 }
 
 // readBlock reads the keys of a block. A nil node stands for a block that is left out and whose keys all have
@@ -87,7 +90,7 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 			i := slices.Index(known, e.key)
 			switch {
 			case i < 0:
-				if meant := d.unknownKey(at, e.key, fields); meant != "" {
+				if meant := d.unknownKey(at, e.key, place.Key, fields); meant != "" {
 					refused[meant] = true // said already
 				}
 				continue
@@ -119,7 +122,11 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 		case f.need != "" && b.partial:
 			b.values[f.name] = &value{place: at, bad: true, num: math.NaN()}
 		case f.need != "":
-			d.add(at, "the key is missing; give %s", f.needed())
+			above := ""
+			if i := strings.LastIndexByte(place.Key, '['); f.name == "name" && i >= 0 && !strings.HasSuffix(place.Key, "[0]") {
+				above = ", or delete the - if these keys belong to the item above"
+			}
+			d.add(at, "the key is missing; give %s%s", f.needed(), above)
 			b.values[f.name] = &value{place: at, bad: true, num: math.NaN()}
 		default:
 			b.values[f.name] = d.standIn(f, at)
@@ -168,37 +175,63 @@ func (d *decoder) standIn(f *field, at Place) *value {
 }
 
 // unknownKey reports a key that the block does not have, and returns the key that may have been meant.
-func (d *decoder) unknownKey(at Place, key string, fields []field) string {
+func (d *decoder) unknownKey(at Place, key, path string, fields []field) string {
 	var known []string
 	for _, f := range fields {
 		if !f.later {
 			known = append(known, f.name)
 		}
 	}
-	near := fault.Nearest(key, known)
+	if len(known) == len(settable) && known[0] == settable[0].name {
+		return d.unknownSetting(at, key, known)
+	}
+	near, note := meantKey(key, path, known)
+	elsewhere := blocksWith(key, &studyShape, "")
+	if near == "" && len(elsewhere) == 0 {
+		near = partOf(key, known)
+	}
 	switch {
-	case len(known) == len(settable) && known[0] == settable[0].name:
-		short := strings.TrimPrefix(key, "ground.")
-		switch {
-		case slices.Contains(known, short):
-			d.add(at, "set names the numbers of ground without that word; write %s", short)
-		case strings.HasSuffix(key, "thickness"):
-			d.add(at, "a thickness cannot be set, because levels and drains hang on it; the keys of set are %s", joinWords(known, "and"))
-		case near != "":
-			d.add(at, "unknown key; did you mean %s? The keys of set are %s", near, joinWords(known, "and"))
-		default:
-			d.add(at, "unknown key; the keys of set are %s", joinWords(known, "and"))
-		}
 	case near != "":
-		d.add(at, "unknown key; did you mean %s?", near)
-	case len(blocksWith(key, &studyShape, "")) > 0:
+		d.add(at, "unknown key; did you mean %s%s?", near, note)
+	case blockOf(path) == "options" && slices.ContainsFunc(settable, func(f field) bool { return f.name == key }):
+		d.add(at, "a number of ground is changed under set; write set: {%s: …}", key)
+	case len(elsewhere) > 0:
 		here := ""
-		if len(known) <= 6 {
+		if len(known) <= 8 {
 			here = "; the keys here are " + joinWords(known, "and")
 		}
-		d.add(at, "this key does not belong here; it stands under %s%s", joinWords(blocksWith(key, &studyShape, ""), "or"), here)
+		d.add(at, "this key does not belong here; it stands under %s%s", joinWords(elsewhere, "or"), here)
 	default:
 		d.add(at, "unknown key; the keys here are %s", joinWords(known, "and"))
+	}
+	return near
+}
+
+// unknownSetting is unknownKey of a set.
+func (d *decoder) unknownSetting(at Place, key string, known []string) string {
+	var ends, begins []string
+	for _, k := range known {
+		if strings.HasSuffix(k, "."+key) {
+			ends = append(ends, k)
+		}
+		if strings.HasPrefix(k, key+".") {
+			begins = append(begins, k)
+		}
+	}
+	near := fault.Nearest(key, known)
+	switch short := strings.TrimPrefix(key, "ground."); {
+	case slices.Contains(known, short):
+		d.add(at, "set names the numbers of ground without that word; write %s", short)
+	case strings.HasSuffix(key, "thickness"):
+		d.add(at, "a thickness cannot be set, because levels and drains hang on it; write a study of its own for it")
+	case len(begins) > 0:
+		d.add(at, "set names each number in one word; write %s", joinWords(begins, "or"))
+	case len(ends) > 0:
+		d.add(at, "unknown key; did you mean %s?", joinWords(ends, "or"))
+	case near != "":
+		d.add(at, "unknown key; did you mean %s? The keys of set are %s", near, joinWords(known, "and"))
+	default:
+		d.add(at, "unknown key; the keys of set are %s", joinWords(known, "and"))
 	}
 	return near
 }
@@ -298,15 +331,38 @@ func (d *decoder) readItem(n *node, s *shape, key string, list Place) *value {
 	d.places[key] = at
 	if n.is != blockNode {
 		hint := noBlank(n.text)
-		if hint == "" {
-			hint = fmt.Sprintf("a block of keys such as %s is wanted here", blockForm(s))
+		switch form := blockForm(s); {
+		case hint != "":
+		case n.is == listNode:
+			hint = fmt.Sprintf("a block of keys such as %s is wanted here, between { and }, not a list", form)
+		case s.fields[0].name == "name":
+			hint = fmt.Sprintf("a block of keys such as %s is wanted here; write name: %s", form, cutText(n.text))
+		default:
+			hint = fmt.Sprintf("a block of keys such as %s is wanted here", form)
 		}
+		d.add(at, "%s", hint)
+		v.bad = true
+		return v
+	}
+	if hint := namedByKey(n, s); hint != "" {
 		d.add(at, "%s", hint)
 		v.bad = true
 		return v
 	}
 	v.block = d.readBlock(n, s.fields, at)
 	return v
+}
+
+// namedByKey says what to write for an item such as "watch: 3.6 m", whose name stands in the place of a key.
+func namedByKey(n *node, s *shape) string {
+	if len(n.entries) != 1 || n.entries[0].value == nil || n.entries[0].value.is != textNode || len(s.fields) < 2 || s.fields[1].name != "level" {
+		return ""
+	}
+	e := n.entries[0]
+	if studyKeys()[e.key] || e.key == "" || fault.Nearest(e.key, []string{"name", "level", "elevation"}) != "" {
+		return ""
+	}
+	return fmt.Sprintf("the name of an item is a value of its own; write {name: %s, level: %s}", cutText(listText(e.key)), cutText(e.value.text))
 }
 
 // readTexts reads a list of texts.
@@ -435,8 +491,8 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		v.num, err = quantity.Parse(n.text, s.kind)
 		if inYears := s.form == formYears || s.kind == quantity.Duration && s.limits.lo >= 365; err != nil && inYears {
 			meant := "4"
-			if x, err := quantity.ParseWhole(n.text); err == nil && x > 0 {
-				meant = quantity.FormatNumber(float64(x))
+			if m := someYears.FindStringSubmatch(n.text); m != nil {
+				meant = m[1]
 			}
 			err = fmt.Errorf("%s is not a number of years; write one such as %s y", quoted(n.text), meant)
 		}
@@ -445,22 +501,41 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		if len(s.words) > 0 && !strings.ContainsFunc(n.text, unicode.IsDigit) {
 			return bad("%v, or %s", err, joinWords(s.words, "or"))
 		}
+		if m := shareAndWord.FindStringSubmatch(n.text); m != nil && strings.HasPrefix(at.Key, "conditions[") {
+			if x, err := quantity.Parse(m[1], quantity.Share); err == nil && x >= 0 && x <= 1 {
+				return bad("%s: the share that is left is wanted here, and nothing else; write %s if %s is lost", quoted(n.text), quantity.Format(math.Round((1-x)*1e6)/1e6, quantity.Share), m[1])
+			}
+		}
 		return bad("%v", err)
 	}
 	switch s.form {
 	case formNumber, formWhole, formQuantity:
 		if !s.limits.hold(v.num) {
-			return bad("%s is out of range; write a value %s", quoted(n.text), s.limits.words(s))
+			left := ""
+			if strings.HasPrefix(at.Key, "conditions[") && v.num > -1 && v.num < 0 {
+				left = fmt.Sprintf("; it is the share that is left, so write %s if that much is lost", quantity.Format(math.Round((1+v.num)*1e6)/1e6, quantity.Share))
+			}
+			return bad("%s is out of range; write a value %s%s", quoted(n.text), s.limits.words(s), left)
 		}
 	case formYears:
 		years := v.num / 365.25
 		if math.Abs(years-math.Round(years)) > 1e-9 || !s.limits.hold(math.Round(years)) {
-			return bad("%s is not a whole number of years from 0 y to %s", quoted(n.text), quantity.FormatNumber(s.limits.hi)+" y")
+			meant := ""
+			if up := math.Ceil(years); s.limits.hold(up) {
+				meant = fmt.Sprintf("; write %s y", quantity.FormatNumber(up))
+			}
+			return bad("%s is not a whole number of years from 0 y to %s y%s", quoted(n.text), quantity.FormatNumber(s.limits.hi), meant)
 		}
 		v.num = math.Round(years)
 	}
 	return v
 }
+
+// shareAndWord is a share with words after it, such as "55 % lost".
+var shareAndWord = regexp.MustCompile(`^([0-9.]+ *%) *\pL`)
+
+// someYears are whole years without a unit or with another word for it.
+var someYears = regexp.MustCompile(`^([1-9][0-9]{0,3}) *(?:[yYaAjJ].*)?$`)
 
 func (l limits) hold(x float64) bool {
 	return x >= l.lo && x <= l.hi && !(l.loOpen && x == l.lo) && !(l.hiOpen && x == l.hi)
@@ -498,8 +573,17 @@ func (s *shape) meantWord(text string) string {
 		}
 	}
 	words := s.words
+	if text != "" {
+		begin := func(w string) bool { return strings.HasPrefix(w, strings.ToLower(text)) }
+		if i := slices.IndexFunc(words, begin); i >= 0 && !slices.ContainsFunc(words[i+1:], begin) {
+			return words[i]
+		}
+	}
 	if near := fault.Nearest(text, words); near != "" {
 		return near
+	}
+	if i := slices.Index([]string{"yes", "no"}, strings.ToLower(text)); i >= 0 && slices.Equal(words, []string{"true", "false"}) {
+		return words[i]
 	}
 	if len(words) == 5 && words[0] == "yes" { // true and false are read too, but nobody needs to know
 		words = words[:3]
@@ -517,11 +601,21 @@ func monthNamed(text string) time.Month {
 	return 0
 }
 
+// foreignMonths are months in other languages that no English name is close to.
+var foreignMonths = map[string]time.Month{
+	"mär": time.March, "märz": time.March, "mars": time.March, "marzo": time.March, "mai": time.May, "mag": time.May, "maggio": time.May,
+	"okt": time.October, "ott": time.October, "dez": time.December, "dic": time.December, "déc": time.December, "décembre": time.December,
+	"avr": time.April, "avril": time.April, "juin": time.June, "giu": time.June, "giugno": time.June, "juil": time.July, "juillet": time.July,
+	"lug": time.July, "luglio": time.July, "août": time.August, "ago": time.August, "fév": time.February, "février": time.February,
+	"gen": time.January, "gennaio": time.January, "ene": time.January, "enero": time.January, "janvier": time.January, "set": time.September,
+}
+
 func meantMonth(text string) string {
 	var names []string
 	for m := time.January; m <= time.December; m++ {
 		names = append(names, m.String())
-		if len(text) >= 3 && len(text) <= 4 && strings.EqualFold(strings.TrimSuffix(text, "."), m.String()[:3]) {
+		short := strings.ToLower(strings.TrimSuffix(text, "."))
+		if len(short) >= 3 && (strings.HasPrefix(strings.ToLower(m.String()), short) || foreignMonths[short] == m) {
 			return m.String()
 		}
 	}

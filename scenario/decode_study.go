@@ -18,9 +18,27 @@ import (
 // carry rounding.
 const tie = 1e-9
 
+// anyKey says whether a tree has a key of a study, or one close to it, or nothing at all.
+func anyKey(root *node) bool {
+	var known []string
+	for _, f := range studyShape.fields {
+		known = append(known, f.name)
+	}
+	for _, e := range root.entries {
+		if near, _ := meantKey(e.key, "", known); near != "" {
+			return true
+		}
+	}
+	return len(root.entries) == 0
+}
+
 // decodeStudy reads a study from its tree. What is wrong is added to found; the study then is not to be used.
 func decodeStudy(root *node, found *problems) *Study {
 	d := &decoder{problems: found, places: map[string]Place{}}
+	if !anyKey(root) {
+		found.add(Place{}, "none of the keys of a study stands in this file; is it the right one? A study begins with a line such as: study: Bank above the mill, drainage options")
+		return nil
+	}
 	expandOptions(root, found)
 	file := d.readBlock(root, studyShape.fields, Place{})
 	s := &Study{
@@ -291,7 +309,7 @@ func (d *decoder) bands(s *Study, list *value) {
 			}
 		}
 		if band.GivenAs == "" {
-			if b != nil {
+			if b != nil && !b.partial {
 				d.add(item.place, "the band has no level; give level (above the base of the deep layer), elevation, below_ground or factor_of_safety")
 			}
 			s.Bands = append(s.Bands, band)
@@ -404,11 +422,13 @@ func (d *decoder) checkBand(s *Study, b *Band, onset, until *value) {
 	}
 	switch {
 	case b.Level <= tie:
-		d.add(onset.place, "%s%s is no critical level: it must lie above the base of the deep layer, at 0 m", quoted(onset.text), worked)
+		d.add(onset.place, "%s%s is no critical level: it must lie above the base of the deep layer, at 0 m%s", quoted(onset.text), worked, d.otherDatum(s, b, onset))
 	case b.Level >= s.Ground.DeepFullAt-tie:
-		d.add(onset.place, "%s%s can never be passed: the deep layer is full at %s above its base; lower the band, or correct ground.deep.full_at", quoted(onset.text), worked, metres(s.Ground.DeepFullAt))
-	case len(s.Bands) > 0:
-		if before := &s.Bands[len(s.Bands)-1]; b.Level <= before.Level+tie {
+		d.add(onset.place, "%s%s can never be passed: the deep layer is full at %s above its base; lower the band, or correct ground.deep.full_at%s",
+			quoted(onset.text), worked, metres(s.Ground.DeepFullAt), d.otherDatum(s, b, onset))
+	case len(s.Bands) > 0 && !d.misordered:
+		if before := &s.Bands[len(s.Bands)-1]; b.Level <= before.Level+tie && before.Level < s.Ground.DeepFullAt-tie {
+			d.misordered = true
 			d.add(onset.place, "bands rise from the first to the last, and this one, at %s above the base of the deep layer, is not above %s at %s; put them in order",
 				metres(b.Level), quoted(before.Name), metres(before.Level))
 		}
@@ -422,6 +442,28 @@ func (d *decoder) checkBand(s *Study, b *Band, onset, until *value) {
 	case b.Until < -tie:
 		d.add(until.place, "%s lies below the base of the deep layer, so that no event would ever end; until is given as %s too", quoted(until.text), b.GivenAs)
 	}
+}
+
+// otherDatum says in which other datum the number of a band given as a level would lie in the deep layer, and "" for
+// none: a depth or an elevation is easily written as a level.
+func (d *decoder) otherDatum(s *Study, b *Band, onset *value) string {
+	if b.GivenAs != "level" {
+		return ""
+	}
+	g := &s.Ground
+	ground := g.CoverThickness + g.DeepThickness // of the ground above the base of the deep layer
+	inside := func(level float64) bool { return level > tie && level < min(g.DeepFullAt, g.DeepThickness)-tie }
+	var meant []string
+	if depth := math.Abs(onset.num); inside(ground - depth) {
+		meant = append(meant, fmt.Sprintf("write below_ground: %s if it is a depth below ground", metres(depth)))
+	}
+	if !math.IsNaN(s.Site.GroundLevel) && inside(onset.num-s.Site.GroundLevel+ground) {
+		meant = append(meant, fmt.Sprintf("write elevation: %s if it is an elevation", metres(onset.num)))
+	}
+	if len(meant) == 0 {
+		return ""
+	}
+	return "; or " + strings.Join(meant, ", or ")
 }
 
 // checkUnique refuses a name that was used before, ignoring case.
@@ -735,7 +777,10 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 		return t
 	}
 	if !conductivity.given {
-		if g.CoverConductivity == 0 && !b.partial {
+		if g.CoverConductivity == 0 && !b.partial && d.noConductivity {
+			return t // said of an option above
+		} else if g.CoverConductivity == 0 && !b.partial {
+			d.noConductivity = true
 			d.add(b.place, "the spacing needs the conductivity of the cover; give conductivity here or as ground.cover.conductivity, such as 0.02 m/d")
 		} else {
 			conductivity.num, conductivity.shown = g.CoverConductivity, quantity.Format(g.CoverConductivity, quantity.Conductivity)

@@ -3,8 +3,10 @@ package scenario
 import (
 	"fmt"
 	"slices"
+	"strings"
 
 	"quietslope/scenario/fault"
+	"quietslope/scenario/quantity"
 )
 
 // mostValues is the largest number of values of a list, and so of the options that it makes.
@@ -269,6 +271,9 @@ func (x *expander) each(item *node) []*node {
 	if e := item.entry("name"); e != nil && e.value != nil && e.value.is == textNode && checkName(e.value.text) != "" {
 		return []*node{with(item, spots[0], first.value.items[0], e.value.text)} // so that the name is refused as it is written
 	}
+	if hint := x.withoutUnit(measure, &first); hint != "" {
+		return refuse(at, "%s", hint)
+	}
 	var made []*node
 	seen := map[string]bool{}
 	for _, v := range first.value.items {
@@ -287,6 +292,55 @@ func (x *expander) each(item *node) []*node {
 		return []*node{with(item, spots[0], nil, item.text1("name"))}
 	}
 	return made
+}
+
+// withoutUnit says what to write for a list of quantities of which some have no unit, as in [8, 12, 24 m], and "" for any
+// other.
+func (x *expander) withoutUnit(measure string, list *entry) string {
+	fields, _ := measureFields(measure)
+	f := slices.IndexFunc(fields, func(f field) bool { return f.name == list.key })
+	if f < 0 || fields[f].shape.form != formQuantity || fields[f].shape.bare != "" || fields[f].shape.kind == quantity.Share {
+		return ""
+	}
+	kind := fields[f].shape.kind
+	unit, bare := kind.Unit(), 0
+	for _, v := range list.value.items {
+		if v == nil || v.is != textNode || !strings.ContainsFunc(v.text, isDigit) {
+			return ""
+		}
+		if cut := strings.TrimSpace(strings.TrimLeft(v.text, "+-.0123456789eE")); cut != "" {
+			unit = cut
+		}
+	}
+	var right, joined []string // with a unit each; with the parts of a number that a decimal comma cut in two put together
+	whole := ""
+	for _, v := range list.value.items {
+		text := v.text
+		cut := false
+		if _, err := quantity.ParseNumber(text); err == nil {
+			bare++
+			line, next := []rune(x.src.line(v.line)), v.col-1+len([]rune(text))
+			cut = whole == "" && next+1 < len(line) && line[next] == ',' && isDigit(line[next+1])
+			text += " " + unit
+		}
+		if _, err := quantity.Parse(text, kind); err != nil {
+			return ""
+		}
+		right = append(right, text)
+		if cut {
+			whole = v.text + "."
+		} else {
+			joined = append(joined, whole+text)
+			whole = ""
+		}
+	}
+	switch {
+	case bare == 0:
+		return ""
+	case len(joined) < len(right):
+		return fmt.Sprintf("a comma ends an item of a list, so none can stand in a number; write [%s], or [%s]", cutText(strings.Join(joined, ", ")), cutText(strings.Join(right, ", ")))
+	}
+	return fmt.Sprintf("every value of a list has its unit; write [%s]", cutText(strings.Join(right, ", ")))
 }
 
 // madeName is the name of the option that a value of a list makes.

@@ -1,10 +1,13 @@
 package scenario
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"regexp"
 	"strings"
+	"sync"
+	"unicode"
 
 	"github.com/goccy/go-yaml"
 	"github.com/goccy/go-yaml/ast"
@@ -55,6 +58,9 @@ type entry struct {
 // is no tree to go on with.
 func readTree(found *problems) *node {
 	r := &treeReader{src: found.src, problems: found}
+	if r.refuseTable(); len(found.list) > 0 {
+		return nil
+	}
 	if r.refuseTabs(); len(found.list) > 0 {
 		return nil
 	}
@@ -100,7 +106,7 @@ func readTree(found *problems) *node {
 		if root.is == textNode {
 			what = "a text"
 		}
-		if hint := noBlank(root.text); hint != "" {
+		if hint := cmp.Or(noBlank(root.text), noColon(root.text)); hint != "" {
 			what += "; " + hint
 		}
 		r.add(Place{Line: root.line, Col: root.col}, "a study is a block of keys such as study, weather and ground, not %s", what)
@@ -113,16 +119,34 @@ func readTree(found *problems) *node {
 type treeReader struct {
 	src *source
 	*problems
-	used  [][]bool // by line and character: belongs to a text or key of the tree
-	runes [][]rune // the lines, as far as they were needed
+	used   [][]bool // by line and character: belongs to a text or key of the tree
+	runes  [][]rune // the lines, as far as they were needed
+	joined bool     // the text that was refused last holds a key that belongs to the block around it
 }
 
-// refuseTabs reports tabs that indent.
+// refuseTable reports a file that begins like a table, most likely the weather.
+func (r *treeReader) refuseTable() {
+	for i, line := range r.src.lines {
+		if isBlankOrComment(line) {
+			continue
+		}
+		if strings.ContainsAny(strings.TrimSpace(line), ",;\t") && !strings.ContainsAny(line, ":=：{}[]\"'") {
+			r.add(Place{Line: i + 1, Col: 1}, "this begins like a table, not like a study; name the study file, which in turn names its weather as weather.file")
+		}
+		return
+	}
+}
+
+// refuseTabs reports tabs, and the blanks of a word processor, that indent or stand after the dash of an item.
 func (r *treeReader) refuseTabs() {
 	for i, line := range r.src.lines {
 		indent := indentOf(line)
-		if tab := strings.IndexByte(indent, '\t'); tab >= 0 && len(indent) < len(line) {
+		rest := []rune(strings.TrimPrefix(line[len(indent):], "-"))
+		switch tab := strings.IndexByte(indent, '\t'); {
+		case tab >= 0 && len(indent) < len(line):
 			r.add(Place{Line: i + 1, Col: tab + 1}, "a tab is used for indenting; use blanks")
+		case len(rest) > 0 && unicode.Is(unicode.Zs, rest[0]) && rest[0] != ' ' && strings.TrimSpace(string(rest)) != "":
+			r.add(Place{Line: i + 1, Col: len([]rune(line)) - len(rest) + 1}, "a blank that is not a plain one (U+%04X) is used for indenting; write plain blanks, as the space bar makes them", rest[0])
 		}
 	}
 }
@@ -151,6 +175,10 @@ func (r *treeReader) refuseTokens(tokens token.Tokens) {
 		case token.AnchorType:
 			r.add(at, "anchors (&) are not used in a study; put a text that begins with & between quotes")
 		case token.AliasType:
+			if hint := r.itemMark(at.Line); hint != "" {
+				r.add(at, "%s", hint)
+				return
+			}
 			r.add(at, "aliases (*) are not used in a study; put a text that begins with * between quotes")
 		case token.TagType:
 			r.add(at, "tags (!) are not used in a study; put a text that begins with ! between quotes")
@@ -286,6 +314,7 @@ func (r *treeReader) readEntry(block *node, v *ast.MappingValueNode, path string
 	e := entry{key: key, line: at.Line, col: at.Col}
 	scalar := &node{}
 	if !r.readText(scalar, keyToken, full) {
+		block.partial = true
 		return
 	}
 	colon := v.Start != nil && v.Start.Type == token.MappingValueType
@@ -295,11 +324,28 @@ func (r *treeReader) readEntry(block *node, v *ast.MappingValueNode, path string
 		if r.numberSplit(block, at, key) {
 			return
 		}
-		r.add(at, "%s has neither colon nor value; write it as key: value", quoted(key))
+		if studyKeys()[key] {
+			r.add(at, "%s has neither colon nor value; write it as %s: …", quoted(key), key)
+			break
+		}
+		at.Key = path
+		block.partial = true
+		hint := noColon(key)
+		if hint == "" {
+			hint = r.textSplit(block, at.Line, key)
+		}
+		r.add(at, "%s", hint)
+		return
 	case r.after(v.Start) == '\t':
 		r.add(r.placeOf(v.Start, full), "a tab stands after the key's colon; use a blank")
 	case r.after(v.Start) != ' ':
-		r.add(r.placeOf(v.Start, full), "a plain blank stands after a key's colon; put a text that holds a colon between quotes")
+		hint := "put a text that holds a colon between quotes"
+		if text, ok := v.Value.(*ast.StringNode); ok && oneKey.MatchString(key) && studyKeys()[key] {
+			hint = fmt.Sprintf("write %s: %s", key, cutText(text.Value))
+		} else if number, ok := v.Value.(ast.ScalarNode); ok && oneKey.MatchString(key) && studyKeys()[key] {
+			hint = fmt.Sprintf("write %s: %s", key, cutText(number.GetToken().Value))
+		}
+		r.add(r.placeOf(v.Start, full), "a plain blank stands after a key's colon; %s", hint)
 	case !isText:
 		r.add(at, "a key is a word, and %s is not one; put it between quotes if it is meant", quoted(key))
 		return
@@ -308,9 +354,16 @@ func (r *treeReader) readEntry(block *node, v *ast.MappingValueNode, path string
 		at = r.placeOf(v.Value.GetToken(), full)
 		r.add(at, "%q stands for nothing; write a value, put the word between quotes if it is meant as text, or delete the key", v.Value.GetToken().Value)
 	case isNull || v.Value == nil:
-		r.add(at, "nothing stands after the colon; write a value, or delete the key")
+		hint := ""
+		if text := strings.TrimLeft(string(r.line(at.Line)[min(at.Col-1+len([]rune(key)), len(r.line(at.Line))):]), ": "); strings.HasPrefix(text, "#") && len(text) > 1 && text[1] != ' ' {
+			hint = "; a # begins a remark, so put a text that begins with # between quotes"
+		}
+		r.add(at, "nothing stands after the colon; write a value, or delete the key%s", hint)
 	default:
 		e.value = r.read(v.Value, full, depth+1)
+		if e.value == nil && r.joined {
+			r.joined, block.partial = false, true
+		}
 	}
 	if line, twice := block.first[key]; twice {
 		r.add(at, "the key stands twice in this block, first in line %d; keep one of them", line)
@@ -356,6 +409,20 @@ func (r *treeReader) numberSplit(block *node, at Place, key string) bool {
 		"inside {…} a comma ends an entry, so none can stand in a number; %v", err)
 	last.value = nil
 	return true
+}
+
+// textSplit explains an entry of {…} that is no key, but the rest of a text or list that a comma cut in two.
+func (r *treeReader) textSplit(block *node, line int, rest string) string {
+	if n := len(block.entries); n > 0 {
+		last := &block.entries[n-1]
+		if v := last.value; v != nil && v.is == textNode && !v.quoted && v.text != "" && v.line == line && rest != "" {
+			if isDigit(rune(v.text[0])) && isDigit(rune(rest[0])) {
+				return fmt.Sprintf("inside {…} a comma ends an entry; write a list between brackets: %s: [%s, %s]", last.key, cutText(v.text), cutText(rest))
+			}
+			return fmt.Sprintf("inside {…} a comma ends an entry; put a text with a comma between quotes: %s: %q", last.key, cutText(v.text+", "+rest))
+		}
+	}
+	return fmt.Sprintf("%s has neither colon nor value; write it as key: value", quoted(rest))
 }
 
 func isDigit(c rune) bool { return '0' <= c && c <= '9' }
@@ -410,6 +477,11 @@ func (r *treeReader) readText(out *node, t *token.Token, path string) bool {
 		return true
 	}
 	if strings.Contains(t.Value, ": ") || strings.Contains(t.Value, " #") {
+		if m := keyInside.FindStringSubmatch(t.Value); m != nil && studyKeys()[m[2]] {
+			r.joined = true
+			r.add(at, "the entries inside {…} are separated by commas; write %s, %s: %s", cutText(m[1]), m[2], cutText(m[3]))
+			return false
+		}
 		r.add(at, "%s holds a colon and a blank; put the text between quotes", quoted(t.Value))
 		return false
 	}
@@ -464,7 +536,53 @@ func (r *treeReader) refuseRest() {
 
 var keyWithoutBlank = regexp.MustCompile(`^(- +)*([A-Za-z_][A-Za-z_.]*):([^ ].*)$`)
 
-var itemWithoutBlank = regexp.MustCompile(`^( *)-([A-Za-z_][A-Za-z_.]*:.*)$`)
+var (
+	itemWithoutBlank = regexp.MustCompile(`^( *)(?:-|[–—•*·] *|[0-9]+[.)] *)(\{?"?[A-Za-z_][A-Za-z_.]*"?:.*)$`)
+	oneKey           = regexp.MustCompile(`^[A-Za-z_]+$`)
+	keyInside        = regexp.MustCompile(`^([^:]*?)[; ] *([a-z_]+): (.*)$`)
+	keyNoColon       = regexp.MustCompile(`^(?:- +)*([A-Za-z_]+)(?: *[=：]+ *| +)([^ :].*)$`)
+	keyAndText       = regexp.MustCompile(`^ *(?:- +)*([a-z_]+): +([^{\["' ].*)$`)
+	roundBlock       = regexp.MustCompile(`^( *- *|[^:#]*: *)\(([a-z_]+: .*)\) *(#.*)?$`)
+)
+
+// studyKeys are all keys of a study, by name.
+var studyKeys = sync.OnceValue(func() map[string]bool {
+	keys := map[string]bool{}
+	var add func(fields []field)
+	add = func(fields []field) {
+		for i := range fields {
+			keys[fields[i].name] = true
+			add(fields[i].shape.fields)
+		}
+	}
+	add(studyShape.fields)
+	return keys
+})
+
+// noColon says what to write for a key with its value but no colon between them, and "" for any other text.
+func noColon(text string) string {
+	m := keyNoColon.FindStringSubmatch(strings.TrimSpace(text))
+	if m == nil || !studyKeys()[m[1]] {
+		return ""
+	}
+	return fmt.Sprintf("a colon and a blank stand between a key and its value; write %s: %s", m[1], cutText(withoutRemark(m[2])))
+}
+
+// withoutRemark cuts a remark off a line.
+func withoutRemark(text string) string {
+	text, _, _ = strings.Cut(text, " #")
+	return strings.TrimSpace(text)
+}
+
+// itemMark says what to write for an item of a list that begins with another sign than a dash and a blank, and "" for any
+// other line.
+func (r *treeReader) itemMark(n int) string {
+	m := itemWithoutBlank.FindStringSubmatch(r.src.line(n))
+	if m == nil {
+		return ""
+	}
+	return fmt.Sprintf("an item of a list begins with a - and a blank; write - %s", cutText(withoutRemark(m[2])))
+}
 
 // noBlank says what to write for a text such as depth:3 m, whose colon has no blank after it, and "" for any other.
 func noBlank(text string) string {
@@ -496,8 +614,12 @@ func (r *treeReader) explain(err error) {
 	// A key without a blank after its colon makes the library stumble there or a line later.
 	for n := at.Line; n >= at.Line-1 && n > 0; n-- {
 		text := r.src.line(n)
-		if m := itemWithoutBlank.FindStringSubmatch(text); m != nil {
-			r.add(Place{Line: n, Col: len(m[1]) + 1}, "a blank stands after the - of an item; write - %s", cutText(m[2]))
+		if hint := r.itemMark(n); hint != "" {
+			r.add(Place{Line: n, Col: len(text) - len(strings.TrimLeft(text, " ")) + 1}, "%s", hint)
+			return
+		}
+		if m := roundBlock.FindStringSubmatch(text); m != nil {
+			r.add(Place{Line: n, Col: len([]rune(m[1])) + 1}, "a block stands between { and }; write {%s}", cutText(m[2]))
 			return
 		}
 		if hint := noBlank(text); hint != "" {
@@ -533,10 +655,21 @@ func (r *treeReader) explain(err error) {
 		indent := len(r.src.line(next)) - len(strings.TrimLeft(r.src.line(next), " "))
 		r.add(Place{Line: next, Col: indent + 1}, "this line is indented more than the one above, which already has a value; let the keys of one block begin in one column")
 	case says("mapping value is not allowed"):
-		r.add(at, "a second colon follows in this line; put a text that holds a colon and a blank between quotes")
-	case says("map key definition includes an implicit line break"):
-		r.add(at, "this line has no key and colon of its own; check the indenting, and put a long text on one line")
-	case says("non-map value is specified"), says("unexpected key name"):
+		m := keyAndText.FindStringSubmatch(withoutRemark(r.src.line(at.Line)))
+		switch {
+		case m == nil:
+			r.add(at, "a second colon follows in this line; put a text that holds a colon and a blank between quotes")
+		case keyInside.MatchString(m[2]) && studyKeys()[keyInside.FindStringSubmatch(m[2])[2]]:
+			in := keyInside.FindStringSubmatch(m[2])
+			r.add(at, "a second key follows in this line; write %s: %s on a line of its own", in[2], cutText(in[3]))
+		default:
+			r.add(at, "a second colon follows in this line; put the text between quotes: %s: %q", m[1], cutText(m[2]))
+		}
+	case says("map key definition includes an implicit line break"), says("non-map value is specified"), says("unexpected key name"):
+		if hint := noColon(r.src.line(at.Line)); hint != "" {
+			r.add(at, "%s", hint)
+			return
+		}
 		r.add(at, "this line has no key and colon of its own; check the indenting, and put a long text on one line")
 	case says("value is not allowed in this context"):
 		before := ""
@@ -545,17 +678,56 @@ func (r *treeReader) explain(err error) {
 		}
 		switch {
 		case before == "":
-			r.add(at, "the indenting of this line fits no line above; let the keys of one block begin in one column")
+			r.add(at, "%s", r.misplaced(at.Line))
 		case strings.HasSuffix(before, `"`), strings.HasSuffix(before, "'"):
 			r.add(at, "nothing may follow the closing quote; put the whole text between quotes")
+		case r.charAt(at) == ']', r.charAt(at) == '}':
+			r.add(at, "this bracket closes nothing; delete it, or open one before it")
+		case strings.HasSuffix(before, "]"), strings.HasSuffix(before, "}"):
+			r.add(at, "%s", afterBracket)
 		default:
 			r.add(at, "nothing may follow here; a new key begins on a new line or, inside {…}, after a comma")
 		}
 	case says("found an invalid key"), says("unexpected map key"), says("undefined map key"), says("cannot take map-key"):
 		r.add(at, "a key is a plain word before the colon; put a text that holds a colon between quotes")
 	default:
+		if c := r.charAt(at); c == '>' || c == '|' {
+			r.add(at, "a text cannot begin with %c; put it between quotes, or write a quantity without the sign", c)
+			return
+		}
 		r.add(at, "%s", plainWords)
 	}
+}
+
+// charAt is the character of a place, 0 outside the file.
+func (r *treeReader) charAt(p Place) rune {
+	if line := []rune(r.src.line(p.Line)); p.Col > 0 && p.Col <= len(line) {
+		return line[p.Col-1]
+	}
+	return 0
+}
+
+const afterBracket = "nothing may follow the closing bracket; in a list each value has its own unit, as in [8 m, 12 m], and a text that begins with a bracket is put between quotes"
+
+// misplaced explains a line whose indenting fits no line above.
+func (r *treeReader) misplaced(n int) string {
+	indent := func(line string) int { return len(line) - len(strings.TrimLeft(line, " ")) }
+	line := r.src.line(n)
+	text := withoutRemark(line)
+	if strings.HasPrefix(text, "- ") {
+		return "an item of a list stands here, and the lines above it are no items; begin each of them with a - and a blank too"
+	}
+	for i := n - 1; i > 0; i-- {
+		above := r.src.line(i)
+		if isBlankOrComment(above) || indent(above) > indent(line) {
+			continue
+		}
+		if indent(above) == indent(line) && strings.HasPrefix(strings.TrimSpace(above), "- ") {
+			return fmt.Sprintf("each item of this list begins with a - and a blank; write - %s, or indent the line by 2 blanks more if it belongs to the item above", cutText(text))
+		}
+		break
+	}
+	return "the indenting of this line fits no line above; let the keys of one block begin in one column"
 }
 
 func isBlankOrComment(line string) bool {
@@ -597,6 +769,12 @@ func (r *treeReader) unclosed(at Place) {
 		return
 	}
 	p := open[len(open)-1]
+	if l := []rune(r.src.line(at.Line)); at.Col > 0 && at.Col <= len(l) {
+		if before := strings.TrimSpace(string(l[:at.Col-1])); strings.HasSuffix(before, "]") || strings.HasSuffix(before, "}") {
+			r.add(at, "%s", afterBracket)
+			return
+		}
+	}
 	if p.Line == at.Line && strings.ContainsAny(r.src.line(at.Line), "}]") {
 		r.add(at, "a comma is missing before this text")
 		return

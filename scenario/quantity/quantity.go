@@ -174,7 +174,7 @@ func change(text, number string, v float64) (float64, error) {
 func factorAsChange(v float64) string { return Format(math.Round((v-1)*1e5)/1e5, Change) }
 
 // oneIn are the ways to write a gradient of one in n.
-var oneIn = regexp.MustCompile(`^1 *(?::|/|in) *([0-9]+(?:\.[0-9]+)?)$`)
+var oneIn = regexp.MustCompile(`^1 *[vV]? *(?::|/|in) *([0-9]+(?:\.[0-9]+)?) *[hH]?$`)
 
 // gradient refuses an angle that is given as the ratio of rise to run, such as 1:5, with the angle in degrees.
 func gradient(text string) error {
@@ -430,7 +430,7 @@ func ParseNumber(text string) (float64, error) {
 		switch v, err := number64(number, -2); {
 		case err != nil:
 		case name == "%" && (number[0] == '+' || number[0] == '-') && v > -1:
-			return 0, fmt.Errorf("%s: a number without a unit is wanted here; write %s if that change of 1 is meant", quote(text), four(1+v))
+			return 0, fmt.Errorf("%s: a number without a unit is wanted here; write %s if a change by %s %% is meant", quote(text), four(1+v), number)
 		case name == "%":
 			number = FormatNumber(v)
 		case name == "k":

@@ -1,0 +1,114 @@
+package scenario
+
+import (
+	"regexp"
+	"slices"
+	"strings"
+
+	"quietslope/scenario/fault"
+)
+
+// otherWords are words that people use for the keys of a block, and the key that they mean. They are no keys: they only
+// serve the message. A note says what the key's value is counted from, where that differs from what the word means.
+var otherWords = []struct {
+	block string // the last key of its path, "" for the study itself
+	key   string
+	words []string
+	note  string
+}{
+	{"", "study", []string{"title", "name", "project"}, ""},
+	{"", "prepared_by", []string{"author", "engineer"}, ""},
+	{"", "checked_by", []string{"checker", "reviewed_by", "approved_by"}, ""},
+	{"", "bands", []string{"thresholds", "critical_levels", "levels"}, ""},
+	{"", "options", []string{"alternatives", "variants", "measures"}, ""},
+	{"weather", "file", []string{"path", "csv", "filename"}, ""},
+	{"columns", "time", []string{"date", "datetime", "timestamp"}, ""},
+	{"columns", "rain", []string{"precipitation", "rainfall", "precip"}, ""},
+	{"columns", "pet", []string{"evapotranspiration", "evaporation", "et", "et0", "eto"}, ""},
+	{"ground", "cover", []string{"upper_layer", "top_layer"}, ""},
+	{"ground", "deep", []string{"lower_layer", "clay"}, ""},
+	{"cover", "drainable_porosity", []string{"specific_yield", "storage"}, ""},
+	{"deep", "drainable_porosity", []string{"specific_yield", "storage"}, ""},
+	{"cover", "conductivity", []string{"k", "permeability", "kf", "ks"}, ""},
+	{"cover", "percolation", []string{"leakage", "recharge"}, ""},
+	{"cover", "seepage", []string{"outflow", "drainage"}, ""},
+	{"deep", "seepage", []string{"outflow", "drainage"}, ""},
+	{"cover", "thickness", []string{"depth"}, ""},
+	{"deep", "thickness", []string{"depth"}, ""},
+	{"slope", "friction", []string{"phi"}, ""},
+	{"slope", "cohesion", []string{"c"}, ""},
+	{"slope", "unit_weight", []string{"gamma", "density"}, ""},
+	{"slope", "angle", []string{"gradient", "inclination"}, ""},
+	{"slope", "slip_depth", []string{"depth"}, ""},
+	{"bands", "below_ground", []string{"depth"}, ""},
+	{"bands", "level", []string{"height", "threshold"}, ", counted from the base of the deep layer"},
+	{"bands", "factor_of_safety", []string{"fos", "fs", "safety_factor"}, ""},
+	{"bands", "until", []string{"end", "stop", "arrest"}, ""},
+	{"options", "bored_drains", []string{"horizontal_drains", "sub_horizontal_drains", "drilled_drains"}, ""},
+	{"options", "trench_drains", []string{"trenches"}, ""},
+	{"options", "surface_water", []string{"channels", "ditches", "grading"}, ""},
+	{"options", "vegetation", []string{"planting", "trees"}, ""},
+	{"options", "set", []string{"ground"}, ", which changes numbers of ground, as in set: {cover.seepage: 0.02 /d}"},
+	{"trench_drains", "depth", []string{"level", "elevation"}, ", counted from the ground down"},
+	{"trench_drains", "spacing", []string{"distance"}, ""},
+	{"trench_drains", "conductivity", []string{"k", "permeability"}, ""},
+	{"bored_drains", "level", []string{"depth", "elevation", "below_ground"}, ", counted from the base of the deep layer up"},
+	{"surface_water", "kept_out", []string{"share", "reduction", "intercepted"}, ""},
+	{"cut_off_drain", "intercepted", []string{"share", "reduction", "kept_out"}, ""},
+	{"vegetation", "pet_factor", []string{"crop_factor", "factor"}, ""},
+	{"conditions", "drains", []string{"trench_drains", "bored_drains", "cut_off_drain"}, ", for trench, bored and cut-off drains together"},
+}
+
+// unitInKey is a unit that stands with the key, as in "thickness (m)" and "thickness [m]".
+var unitInKey = regexp.MustCompile(` *[(\[][^)\]]*[)\]]$`)
+
+// meantKey is the key of a block that a person may have meant with a word that is none, with a note on its value, and ""
+// for none. The block is named by its path.
+func meantKey(word, path string, known []string) (key, note string) {
+	word = strings.ToLower(unitInKey.ReplaceAllString(word, ""))
+	word = strings.NewReplacer(" ", "_", "-", "_").Replace(word)
+	if slices.Contains(known, word) {
+		return word, ""
+	}
+	block := blockOf(path)
+	for _, o := range otherWords {
+		if o.block == block && slices.Contains(o.words, word) && slices.Contains(known, o.key) {
+			return o.key, o.note
+		}
+	}
+	return fault.Nearest(word, known), ""
+}
+
+// partOf is the only key that has all words of this one or whose words all stand in it, such as drainable_porosity of
+// porosity, and "" for none.
+func partOf(word string, known []string) string {
+	word = strings.ToLower(unitInKey.ReplaceAllString(word, ""))
+	words := strings.FieldsFunc(word, func(r rune) bool { return r == ' ' || r == '_' || r == '-' })
+	holds := func(all, some []string) bool {
+		for _, w := range some {
+			if !slices.Contains(all, w) {
+				return false
+			}
+		}
+		return len(some) > 0
+	}
+	found := ""
+	for _, k := range known {
+		if parts := strings.Split(k, "_"); holds(parts, words) || holds(words, parts) {
+			if found != "" {
+				return ""
+			}
+			found = k
+		}
+	}
+	return found
+}
+
+// blockOf is the last key of a path, without the number of an item.
+func blockOf(path string) string {
+	last := lastOf(path)
+	if i := strings.IndexByte(last, '['); i >= 0 {
+		last = last[:i]
+	}
+	return last
+}
