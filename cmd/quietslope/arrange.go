@@ -33,10 +33,16 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 	case "-v", "--version", "-version":
 		return []string{"--version"}, nil
 	}
+	if word := strings.TrimLeft(name, "-"); word != name && app.Command(word) != nil {
+		return nil, usagef("", "a command is written without hyphens; did you mean %s?", word)
+	}
 	if strings.HasPrefix(name, "-") {
 		return nil, usagef("", "unknown option %q before a command; the command comes first", name)
 	}
 	command := app.Command(name)
+	if command == nil && len(rest) > 0 && app.Command(rest[0]) != nil {
+		return nil, usagef("", "the command comes first; did you mean quietslope %s %s?", rest[0], name)
+	}
 	if command == nil {
 		return nil, unknownCommand(app, name)
 	}
@@ -82,12 +88,22 @@ func oneArgument(command *cli.Command, arguments []string) error {
 	switch {
 	case len(arguments) == 0:
 		return usagef(command.Name, "name the %s, as in: quietslope %s %s", what, command.Name, such)
+	case len(arguments) > 1 && strings.TrimLeft(arguments[1], "–—") != arguments[1]:
+		return usagef(command.Name, "an option begins with two hyphens, not with a dash; write --%s", strings.TrimLeft(arguments[1], "–—-"))
+	case len(arguments) > 1 && command.ArgsUsage == studyArgument && slices.ContainsFunc(arguments, isTable):
+		return usagef(command.Name, "one study file is enough, got %q and %q; the study names its weather, as weather.file", arguments[0], arguments[1])
 	case len(arguments) > 1:
 		return usagef(command.Name, "one %s at a time, got %q and %q", what, arguments[0], arguments[1])
 	case arguments[0] == "":
 		return usagef(command.Name, "the name of the %s is empty", what)
 	}
 	return nil
+}
+
+// isTable says whether a file's name is that of a table.
+func isTable(name string) bool {
+	name = strings.TrimSuffix(strings.ToLower(name), ".gz")
+	return strings.HasSuffix(name, ".csv") || strings.HasSuffix(name, ".txt") || strings.HasSuffix(name, ".xlsx")
 }
 
 // split parts the options of a command, with their values, from its arguments.
@@ -142,7 +158,15 @@ func unknownOption(command *cli.Command, word, name string) error {
 	for _, f := range command.Flags {
 		known = append(known, f.Names()[0])
 	}
-	switch near := fault.Nearest(name, known); {
+	near := fault.Nearest(name, known)
+	for _, k := range known {
+		if near == "" && name != "" && (strings.HasPrefix(k, name) || strings.HasPrefix(name, k)) {
+			near = k
+		}
+	}
+	switch {
+	case slices.Contains(formatNames(), name) && slices.Contains(known, flagFormat):
+		return usagef(command.Name, "unknown option %s; did you mean --%s %s?", word, flagFormat, name)
 	case near != "":
 		return usagef(command.Name, "unknown option %s; did you mean --%s?", word, near)
 	case len(known) == 0:
@@ -158,6 +182,9 @@ func unknownCommand(app *cli.App, name string) error {
 	}
 	if near := fault.Nearest(name, known); near != "" {
 		return usagef("", "unknown command %q; did you mean %s?", name, near)
+	}
+	if name == "version" {
+		return usagef("", "unknown command %q; did you mean --version?", name)
 	}
 	if strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml") {
 		return usagef("", "a command comes before the study file; did you mean quietslope compare %s?", name)

@@ -175,6 +175,11 @@ func TestUsage(t *testing.T) {
 		{"compare", "study.yaml", "--out", "nofile/"}, {"compare", "study.yaml", "--out", "/dev/null"}, {"compare", "study.yaml", "--out", "/dev/../dev/stdout"}, {"levels", "study.yaml", "--from="}, {"compare", "study.yaml", "--against="},
 		{"new"}, {"new", ""}, {"new", "a", "b"}, {"new", "--frce", "a"}, {"new", "--", "-x"}, {"new", "run_test.go"}, {"new", "run_test.go/x"}, {"new", "no/such/folder"},
 		{"new", "starter"}, {"completion"}, {"completion", "bash", "zsh"}, {"completion", "bsh"}, {"completion", "tcsh"}, {"completion", "--format", "bash"},
+		// Mistakes of a first time.
+		{"study.yaml", "check"}, {"--check", "study.yaml"}, {"version"}, {"check", "study.yaml", "weather.csv"}, {"check", "weather.csv.gz", "study.yaml"},
+		{"compare", "study.yaml", "—out", "x"}, {"compare", "study.yaml", "–out", "x"}, {"compare", "study.yaml", "-o", "x"}, {"compare", "study.yaml", "--output", "x"},
+		{"compare", "study.yaml", "--json"}, {"compare", "study.yaml", "--format", "JSON"}, {"compare", "study.yaml", "format=json"}, {"compare", "-f", "json", "study.yaml"},
+		{"check", "--weather", "weather.csv", "study.yaml"}, {"help", "format"}, {"run", "study.yaml"},
 	} {
 		code, stdout, stderr := program(t.Context(), args...)
 		if code != 2 || stdout != "" {
