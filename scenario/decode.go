@@ -456,6 +456,9 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 			return bad("%s: %s is not supported yet; write %s", lastOf(at.Key), n.text, joinWords(s.words, "or"))
 		}
 	}
+	if s.cell && n.text != "" && strings.ContainsRune(formulaSigns, rune(n.text[0])) {
+		return bad("%s: a text here does not begin with %c, because a spreadsheet would take it for a formula", quoted(n.text), n.text[0])
+	}
 	var err error
 	switch s.form {
 	case formText:

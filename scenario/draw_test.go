@@ -137,7 +137,7 @@ func (k *sketch) scalar(f *field, path string) *node {
 	}
 	switch s.form {
 	case formText:
-		return word(rapid.SampledFrom([]string{"", " ", "A. N. Engineer", "true", "12", "it's: so", "Böschung", "3,5", "- x"}).Draw(k.t, "text"))
+		return word(rapid.SampledFrom([]string{"", " ", "A. N. Engineer", "true", "12", "it's: so", "Böschung", "3,5", "( x"}).Draw(k.t, "text"))
 	case formFilled:
 		switch f.name {
 		case "format":
@@ -578,6 +578,9 @@ var faults = []struct {
 	{"no whole number", func(s *site) bool { return s.field.shape.form == formWhole }, func(t *rapid.T, s *site) { s.setText("1500.5") }},
 	{"bad name", func(s *site) bool { return s.field.shape.form == formName }, func(t *rapid.T, s *site) {
 		s.setText(rapid.SampledFrom([]string{"", " x", "x ", "=x", "+x", "-x", "@x", "As Built", "as recorded", strings.Repeat("x", 61), "a\u2007", rawText + "-5"}).Draw(t, "name"))
+	}},
+	{"formula", func(s *site) bool { return s.field.shape.cell }, func(t *rapid.T, s *site) {
+		s.setText(rapid.SampledFrom([]string{"=1+1", "+x", "- x", "@home", rawText + "-5"}).Draw(t, "formula"))
 	}},
 	{"blank text", func(s *site) bool { return s.field.shape.form == formFilled }, func(t *rapid.T, s *site) {
 		s.setText(rapid.SampledFrom([]string{"", "  ", "\u3000"}).Draw(t, "text"))

@@ -35,6 +35,7 @@ type shape struct {
 	choice []string      // of a block: keys of which one is given
 	filled bool          // of a block: it has at least one key
 	most   int           // largest number of items of a list of texts
+	cell   bool          // a text that comes to stand in a cell of a table, where no formula may begin
 	bare   string        // of a quantity: the key beside which it is a bare number, for the decoder to tell apart
 	meant  [][2]string   // other words that a person may write, and which of the shape's words is meant
 }
@@ -94,6 +95,8 @@ func notYet(name string) field { return field{name: name, later: true} }
 
 var (
 	filledShape    = shape{form: formFilled}
+	titleShape     = shape{form: formFilled, cell: true}
+	personShape    = shape{form: formText, cell: true}
 	textShape      = shape{form: formText}
 	nameShape      = shape{form: formName}
 	shareShape     = amount(quantity.Share, atLeast(0, 1))
@@ -175,11 +178,11 @@ var settable = func() []field {
 // studyShape is the whole file. The order is that of the documentation.
 var studyShape = block(
 	field{name: "study", says: "title of the study, on one line",
-		shape: filledShape, need: "a title on one line, such as:", eg: "Bank above the mill, drainage options"},
+		shape: titleShape, need: "a title on one line, such as:", eg: "Bank above the mill, drainage options"},
 	field{name: "prepared_by", says: "who made the study", absent: "by default blank",
-		shape: textShape, def: "", eg: "A. N. Engineer"},
+		shape: personShape, def: "", eg: "A. N. Engineer"},
 	field{name: "checked_by", says: "who checked the study", absent: "by default blank",
-		shape: textShape, def: "", eg: "A. Checker"},
+		shape: personShape, def: "", eg: "A. Checker"},
 	field{name: "weather", says: "the record that is replayed for every option",
 		shape: weatherShape, need: "the record of rain: a block with file and columns"},
 	field{name: "ground", says: "the slope as calibrated: two layers, each one store of drainable water",

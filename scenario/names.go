@@ -16,6 +16,9 @@ const longestName = 60
 // reservedNames are taken for the cases that are always there.
 var reservedNames = []string{"as recorded", "as built"}
 
+// formulaSigns begin a formula in a spreadsheet.
+const formulaSigns = "=+-@"
+
 // checkName returns what is wrong with the name of a band or an option, and "" for nothing.
 func checkName(name string) string {
 	switch {
@@ -27,7 +30,7 @@ func checkName(name string) string {
 		return "a name stands on one line and holds no control characters"
 	case strings.TrimFunc(name, unicode.IsSpace) != name:
 		return "a name neither begins nor ends with a blank"
-	case strings.ContainsRune("=+-@", rune(name[0])):
+	case strings.ContainsRune(formulaSigns, rune(name[0])):
 		return fmt.Sprintf("a name does not begin with %c, because a spreadsheet would take it for a formula", name[0])
 	}
 	for _, r := range reservedNames {

@@ -182,9 +182,9 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 	}
 	switch s.form {
 	case formText, formFilled, formName:
-		values = append(values, b.text(s.form))
+		values = append(values, b.text(s))
 	case formTexts:
-		values = append(values, object{{"type", "array"}, {"items", b.text(formText)}, {"maxItems", s.most}})
+		values = append(values, object{{"type", "array"}, {"items", b.text(&textShape)}, {"maxItems", s.most}})
 	case formMonth:
 		values = append(values, object{{"type", "string"}, {"pattern", "^(" + anyCase(words[len(s.words):]...) + ")$"}})
 	case formNumber:
@@ -271,13 +271,22 @@ func (l limits) members() object {
 // Characters that have no place in a text, by oneLine, and those that have none at the ends of a name.
 const (
 	unseen  = "\u0000-\u001f\u007f-\u009f\u061c\u200e\u200f\u2028-\u202e\u2066-\u2069\ufeff\ufffd"
-	unblank = unseen + " \u00a0\u1680\u2000-\u200a\u202f\u205f\u3000"
+	blanks  = " \u00a0\u1680\u2000-\u200a\u202f\u205f\u3000"
+	unblank = unseen + blanks
 )
 
 // text is the schema of a text. What YAML takes for a number or for true or false is one too.
-func (b *schemaBuilder) text(f form) object {
+func (b *schemaBuilder) text(s *shape) object {
 	def := object{{"type", []string{"string", "number", "boolean"}}}
-	switch f {
+	if s.cell {
+		pattern := "^([^=+@" + unseen + "-][^" + unseen + "]*)?$"
+		if s.form == formFilled {
+			pattern = "^([^=+@" + unblank + "-]|[" + blanks + "][^" + unseen + "]*[^" + unblank + "])[^" + unseen + "]*$"
+		}
+		return append(def, member{"pattern", pattern}, member{"minimum", 0}, // a number below 0 begins with -
+			member{"errorMessage", "a text on one line, which begins with none of = + - @"})
+	}
+	switch s.form {
 	case formFilled:
 		return b.ref("filled_text", append(def, member{"pattern", "^[^" + unseen + "]*[^" + unblank + "][^" + unseen + "]*$"}))
 	case formName:
