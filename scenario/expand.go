@@ -3,7 +3,9 @@ package scenario
 import (
 	"fmt"
 	"slices"
+	"strconv"
 	"strings"
+	"unicode/utf8"
 
 	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
@@ -34,7 +36,7 @@ func expandOptions(root *node, found *problems) {
 		x.key = fmt.Sprintf("options[%d]", len(items))
 		o := x.written(item)
 		x.above = append(x.above, o)
-		items = append(items, x.each(o.item)...)
+		items = append(items, x.perValue(o.item)...)
 	}
 	copied := *list.value
 	copied.items = items
@@ -237,8 +239,8 @@ func (f *field) listable() bool {
 	return false
 }
 
-// each makes one option of each value of an option's list, and the option itself where it has none.
-func (x *expander) each(item *node) []*node {
+// perValue makes one option of each value of an option's list, and the option itself where it has none.
+func (x *expander) perValue(item *node) []*node {
 	spots := lists(item)
 	if len(spots) == 0 {
 		return []*node{item}
@@ -276,17 +278,25 @@ func (x *expander) each(item *node) []*node {
 	}
 	var made []*node
 	seen := map[string]bool{}
+	longest := ""
 	for _, v := range first.value.items {
 		switch {
 		case v == nil: // reported
 		case v.is != textNode:
 			x.add(x.at(v.line, v.col, measure, first.key), "a value is wanted in this list, such as [8 m, 12 m]")
-		case seen[v.text]:
+		case seen[foldKey(v.text)]:
 			x.add(x.at(v.line, v.col, measure, first.key), "%s stands twice in this list; keep one of them", quoted(v.text))
 		default:
-			seen[v.text] = true
-			made = append(made, with(item, spots[0], v, madeName(item.text1("name"), first.key, v.text)))
+			seen[foldKey(v.text)] = true
+			name := madeName(item.text1("name"), first.key, v.text)
+			if utf8.RuneCountInString(name) > utf8.RuneCountInString(longest) {
+				longest = name
+			}
+			made = append(made, with(item, spots[0], v, name))
 		}
+	}
+	if n, e := utf8.RuneCountInString(longest), item.entry("name"); n > longestName && e != nil {
+		return refuse(x.at(e.line, e.col, e.key), "with its value the name of an option of the list has %d characters, as in %s; a name has at most %d, so shorten it", n, strconv.Quote(longest), longestName)
 	}
 	if len(made) == 0 {
 		return []*node{with(item, spots[0], nil, item.text1("name"))}

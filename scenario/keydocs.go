@@ -157,7 +157,11 @@ func (s *shape) shownWords() []string {
 func (s *shape) rangeWords() string {
 	switch s.form {
 	case formNumber, formWhole, formQuantity:
-		return s.limits.words(s)
+		words := s.limits.words(s)
+		if s.bare != "" {
+			words += ", or a number beside " + s.bare
+		}
+		return words
 	case formYears:
 		return "from " + quantity.FormatNumber(s.limits.lo) + " y to " + quantity.FormatNumber(s.limits.hi) + " y"
 	}

@@ -361,7 +361,7 @@ var optionFields = []field{
 
 // likeField takes the measure of another option. The reader puts that option's keys in its place, before it is decoded.
 var likeField = field{name: "like", says: "name of an option above whose same measure is taken; keys beside it override", absent: "may be left out",
-	shape: filledShape, quiet: true, eg: "trenches"}
+	shape: filledShape, quiet: true, eg: "name of the other option"}
 
 var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fields: []field{
 	{name: "depth", says: "depth of the trenches below ground, no deeper than the cover is thick",

@@ -277,9 +277,9 @@ var studyNotes = map[string]string{
   constant, from a minute to a day, or each row is a calendar month.
 
   Gaps are missing rows and cells of weather.missing. gaps: refuse lists them; zero takes each such
-  value of rain and of pet as 0; month mean gives it the mean of its column over all measured steps
-  of the record in the same month of the year. Results count what was filled, and name the years
-  that rest on it.
+  value of rain and of pet as 0; month mean gives it the mean intensity of its column over all
+  measured steps of the record in the same month of the year. Results count what was filled, and
+  name the years that rest on it.
 
   Times: YYYY MM DD hh mm ss are year, month, day, hour, minute and second, and any other character
   stands for itself: YYYY-MM-DD, DD.MM.YYYY hh:mm, YYYYMMDDThhmm. The format iso reads times with
