@@ -7,6 +7,7 @@ import (
 	"slices"
 	"time"
 
+	"quietslope/cascade"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
 	"quietslope/stats"
@@ -102,7 +103,7 @@ func weatherSource(s *Study) weather.Source {
 	w := &s.Weather
 	src := weather.Source{
 		Path: w.Path, Name: w.Path, Time: w.Time, Format: w.Format,
-		Rain: weather.Column(w.Rain), StampEnd: w.StampEnd, Missing: w.Missing, Gaps: weather.Gaps(w.Gaps),
+		Rain: weather.Column(w.Rain), StampEnd: w.StampEnd, Missing: w.Missing, Gaps: w.Gaps,
 	}
 	if w.PET != nil {
 		pet := weather.Column(*w.PET)
@@ -194,6 +195,7 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 		return nil, err
 	}
 	conversionWarnings(&ws, conversion)
+	c.Conversion = conversion
 	c.Warnings = append(ws, p.ofCases(raised)...)
 	return c, nil
 }
@@ -220,6 +222,17 @@ type traceSummary struct {
 	coverMax     float64 // m, over the record
 	deepMax      float64
 	refusedShare float64 // of what percolated to the deep store
+}
+
+// summarise keeps of a replay what the warnings ask of it.
+func summarise(t *trace) traceSummary {
+	s := traceSummary{
+		works: t.works, fromDry: t.fromDry, coverMax: t.coverMax, deepMax: t.deepMax,
+	}
+	if in := t.whole.Deep.In; in > 0 {
+		s.refusedShare = t.whole.Deep.Refused / in
+	}
+	return s
 }
 
 // figures works out all that one replay says by itself.
@@ -312,6 +325,14 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 		f.PeakLPerS = &litres
 	}
 	return f
+}
+
+// cascadeOutlet is a drain as the model has it.
+func cascadeOutlet(w *works, d drainage) cascade.Outlet {
+	if d.layer == inDeep {
+		return w.model.Deep.Drains[d.index]
+	}
+	return w.model.Cover.Drains[d.index]
 }
 
 func (t *trace) balance() result.Balance {
@@ -498,7 +519,7 @@ func (p *prepared) bands() []result.Band {
 			r.ElevationM = &elevation
 		}
 		if readings := s.Ground.CalibratedTo; !math.IsNaN(readings) {
-			within := b.Level <= readings
+			within := b.Level <= readings+tie
 			r.WithinReadings = &within
 		}
 		if b.GivenAs == bySafety {
@@ -529,7 +550,7 @@ func (p *prepared) recordFound() result.Record {
 	}
 	for _, g := range r.Filled {
 		found.GapsFilled += g.To - g.From
-		found.GapFilling = p.study.Weather.Gaps
+		found.GapFilling = string(p.study.Weather.Gaps)
 	}
 	if r.PET != nil {
 		pet := total(r.PET[c.from:c.to]) / years

@@ -459,7 +459,7 @@ func TestAnyLegalStudyRuns(t *testing.T) {
 		s.Weather = WeatherSpec{File: "weather.csv", Path: daily, Time: "date", Format: "YYYY-MM-DD", Rain: WeatherColumn{"rain_mm", "mm"}}
 		if rapid.Bool().Draw(t, "months") {
 			s.Weather.Path, s.Weather.Format = monthly, "YYYY-MM"
-			s.Weather.Gaps = rapid.SampledFrom([]string{"zero", "month mean"}).Draw(t, "gaps")
+			s.Weather.Gaps = rapid.SampledFrom([]weather.Gaps{weather.GapsZero, weather.GapsMonthMean}).Draw(t, "gaps")
 		}
 		if rapid.Bool().Draw(t, "pet") {
 			s.Weather.PET = &WeatherColumn{"pet_mm", "mm"}

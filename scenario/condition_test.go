@@ -10,6 +10,7 @@ import (
 	"github.com/google/go-cmp/cmp"
 	"pgregory.net/rapid"
 
+	"quietslope/cascade/scheme"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
 )
@@ -159,3 +160,42 @@ func TestWarningsOfCases(t *testing.T) {
 	}
 }
 
+// TestLevelsOfCondition: levels writes the series that compare counted, in every condition and for the baseline too.
+func TestLevelsOfCondition(t *testing.T) {
+	s := load(t, "../testdata/full/study.yaml")
+	for i := range s.Options {
+		s.Options[i].Baseline = s.Options[i].Name == "trenches, spacing 8 m"
+	}
+	c := compare(t, s)
+	for _, k := range c.Cases {
+		l, err := Levels(context.Background(), s, LevelsQuery{Condition: k.Condition, From: c.Record.CountedFrom, To: c.Record.CountedTo})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for i, o := range k.Options {
+			if got := largest(l.Deep[i]); got != o.Level.MaxM {
+				t.Errorf("%s, %s: the highest level is %v m, by compare %v", k.Condition, o.Name, got, o.Level.MaxM)
+			}
+		}
+	}
+}
+
+// TestWarmUpOfConditions: a drain that keeps a store quick may have stopped in one of them.
+func TestWarmUpOfConditions(t *testing.T) {
+	s := load(t, "../testdata/full/study.yaml")
+	s.Ground.Start, s.Ground.WarmUpYears = nil, -1
+	s.Ground.Scheme = scheme.Exact
+	s.Options = append(s.Options[:1:1], Option{Name: "bores", Measures: []Measure{
+		{Key: "set", Set: []Assignment{{Key: "deep.seepage", Value: 1e-3}}},
+		{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.05, Level: 0, Efficiency: 1, Ceiling: math.Inf(1)}},
+	}})
+	for _, tt := range []struct {
+		conditions []Condition
+		want       int
+	}{{nil, 3}, {[]Condition{{Name: "stopped", SurfaceWater: 1, Vegetation: 1}}, 14}} { // 5/0.001 d are 13.7 y
+		s.Conditions = tt.conditions
+		if got := compare(t, s).Record.WarmUpYears; got != tt.want {
+			t.Errorf("%d conditions: %d years, want %d", len(tt.conditions), got, tt.want)
+		}
+	}
+}

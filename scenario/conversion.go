@@ -83,13 +83,13 @@ func (p *prepared) schemeDifference(ctx context.Context) (*result.LevelDifferenc
 	return d, nil
 }
 
-// furthest is the largest difference of two series of the record, and the time of the step in which it first stands.
+// furthest is the largest difference of two series of levels, and the time of the step in which it first stands. What is
+// left by rounding is none.
 func (p *prepared) furthest(a, b []float64) (most float64, at string) {
-	step := 0
 	for i := range a {
-		if d := math.Abs(a[i] - b[i]); d > most {
-			most, step = d, i
+		if d := math.Abs(a[i] - b[i]); d > max(most, tie) {
+			most, at = d, p.record.ISO(i)
 		}
 	}
-	return most, p.record.ISO(step)
+	return most, at
 }

@@ -99,3 +99,70 @@ func TestTrenchInConvertedGround(t *testing.T) {
 		t.Errorf("the capacity is %v mm, want %v", got, 4000*n)
 	}
 }
+
+// TestBoredDrainsInConvertedGround: so are capacity, inverts and rate of the deep store.
+func TestBoredDrainsInConvertedGround(t *testing.T) {
+	s := ground(Option{Name: "bores", Measures: []Measure{
+		{Key: "set", Set: []Assignment{{Key: "deep.seepage", Value: 0.2}}},
+		{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: 2, Efficiency: 1, Ceiling: math.Inf(1)}},
+	}})
+	s.Ground.Scheme, s.Ground.SchemeStep = scheme.Centred, 1
+	w := newWorks(s, &s.Options[1], &asBuilt)
+	exact, _ := scheme.Centred.ExactRate(0.2, 1)
+	n := 0.014 * 0.2 / exact
+	for _, tt := range []struct {
+		what      string
+		got, want float64
+	}{
+		{"rate", w.model.Deep.Seepage, exact}, {"porosity", w.ground.DeepPorosity, n},
+		{"porosity in the results", *w.rates().DeepPorosity, n}, {"porosity given", *w.rates().Given.DeepPorosity, 0.014},
+		{"invert", w.model.Deep.Drains[0].Invert, 2000 * n}, {"capacity", w.model.Deep.Capacity, 9000 * n},
+		{"drain", w.model.Deep.Drains[0].Rate, 0.01},
+	} {
+		if math.Abs(tt.got-tt.want) > 1e-12 {
+			t.Errorf("%s is %v, want %v", tt.what, tt.got, tt.want)
+		}
+	}
+	if w.ground.Scheme != scheme.Exact || w.given.Scheme != scheme.Centred {
+		t.Errorf("the converted ground is of the %v scheme, the given one of the %v", w.ground.Scheme, w.given.Scheme)
+	}
+}
+
+// TestConversionAtCapacity: full stores are clipped at the given level by the scheme too.
+func TestConversionAtCapacity(t *testing.T) {
+	s := ground()
+	s.Ground.Scheme, s.Ground.SchemeStep = scheme.Explicit, 1
+	s.Ground.CoverSeepage, s.Ground.Percolation, s.Ground.DeepSeepage = 0.1, 0.1, 0.1
+	s.Ground.CoverFullAt, s.Ground.DeepFullAt = 0.5, 0.5
+	r := invented(3, 4)
+	p := &prepared{study: s, record: r, replayer: &replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}}
+	c, err := p.conversion(context.Background())
+	if err != nil {
+		t.Fatal(err)
+	}
+	tr, err := p.replayer.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), period{to: len(r.Rain)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if math.Abs(tr.coverMax-0.5) > 1e-12 || math.Abs(tr.deepMax-0.5) > 1e-12 {
+		t.Fatalf("the stores are not full: %v and %v m", tr.coverMax, tr.deepMax)
+	}
+	// By hand: the deep store is fed from the start of the step, and clipped at its end.
+	cover, deep := 1000*0.06*tr.start.Cover, 1000*0.014*tr.start.Deep
+	step := func(depth float64) {
+		cover, deep = min(max(cover*(1-0.2)+depth, 0), 30), min(deep*(1-0.1)+0.1*cover, 7)
+	}
+	for _, depth := range tr.recharge[:365] { // the warm-up; its soil is full at first, as that of the record after it
+		step(depth)
+	}
+	most, at := 0.0, 0
+	for i, depth := range tr.recharge {
+		step(depth)
+		if d := math.Abs(deep/14 - tr.deep[i]); d > most {
+			most, at = d, i
+		}
+	}
+	if d := c.LargestDifference; d.CoverM != 0 || d.CoverAt != "" || math.Abs(d.DeepM-most) > 1e-6 || d.DeepAt != r.ISO(at) {
+		t.Errorf("check says %+v, by hand %v m at %s", d, most, r.ISO(at))
+	}
+}

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"path/filepath"
+	"regexp"
 	"strings"
 
 	"quietslope/scenario/fault"
@@ -28,6 +29,37 @@ func anyKey(root *node) bool {
 	}
 	return len(root.entries) == 0
 }
+
+// sayTaken adds to a problem of a key that an option took over which option that was, unless the option that has the key
+// has the problem too.
+func (d *decoder) sayTaken() {
+	at := map[problem]bool{}
+	taker := func(p *problem) (Place, bool) {
+		m := measureOf.FindStringSubmatch(p.place.Key)
+		if m == nil {
+			return Place{}, false
+		}
+		like, ok := d.places[m[0]+".like"]
+		return like, ok && p.place.Line < d.places[m[1]].Line
+	}
+	for _, p := range d.list {
+		if _, taken := taker(&p); !taken {
+			p.place.Key = ""
+			at[p] = true
+		}
+	}
+	for i := range d.list {
+		p := &d.list[i]
+		same := *p
+		same.place.Key = ""
+		if like, taken := taker(p); taken && !at[same] {
+			p.text += fmt.Sprintf(" (taken over by like in line %d; give the key there)", like.Line)
+		}
+	}
+}
+
+// measureOf is the measure of an option in the path of a key.
+var measureOf = regexp.MustCompile(`^(options\[\d+\])\.[a-z_]+`)
 
 // decodeStudy reads a study from its tree. What is wrong is added to found; the study then is not to be used.
 func decodeStudy(root *node, found *problems) *Study {
@@ -56,6 +88,7 @@ func decodeStudy(root *node, found *problems) *Study {
 	d.conditions(s, file.get("conditions"))
 	d.count(s, file.sub("count"), file.get("bands"))
 	d.declared(s, file.sub("declared"))
+	d.sayTaken()
 	if len(found.list) == 0 {
 		s.Understood = understood(nil, file, studyShape.fields, "")
 	}
@@ -109,7 +142,7 @@ func (d *decoder) weather(s *Study, b *blockValue) {
 	}
 	w.StampEnd = b.get("stamp").text == "end"
 	w.Missing = b.get("missing").texts
-	w.Gaps = b.get("gaps").text
+	w.Gaps = weather.Gaps(b.get("gaps").text)
 }
 
 func (d *decoder) site(s *Study, b *blockValue) {

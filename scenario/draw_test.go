@@ -331,7 +331,7 @@ func (k *sketch) options(root *node) *node {
 	like := map[string][]*node{} // options by measure, written out
 	for i := range rapid.IntRange(1, 4).Draw(k.t, "options") {
 		o := &node{is: blockNode, entries: []entry{{key: "name", value: word(k.name())}}}
-		listed := i == baseline // no list in it
+		listed := i == 0 || i == baseline // no list in what is or may be the baseline
 		for j := range optionFields {
 			f := &optionFields[j]
 			if f.shape.form != formBlock || f.later || k.coin(f.name) {
@@ -437,12 +437,12 @@ func (k *sketch) list(f *field, m *node) bool {
 	}
 	e := &m.entries[rapid.SampledFrom(spots).Draw(k.t, "spot")]
 	list := &node{is: listNode}
-	seen := map[any]bool{}
+	seen := map[string]bool{}
+	inner := fieldOf(f.shape.fields, e.key)
 	for range rapid.IntRange(1, 3).Draw(k.t, "values") {
-		v := k.scalar(fieldOf(f.shape.fields, e.key), "options[]."+f.name+"."+e.key)
-		// They make names that must differ, and as values too, for a schema.
-		if name, value := foldKey(v.text), coreValue(v.text); !seen[name] && !seen[value] {
-			seen[name], seen[value] = true, true
+		v := k.scalar(inner, "options[]."+f.name+"."+e.key)
+		if value := sameValue(v.text, &inner.shape); !seen[value] { // each makes an option
+			seen[value] = true
 			list.items = append(list.items, v)
 		}
 	}

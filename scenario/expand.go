@@ -22,6 +22,9 @@ func expandOptions(root *node, found *problems) {
 		return
 	}
 	x := &expander{problems: found}
+	marked := slices.ContainsFunc(list.value.items, func(item *node) bool {
+		return item != nil && item.text1("baseline") == "true"
+	})
 	for _, item := range list.value.items {
 		if item != nil && item.is == blockNode {
 			x.names = append(x.names, item.text1("name"))
@@ -36,7 +39,12 @@ func expandOptions(root *node, found *problems) {
 		x.key = fmt.Sprintf("options[%d]", len(items))
 		o := x.written(item)
 		x.above = append(x.above, o)
-		items = append(items, x.perValue(o.item)...)
+		made := x.perValue(o.item)
+		if len(items) == 0 && len(made) > 1 && !marked {
+			e := item.entries[0]
+			x.add(x.at(e.line, e.col), "the first option is the baseline, and its list makes several; put the ground as it is first, or mark another option with baseline: true")
+		}
+		items = append(items, made...)
 	}
 	copied := *list.value
 	copied.items = items
@@ -132,6 +140,8 @@ func (x *expander) merged(o *writtenOption, measure string, own *node, named *en
 	switch from := x.above[i].from[measure]; {
 	case source == nil:
 		x.add(at, "the option %s has no %s; %s", quoted(name), measure, x.having(measure))
+		return &out
+	case from != "" && source.value != nil && source.value.partial: // that of the other was refused
 		return &out
 	case from != "":
 		x.add(at, "%s takes its %s from another option itself; write like: %s", quoted(name), measure, listText(from))
@@ -277,17 +287,21 @@ func (x *expander) perValue(item *node) []*node {
 		return refuse(at, "%s", hint)
 	}
 	var made []*node
-	seen := map[string]bool{}
+	fields, _ := measureFields(measure)
+	field := fields[slices.IndexFunc(fields, func(f field) bool { return f.name == first.key })] // lists found it
+	seen := map[string]string{}                                                                  // texts, by value
 	longest := ""
 	for _, v := range first.value.items {
 		switch {
 		case v == nil: // reported
 		case v.is != textNode:
 			x.add(x.at(v.line, v.col, measure, first.key), "a value is wanted in this list, such as [8 m, 12 m]")
-		case seen[foldKey(v.text)]:
+		case seen[sameValue(v.text, &field.shape)] == v.text:
 			x.add(x.at(v.line, v.col, measure, first.key), "%s stands twice in this list; keep one of them", quoted(v.text))
+		case seen[sameValue(v.text, &field.shape)] != "":
+			x.add(x.at(v.line, v.col, measure, first.key), "%s is %s in other words; keep one of them", quoted(v.text), quoted(seen[sameValue(v.text, &field.shape)]))
 		default:
-			seen[foldKey(v.text)] = true
+			seen[sameValue(v.text, &field.shape)] = v.text
 			name := madeName(item.text1("name"), first.key, v.text)
 			if utf8.RuneCountInString(name) > utf8.RuneCountInString(longest) {
 				longest = name
@@ -302,6 +316,18 @@ func (x *expander) perValue(item *node) []*node {
 		return []*node{with(item, spots[0], nil, item.text1("name"))}
 	}
 	return made
+}
+
+// sameValue is the same text for all texts of one value.
+func sameValue(text string, s *shape) string {
+	v, err := quantity.ParseNumber(text)
+	if s.form == formQuantity {
+		v, err = quantity.Parse(text, s.kind)
+	}
+	if err != nil {
+		return text
+	}
+	return quantity.FormatNumber(v)
 }
 
 // withoutUnit says what to write for a list of quantities of which some have no unit, as in [8, 12, 24 m], and "" for any

@@ -1,6 +1,7 @@
 package scenario
 
 import (
+	"fmt"
 	"strings"
 	"testing"
 
@@ -40,7 +41,7 @@ func TestListsAndLike(t *testing.T) {
     surface_water: {kept_out: 10 %}
   - name: both
     surface_water: {like: channels}
-    trench_drains: {efficiency: 70 %, like: trenches, spacing: [20 m, 0.02 km]}
+    trench_drains: {efficiency: 70 %, like: trenches, spacing: [20 m, 0.03 km]}
   - name: by rate
     trench_drains: {like: trenches, rate: 0.03 /d}
     bored_drains: {level: 2.0 m, like: bored drains}
@@ -61,9 +62,9 @@ func TestListsAndLike(t *testing.T) {
   - name: both, spacing 20 m
     surface_water: {kept_out: 10 %}
     trench_drains: {spacing: 20 m, depth: 3.0 m, conductivity: 0.02 m/d, equivalent_depth: 0.85 m, efficiency: 70 %}
-  - name: both, spacing 0.02 km
+  - name: both, spacing 0.03 km
     surface_water: {kept_out: 10 %}
-    trench_drains: {spacing: 20 m, depth: 3.0 m, conductivity: 0.02 m/d, equivalent_depth: 0.85 m, efficiency: 70 %}
+    trench_drains: {spacing: 30 m, depth: 3.0 m, conductivity: 0.02 m/d, equivalent_depth: 0.85 m, efficiency: 70 %}
   - name: by rate
     trench_drains: {rate: 0.03 /d, depth: 3.0 m, efficiency: 80 %}
     bored_drains: {rate: 0.005 /d, level: 2.0 m, ceiling: 2 mm/d}
@@ -86,7 +87,7 @@ func TestListsAndLike(t *testing.T) {
 	}
 	for key, want := range map[string]string{
 		"options[1].name": "trenches, spacing 8 m", "options[6].trench_drains.like": "trenches", "options[6].trench_drains.depth": "3 m",
-		"options[7].trench_drains.spacing": "20 m", "options[8].trench_drains.rate": "0.03 /d", "options[8].trench_drains.spacing": "",
+		"options[7].trench_drains.spacing": "30 m", "options[8].trench_drains.rate": "0.03 /d", "options[8].trench_drains.spacing": "",
 	} {
 		if got := value(short, key); got != want {
 			t.Errorf("%s is understood as %q, want %q", key, got, want)
@@ -121,5 +122,23 @@ func TestListable(t *testing.T) {
 	}
 	if quantity.Length.Unit() != "m" { // the values above rely on it
 		t.Error("lengths are not in m")
+	}
+}
+
+// TestLongestList: a hundred values make an option each, one more is refused.
+func TestLongestList(t *testing.T) {
+	for _, n := range []int{100, 101} {
+		var values []string
+		for i := range n {
+			values = append(values, fmt.Sprintf("%d m", i+1))
+		}
+		src, err := editStudy(baseStudy(t), "-      spacing: 12 m\n+      spacing: ["+strings.Join(values, ", ")+"]\n")
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := Parse("study.yaml", []byte(src))
+		if n == 100 && (err != nil || len(s.Options) != 103) || n == 101 && (err == nil || !strings.Contains(err.Error(), "at most 100 make an option each")) {
+			t.Errorf("%d values: %v", n, err)
+		}
 	}
 }

@@ -1,6 +1,9 @@
 package scenario
 
-import "quietslope/scenario/quantity"
+import (
+	"quietslope/scenario/quantity"
+	"quietslope/scenario/weather"
+)
 
 // This file is the table of the study's keys: what each is called, how its value is written, what range it may have,
 // what stands in for it when it is left out, and what it is. The decoder reads by it, and errors, the list of what was
@@ -237,7 +240,7 @@ var weatherShape = block(
 	field{name: "missing", says: "cells that stand for a missing value; a list given here replaces the default",
 		shape: shape{form: formTexts, most: 100}, def: `"", NA`},
 	field{name: "gaps", says: "what to do about missing values; filled ones are counted and reported",
-		shape: shape{form: formWord, words: []string{"refuse", "zero", "month mean"}, later: []string{"{from: …}"}}, def: "refuse", eg: "month mean"},
+		shape: shape{form: formWord, words: []string{string(weather.GapsRefuse), string(weather.GapsZero), string(weather.GapsMonthMean)}, later: []string{"{from: …}"}}, def: "refuse", eg: "month mean"},
 )
 
 // columnShape is a column of depths of water. Name is a header that one may have.

@@ -14,7 +14,7 @@ import (
 const longestName = 60
 
 // reservedNames are taken for the cases that are always there.
-var reservedNames = []string{"as recorded", "as built"}
+var reservedNames = []string{AsRecorded, AsBuilt}
 
 // formulaSigns begin a formula in a spreadsheet.
 const formulaSigns = "=+-@"

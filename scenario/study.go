@@ -5,6 +5,7 @@ package scenario
 import (
 	"quietslope/cascade/scheme"
 	"quietslope/cascade/slope"
+	"quietslope/scenario/weather"
 )
 
 // Study is a study file as understood: every default filled in, every number in the units of the package comment of
@@ -49,8 +50,8 @@ type WeatherSpec struct {
 	PET      *WeatherColumn // nil for none
 	StampEnd bool
 	Missing  []string
-	Gaps     string // refuse, zero or month mean
-	Place    Place  // of weather.file
+	Gaps     weather.Gaps
+	Place    Place // of weather.file
 }
 
 // WeatherColumn is a column of the weather file.
@@ -62,7 +63,7 @@ type Place struct {
 	Key       string
 }
 
-// Ground is the slope as calibrated: with the rates and porosities of the formula that it was calibrated with.
+// Ground is the slope. That of a Study has the rates and porosities of the formula that it was calibrated with.
 type Ground struct {
 	Infiltration      float64 // share of the water at the surface
 	InfiltrationLimit float64 // mm/h; +Inf for none

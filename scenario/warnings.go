@@ -9,7 +9,6 @@ import (
 	"strings"
 	"time"
 
-	"quietslope/cascade"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
 	"quietslope/stats"
@@ -47,24 +46,6 @@ const (
 	mostKeptOut       = 0.50  // of the infiltration over the whole plan area: judgement
 	mostIntercepted   = 0.90  // of the lateral inflow: judgement
 )
-
-// summarise keeps of a replay what the warnings ask of it.
-func summarise(t *trace) traceSummary {
-	s := traceSummary{
-		works: t.works, fromDry: t.fromDry, coverMax: t.coverMax, deepMax: t.deepMax,
-	}
-	if in := t.whole.Deep.In; in > 0 {
-		s.refusedShare = t.whole.Deep.Refused / in
-	}
-	return s
-}
-
-func cascadeOutlet(w *works, d drainage) cascade.Outlet {
-	if d.layer == inDeep {
-		return w.model.Deep.Drains[d.index]
-	}
-	return w.model.Cover.Drains[d.index]
-}
 
 // warnings collects warnings in the order in which they are raised.
 type warnings []result.Warning
@@ -180,21 +161,21 @@ func (p *prepared) bandWarnings(ws *warnings) {
 	for i := range s.Bands {
 		b := &s.Bands[i]
 		given[b.GivenAs] = true
-		if b.Level > readings {
+		if b.Level > readings+tie {
 			w := warn("band_beyond_readings")
 			w.Band = b.Name
 			ws.add(w, "The band begins at %.2f m, above the highest reading of the calibration (%.2f m). The response there is extrapolated; read more winters before relying on it.", b.Level, readings)
 		}
 	}
 	for i := range s.Bands {
-		if b := &s.Bands[i]; b.Level > s.Ground.CoverThickness+s.Ground.DeepThickness {
+		if b := &s.Bands[i]; b.Level > s.Ground.CoverThickness+s.Ground.DeepThickness+tie {
 			w := warn("band_above_ground")
 			w.Band = b.Name
 			ws.add(w, "The band begins %.2f m above ground. Only artesian water stands there, which the model does not have; check the level and what it was measured from.",
 				b.Level-s.Ground.CoverThickness-s.Ground.DeepThickness)
 		}
 	}
-	if readings > s.Ground.DeepFullAt {
+	if readings > s.Ground.DeepFullAt+tie {
 		ws.add(warn("readings_above_full"), "ground.calibrated_to is %.2f m, and the deep layer is full at %.2f m above its base: no reading of that level can be that high. Make sure that it is not a depth or an elevation.", readings, s.Ground.DeepFullAt)
 	}
 	if math.IsNaN(readings) {
@@ -309,7 +290,7 @@ func (p *prepared) gapWarnings(ws *warnings) {
 		of, lost = append(of, plural(pet, "step")+" without evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
 	}
 	what := strings.Join(of, " and ")
-	if p.study.Weather.Gaps == string(weather.GapsZero) {
+	if p.study.Weather.Gaps == weather.GapsZero {
 		ws.add(warn("gaps_filled"), "Filled with zero: %s, of %d steps; %s. Complete the record, or see what weather.gaps: month mean gives.", what, len(r.Rain), strings.Join(lost, ", and "))
 	} else {
 		ws.add(note("gaps_filled"), "Filled with the mean of the calendar month: %s, of %d steps. Means have no storms; complete the record from a station nearby where a wet time is missing.", what, len(r.Rain))
@@ -483,10 +464,14 @@ func (p *prepared) resultWarnings(options []optionFigures, against int, r *stats
 // ofCases joins the warnings of all cases. One that every case raises in the same words is about none of them; any other
 // names its case.
 func (p *prepared) ofCases(raised []warnings) []result.Warning {
-	in := map[result.Warning]int{}
+	in := map[result.Warning]int{} // number of cases
 	for _, ws := range raised {
+		seen := map[result.Warning]bool{}
 		for _, w := range ws {
-			in[w]++
+			if !seen[w] {
+				in[w]++
+			}
+			seen[w] = true
 		}
 	}
 	all := []result.Warning{}
@@ -518,7 +503,7 @@ func (p *prepared) replayWarnings(ws *warnings, f *optionFigures) {
 	case t.fromDry > startFelt:
 		ws.add(at("start_still_felt"), "Replayed from dry, the deep level at the first counted step differs by %.2f m. Give a longer ground.warm_up, or ground.start levels that were measured.", t.fromDry)
 	}
-	if thickness := g.CoverThickness + g.DeepThickness; t.deepMax > thickness || t.coverMax > g.CoverThickness {
+	if thickness := g.CoverThickness + g.DeepThickness; t.deepMax > thickness+tie || t.coverMax > g.CoverThickness+tie {
 		ws.add(at("level_above_ground"), "A level rises above ground: the deep one to %.2f m above its base, where ground is at %.2f m, the cover's to %.2f m above the contact, where ground is at %.2f m. That is outside the meaning of the model; check the porosities and rates, and let full_at be ground level at most.",
 			t.deepMax, thickness, t.coverMax, g.CoverThickness)
 	}

@@ -406,7 +406,7 @@ func TestGapWarnings(t *testing.T) {
 			p := quiet()
 			p.record = record("1991-01-01T00:00", 24*time.Hour, 4*365+1)
 			p.counted = countYears(p.record, time.October)
-			p.study.Weather.Gaps = tt.gaps
+			p.study.Weather.Gaps = weather.Gaps(tt.gaps)
 			const october = 273
 			for i := range p.record.Rain {
 				p.record.Rain[i] = 1
@@ -430,6 +430,21 @@ func TestGapWarnings(t *testing.T) {
 				t.Errorf("%s is a %s", ws[0].Code, ws[0].Severity)
 			}
 		})
+	}
+}
+
+// TestGapInTheMonthThatStarts: a year that begins in February ends with one, which may be longer.
+func TestGapInTheMonthThatStarts(t *testing.T) {
+	p := quiet()
+	p.record = record("2003-01-01T00:00", 24*time.Hour, 3*365)
+	p.counted = countYears(p.record, time.February)
+	for i := range p.record.Rain {
+		p.record.Rain[i] = 1
+	}
+	const february = 31 // 2003, of 28 days
+	p.record.Filled = []weather.Gap{{From: february, To: february + 4, Rain: true}}
+	if got := p.filledYears(); !slices.Equal(got, []string{"2003/04"}) {
+		t.Errorf("flagged are %q", got)
 	}
 }
 

@@ -36,8 +36,14 @@ type uptake struct {
 	petFactor    float64 // of the evapotranspiration, besides the soil's crop factor
 }
 
-// check refuses a drain whose rate, worked out from its spacing, is beyond what can be replayed.
+// check refuses a ground whose rates could not be converted, and a drain whose rate, worked out from its spacing, is
+// beyond what can be replayed.
 func (w *works) check(s *Study) error {
+	if w.given != nil {
+		for _, wrong := range w.given.notConverted() {
+			return s.Fault(w.option.Place, "%s", wrong.text)
+		}
+	}
 	for _, d := range w.drains {
 		if !(d.rate <= maxRate) {
 			return s.Fault(d.place, "the drains work out at %s /d, more than %d /d; check spacing, conductivity and drainable_porosity, and their units", short(d.rate), int(maxRate))
@@ -111,7 +117,8 @@ func both(a, b float64) float64 { return 1 - (1-a)*(1-b) }
 
 // toExact converts the rates and porosities of a ground that was calibrated with a stepping scheme into those of exact
 // stores, which keep outflow and levels at the ends of steps (see package scheme). The rate of the scheme is that of a
-// store's natural outlets together; each of them keeps its part. The decoder has refused rates out of the scheme's range.
+// store's natural outlets together; each of them keeps its part. Rates out of the scheme's range stay as they are, and are
+// refused by whoever uses them (see notConverted).
 func (g *Ground) toExact() {
 	convert := func(porosity *float64, rates ...*float64) {
 		total := 0.0
@@ -119,7 +126,7 @@ func (g *Ground) toExact() {
 			total += *r
 		}
 		exact, err := g.Scheme.ExactRate(total, g.SchemeStep)
-		if err != nil || total == 0 { // nothing flows, and nothing needs to be kept
+		if err != nil || total == 0 {
 			return
 		}
 		for _, r := range rates {
@@ -129,6 +136,7 @@ func (g *Ground) toExact() {
 	}
 	convert(&g.CoverPorosity, &g.CoverSeepage, &g.Percolation)
 	convert(&g.DeepPorosity, &g.DeepSeepage)
+	g.Scheme = scheme.Exact
 }
 
 // storage is the drainable water in mm below a level in m.

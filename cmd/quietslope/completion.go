@@ -265,9 +265,9 @@ func namesFor(option, path string, given map[string][]string) []word {
 			names = append(names, s.Options[i].Name)
 		}
 	case flagClimate:
-		names = append(names, "as recorded")
+		names = append(names, scenario.AsRecorded)
 	case flagCondition:
-		names = append(names, "as built")
+		names = append(names, scenario.AsBuilt)
 		for i := range s.Conditions {
 			names = append(names, s.Conditions[i].Name)
 		}

@@ -63,6 +63,8 @@ type Comparison struct {
 	Bands    []Band            `json:"bands"`
 	Record   Record            `json:"record"`
 	Cases    []Case            `json:"cases"`
+	// Of the rates of the ground; left out where they are those of exact stores.
+	Conversion *Conversion `json:"conversion,omitempty"`
 }
 
 // Settings are the choices that shape the figures.
@@ -269,7 +271,7 @@ type Check struct {
 	Audit      Audit         `json:"audit"`
 	Start      StartFound    `json:"start"`
 	YearStarts string        `json:"year_starts"`
-	Conversion *Conversion   `json:"conversion,omitempty"` // left out where the rates are those of exact stores
+	Conversion *Conversion   `json:"conversion,omitempty"` // as in Comparison
 }
 
 // Conversion says how the rates of the ground were converted from the scheme that they were calibrated with.
@@ -294,8 +296,8 @@ type StoreConversion struct {
 type LevelDifference struct {
 	CoverM  float64 `json:"cover_m"`
 	DeepM   float64 `json:"deep_m"`
-	CoverAt string  `json:"cover_at"` // as the weather has the time
-	DeepAt  string  `json:"deep_at"`
+	CoverAt string  `json:"cover_at,omitempty"` // as the weather has the time; left out where there is no difference
+	DeepAt  string  `json:"deep_at,omitempty"`
 }
 
 // Understood is one key of the study with the value in force.

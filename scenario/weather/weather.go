@@ -30,7 +30,7 @@ type Column struct {
 	Unit string
 }
 
-// Record is a complete record of constant step.
+// Record is a complete record: every step has its values, measured or filled.
 type Record struct {
 	Name   string        // the file as messages name it
 	SHA256 string        // of the file's bytes as they are on disk, in hex
