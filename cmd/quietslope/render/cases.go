@@ -31,11 +31,12 @@ func differs(first, c *result.Case) string {
 // caseName names the i-th case.
 func caseName(i int) string { return "case " + strconv.Itoa(i+1) }
 
-// section starts a section about a case, which is named where there are several.
+// section starts a section about a case; where there are several, a part of the section of the case, which is named.
 func (v *view) section(c *result.Case, format string, args ...any) {
 	text := fmt.Sprintf(format, args...)
-	if i := v.indexOf(c); v.several() {
-		text += " (" + caseName(i) + ")"
+	if v.several() {
+		v.innerHeading("%s (%s)", text, caseName(v.indexOf(c)))
+		return
 	}
 	v.heading("%s", text)
 }

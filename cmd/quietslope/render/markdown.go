@@ -26,7 +26,11 @@ func (p *Page) Markdown(w io.Writer) error {
 		case title:
 			b.WriteString("# " + escape(string(of)) + "\n")
 		case heading:
-			b.WriteString("## " + escape(string(of)) + "\n")
+			mark := "## "
+			if of.inner {
+				mark = "### "
+			}
+			b.WriteString(mark + escape(of.text) + "\n")
 		case para:
 			b.WriteString(escapeLine(string(of)) + "\n")
 		case item:

@@ -52,7 +52,7 @@ func rendered(t failer, md string, links bool) []piece {
 	if err := goldmark.New(goldmark.WithExtensions(extensions...), goldmark.WithRendererOptions(html.WithXHTML())).Convert([]byte(md), &b); err != nil {
 		t.Fatal(err)
 	}
-	wanted := []string{"h1", "h2", "p", "ul", "ol", "li", "table", "thead", "tbody", "tr", "th", "td", "strong"}
+	wanted := []string{"h1", "h2", "h3", "p", "ul", "ol", "li", "table", "thead", "tbody", "tr", "th", "td", "strong"}
 	if links {
 		wanted = append(wanted, "a")
 	}
@@ -105,7 +105,11 @@ func meant(p *Page) []piece {
 		case title:
 			pieces = append(pieces, piece{"h1", string(b)})
 		case heading:
-			pieces = append(pieces, piece{"h2", string(b)})
+			tag := "h2"
+			if b.inner {
+				tag = "h3"
+			}
+			pieces = append(pieces, piece{tag, b.text})
 		case para:
 			pieces = append(pieces, piece{"p", string(b)})
 		case item:
@@ -258,6 +262,7 @@ func TestMarkdownOfAnything(t *testing.T) {
 		p := &Page{}
 		p.title(word("title"))
 		p.heading("%s", word("heading"))
+		p.innerHeading("%s", word("heading"))
 		p.para("%s", word("paragraph"))
 		for i, kind := range []itemKind{named, marked, lettered, below, plain} {
 			p.item(kind, fmt.Sprint("label", i), word("item"))

@@ -19,11 +19,16 @@ type Page struct{ blocks []block }
 type block any
 
 type (
-	title   string
-	heading string
-	para    string   // running text
-	gap     struct{} // a blank line, where blocks are not set apart anyway
+	title string
+	para  string   // running text
+	gap   struct{} // a blank line, where blocks are not set apart anyway
 )
+
+// heading starts a section, or an inner part of the one before.
+type heading struct {
+	text  string
+	inner bool
+}
 
 // item is an entry of a list.
 type item struct {
@@ -75,7 +80,12 @@ func (p *Page) title(text string) { p.add(title(clean(text))) }
 
 // heading starts a section.
 func (p *Page) heading(format string, args ...any) {
-	p.add(heading(clean(fmt.Sprintf(format, args...))))
+	p.add(heading{text: clean(fmt.Sprintf(format, args...))})
+}
+
+// innerHeading starts a part of the section before.
+func (p *Page) innerHeading(format string, args ...any) {
+	p.add(heading{text: clean(fmt.Sprintf(format, args...)), inner: true})
 }
 
 // para appends running text.

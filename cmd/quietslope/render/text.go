@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 
 	"github.com/clipperhouse/displaywidth"
@@ -19,12 +20,18 @@ const pageWidth = 100
 // Text writes the page for a terminal or a plain file: 100 columns, no colour, no line that ends in a blank.
 func (p *Page) Text(w io.Writer) error {
 	var t lines
+	// Sections that have parts stand out from these.
+	parts := slices.ContainsFunc(p.blocks, func(b block) bool { h, ok := b.(heading); return ok && h.inner })
 	for _, b := range p.blocks {
 		switch b := b.(type) {
 		case title:
 			t.hang("", 0, string(b))
 		case heading:
-			t.heading(string(b))
+			rule := "-"
+			if parts && !b.inner {
+				rule = "="
+			}
+			t.heading(b.text, rule)
 		case para:
 			t.hang("", 0, string(b))
 		case gap:
@@ -64,14 +71,15 @@ func (t *lines) line(line string) {
 	t.WriteByte('\n')
 }
 
-func (t *lines) heading(of string) {
+// heading appends a heading with a rule below it.
+func (t *lines) heading(of, rule string) {
 	if t.Len() > 0 {
 		t.WriteByte('\n')
 	}
 	for _, l := range wrap(of, pageWidth) {
 		t.line(l)
 	}
-	t.line(strings.Repeat("-", min(displaywidth.String(of), pageWidth)))
+	t.line(strings.Repeat(rule, min(displaywidth.String(of), pageWidth)))
 }
 
 // hang appends running text behind a label, wrapped, with every line starting at the column indent.
