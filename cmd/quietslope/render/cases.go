@@ -125,7 +125,7 @@ func (v *view) deciderOf(c *result.Case, o *result.Option, band int, by *measure
 	case "events":
 		return v.eventsOf(c, o, band)
 	case "annual_probability":
-		return percent(f.AnnualProbability), percentRange(f.AnnualProbability, f.AnnualProbabilityCI)
+		return percent(f.AnnualProbability), "(" + percentRange(f.AnnualProbability, f.AnnualProbabilityCI) + ")"
 	case "days":
 		return ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
 	}

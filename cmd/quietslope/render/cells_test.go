@@ -55,3 +55,23 @@ func TestRangedBelowLeast(t *testing.T) {
 		t.Errorf("got %s %s", v, r)
 	}
 }
+
+// TestSafetyHeading: the table of a band that was given as a factor of safety says so.
+func TestSafetyHeading(t *testing.T) {
+	c := fixture(demoOptions[:2], threeBands)
+	c.Bands[2].GivenAs, c.Bands[2].FactorOfSafety = "factor_of_safety", ptr(1.05)
+	if text, want := written(t, Comparison(c)), "\nfast movement: factor of safety below 1.05, deep level above 4.80 m\n---"; !strings.Contains(text, want) {
+		t.Errorf("no %q in:\n%s", want, text)
+	}
+}
+
+// TestUnmet: demand that the cover could not meet is explained where there is some.
+func TestUnmet(t *testing.T) {
+	c := fixture(demoOptions[:2], threeBands)
+	for _, unmet := range []float64{0, 31} {
+		c.Cases[0].Options[1].WaterBalance.Cover.UnmetMM = unmet
+		if text := written(t, Comparison(c)); strings.Contains(text, "unmet") != (unmet > 0) {
+			t.Errorf("%v mm unmet:\n%s", unmet, text)
+		}
+	}
+}

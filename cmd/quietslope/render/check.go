@@ -125,17 +125,18 @@ func conversion(p *Page, c *result.Conversion) {
 	}
 	p.heading("Rates converted from the %s scheme with steps of %s d", c.Scheme, typed(c.StepDays, 6))
 	t := table{
-		first: "layer",
+		first: "store and its outlets",
 		head:  [][]string{{"rate given", "rate converted", "porosity given", "porosity converted"}, {"/d", "/d", "%", "%"}},
 	}
 	for _, s := range []struct {
 		name string
 		of   *result.StoreConversion
-	}{{"cover", &c.Cover}, {"deep", &c.Deep}} {
+	}{{"cover, seepage + percolation", &c.Cover}, {"deep layer, seepage", &c.Deep}} {
 		t.labels = append(t.labels, label{name: s.name})
 		t.rows = append(t.rows, []string{typed(s.of.GivenPerDay, 6), typed(s.of.ExactPerDay, 6), typed(100*s.of.GivenPorosity, 6), typed(100*s.of.Porosity, 6)})
 	}
 	p.table(t)
+	p.para("Seepage and percolation of the cover keep their proportion.")
 	if d := c.LargestDifference; d != nil {
 		p.para("Replayed by the scheme itself, the ground without measures has levels that differ from those of the converted rates by %s in the cover and by %s in the deep layer.",
 			atMost(d.CoverM, d.CoverAt), atMost(d.DeepM, d.DeepAt))

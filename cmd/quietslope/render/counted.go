@@ -90,7 +90,7 @@ const (
 )
 
 func (v *view) rangesText() string {
-	text := fmt.Sprintf("in brackets, at %s: events exact Poisson, years with exact binomial, days, load and changes by resampling whole years",
+	text := fmt.Sprintf("in brackets, at %s: events exact Poisson, years with (as the chance of a year) exact binomial, days, load and changes by resampling whole years",
 		v.confidence())
 	switch n := v.c.Record.YearsCounted; {
 	case n == 1:

@@ -20,7 +20,11 @@ const (
 // exceedance writes the table of one band: how often, how long and by how much.
 func (v *view) exceedance(c *result.Case, band int) {
 	b := &v.c.Bands[band]
-	v.section(c, "%s: deep level above %s m", b.Name, metres(b.LevelM))
+	safety := ""
+	if b.FactorOfSafety != nil {
+		safety = "factor of safety below " + typed(*b.FactorOfSafety, 6) + ", "
+	}
+	v.section(c, "%s: %sdeep level above %s m", b.Name, safety, metres(b.LevelM))
 	T := v.c.Record.YearsCounted
 	options := pointers(c)
 	if v.nothingPassed(c, band) {
@@ -36,7 +40,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 	t := table{
 		head: [][]string{
 			{"events", "days", "load", fmt.Sprintf("years of %d", T), "longest", "peak"},
-			{"per year", "per year", "m·d per year", "(chance, %)", "d", "+m"},
+			{"per year", "per year", "m·d per year", "(chance)", "d", "+m"},
 		},
 		left: []bool{true, true, true, true, false, false},
 	}
@@ -45,7 +49,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 		events.add(v.eventsOf(c, o, band))
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
-		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), percentRange(f.AnnualProbability, f.AnnualProbabilityCI))
+		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), "("+percentRange(f.AnnualProbability, f.AnnualProbabilityCI)+"%)")
 		if r := v.notes.refs(c, o.Name, b.Name); r != "" {
 			refs = append(refs, v.letters[o.Name]+" "+r)
 		}
@@ -110,10 +114,10 @@ func (v *view) spells(o *result.Option, spells []result.Spell) {
 	v.para("%s passed it: %s. Hold these times against what is known of the slope's movement.", v.letters[o.Name], strings.Join(parts, ", "))
 }
 
-// percentRange prints a range of shares as percentages.
+// percentRange prints a range of shares as percentages, without their sign.
 func percentRange(p float64, ci result.Interval) string {
 	_, lo, hi := figures(100*p, 100*ci[0], 100*ci[1], 0)
-	return "(" + between(lo, hi) + ")"
+	return between(lo, hi)
 }
 
 // toldApart says which options have less or more than the reference on one band, beyond the record's chance.

@@ -406,10 +406,11 @@ func TestConversion(t *testing.T) {
 	text, _, _ = strings.Cut(text, "\n\n")
 	want := ` from the centred scheme with steps of 1 d
 ---------------------------------------------------------
-       rate given  rate converted  porosity given  porosity converted
-layer          /d              /d               %                   %
-cover      0.0155       0.0155003               6             5.99988
-deep          0.5        0.510826             1.4             1.37033
+                              rate given  rate converted  porosity given  porosity converted
+store and its outlets                 /d              /d               %                   %
+cover, seepage + percolation      0.0155       0.0155003               6             5.99988
+deep layer, seepage                  0.5        0.510826             1.4             1.37033
+Seepage and percolation of the cover keep their proportion.
 Replayed by the scheme itself, the ground without measures has levels that differ from those of the
 converted rates by less than a millimetre in the cover and by at most 0.021 m (2001-02-03) in the
 deep layer.`

@@ -161,7 +161,11 @@ func (v *view) balance(c *result.Case) {
 		worst = max(worst, math.Abs(o.WaterBalance.Cover.ErrorMM), math.Abs(o.WaterBalance.Deep.ErrorMM))
 	}
 	v.rows(t, options)
-	v.para("Net in: infiltration less evapotranspiration; net in and unmet demand together are what leaves and what is stored. Columns that are zero for every option are left out. The balance closes over the whole record to %s mm.", closure(worst))
+	leaves := "it is what leaves and what is stored"
+	if slices.ContainsFunc(shown, func(q part) bool { return q.name == "unmet" }) {
+		leaves = "together with the demand that the cover could not meet (unmet) it is what leaves and what is stored"
+	}
+	v.para("Net in: infiltration less evapotranspiration; %s. Columns that are zero for every option are left out. The balance is over the whole record, the recharge above over the counted years only. It closes to %s mm.", leaves, closure(worst))
 }
 
 // recordYears is the length of the whole record in years of 365.25 d.
