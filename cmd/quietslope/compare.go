@@ -17,11 +17,11 @@ func compareCommand() *cli.Command {
 		Usage: "replay the weather for every option and set them side by side",
 		Description: `What it does:
   Replays the whole weather record of the study for every option, after a warm-up, and counts on
-  complete years how the deep level passes each band: events, days, load (metre-days), the share of
-  years, the longest and the highest. Events, days, load and years have a range, and so has every
-  change. Options are set against the baseline year by year and ranked on one band. The works as
-  built are one case, each of the study's conditions another. The notes name what is weak about the
-  figures.
+  complete years how the deep level rises above each band: events, days, load (metre-days), the
+  share of years, the longest and the highest. Events, days, load and years have a range, and so has
+  every change. Options are set against the baseline year by year and ranked on one band. The works
+  as built are one case, each of the study's conditions another. The notes name what is weak about
+  the figures.
 
 What it needs:
   A study file (YAML) that names the weather record, the ground as calibrated, the bands and the

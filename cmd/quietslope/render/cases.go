@@ -2,9 +2,7 @@ package render
 
 import (
 	"fmt"
-	"slices"
 	"strconv"
-	"strings"
 
 	"quietslope/scenario/result"
 )
@@ -107,7 +105,7 @@ func (v *view) standings() {
 			t.rows[k] = append(t.rows[k], cell, rank)
 		}
 	}
-	v.para("%s above %s, its range, and the rank in the case:", upperFirst(by.name), v.c.Bands[band].Name)
+	v.para("%s above %s, its range, and the rank in the case:", upperFirst(by.name), inQuotes(v.c.Bands[band].Name))
 	v.rows(t, options)
 }
 
@@ -131,76 +129,3 @@ func (v *view) deciderOf(c *result.Case, o *result.Option, band int, by *measure
 	}
 	return ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad)
 }
-
-// otherCases says in a line for each further case what changes on a band.
-func (v *view) otherCases(band int, by *measure) {
-	first := &v.c.Cases[0]
-	before := v.order(first, v.figuresBy(first, band, by))
-	for i := 1; i < len(v.c.Cases); i++ {
-		c := &v.c.Cases[i]
-		lead := fmt.Sprintf("In %s, %s: ", caseName(i), differs(first, c))
-		if v.nothingPassed(c, band) {
-			v.para("%sno option passes it.", lead)
-			continue
-		}
-		var now, no, apart, worse []string
-		for k := range c.Options {
-			was, is := &first.Options[k].Bands[band], &c.Options[k].Bands[band]
-			l := v.letters[c.Options[k].Name]
-			switch {
-			case notPassed(was) && !notPassed(is):
-				now = append(now, l)
-			case !notPassed(was) && notPassed(is):
-				no = append(no, l)
-			}
-			if was.Change == nil || is.Change == nil {
-				continue
-			}
-			switch against(by.change(is.Change), is.Change.ToldApart) {
-			case against(by.change(was.Change), was.Change.ToldApart):
-			case toldNot:
-				apart = append(apart, l)
-			case toldMore:
-				worse = append(worse, l)
-			}
-		}
-		var parts []string
-		for _, part := range []struct {
-			letters  []string
-			one, all string
-		}{
-			{now, "%s passes it too", "%s pass it too"},
-			{no, "%s passes it no more", "%s pass it no more"},
-			{apart, "%s is not told apart from " + v.reference, "%s are not told apart from " + v.reference},
-			{worse, "%s is worse than " + v.reference, "%s are worse than " + v.reference},
-		} {
-			switch len(part.letters) {
-			case 0:
-			case 1:
-				parts = append(parts, fmt.Sprintf(part.one, part.letters[0]))
-			default:
-				parts = append(parts, fmt.Sprintf(part.all, andWords(part.letters)))
-			}
-		}
-		if len(now)+len(no) == 0 {
-			parts = slices.Insert(parts, 0, "the same options pass it")
-		}
-		if after := v.order(c, v.figuresBy(c, band, by)); len(c.Options) > 1 && after != before {
-			parts = append(parts, "the order becomes "+after)
-		} else if len(c.Options) > 1 {
-			parts = append(parts, "the order stays")
-		}
-		v.para("%s%s.", lead, strings.Join(parts, "; "))
-	}
-}
-
-// andWords joins words as a sentence does.
-func andWords(words []string) string {
-	if len(words) < 2 {
-		return strings.Join(words, "")
-	}
-	return strings.Join(words[:len(words)-1], ", ") + " and " + words[len(words)-1]
-}
-
-// upperFirst begins a sentence with one of our words.
-func upperFirst(word string) string { return strings.ToUpper(word[:1]) + word[1:] }

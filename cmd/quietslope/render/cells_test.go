@@ -1,8 +1,10 @@
 package render
 
 import (
+	"regexp"
 	"strings"
 	"testing"
+	"time"
 
 	"quietslope/scenario/result"
 )
@@ -22,17 +24,33 @@ func TestUncountedEvents(t *testing.T) {
 	}
 }
 
-// TestSpells: twelve events are listed, further ones counted.
+// TestSpells: up to forty events are listed, of more the forty highest in order of time.
 func TestSpells(t *testing.T) {
-	for n, want := range map[int]string{12: "2001-01-02 (+0.50). Hold", 13: ", 1 more event. Hold", 14: ", 2 more events. Hold"} {
+	for n, want := range map[int]string{1: "above it at these times,", 40: "above it at these times,", 41: "above it in 41 events, of which these 40 rose highest,", 60: "above it in 60 events, of which these 40 rose highest,"} {
 		c := fixture(demoOptions[:2], threeBands)
-		for range n {
-			f := &c.Cases[0].Options[0].Bands[1]
-			f.Spells = append(f.Spells, result.Spell{From: "2001-01-01", To: "2001-01-02", Days: 2, PeakExcessM: 0.5})
+		f := &c.Cases[0].Options[0].Bands[1]
+		for i := range n {
+			day := time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC).AddDate(0, 0, 30*i).Format(time.DateOnly)
+			f.Spells = append(f.Spells, result.Spell{From: day, To: day, PeakExcessM: 0.5 + float64(i*7%n)/100}) // each height once
 		}
 		text := written(t, Comparison(c))
-		if text := strings.Join(strings.Fields(text), " "); !strings.Contains(text, want) || strings.Count(text, "2001-01-01 to") != 12 {
-			t.Errorf("%d events: no %q", n, want)
+		fits(t, text)
+		if text := strings.Join(strings.Fields(text), " "); !strings.Contains(text, want) {
+			t.Errorf("%d events: no %q in %s", n, want, text)
+		}
+		_, md, _ := strings.Cut(asMarkdown(t, Comparison(c)), "| from and to")
+		var from []string
+		for i, s := range f.Spells {
+			listed := strings.Contains(md, "| "+s.From+" to ")
+			if high := i*7%n >= n-40; listed != high {
+				t.Errorf("%d events, %+v: listed is %v", n, s, listed)
+			}
+			if listed {
+				from = append(from, regexp.QuoteMeta(s.From))
+			}
+		}
+		if !regexp.MustCompile("(?s)" + strings.Join(from, ".*")).MatchString(md) {
+			t.Errorf("%d events are not in order of time:\n%s", n, md)
 		}
 	}
 }
@@ -45,7 +63,7 @@ func TestNotesMerge(t *testing.T) {
 	if len(ns) != 2 {
 		t.Fatalf("%d notes, want one of each text", len(ns))
 	}
-	if of := ns[0].concerns(func(string) string { return "B" }, nil); len(of) != 1 || of[0] != "option B" {
+	if of := ns[0].concerns([]string{"w", "x"}, nil); of != "option B" {
 		t.Errorf("the first is about %q", of)
 	}
 }

@@ -52,6 +52,14 @@ var measures = []measure{
 		func(c *result.Change) *result.Difference { return &c.AnnualProbability }},
 }
 
+// inWords is a figure with its unit.
+func (m *measure) inWords(figure string) string {
+	if m.scale == 100 { // with its sign
+		return figure + " of years"
+	}
+	return figure + " " + m.unit
+}
+
 // measureOf finds a measure by its key; the first for a key that is not known.
 func measureOf(key string) *measure {
 	for i := range measures {
@@ -194,7 +202,7 @@ func rank(o *result.Option) int {
 
 // orders says whether the measures put the options in the same order on a band.
 func (v *view) orders(c *result.Case, band int, by *measure) {
-	figures := func(m *measure) []float64 { return v.figuresBy(c, band, m) }
+	figures := func(m *measure) []float64 { return figuresBy(c, band, m) }
 	base := figures(by)
 	var against []*measure
 	for i := range measures {
@@ -213,7 +221,7 @@ func (v *view) orders(c *result.Case, band int, by *measure) {
 	}
 	v.para("The measures disagree on the order of the options: %s against %s. From the least:", strings.Join(names, " and "), by.name)
 	for _, m := range append([]*measure{by}, against...) {
-		v.field("by "+m.name, "%s", v.order(c, figures(m)))
+		v.field("by "+m.name, "%s", order(figures(m), len(c.Options)))
 	}
 	if slices.ContainsFunc(against, func(m *measure) bool { return m.key == "events" }) || by.key == "events" {
 		v.para("A drain can split one long event into several, so that the count rises while days and load fall: read the count with them.")
@@ -232,8 +240,8 @@ func disagree(a, b []float64) bool {
 	return false
 }
 
-// order lists the options by a figure, from the least, as in "C = D < A".
-func (v *view) order(c *result.Case, xs []float64) string {
+// ranking are the places of figures from the least to the largest; equal ones keep their order.
+func ranking(xs []float64) []int {
 	index := make([]int, len(xs))
 	for i := range index {
 		index[i] = i
@@ -247,14 +255,24 @@ func (v *view) order(c *result.Case, xs []float64) string {
 		}
 		return 0
 	})
+	return index
+}
+
+// order lists the options by a figure, from the least, as in "C = D < A". It counts what goes beyond most of them.
+func order(xs []float64, most int) string {
 	var b strings.Builder
+	index := ranking(xs)
 	for k, i := range index {
-		if k > 0 && !stats.Less(xs[index[k-1]], xs[i]) {
-			b.WriteString(" = ")
-		} else if k > 0 {
+		switch {
+		case k == most && len(index) > most+1:
+			return fmt.Sprintf("%s, then %d more", &b, len(index)-k)
+		case k == 0:
+		case stats.Less(xs[index[k-1]], xs[i]):
 			b.WriteString(" < ")
+		default:
+			b.WriteString(" = ")
 		}
-		b.WriteString(v.letters[c.Options[i].Name])
+		b.WriteString(letter(i))
 	}
 	return b.String()
 }

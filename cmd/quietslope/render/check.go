@@ -12,9 +12,9 @@ import (
 func Check(c *result.Check) *Page {
 	p := &Page{}
 	ns := newNotes(c.Warnings)
-	letters := map[string]string{}
-	for i, o := range c.Options {
-		letters[o.Name] = letter(i)
+	var names []string
+	for _, o := range c.Options {
+		names = append(names, o.Name)
 	}
 	opening(p, &c.Head)
 	inputs(p, c.Inputs)
@@ -34,7 +34,7 @@ func Check(c *result.Check) *Page {
 		if refs := ns.wholeStudy(); refs != "" {
 			p.para("%s; about the whole study: %s.", ns.count(), refs)
 		}
-		ns.write(p, func(name string) string { return letters[name] }, nil)
+		ns.write(p, names, nil)
 	}
 	cautions(p, c.Cautions)
 	return p

@@ -51,14 +51,6 @@ type view struct {
 	reference string            // the letter of the option that changes are measured against
 }
 
-// letter names the i-th option in tables: A to Z, then AA, AB and so on.
-func letter(i int) string {
-	if i < 26 {
-		return string(rune('A' + i))
-	}
-	return letter(i/26-1) + letter(i%26)
-}
-
 // opening names the study and what made the result.
 func opening(p *Page, h *result.Head) {
 	p.title(h.Study)

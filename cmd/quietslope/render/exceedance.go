@@ -1,8 +1,10 @@
 package render
 
 import (
+	"cmp"
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -28,7 +30,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 	T := v.c.Record.YearsCounted
 	options := pointers(c)
 	if v.nothingPassed(c, band) {
-		text := fmt.Sprintf("No option passes it in %s, which does not mean that none can", plural(T, "year"))
+		text := fmt.Sprintf("No option's level rises above it in %s, which does not mean that none can", plural(T, "year"))
 		if refs := v.notes.refs(c, options[0].Name, b.Name); refs != "" {
 			text += ": see " + noun(refs)
 		}
@@ -36,7 +38,6 @@ func (v *view) exceedance(c *result.Case, band int) {
 		return
 	}
 	var events, load, lasting, with column
-	var refs []string
 	t := table{
 		head: [][]string{
 			{"events", "days", "load", fmt.Sprintf("years of %d", T), "longest", "peak"},
@@ -50,9 +51,6 @@ func (v *view) exceedance(c *result.Case, band int) {
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
 		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), "("+percentRange(f.AnnualProbability, f.AnnualProbabilityCI)+"%)")
-		if r := v.notes.refs(c, o.Name, b.Name); r != "" {
-			refs = append(refs, v.letters[o.Name]+" "+r)
-		}
 	}
 	for i, o := range options {
 		f := &o.Bands[band]
@@ -66,14 +64,12 @@ func (v *view) exceedance(c *result.Case, band int) {
 		t.rows = append(t.rows, []string{events.cells()[i], lasting.cells()[i], load.cells()[i], with.cells()[i], longest, peak})
 	}
 	v.rows(t, options)
-	if len(refs) > 0 {
-		v.para("See the notes: %s.", strings.Join(refs, "; "))
+	if text := v.notes.onBand(c, b.Name); text != "" {
+		v.para("%s", text)
 	}
-	v.toldApart(options, band)
-	for _, o := range options {
-		if v.indexOf(c) == 0 && o.Baseline && len(o.Bands[band].Spells) > 0 {
-			v.spells(o, o.Bands[band].Spells)
-		}
+	v.toldApart(c, band)
+	if base := baselineOf(c); v.indexOf(c) == 0 && len(base.Bands[band].Spells) > 0 {
+		v.spells(base, base.Bands[band].Spells)
 	}
 }
 
@@ -93,15 +89,19 @@ func (v *view) eventsOf(c *result.Case, o *result.Option, band int) (value, limi
 // notPassed reports whether a band is not passed at all in the years counted.
 func notPassed(f *result.BandFigure) bool { return f.Events == 0 && f.DaysPerYear == 0 }
 
-// spells lists when the baseline passed the deciding band, to be held against what is known of the slope.
+// mostSpells is how many events are listed.
+const mostSpells = 40
+
+// spells lists when the baseline's level stood above the deciding band, to be held against what is known of the slope: all
+// events, or the highest.
 func (v *view) spells(o *result.Option, spells []result.Spell) {
-	const most = 12
-	var parts []string
-	for i, s := range spells {
-		if i == most {
-			parts = append(parts, plural(len(spells)-most, "more event"))
-			break
-		}
+	which := "at these times"
+	if n := len(spells); n > mostSpells {
+		which = fmt.Sprintf("in %d events, of which these %d rose highest", n, mostSpells)
+		spells = highest(spells, mostSpells)
+	}
+	times := grid{head: []string{"from and to", "m above", ""}, width: 4}
+	for _, s := range spells {
 		from, to := s.From, s.To
 		if from == v.c.Record.From {
 			from = "before " + from
@@ -109,9 +109,25 @@ func (v *view) spells(o *result.Option, spells []result.Spell) {
 		if to == v.c.Record.To {
 			to = "after " + to
 		}
-		parts = append(parts, fmt.Sprintf("%s to %s (+%s)", from, to, centimetres(s.PeakExcessM)))
+		times.rows = append(times.rows, []string{from + " to " + to, centimetres(s.PeakExcessM), ""})
 	}
-	v.para("%s passed it: %s. Hold these times against what is known of the slope's movement.", v.letters[o.Name], strings.Join(parts, ", "))
+	v.para("With %s the level stood above it %s, with the greatest height above it in m. Hold them against what is known of the slope's movement:", v.letters[o.Name], which)
+	v.add(times)
+}
+
+// highest are the n events that rose highest, in order of time.
+func highest(spells []result.Spell, n int) []result.Spell {
+	index := make([]int, len(spells))
+	for i := range index {
+		index[i] = i
+	}
+	slices.SortStableFunc(index, func(a, b int) int { return cmp.Compare(spells[b].PeakExcessM, spells[a].PeakExcessM) })
+	slices.Sort(index[:n])
+	var all []result.Spell
+	for _, i := range index[:n] {
+		all = append(all, spells[i])
+	}
+	return all
 }
 
 // percentRange prints a range of shares as percentages, without their sign.
@@ -121,30 +137,30 @@ func percentRange(p float64, ci result.Interval) string {
 }
 
 // toldApart says which options have less or more than the reference on one band, beyond the record's chance.
-func (v *view) toldApart(options []*result.Option, band int) {
+func (v *view) toldApart(c *result.Case, band int) {
 	by := measureOf(v.c.Settings.DecideBy)
-	var less, more, no []string
-	for _, o := range options {
-		switch ch := o.Bands[band].Change; {
+	var less, more, no []int
+	for i := range c.Options {
+		switch ch := c.Options[i].Bands[band].Change; {
 		case ch == nil:
 		case !ch.ToldApart:
-			no = append(no, v.letters[o.Name])
+			no = append(no, i)
 		case by.change(ch).Difference > 0:
-			more = append(more, v.letters[o.Name])
+			more = append(more, i)
 		default:
-			less = append(less, v.letters[o.Name])
+			less = append(less, i)
 		}
 	}
 	var parts []string
 	for _, part := range []struct {
 		what    string
-		letters []string
-	}{{"less", less}, {"more", more}, {"not told apart on this record", no}} {
-		if len(part.letters) > 0 {
-			parts = append(parts, part.what+": "+strings.Join(part.letters, ", "))
+		options []int
+	}{{"less than %s", less}, {"more than %s", more}, {"not told apart from %s on this record", no}} {
+		if len(part.options) > 0 {
+			parts = append(parts, fmt.Sprintf(part.what, v.reference)+": "+byLetter(part.options))
 		}
 	}
 	if len(parts) > 0 {
-		v.para("Against %s by %s: %s.", v.reference, by.name, strings.Join(parts, "; "))
+		v.para("By %s, %s.", by.name, strings.Join(parts, "; "))
 	}
 }

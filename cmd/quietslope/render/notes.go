@@ -83,6 +83,33 @@ func (ns notes) refs(c *result.Case, option, band string) string {
 	return ns.which(func(w result.Warning) bool { return w.Option == option && w.Band == band && ofCase(w, c) })
 }
 
+// onBand says which notes hold for which options of a case on a band, such as "Note 5 holds for B and C, note 6 for H.";
+// "" for none.
+func (ns notes) onBand(c *result.Case, band string) string {
+	var texts []string
+	for i, n := range ns {
+		var of []int
+		for k := range c.Options {
+			if slices.ContainsFunc(n.places, func(w result.Warning) bool {
+				return w.Option == c.Options[k].Name && w.Band == band && ofCase(w, c)
+			}) {
+				of = append(of, k)
+			}
+		}
+		switch {
+		case len(of) == 0:
+		case texts == nil:
+			texts = append(texts, fmt.Sprintf("Note %d holds for %s", i+1, byLetter(of)))
+		default:
+			texts = append(texts, fmt.Sprintf("note %d for %s", i+1, byLetter(of)))
+		}
+	}
+	if texts == nil {
+		return ""
+	}
+	return strings.Join(texts, ", ") + "."
+}
+
 // wholeStudy are the numbers of the notes that name nothing in particular.
 func (ns notes) wholeStudy() string {
 	return ns.which(func(w result.Warning) bool { return w.Option+w.Band+w.Climate+w.Condition == "" })
@@ -111,78 +138,91 @@ func ofCase(w result.Warning, c *result.Case) bool {
 	return c == nil || (w.Climate == "" || w.Climate == c.Climate) && (w.Condition == "" || w.Condition == c.Condition)
 }
 
-// numbers joins rising numbers, runs of three and more as a span: 1, 4–6.
-func numbers(ns []int) string {
-	var parts []string
-	for i := 0; i < len(ns); {
-		j := i
-		for j+1 < len(ns) && ns[j+1] == ns[j]+1 {
-			j++
-		}
-		if j-i < 2 {
-			j = i
-			parts = append(parts, strconv.Itoa(ns[i]))
-		} else {
-			parts = append(parts, fmt.Sprintf("%d–%d", ns[i], ns[j]))
-		}
-		i = j + 1
-	}
-	return strings.Join(parts, ", ")
-}
-
-// write prints the notes. letter gives the key of an option's name.
-func (ns notes) write(p *Page, letter func(string) string, cases []result.Case) {
+// write prints the notes about options of the given names and about cases, nil where there are none.
+func (ns notes) write(p *Page, options []string, cases []result.Case) {
 	for i, n := range ns {
-		kind := "remark"
+		text := "remark"
 		if n.first.Severity == result.Warn {
-			kind = "WARNING"
+			text = "WARNING"
 		}
-		text := kind
-		if of := n.concerns(letter, cases); len(of) > 0 {
-			text += ", " + strings.Join(of, "; ")
+		if of := n.concerns(options, cases); of != "" {
+			text += ", " + of
 		}
 		p.item(numbered, strconv.Itoa(i+1), text+": "+n.first.Text)
 	}
 }
 
-// concerns says what a note is about: the options of each band, or what else it names, and in which cases.
-func (n note) concerns(letter func(string) string, cases []result.Case) []string {
-	// What is said in the same cases goes together, and of every option and band it is known in which cases it is said.
-	type what struct{ option, band string }
-	var whats []what
-	in := map[what][]bool{} // by case
+// concerns says what a note is about; "" where that is the whole study. Where a list would be too long to read, it names
+// the bands alone, since the notes are named below the tables too.
+func (n note) concerns(options []string, cases []result.Case) string {
+	var places []place
+	var texts, bands []string
+	parts := 0
 	for _, w := range n.places {
-		q := what{w.Option, w.Band}
-		if in[q] == nil {
-			whats, in[q] = append(whats, q), make([]bool, len(cases))
-		}
-		for i := range cases {
-			in[q][i] = in[q][i] || ofCase(w, &cases[i])
-		}
-	}
-	var texts []string
-	var done [][]bool
-	for _, q := range whats {
-		same := func(b []bool) bool { return slices.Equal(b, in[q]) }
-		if slices.ContainsFunc(done, same) {
+		p := place{w.Band, w.Option != ""}
+		if slices.Contains(places, p) {
 			continue
 		}
-		done = append(done, in[q])
-		var places []result.Warning
-		for _, r := range whats {
-			if same(in[r]) {
-				places = append(places, result.Warning{Option: r.option, Band: r.band})
+		places = append(places, p)
+		of := n.at(p, options, cases)
+		text := strings.Join(of, ", ")
+		if p.option && p.band != "" {
+			bands, parts = append(bands, inQuotes(p.band)), parts+len(of)
+			text = "on " + inQuotes(p.band) + " " + text
+		}
+		if text != "" {
+			texts = append(texts, text)
+		}
+	}
+	if parts > mostListed && parts > len(bands) {
+		return "on " + andWords(bands) + ", as said below the tables"
+	}
+	return strings.Join(texts, "; ")
+}
+
+// place is what a note is about in the cases: a band, options, options on a band, or neither.
+type place struct {
+	band   string
+	option bool
+}
+
+// at says which options a note is about in a place, and in which cases. Cases with the same options go together.
+func (n note) at(p place, options []string, cases []result.Case) []string {
+	in := make([][]int, max(1, len(cases))) // the options in each case; -1 for a band or a case as such
+	for i := range in {
+		for _, w := range n.places {
+			if p == (place{w.Band, w.Option != ""}) && (len(cases) == 0 || ofCase(w, &cases[i])) {
+				in[i] = append(in[i], slices.Index(options, w.Option))
 			}
 		}
-		of := inWords(places, letter)
-		switch where := casesText(in[q]); {
-		case where == "":
-			texts = append(texts, of...)
-		case len(of) == 0:
-			texts = append(texts, where)
-		default:
-			texts = append(texts, andWords(of)+" in "+where)
+		slices.Sort(in[i])
+		in[i] = slices.Compact(in[i])
+	}
+	var texts []string
+	for i, of := range in {
+		same := make([]bool, len(in))
+		for k := range in {
+			same[k] = slices.Equal(of, in[k])
 		}
+		if len(of) == 0 || slices.Index(same, true) < i {
+			continue
+		}
+		text := ""
+		switch {
+		case p.option && p.band != "":
+			text = byLetter(of)
+		case p.option && len(of) == 1:
+			text = "option " + byLetter(of)
+		case p.option:
+			text = "options " + byLetter(of)
+		case p.band != "":
+			text = "band " + inQuotes(p.band)
+		}
+		where := casesText(same)
+		if text != "" && where != "" {
+			text += " in "
+		}
+		texts = append(texts, text+where)
 	}
 	return texts
 }
@@ -195,54 +235,16 @@ func casesText(in []bool) string {
 			ns = append(ns, i+1)
 		}
 	}
-	switch len(ns) {
-	case 0, len(in):
+	if len(ns) == 0 || len(ns) == len(in) {
 		return ""
-	case 1:
+	}
+	return casesNamed(ns)
+}
+
+// casesNamed names cases by their numbers.
+func casesNamed(ns []int) string {
+	if len(ns) == 1 {
 		return caseName(ns[0] - 1)
 	}
 	return "cases " + numbers(ns)
-}
-
-// inWords names options and bands: the options of each band together.
-func inWords(places []result.Warning, letter func(string) string) []string {
-	var of, bands, alone []string    // alone are the letters of options that no band is named with
-	options := map[string][]string{} // letters, by band
-	for _, w := range places {
-		switch {
-		case w.Band != "" && w.Option != "":
-			bands = with(bands, w.Band)
-			options[w.Band] = with(options[w.Band], letter(w.Option))
-		case w.Option != "":
-			alone = with(alone, letter(w.Option))
-		case w.Band != "":
-			of = with(of, "band "+w.Band)
-		}
-	}
-	switch len(alone) {
-	case 0:
-	case 1:
-		of = append(of, "option "+alone[0])
-	default:
-		of = append(of, "options "+strings.Join(alone, ", "))
-	}
-	for _, b := range bands {
-		of = append(of, b+" "+strings.Join(options[b], ", "))
-	}
-	return of
-}
-
-// with is a list with a text in it, once.
-func with(list []string, text string) []string {
-	if slices.Contains(list, text) {
-		return list
-	}
-	return append(list, text)
-}
-
-func plural(n int, what string) string {
-	if n == 1 {
-		return "1 " + what
-	}
-	return fmt.Sprintf("%d %ss", n, what)
 }

@@ -304,7 +304,7 @@ func TestCases(t *testing.T) {
 	if !ok || !strings.Contains(before, "\nCase 1: weather as recorded, works as built\n") {
 		t.Fatal("no heading for each case")
 	}
-	if strings.Contains(before, "See the notes: A") || !strings.Contains(after, "See the notes: A 2.") {
+	if strings.Contains(before, "Note 2 holds") || !strings.Contains(after, "Note 2 holds for A.") {
 		t.Errorf("the note is not named where it belongs:\n%s", text)
 	}
 }
@@ -342,13 +342,14 @@ func TestCasesOfNothing(t *testing.T) {
 	c.Cases = append(c.Cases, fixture([]strengths{{"as it stands", nil, 1}, {"lined channels", nil, 0}}, []string{"watch", "movement onset"}).Cases...)
 	c.Cases[1].Climate = "wetter winters"
 	text := strings.Join(strings.Fields(written(t, Comparison(c))), " ")
-	for _, want := range []string{"No option passes movement onset in 39 years", "In case 2, wetter winters: A passes it too; the order becomes B < A."} {
+	for _, want := range []string{`No option's level rises above "movement onset" in 39 years`,
+		`In case 2, wetter winters: A, the baseline, has 0.9 m·d per year instead of 0; with A the level rises above "movement onset" too; the least is now B, with 0; the order becomes B < A.`} {
 		if !strings.Contains(text, want) {
 			t.Errorf("no %q in %s", want, text)
 		}
 	}
 	c.Cases[0], c.Cases[1] = c.Cases[1], c.Cases[0]
-	if text := strings.Join(strings.Fields(written(t, Comparison(c))), " "); !strings.Contains(text, "no option passes it.") {
+	if text := strings.Join(strings.Fields(written(t, Comparison(c))), " "); !strings.Contains(text, `no option's level rises above "movement onset".`) {
 		t.Error(text)
 	}
 	c = severalCases()
@@ -361,7 +362,7 @@ func TestCasesOfNothing(t *testing.T) {
 // TestDecidersOfCases: whatever ranks the options is what the cases are compared by.
 func TestDecidersOfCases(t *testing.T) {
 	for key, want := range map[string]string{
-		"load": "Load above movement onset, its range,", "days": "Days above movement onset,", "events": "Events above movement onset,", "annual_probability": "Share of years above movement onset,",
+		"load": `Load above "movement onset", its range,`, "days": `Days above "movement onset",`, "events": `Events above "movement onset",`, "annual_probability": `Share of years above "movement onset",`,
 	} {
 		c := severalCases()
 		c.Settings.DecideBy = key

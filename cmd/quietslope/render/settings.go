@@ -16,7 +16,13 @@ func (v *view) warnings() {
 		return
 	}
 	v.heading("Notes")
-	v.notes.write(&v.Page, func(name string) string { return v.letters[name] }, v.c.Cases)
+	var names []string
+	if len(v.c.Cases) > 0 {
+		for _, o := range v.c.Cases[0].Options {
+			names = append(names, o.Name)
+		}
+	}
+	v.notes.write(&v.Page, names, v.c.Cases)
 }
 
 func (v *view) settings() {

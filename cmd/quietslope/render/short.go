@@ -16,7 +16,7 @@ func (v *view) inShort() {
 		return
 	}
 	c := &v.c.Cases[0]
-	name, T := v.c.Bands[band].Name, v.c.Record.YearsCounted
+	name, T := inQuotes(v.c.Bands[band].Name), v.c.Record.YearsCounted
 	by := measureOf(v.c.Settings.DecideBy)
 	v.heading("In short")
 	for i, n := range v.notes {
@@ -29,43 +29,44 @@ func (v *view) inShort() {
 	}
 	if v.nothingPassed(c, band) {
 		base := baselineOf(c)
-		v.para("No option passes %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
+		v.para("No option's level rises above %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
 			name, plural(T, "year"), v.letters[base.Name], centimetres(base.Level.MaxM), metres(v.c.Bands[band].LevelM))
 		v.otherCases(band, by)
 		v.para("%s.", v.notes.headline())
 		return
 	}
-	var none, worse, same []string
-	for _, o := range pointers(c) {
+	var none, worse, same []int
+	for i := range c.Options {
+		o := &c.Options[i]
 		f := &o.Bands[band]
 		switch {
 		case o.Baseline && notPassed(f):
-			v.para("%s, the baseline, does not pass %s in %s.", v.letters[o.Name], name, plural(T, "year"))
+			v.para("With %s, the baseline, the deep level does not rise above %s in %s.", letter(i), name, plural(T, "year"))
 		case o.Baseline:
 			days, limits := ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
-			v.para("%s, the baseline, passes %s in %.0f of %s, on %s days a year.", v.letters[o.Name], name,
+			v.para("With %s, the baseline, the deep level rises above %s in %.0f of %s, on %s days a year.", letter(i), name,
 				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), strings.TrimSpace(days+" "+limits))
 		case notPassed(f):
-			none = append(none, v.letters[o.Name])
+			none = append(none, i)
 		}
 		switch {
 		case f.Change == nil:
 		case !f.Change.ToldApart:
-			same = append(same, v.letters[o.Name])
+			same = append(same, i)
 		case by.change(f.Change).Difference > 0:
-			worse = append(worse, v.letters[o.Name])
+			worse = append(worse, i)
 		}
 	}
 	if len(none) > 0 {
-		v.para("With %s the record holds no event, which does not mean that none can come.", strings.Join(none, ", "))
+		v.para("With %s the record holds no event, which does not mean that none can come.", someByLetter(none))
 	}
 	if len(c.Options) > 1 {
-		text := fmt.Sprintf("From the least by %s: %s.", by.name, v.order(c, v.figuresBy(c, band, by)))
+		text := fmt.Sprintf("From the least by %s: %s.", by.name, order(figuresBy(c, band, by), mostListed))
 		if len(worse) > 0 {
-			text += fmt.Sprintf(" Worse than %s: %s.", v.reference, strings.Join(worse, ", "))
+			text += fmt.Sprintf(" Worse than %s: %s.", v.reference, someByLetter(worse))
 		}
 		if len(same) > 0 {
-			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.reference, strings.Join(same, ", "))
+			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.reference, someByLetter(same))
 		}
 		v.para("%s", text+v.neighbours(c))
 	}
@@ -104,7 +105,7 @@ func baselineOf(c *result.Case) *result.Option {
 }
 
 // figuresBy are the options' figures on a band by one measure, in the order of the case.
-func (v *view) figuresBy(c *result.Case, band int, m *measure) []float64 {
+func figuresBy(c *result.Case, band int, m *measure) []float64 {
 	xs := make([]float64, len(c.Options))
 	for i := range c.Options {
 		xs[i] = m.figure(&c.Options[i].Bands[band])

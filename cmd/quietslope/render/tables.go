@@ -67,7 +67,7 @@ func (v *view) levels(c *result.Case) {
 	}
 	t = t.dropEmpty()
 	v.rows(t, options)
-	text := "95 %, 99 %: the level that is not passed on that share of the steps."
+	text := "95 %, 99 %: the level that is not exceeded on that share of the steps."
 	if slices.Contains(t.head[0], "actual ET") {
 		text += " ET: evapotranspiration."
 	}
