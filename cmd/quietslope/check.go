@@ -24,6 +24,11 @@ What it needs:
 Examples:
   quietslope check testdata/demo/study.yaml
   quietslope check --format json study.yaml
+
+The format csv:
+  A row for every figure and every text, with the columns that "quietslope help compare" explains.
+  Rows understood.KEY.value and understood.KEY.default stand for the keys of the study, in which
+  options[0] is the first option, the A of the text. Other lists are counted from 1: audit.years.1.
 `,
 		Flags:  []cli.Flag{formatFlag(), outFlag()},
 		Action: func(c *cli.Context) error { return answer(c, scenario.Check, render.Check) },

@@ -124,6 +124,31 @@ func TestStudyHelpFormats(t *testing.T) {
 	}
 }
 
+// TestHelpOfCSV: the quantities that the help of compare and check names are there.
+func TestHelpOfCSV(t *testing.T) {
+	for command, quantities := range map[string][]string{
+		"compare": {"load_m_days_per_year", "water_balance.deep.in_mm", "peak_excess_m", "annual_probability", "days_by_month.1", "change.days_per_year.difference", "defaults.options[0]", "warning.few_events"},
+		"check":   {"audit.years.1"},
+	} {
+		_, help, _ := program(t.Context(), "help", command)
+		code, found, stderr := program(t.Context(), command, demoStudy, "--format", "csv")
+		if code != 0 {
+			t.Fatal(stderr)
+		}
+		for _, q := range quantities {
+			if !strings.Contains(help, q) || !strings.Contains(found, ","+q) {
+				t.Errorf("%s: %s is not in the help, or not in the CSV", command, q)
+			}
+		}
+		head, _, _ := strings.Cut(found, "\n")
+		for _, column := range strings.Split(head, ",") {
+			if command == "compare" && !strings.Contains(help, column) {
+				t.Errorf("the column %s is not explained", column)
+			}
+		}
+	}
+}
+
 func TestWrap(t *testing.T) {
 	long := strings.Repeat("x", helpWidth-4)
 	for _, tt := range []struct{ text, below, want string }{
