@@ -3,7 +3,10 @@ package render
 import (
 	"fmt"
 	"math"
+	"regexp"
+	"slices"
 	"strconv"
+	"strings"
 
 	"quietslope/scenario/result"
 )
@@ -44,20 +47,26 @@ func Check(c *result.Check) *Page {
 func understood(p *Page, keys []result.Understood) {
 	p.heading("What was understood")
 	defaults := 0
-	width := 0
 	for _, k := range keys {
 		if k.Default {
 			defaults++
 		}
-		width = max(width, min(len(k.Key), 44))
 	}
-	p.para("%s; %d of them, marked *, were not given and stand at their default.", plural(len(keys), "key"), defaults)
-	for _, k := range keys {
-		kind := named
-		if k.Default {
-			kind = marked
+	p.para("%s; %d of them, marked *, were not given and stand at their default. A key that has one value in several entries of a list stands once; they are counted from 0, so that options[0] is option A.",
+		plural(len(keys), "key"), defaults)
+	var list listing
+	for _, k := range merge(keys) {
+		e := entry{key: clean(k.rest), value: clean(k.value), mark: k.byDefault}
+		if k.list != "" {
+			e.key = fmt.Sprintf("%s[%s].%s", k.list, numbers(k.at), e.key)
 		}
-		p.add(item{kind, clean(k.Key), width + 4, clean(k.Value)})
+		if k.list == "options" {
+			e.options = byLetter(k.at)
+		}
+		list = append(list, e)
+	}
+	if len(list) > 0 {
+		p.add(list)
 	}
 }
 
@@ -65,6 +74,7 @@ func understood(p *Page, keys []result.Understood) {
 func checkOptions(p *Page, c *result.Check, ns notes) {
 	p.heading("Options and their rates")
 	p.para("Stores of the baseline: %s.", ratesText(&c.Rates))
+	var known origins
 	for i, o := range c.Options {
 		text := o.Name
 		if refs := ns.refs(nil, o.Name, ""); refs != "" {
@@ -86,11 +96,49 @@ func checkOptions(p *Page, c *result.Check, ns notes) {
 				text += fmt.Sprintf(", at most %s mm/d", typed(*d.CeilingMMPerDay, 6))
 			}
 			if d.From != "" {
-				text += "; the rate is " + d.From
+				text += "; the rate is " + known.instead(i, d.From)
 			}
 			p.item(below, "", text)
 		}
 	}
+}
+
+// origins are the ways in which the rates of drains came about, with the option that each is first said of.
+type origins []origin
+
+type origin struct {
+	option int
+	parts  []string
+	form   string // with no figures
+}
+
+var digits = regexp.MustCompile(`[0-9]+(\.[0-9]+)?(e[-+]?[0-9]+)?`)
+
+// instead says how the rate of a drain of an option came about: in full, or, where a long formula was said before, what
+// differs.
+func (known *origins) instead(option int, from string) string {
+	const long = 3 // parts
+	parts := strings.Split(from, ", ")
+	form := digits.ReplaceAllString(from, "#")
+	k := slices.IndexFunc(*known, func(o origin) bool { return o.form == form })
+	if k < 0 || len(parts) < long {
+		*known = append(*known, origin{option, parts, form})
+		return from
+	}
+	before := (*known)[k]
+	var differs []string
+	for i, part := range parts {
+		if part != before.parts[i] {
+			if _, of, found := strings.Cut(part, " with "); found {
+				part = of
+			}
+			differs = append(differs, part)
+		}
+	}
+	if differs == nil {
+		return "as for " + letter(before.option)
+	}
+	return "as for " + letter(before.option) + ", but " + strings.Join(differs, ", ")
 }
 
 func layerName(layer string) string {

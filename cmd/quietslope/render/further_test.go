@@ -142,6 +142,16 @@ func TestNotesInCases(t *testing.T) {
 	}
 }
 
+func TestWrap(t *testing.T) {
+	for _, tt := range []struct{ text, want string }{
+		{"", ""}, {"a b", "a b"}, {"at 90 %, with", "at|90 %,|with"}, {"a % % b", "a % %|b"}, {"abc % % b", "abc %|% b"}, {"% a", "% a"}, {"longer than six", "longer|than|six"},
+	} {
+		if got := strings.Join(wrap(tt.text, 6), "|"); got != tt.want {
+			t.Errorf("%q became %q, want %q", tt.text, got, tt.want)
+		}
+	}
+}
+
 func TestLists(t *testing.T) {
 	for _, tt := range []struct{ got, want string }{
 		{byLetter(nil), ""}, {byLetter([]int{1}), "B"}, {byLetter([]int{0, 1, 3}), "A, B and D"}, {byLetter([]int{0, 2, 3, 4, 26}), "A, C–E and AA"},

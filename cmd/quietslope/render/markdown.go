@@ -37,6 +37,8 @@ func (p *Page) Markdown(w io.Writer) error {
 			b.WriteString(of.markdown())
 		case table:
 			b.WriteString(of.markdown())
+		case listing:
+			b.WriteString(of.table().markdown())
 		case grid:
 			b.WriteString(of.table().markdown())
 		}
@@ -58,8 +60,6 @@ func sameList(a, b block) bool {
 // markdown is the entry with its mark.
 func (i item) markdown() string {
 	switch i.kind {
-	case marked:
-		return "- **" + escape("* "+i.label) + "**: " + escape(i.words) + "\n"
 	case lettered:
 		return "- **" + escape(i.label) + "** " + escape(i.words) + "\n"
 	case numbered:
@@ -126,6 +126,19 @@ func (l label) markdown() string {
 		return escape(l.name)
 	}
 	return "**" + escape(l.key) + "** " + escape(l.name)
+}
+
+// table is the listing as a table, without columns that are empty.
+func (l listing) table() table {
+	t := table{first: "key", head: [][]string{{"value", "options", "default"}}, left: []bool{true, true, true}}
+	for _, e := range l {
+		mark := ""
+		if e.mark {
+			mark = "*"
+		}
+		t.labels, t.rows = append(t.labels, label{name: e.key}), append(t.rows, []string{e.value, e.options, mark})
+	}
+	return t.dropEmpty()
 }
 
 // table is the grid as a table, without the column of remarks where there are none.

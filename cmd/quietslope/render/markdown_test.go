@@ -117,14 +117,14 @@ func meant(p *Page) []piece {
 			switch b.kind {
 			case named:
 				text = b.label + ": " + b.words
-			case marked:
-				text = "* " + b.label + ": " + b.words
 			case lettered:
 				text = b.label + " " + b.words
 			}
 			pieces = append(pieces, piece{"li", text})
 		case table:
 			pieces = append(pieces, meantTable(b)...)
+		case listing:
+			pieces = append(pieces, meantTable(b.table())...)
 		case grid:
 			pieces = append(pieces, meantTable(b.table())...)
 		}
@@ -181,11 +181,19 @@ func readsAsMeant(t failer, p *Page) {
 		}
 	}
 	for _, b := range p.blocks {
-		if g, ok := b.(grid); ok {
-			cells = cells[len(g.rows)*(1+len(g.table().head[0])):]
-		}
-		of, ok := b.(table)
-		if !ok {
+		var of table
+		switch b := b.(type) {
+		case listing:
+			of = b.table()
+			cells = cells[len(of.rows)*(1+len(of.head[0])):]
+			continue
+		case grid:
+			of = b.table()
+			cells = cells[len(of.rows)*(1+len(of.head[0])):]
+			continue
+		case table:
+			of = b
+		default:
 			continue
 		}
 		lines := strings.Split(strings.TrimSuffix(of.draw(math.MaxInt), "\n"), "\n")
@@ -264,7 +272,7 @@ func TestMarkdownOfAnything(t *testing.T) {
 		p.heading("%s", word("heading"))
 		p.innerHeading("%s", word("heading"))
 		p.para("%s", word("paragraph"))
-		for i, kind := range []itemKind{named, marked, lettered, below, plain} {
+		for i, kind := range []itemKind{named, lettered, below, plain} {
 			p.item(kind, fmt.Sprint("label", i), word("item"))
 		}
 		p.para("%s", word("paragraph"))

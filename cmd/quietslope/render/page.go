@@ -42,7 +42,6 @@ type itemKind int
 
 const (
 	named    itemKind = iota // what the entry is about, then what is said of it
-	marked                   // the same, with a mark
 	lettered                 // the letter of an option, then its name
 	numbered                 // a number that the page refers to
 	plain                    // no label
@@ -64,6 +63,15 @@ type table struct {
 
 // label begins a row: an option's letter and name, or a name alone.
 type label struct{ key, name string }
+
+// listing lists keys of a study.
+type listing []entry
+
+// entry is a key with its value, the options that it is about, and whether it is marked.
+type entry struct {
+	key, value, options string
+	mark                bool
+}
 
 // grid lists short pairs of a name and a figure, some with a remark.
 type grid struct {

@@ -117,6 +117,12 @@ func checkFixture() *result.Check {
 		Understood: []result.Understood{
 			{Key: "study", Value: "Ostler Lea bank, cover drainage options"}, {Key: "weather.stamp", Value: "start", Default: true},
 			{Key: "ground.cover.drainable_porosity", Value: "6 %"}, {Key: "count.apart", Value: "10 d", Default: true},
+			{Key: "options[0].baseline", Value: "true", Default: true}, {Key: "options[1].name", Value: "trenches, spacing 12 m"},
+			{Key: "options[1].baseline", Value: "false", Default: true}, {Key: "options[1].trench_drains.equivalent_depth", Value: "0.8 m"},
+			{Key: "options[2].baseline", Value: "false", Default: true}, {Key: "options[2].trench_drains.equivalent_depth", Value: "0.8 m"},
+			{Key: "options[3].baseline", Value: "false"}, {Key: "options[3].trench_drains.equivalent_depth", Value: "0.9 m"},
+			{Key: "options[4].baseline", Value: "false", Default: true}, {Key: "options[5].baseline", Value: "false", Default: true},
+			{Key: "conditions[0].drains", Value: "45 %"}, {Key: "conditions[1].drains", Value: "45 %"},
 		},
 		Rates: result.Rates{CoverSeepagePerDay: 0.011, CoverPercolationPerDay: 0.0045, DeepSeepagePerDay: 0.007},
 		Bands: demo.Bands, Record: demo.Record, YearStarts: "October", Start: result.StartFound{CoverM: 0.4312, DeepM: 2.5117},
@@ -141,6 +147,27 @@ func checkFixture() *result.Check {
 		c.Options = append(c.Options, co)
 	}
 	return c
+}
+
+// TestOrigins: a long formula is said once, and then what differs.
+func TestOrigins(t *testing.T) {
+	var known origins
+	for i, tt := range []struct{ from, want string }{
+		{"as given", "as given"},
+		{"K·D with K 0.02 m/d, D 1.6 m, L 8 m", "K·D with K 0.02 m/d, D 1.6 m, L 8 m"},
+		{"K·D with K 0.02 m/d, D 1.6 m, L 12 m", "as for B, but L 12 m"},
+		{"K·D with K 1e-07 m/d, D 1.65 m, L 8 m", "as for B, but K 1e-07 m/d, D 1.65 m"},
+		{"K·D with K 0.02 m/d, D 1.6 m, L 8 m, times the efficiency of 80 %", "K·D with K 0.02 m/d, D 1.6 m, L 8 m, times the efficiency of 80 %"},
+		{"K·D with K 0.02 m/d, D 1.6 m, L 9 m, times the efficiency of 75 %", "as for E, but L 9 m, times the efficiency of 75 %"},
+		{"K·D with K 0.02 m/d, D 1.6 m, L 8 m", "as for B"},
+		{"as given", "as given"},
+		{"as given, times the efficiency of 80 %", "as given, times the efficiency of 80 %"},
+		{"as given, times the efficiency of 90 %", "as given, times the efficiency of 90 %"},
+	} {
+		if got := known.instead(i, tt.from); got != tt.want {
+			t.Errorf("%s became %q, want %q", tt.from, got, tt.want)
+		}
+	}
 }
 
 func TestCheck(t *testing.T) {
@@ -225,7 +252,7 @@ func TestMerged(t *testing.T) {
 	v := &view{c: &result.Comparison{Bands: []result.Band{{Name: "watch"}, {Name: "onset"}}}}
 	got := v.merged([]result.KeyValue{{Key: "options[1].baseline", Value: "false"}, {Key: "count.seed", Value: "1"}, {Key: "declared.perched_water", Value: "unknown"}, {Key: "options[1].trench_drains.law", Value: "linear"}, {Key: "bands[0].until", Value: "3 m"},
 		{Key: "options[2].trench_drains.law", Value: "linear"}, {Key: "options[3].trench_drains.law", Value: "linear"}, {Key: "bands[1].until", Value: "4 m"}})
-	want := []string{"count.seed 1", "B, C, D: trench_drains.law linear", "watch: until 3 m", "onset: until 4 m"}
+	want := []string{"count.seed 1", "B–D: trench_drains.law linear", "watch: until 3 m", "onset: until 4 m"}
 	if d := cmp.Diff(want, got); d != "" {
 		t.Error(d)
 	}

@@ -59,38 +59,59 @@ func (v *view) givenRates() *result.Rates {
 	return nil
 }
 
+// alike are keys of the study that differ only in the entry of a list, and have one value.
+type alike struct {
+	list, rest, value string // list is "" for a key outside a list
+	byDefault         bool
+	at                []int // entries of the list, from 0
+}
+
 var indexed = regexp.MustCompile(`^([a-z_]+)\[(\d+)\]\.(.*)$`)
 
-// merged lists keys with their values. Those that differ only in the option or band share an entry, as in
-// B, C, H: trench_drains.law linear. Which option is no baseline is said with the options.
-func (v *view) merged(keys []result.KeyValue) []string {
-	type entry struct {
-		list, rest, value string
-		at                []string
-	}
-	var entries []entry
+// merge puts keys together, in the order of the first of each.
+func merge(keys []result.Understood) []alike {
+	var all []alike
 	for _, k := range keys {
-		if strings.HasPrefix(k.Key, "declared.") || strings.HasSuffix(k.Key, "].baseline") { // said elsewhere
-			continue
-		}
-		e := entry{rest: k.Key, value: k.Value}
+		e := alike{rest: k.Key, value: k.Value, byDefault: k.Default}
 		if m := indexed.FindStringSubmatch(k.Key); m != nil {
 			if n, err := strconv.Atoi(m[2]); err == nil {
-				e = entry{m[1], m[3], k.Value, []string{v.nameOf(m[1], n)}}
+				e.list, e.rest, e.at = m[1], m[3], []int{n}
 			}
 		}
-		same := func(o entry) bool { return e.list != "" && o.list == e.list && o.rest == e.rest && o.value == e.value }
-		if i := slices.IndexFunc(entries, same); i >= 0 {
-			entries[i].at = append(entries[i].at, e.at...)
+		same := func(o alike) bool {
+			return e.list != "" && o.list == e.list && o.rest == e.rest && o.value == e.value && o.byDefault == e.byDefault
+		}
+		if i := slices.IndexFunc(all, same); i >= 0 {
+			all[i].at = append(all[i].at, e.at...)
 		} else {
-			entries = append(entries, e)
+			all = append(all, e)
+		}
+	}
+	return all
+}
+
+// merged lists keys with their values. Those that differ only in the option or band share an entry, as in
+// B–D, H: trench_drains.law linear. Which option is no baseline is said with the options.
+func (v *view) merged(keys []result.KeyValue) []string {
+	var left []result.Understood
+	for _, k := range keys {
+		if !strings.HasPrefix(k.Key, "declared.") && !strings.HasSuffix(k.Key, "].baseline") { // said elsewhere
+			left = append(left, result.Understood{Key: k.Key, Value: k.Value})
 		}
 	}
 	var texts []string
-	for _, e := range entries {
+	for _, e := range merge(left) {
 		text := e.rest + " " + e.value
-		if e.list != "" {
-			text = strings.Join(e.at, ", ") + ": " + text
+		var at []string
+		for _, n := range e.at {
+			at = append(at, v.nameOf(e.list, n))
+		}
+		switch e.list {
+		case "":
+		case "options":
+			text = byLetter(e.at) + ": " + text
+		default:
+			text = strings.Join(at, ", ") + ": " + text
 		}
 		texts = append(texts, text)
 	}
@@ -100,8 +121,6 @@ func (v *view) merged(keys []result.KeyValue) []string {
 // nameOf is how the text calls item n of a list of the study.
 func (v *view) nameOf(list string, n int) string {
 	switch {
-	case list == "options":
-		return letter(n)
 	case list == "bands" && n < len(v.c.Bands):
 		return v.c.Bands[n].Name
 	case list == "climates":

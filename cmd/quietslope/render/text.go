@@ -40,6 +40,8 @@ func (p *Page) Text(w io.Writer) error {
 			t.hang(b.mark(), b.indent, b.words)
 		case table:
 			t.table(b)
+		case listing:
+			t.listing(b)
 		case grid:
 			t.grid(b)
 		}
@@ -51,8 +53,6 @@ func (p *Page) Text(w io.Writer) error {
 // mark is what stands before the words of an entry.
 func (i *item) mark() string {
 	switch i.kind {
-	case marked:
-		return "* " + i.label
 	case numbered:
 		return fmt.Sprintf("%3s", i.label)
 	case plain:
@@ -95,11 +95,18 @@ func (t *lines) hang(label string, indent int, of string) {
 	}
 }
 
-// wrap cuts text into lines of at most width columns, between words. A longer word has a line of its own.
+// wrap cuts text into lines of at most width columns, between words, but not before a percent sign. A longer word has a
+// line of its own.
 func wrap(text string, width int) []string {
 	var lines []string
 	line, used := "", 0
-	for _, w := range strings.Fields(text) {
+	for words := strings.Fields(text); len(words) > 0; {
+		w := words[0]
+		words = words[1:]
+		if len(words) > 0 && strings.HasPrefix(words[0], "%") {
+			w += " " + words[0]
+			words = words[1:]
+		}
 		n := displaywidth.String(w)
 		if line != "" && used+1+n > width {
 			lines, line, used = append(lines, line), "", 0
@@ -293,6 +300,25 @@ func widest(text string) int {
 		w = max(w, displaywidth.String(strings.TrimRight(line, " \n")))
 	}
 	return w
+}
+
+// listing writes keys, and their values side by side where the keys are not too long.
+func (t *lines) listing(l listing) {
+	const most = 48
+	width := 0
+	for _, e := range l {
+		width = max(width, min(displaywidth.String(e.key), most))
+	}
+	for _, e := range l {
+		mark, text := "  ", e.value
+		if e.mark {
+			mark = "* "
+		}
+		if e.options != "" {
+			text += " (" + e.options + ")"
+		}
+		t.hang(mark+e.key, width+4, text)
+	}
 }
 
 // grid writes pairs in as many columns as fit, read downwards.
