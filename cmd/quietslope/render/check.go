@@ -136,9 +136,9 @@ func (known *origins) instead(option int, from string) string {
 		}
 	}
 	if differs == nil {
-		return "as for " + letter(before.option)
+		return "as for option " + letter(before.option)
 	}
-	return "as for " + letter(before.option) + ", but " + strings.Join(differs, ", ")
+	return "as for option " + letter(before.option) + ", but " + strings.Join(differs, ", ")
 }
 
 func layerName(layer string) string {

@@ -201,19 +201,20 @@ func (f *furtherCases) differences() (now, no, apart, worse []int) {
 	return now, no, apart, worse
 }
 
-// order says what becomes of the order of the options.
+// order says what becomes of the order of the options: in one case of all of it, in several of who leads.
 func (f *furtherCases) order() []string {
 	if len(f.was) < 2 {
 		return nil
 	}
 	lead := least(f.was)
-	var others []int // numbers of the cases in which others lead
-	for i := f.from; i < f.to; i++ {
-		if !slices.Equal(least(figuresBy(&f.c.Cases[i], f.band, f.by)), lead) {
-			others = append(others, i+1)
-		}
-	}
 	if !f.single() {
+		var others []int // numbers of the cases in which none of them leads
+		for i := f.from; i < f.to; i++ {
+			now := least(figuresBy(&f.c.Cases[i], f.band, f.by))
+			if !slices.ContainsFunc(now, func(k int) bool { return slices.Contains(lead, k) }) {
+				others = append(others, i+1)
+			}
+		}
 		if len(others) == 0 {
 			return nil
 		}
@@ -221,8 +222,9 @@ func (f *furtherCases) order() []string {
 	}
 	c := &f.c.Cases[f.from]
 	is := figuresBy(c, f.band, f.by)
+	now := least(is)
 	var parts []string
-	if now := least(is); len(others) > 0 {
+	if !slices.Equal(now, lead) {
 		text := "the least is now "
 		if len(now) > 1 {
 			text = "the least are now "
@@ -234,7 +236,7 @@ func (f *furtherCases) order() []string {
 		parts = append(parts, "the order stays")
 	case len(is) <= mostOrder:
 		parts = append(parts, "the order becomes "+after)
-	case len(others) == 0:
+	case slices.Equal(now, lead):
 		parts = append(parts, "the order of the others changes")
 	}
 	return parts
