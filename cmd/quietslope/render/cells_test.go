@@ -83,6 +83,18 @@ func TestSafetyHeading(t *testing.T) {
 	}
 }
 
+// TestWholeBalance: a balance with all its parts fits the page.
+func TestWholeBalance(t *testing.T) {
+	c := fixture(demoOptions, threeBands)
+	for i := range c.Cases[0].Options {
+		b := &c.Cases[0].Options[i].WaterBalance
+		b.Cover = result.CoverBalance{InMM: 48000, SeepageMM: 20000, PercolationMM: 12000, DrainsMM: 7000, OverflowMM: 9000, UnmetMM: 300, StorageChangeMM: 200}
+		b.Deep = result.DeepBalance{InMM: 12000, LateralMM: 700, SeepageMM: 8000, DrainsMM: 4000, RefusedMM: 500, StorageChangeMM: 200}
+	}
+	fits(t, written(t, Comparison(c)))
+	readsAsMeant(t, Comparison(c))
+}
+
 // TestUnmet: demand that the cover could not meet is explained where there is some.
 func TestUnmet(t *testing.T) {
 	c := fixture(demoOptions[:2], threeBands)

@@ -140,7 +140,7 @@ func (v *view) balance(c *result.Case) {
 		{"deep:", "stored", func(b *result.Balance) float64 { return b.Deep.StorageChangeMM }},
 	}
 	optional := []string{"drains", "overflow", "unmet", "lateral", "refused"}
-	t := table{head: [][]string{nil}}
+	t := table{head: [][]string{nil}, cut: true}
 	var shown []part
 	for _, q := range parts {
 		zero := !slices.ContainsFunc(c.Options, func(o result.Option) bool { return q.of(&o.WaterBalance) != 0 })
