@@ -18,6 +18,7 @@ import (
 const (
 	schemeFelt       = 0.10 // m of deep level by which the converted stores leave the scheme: judgement
 	startFelt        = 0.01 // m of deep level at the first counted step that still depend on the start: judgement
+	mostPairs        = 10   // of options that a warning names
 	closeToCapacity  = 0.10 // m below capacity within which peaks count as clipped: judgement
 	refusedShare     = 0.01 // of the percolation: judgement
 	drainDryShare    = 0.95 // of the steps on which the baseline's level is at or below a drain: judgement
@@ -297,7 +298,7 @@ func (p *prepared) gapWarnings(ws *warnings) {
 	}
 	if years := p.filledYears(); len(years) > 0 {
 		ws.add(warn("years_much_filled"), "Much of the rain is filled in %s: %s. A month there has fewer than %d days of measured rain, or more than %.0f %% of the year's days or rain are filled. Their events rest on it; complete these years, or cut the record.",
-			plural(len(years), "counted year"), firstOf(years, 8), leastValidDays, 100*mostFilled)
+			plural(len(years), "counted year"), firstOf(years, ", ", 8), leastValidDays, 100*mostFilled)
 	}
 }
 
@@ -350,11 +351,11 @@ func (c *period) yearName(first int) string {
 }
 
 // firstOf lists the first of some words, and how many more there are.
-func firstOf(words []string, most int) string {
+func firstOf(words []string, sep string, most int) string {
 	if len(words) <= most {
-		return strings.Join(words, ", ")
+		return strings.Join(words, sep)
 	}
-	return strings.Join(words[:most], ", ") + fmt.Sprintf(" and %d more", len(words)-most)
+	return strings.Join(words[:most], sep) + fmt.Sprintf(" and %d more", len(words)-most)
 }
 
 // drainWarnings hold each drain of an option against the levels without works and, where the option was replayed, against
@@ -629,7 +630,7 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, against
 	if len(pairs) > 0 {
 		w := warn("order_not_told_apart")
 		w.Band = band
-		ws.add(w, "Neighbours in the order by %s that this record cannot tell apart: %s. Choose between them on other grounds.", measureTitle(m.name), strings.Join(pairs, "; "))
+		ws.add(w, "Neighbours in the order by %s that this record cannot tell apart: %s. Choose between them on other grounds.", measureTitle(m.name), firstOf(pairs, "; ", mostPairs))
 	}
 }
 

@@ -16,11 +16,14 @@ const (
 	toldNot  = "not told apart"
 	toldMore = "more"
 	toldLess = "less"
+	toldSame = "the same" // in every year
 )
 
 // against says in a cell how an option stands against the reference.
 func against(d *result.Difference, apart bool) string {
 	switch {
+	case d.YearsBetter+d.YearsWorse == 0 && d.YearsEqual > 0:
+		return toldSame
 	case !apart:
 		return toldNot
 	case d.Difference > 0:

@@ -157,13 +157,23 @@ func ratesText(r *result.Rates) string {
 		text += fmt.Sprintf(" (at most %s mm/d)", typed(*r.PercolationCeilingMMPerDay, 6))
 	}
 	text += fmt.Sprintf(", so that it halves in %s d", significant(math.Ln2/(r.CoverSeepagePerDay+r.CoverPercolationPerDay), 2))
-	return text + fmt.Sprintf("; deep seepage %s /d, halves in %s d", typed(r.DeepSeepagePerDay, 6), significant(math.Ln2/r.DeepSeepagePerDay, 2))
+	text += fmt.Sprintf("; deep seepage %s /d, halves in %s d", typed(r.DeepSeepagePerDay, 6), significant(math.Ln2/r.DeepSeepagePerDay, 2))
+	return text + porosities(r)
+}
+
+// porosities names the drainable porosities where they were converted too; "" elsewhere.
+func porosities(r *result.Rates) string {
+	if r.CoverPorosity == nil || r.DeepPorosity == nil {
+		return ""
+	}
+	return fmt.Sprintf(", drainable porosity %s %% in the cover and %s %% in the deep layer", typed(100**r.CoverPorosity, 6), typed(100**r.DeepPorosity, 6))
 }
 
 // bareRates names the rates of both stores and nothing else.
 func bareRates(r *result.Rates) string {
-	return fmt.Sprintf("cover seepage %s /d, percolation %s /d, deep seepage %s /d",
+	text := fmt.Sprintf("cover seepage %s /d, percolation %s /d, deep seepage %s /d",
 		typed(r.CoverSeepagePerDay, 6), typed(r.CoverPercolationPerDay, 6), typed(r.DeepSeepagePerDay, 6))
+	return text + porosities(r)
 }
 
 // conversion says what became of rates that were calibrated with a stepping scheme.
@@ -204,7 +214,8 @@ func atMost(m float64, at string) string {
 func sameRates(a, b *result.Rates) bool {
 	same := func(x, y *float64) bool { return (x == nil) == (y == nil) && (x == nil || *x == *y) }
 	return a.CoverSeepagePerDay == b.CoverSeepagePerDay && a.CoverPercolationPerDay == b.CoverPercolationPerDay &&
-		a.DeepSeepagePerDay == b.DeepSeepagePerDay && same(a.PercolationCeilingMMPerDay, b.PercolationCeilingMMPerDay)
+		a.DeepSeepagePerDay == b.DeepSeepagePerDay && same(a.PercolationCeilingMMPerDay, b.PercolationCeilingMMPerDay) &&
+		same(a.CoverPorosity, b.CoverPorosity) && same(a.DeepPorosity, b.DeepPorosity)
 }
 
 // audit lists what a person should look at in the record.

@@ -139,25 +139,19 @@ func percentRange(p float64, ci result.Interval) string {
 // toldApart says which options have less or more than the reference on one band, beyond the record's chance.
 func (v *view) toldApart(c *result.Case, band int) {
 	by := measureOf(v.c.Settings.DecideBy)
-	var less, more, no []int
+	told := map[string][]int{}
 	for i := range c.Options {
-		switch ch := c.Options[i].Bands[band].Change; {
-		case ch == nil:
-		case !ch.ToldApart:
-			no = append(no, i)
-		case by.change(ch).Difference > 0:
-			more = append(more, i)
-		default:
-			less = append(less, i)
+		if ch := c.Options[i].Bands[band].Change; ch != nil {
+			as := against(by.change(ch), ch.ToldApart)
+			told[as] = append(told[as], i)
 		}
 	}
 	var parts []string
-	for _, part := range []struct {
-		what    string
-		options []int
-	}{{"less than %s", less}, {"more than %s", more}, {"not told apart from %s on this record", no}} {
-		if len(part.options) > 0 {
-			parts = append(parts, fmt.Sprintf(part.what, v.reference)+": "+byLetter(part.options))
+	for _, part := range []struct{ as, what string }{
+		{toldLess, "less than %s"}, {toldMore, "more than %s"}, {toldNot, "not told apart from %s on this record"}, {toldSame, "the same as %s in every year"},
+	} {
+		if options := told[part.as]; len(options) > 0 {
+			parts = append(parts, fmt.Sprintf(part.what, v.reference)+": "+byLetter(options))
 		}
 	}
 	if len(parts) > 0 {

@@ -62,7 +62,7 @@ func (f *furtherCases) tell() {
 			parts = append(parts, text)
 		}
 	}
-	now, no, apart, worse := f.differences()
+	now, no, apart, idle, worse := f.differences()
 	for _, part := range []struct {
 		options []int
 		text    string
@@ -70,6 +70,7 @@ func (f *furtherCases) tell() {
 		{now, fmt.Sprintf("with %s the level rises above %s too", someByLetter(now), name)},
 		{no, fmt.Sprintf("with %s the record holds no event any more", someByLetter(no))},
 		{apart, fmt.Sprintf("%s not told apart from %s", someAre(apart), f.reference)},
+		{idle, fmt.Sprintf("%s the same as %s in every year", someAre(idle), f.reference)},
 		{worse, fmt.Sprintf("%s worse than %s", someAre(worse), f.reference)},
 	} {
 		if len(part.options) > 0 {
@@ -165,12 +166,12 @@ func (f *furtherCases) figure(c *result.Case, option int) string {
 }
 
 // differences are the options that rise above the band in some case but not in the first, that do so in the first but in
-// none of the cases, that are told apart from the reference in the first but not in some case, and that are worse than it
-// in some case but not in the first.
-func (f *furtherCases) differences() (now, no, apart, worse []int) {
+// none of the cases, that are not told apart from the reference, do the same as it or are worse than it in some case but
+// not in the first.
+func (f *furtherCases) differences() (now, no, apart, idle, worse []int) {
 	for k := range f.first.Options {
 		before := &f.first.Options[k].Bands[f.band]
-		var rises, unclear, more bool
+		var rises, unclear, same, more bool
 		for i := f.from; i < f.to; i++ {
 			after := &f.c.Cases[i].Options[k].Bands[f.band]
 			rises = rises || !notPassed(after)
@@ -181,6 +182,8 @@ func (f *furtherCases) differences() (now, no, apart, worse []int) {
 			case against(f.by.change(before.Change), before.Change.ToldApart):
 			case toldNot:
 				unclear = true
+			case toldSame:
+				same = true
 			case toldMore:
 				more = true
 			}
@@ -191,6 +194,9 @@ func (f *furtherCases) differences() (now, no, apart, worse []int) {
 		case !rises && !notPassed(before):
 			no = append(no, k)
 		}
+		if same {
+			idle = append(idle, k)
+		}
 		if unclear {
 			apart = append(apart, k)
 		}
@@ -198,7 +204,7 @@ func (f *furtherCases) differences() (now, no, apart, worse []int) {
 			worse = append(worse, k)
 		}
 	}
-	return now, no, apart, worse
+	return now, no, apart, idle, worse
 }
 
 // order says what becomes of the order of the options: in one case of all of it, in several of who leads.

@@ -31,7 +31,11 @@ func (v *view) settings() {
 	v.field("settings", "year starts in %s, events %s d apart, confidence %s, %d resamples of %s-year blocks, seed %d",
 		s.YearStarts, days(s.ApartDays), v.confidence(), s.Resamples, rate(s.BlockYears), s.Seed)
 	if g := v.givenRates(); g != nil {
-		v.field("rates", "those of a stepping scheme were converted: %s. Given were %s", bareRates(g), bareRates(g.Given))
+		from := "a stepping scheme"
+		if c := v.c.Conversion; c != nil {
+			from = fmt.Sprintf("the %s scheme with steps of %s d", c.Scheme, typed(c.StepDays, 6))
+		}
+		v.field("rates", "those of %s were converted: %s. Given were %s", from, bareRates(g), bareRates(g.Given))
 	}
 	inputs(&v.Page, v.c.Inputs)
 	if len(v.c.Defaults) > 0 {

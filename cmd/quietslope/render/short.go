@@ -35,7 +35,8 @@ func (v *view) inShort() {
 		v.para("%s.", v.notes.headline())
 		return
 	}
-	var none, worse, same []int
+	var none []int
+	told := map[string][]int{}
 	for i := range c.Options {
 		o := &c.Options[i]
 		f := &o.Bands[band]
@@ -49,12 +50,9 @@ func (v *view) inShort() {
 		case notPassed(f):
 			none = append(none, i)
 		}
-		switch {
-		case f.Change == nil:
-		case !f.Change.ToldApart:
-			same = append(same, i)
-		case by.change(f.Change).Difference > 0:
-			worse = append(worse, i)
+		if f.Change != nil {
+			as := against(by.change(f.Change), f.Change.ToldApart)
+			told[as] = append(told[as], i)
 		}
 	}
 	if len(none) > 0 {
@@ -62,11 +60,12 @@ func (v *view) inShort() {
 	}
 	if len(c.Options) > 1 {
 		text := fmt.Sprintf("From the least by %s: %s.", by.name, order(figuresBy(c, band, by), mostListed))
-		if len(worse) > 0 {
-			text += fmt.Sprintf(" Worse than %s: %s.", v.reference, someByLetter(worse))
-		}
-		if len(same) > 0 {
-			text += fmt.Sprintf(" Not told apart from %s on this record: %s.", v.reference, someByLetter(same))
+		for _, part := range []struct{ as, what string }{
+			{toldMore, "Worse than %s"}, {toldNot, "Not told apart from %s on this record"}, {toldSame, "The same as %s in every year"},
+		} {
+			if options := told[part.as]; len(options) > 0 {
+				text += fmt.Sprintf(" "+part.what+": %s.", v.reference, someByLetter(options))
+			}
 		}
 		v.para("%s", text+v.neighbours(c))
 	}
