@@ -75,10 +75,16 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	return p, err
 }
 
+// maxReplays is the largest number of options times conditions. Nobody reads more.
+const maxReplays = 5000
+
 // work works out every option in every condition.
 func (p *prepared) work() error {
 	s := p.study
 	p.cases = nil
+	if n := len(s.Options) * (1 + len(s.Conditions)); n > maxReplays {
+		return s.Fault(s.PlaceOf("options"), "%d options in %d conditions are %d replays, more than %d; compare fewer at a time", len(s.Options), 1+len(s.Conditions), n, maxReplays)
+	}
 	for _, c := range append([]Condition{asBuilt}, s.Conditions...) {
 		found := caseWorks{condition: c.Name}
 		for i := range s.Options {
@@ -123,7 +129,7 @@ type CompareQuery struct {
 func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison, error) {
 	against := baselineOf(s)
 	if q.Against != "" {
-		if against = slices.IndexFunc(s.Options, func(o Option) bool { return o.Name == q.Against }); against < 0 {
+		if against = indexOfName(optionNames(s), q.Against); against < 0 {
 			return nil, unknownName("--against", q.Against, optionNames(s))
 		}
 	}

@@ -155,6 +155,9 @@ func (s *Study) hasKey(key string) bool {
 	return ok
 }
 
+// namesCount says which names are one.
+const namesCount = "names that differ only in upper and lower case, or in how letters are encoded, count as the same"
+
 // checkUnique refuses a name that was used before, ignoring case.
 func (d *decoder) checkUnique(what string, name *value, seen map[string]Place) {
 	if !name.given || name.bad {
@@ -162,7 +165,7 @@ func (d *decoder) checkUnique(what string, name *value, seen map[string]Place) {
 	}
 	fold := foldKey(name.text)
 	if first, ok := seen[fold]; ok {
-		d.add(name.place, "the %s in line %d has the name %s already; names that differ only in upper and lower case count as the same", what, first.Line, quoted(name.text))
+		d.add(name.place, "the %s in line %d has the name %s already; %s", what, first.Line, quoted(name.text), namesCount)
 		return
 	}
 	seen[fold] = name.place
@@ -190,7 +193,7 @@ func (d *decoder) count(s *Study, b *blockValue, bands *value) {
 	var names []string
 	for i := range s.Bands {
 		names = append(names, s.Bands[i].Name)
-		if on.given && s.Bands[i].Name == on.text {
+		if on.given && sameName(s.Bands[i].Name, on.text) {
 			c.DecideOn = i
 		}
 	}

@@ -21,7 +21,7 @@ func expandOptions(root *node, found *problems) {
 	if list == nil || list.value == nil || list.value.is != listNode {
 		return
 	}
-	x := &expander{problems: found}
+	x := &expander{problems: found, places: map[string]int{}}
 	marked := slices.ContainsFunc(list.value.items, func(item *node) bool {
 		return item != nil && item.text1("baseline") == "true"
 	})
@@ -38,6 +38,10 @@ func expandOptions(root *node, found *problems) {
 		}
 		x.key = fmt.Sprintf("options[%d]", len(items))
 		o := x.written(item)
+		x.oneName(&o)
+		if fold := foldKey(o.name); x.place(o.name) < 0 {
+			x.places[fold] = len(x.above)
+		}
 		x.above = append(x.above, o)
 		made := x.perValue(o.item)
 		if len(items) == 0 && len(made) > 1 && !marked {
@@ -72,9 +76,10 @@ func (n *node) text1(key string) string {
 // expander expands the options from the first to the last.
 type expander struct {
 	*problems
-	above []writtenOption
-	names []string // of all options, as written
-	key   string   // of the option in hand, as the decoder will number it
+	above  []writtenOption
+	places map[string]int // of the first of each name among them, by foldKey
+	names  []string       // of all options, as written
+	key    string         // of the option in hand, as the decoder will number it
 }
 
 // at is the place of a part of the option in hand.
@@ -91,6 +96,25 @@ type writtenOption struct {
 	name string
 	item *node
 	from map[string]string // by measure: the option that it was taken from
+}
+
+// oneName refuses the name of an option that an option above has, where one of the two has a list: their made names may
+// differ, but like could mean either.
+func (x *expander) oneName(o *writtenOption) {
+	i := x.place(o.name)
+	if i < 0 || o.name == "" || len(lists(o.item)) == 0 && len(lists(x.above[i].item)) == 0 {
+		return
+	}
+	e := o.item.entry("name")
+	x.add(x.at(e.value.line, e.value.col, "name"), "the option in line %d has the name %s already; %s", x.above[i].item.entry("name").line, quoted(x.above[i].name), namesCount)
+}
+
+// place is the place of the first option above with a name, -1 where there is none.
+func (x *expander) place(name string) int {
+	if i, ok := x.places[foldKey(name)]; ok {
+		return i
+	}
+	return -1
 }
 
 // measureFields are the keys of an option that hold a measure, by name.
@@ -131,7 +155,7 @@ func (x *expander) merged(o *writtenOption, measure string, own *node, named *en
 	}
 	name, at := named.value.text, x.at(named.value.line, named.value.col, measure, named.key)
 	o.from[measure] = name
-	i := slices.IndexFunc(x.above, func(w writtenOption) bool { return w.name == name })
+	i := x.place(name)
 	if i < 0 {
 		x.unknownOption(at, measure, name, o.name)
 		return &out
@@ -194,9 +218,9 @@ func (x *expander) unknownOption(at Place, measure, name, own string) {
 		}
 	}
 	switch near := fault.Nearest(name, above); {
-	case name == own:
+	case sameName(name, own):
 		x.add(at, "this is the option itself; %s", x.having(measure))
-	case slices.Contains(x.names, name):
+	case indexOfName(x.names, name) >= 0:
 		x.add(at, "the option %s stands below; only an option above can be named, so change their order", quoted(name))
 	case near != "":
 		x.add(at, "no option above is named %s; did you mean %s?", quoted(name), quoted(near))

@@ -142,3 +142,28 @@ func TestLongestList(t *testing.T) {
 		}
 	}
 }
+
+// TestSameName: names are found however their letters are encoded, and in any case.
+func TestSameName(t *testing.T) {
+	const composed, decomposed = "caf\u00e9", "cafe\u0301"
+	s := parseBase(t, `
+-  - {name: watch, level: 3.6 m}
+-  - {name: onset, level: 4.2 m, until: 3.9 m}
++  - {name: watch, level: 3.6 m}
++  - {name: `[1:]+composed+`, level: 4.2 m, until: 3.9 m}
+-  decide_on: onset
++  decide_on: `+decomposed+`
+-  - name: trenches
++  - name: `+composed+`
+-  - name: bored drains
+-    bored_drains: {rate: 0.005 /d, level: 3.0 m}
++  - name: more
++    trench_drains: {like: `+strings.ToUpper(decomposed)+`, spacing: 20 m}
+`)
+	if s.Count.DecideOn != 1 || len(s.Options) != 4 || s.Options[2].Measures[0].Trench.Spacing != 20 {
+		t.Errorf("decides on band %d; %+v", s.Count.DecideOn, s.Options)
+	}
+	if i := indexOfName(optionNames(s), "As It Stands"); i != 0 {
+		t.Errorf("another case is found at %d", i)
+	}
+}

@@ -3,7 +3,6 @@ package scenario
 import (
 	"context"
 	"fmt"
-	"slices"
 	"strings"
 	"time"
 
@@ -43,13 +42,13 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 	}
 	chosen := p.cases[0]
 	for _, c := range p.cases {
-		if c.condition == q.Condition {
+		if sameName(c.condition, q.Condition) {
 			chosen = c
 		}
 	}
 	var wanted []int
 	for i := range s.Options {
-		if len(q.Options) == 0 || slices.Contains(q.Options, s.Options[i].Name) {
+		if len(q.Options) == 0 || indexOfName(q.Options, s.Options[i].Name) >= 0 {
 			wanted = append(wanted, i)
 		}
 	}
@@ -82,21 +81,21 @@ func Levels(ctx context.Context, s *Study, q LevelsQuery) (*LevelSeries, error) 
 func (q *LevelsQuery) check(s *Study) error {
 	known := optionNames(s)
 	for i, name := range q.Options {
-		if !slices.Contains(known, name) {
+		if indexOfName(known, name) < 0 {
 			return unknownName("--option", name, known)
 		}
-		if slices.Contains(q.Options[:i], name) {
+		if indexOfName(q.Options[:i], name) >= 0 {
 			return &fault.Error{Key: "--option", Text: fmt.Sprintf("%q is asked for twice; name each option once", name)}
 		}
 	}
-	if q.Climate != "" && q.Climate != AsRecorded {
+	if q.Climate != "" && !sameName(q.Climate, AsRecorded) {
 		return unknownName("--climate", q.Climate, []string{AsRecorded})
 	}
 	conditions := []string{AsBuilt}
 	for i := range s.Conditions {
 		conditions = append(conditions, s.Conditions[i].Name)
 	}
-	if q.Condition != "" && !slices.Contains(conditions, q.Condition) {
+	if q.Condition != "" && indexOfName(conditions, q.Condition) < 0 {
 		return unknownName("--condition", q.Condition, conditions)
 	}
 	return nil

@@ -2,6 +2,7 @@ package scenario
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode"
@@ -30,8 +31,10 @@ func checkName(name string) string {
 		return "a name stands on one line and holds no control characters"
 	case strings.TrimFunc(name, unicode.IsSpace) != name:
 		return "a name neither begins nor ends with a blank"
-	case strings.ContainsRune(formulaSigns, rune(name[0])):
-		return fmt.Sprintf("a name does not begin with %c, because a spreadsheet would take it for a formula", name[0])
+	case foldKey(name) == "":
+		return "a name has at least one character that can be seen"
+	case strings.ContainsRune(formulaSigns, rune(foldKey(name)[0])):
+		return fmt.Sprintf("a name does not begin with %c, because a spreadsheet would take it for a formula", foldKey(name)[0])
 	}
 	for _, r := range reservedNames {
 		if foldKey(name) == r {
@@ -45,7 +48,7 @@ func checkName(name string) string {
 // are encoded.
 func foldKey(name string) string {
 	return strings.Map(func(r rune) rune {
-		if unicode.Is(unicode.Cf, r) {
+		if unicode.Is(unicode.Cf, r) || strings.ContainsRune(fillers, r) {
 			return -1
 		}
 		least := r
@@ -54,6 +57,17 @@ func foldKey(name string) string {
 		}
 		return unicode.ToLower(least)
 	}, norm.NFKC.String(name))
+}
+
+// fillers are letters and signs without a shape: those of Hangul, and the joiner and selectors that change others.
+const fillers = "\u034f\u115f\u1160\u2800\ufe0e\ufe0f"
+
+// sameName says whether two texts name the same band, option or condition.
+func sameName(a, b string) bool { return foldKey(a) == foldKey(b) }
+
+// indexOfName is the place of a name in a list, -1 where it has none.
+func indexOfName(names []string, name string) int {
+	return slices.IndexFunc(names, func(n string) bool { return sameName(n, name) })
 }
 
 // quoted quotes a text of the user for a message and cuts a long one.

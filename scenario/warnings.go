@@ -35,6 +35,8 @@ const (
 	leastConductivity = 1e-11 * 86400 // m/d, of any soil: judgement
 	mostConductivity  = 1e-3 * 86400
 	leastInfiltration = 0.05  // share of the rain: judgement
+	leastWater        = 5.0   // mm, of a soil: judgement
+	mostWater         = 500.0 // the same
 	leastArea         = 100.0 // m2 of a slope in plan: judgement
 	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
 	mostPorosity      = 0.30  // the same
@@ -212,6 +214,10 @@ func (p *prepared) groundWarnings(g *Ground, option string) warnings {
 	if !math.IsInf(g.InfiltrationLimit, 1) && (p.record.Monthly() || p.record.Step > time.Hour) {
 		ws.add(at(note("limit_hardly_acts")), "An infiltration limit hardly acts with steps of %s, over which rain is spread evenly. Give hourly or shorter steps, or lower the infiltration share instead.", p.record.StepText())
 	}
+	water := 0.0
+	if g.Soil != nil {
+		water = g.Soil.Available
+	}
 	for _, q := range []struct {
 		key         string
 		value       float64
@@ -219,6 +225,7 @@ func (p *prepared) groundWarnings(g *Ground, option string) warnings {
 		unit        string
 		scale       float64
 	}{
+		{"soil.available_water", water, leastWater, mostWater, "mm", 1},
 		{"surface.infiltration", g.Infiltration, leastInfiltration, 1, "%", 100},
 		{"cover.drainable_porosity", g.CoverPorosity, leastPorosity, mostPorosity, "%", 100},
 		{"deep.drainable_porosity", g.DeepPorosity, 0, mostClayPorosity, "%", 100},

@@ -158,6 +158,8 @@ func TestStudyWarnings(t *testing.T) {
 		{"readings above it", func(p *prepared) { p.study.Ground.CalibratedTo = 9.01 }, []string{"readings_above_full"}},
 		{"small infiltration", func(p *prepared) { p.study.Ground.Infiltration = 0.05 }, nil},
 		{"hardly any infiltration", func(p *prepared) { p.study.Ground.Infiltration = 0.049 }, []string{"implausible_ground"}},
+		{"thin soil", func(p *prepared) { p.study.Ground.Soil = &Soil{Available: 5, Readily: 0.5, CropFactor: 1} }, nil},
+		{"metres taken for millimetres", func(p *prepared) { p.study.Ground.Soil = &Soil{Available: 0.12, Readily: 0.5, CropFactor: 1} }, []string{"implausible_ground"}},
 		{"small area", func(p *prepared) { p.study.Site.PlanArea = 100 }, nil},
 		{"hectares taken for square metres", func(p *prepared) { p.study.Site.PlanArea = 1.2 }, []string{"implausible_area"}},
 		{"porosity set", measured(Measure{Set: []Assignment{{Key: "cover.drainable_porosity", Value: 0.31}}}), []string{"implausible_ground"}},

@@ -76,6 +76,19 @@ func TestFill(t *testing.T) {
 	}
 }
 
+// everyOther are the times of some hours one after another, and of some more with an hour left out before each.
+func everyOther(hours, more int) (stamps []string) {
+	t := time.Date(2020, 1, 1, 0, 0, 0, 0, time.UTC)
+	for i := range hours + more {
+		stamps = append(stamps, t.Format("2006-01-02 15:04"))
+		t = t.Add(time.Hour)
+		if i >= hours-1 {
+			t = t.Add(time.Hour)
+		}
+	}
+	return stamps
+}
+
 func TestFillRefusals(t *testing.T) {
 	days := func(rows ...string) string { return "date,rain,pet\n" + strings.Join(rows, "\n") + "\n" }
 	hours := func(stamps ...string) string { return times("time,rain", stamps...) }
@@ -103,8 +116,9 @@ func TestFillRefusals(t *testing.T) {
 			`w.csv: column "rain": no April, May or September of the record has a value, so gaps there have no mean to be filled with; complete the record or cut it to its longest stretch without gaps, 2020-01 to 2020-03`},
 		{"an hour repeated", filling(hourly(), GapsZero), hours("2019-10-27 00:00", "2019-10-27 01:00", "2019-10-27 02:00", "2019-10-27 02:00", "2019-10-27 03:00"),
 			`w.csv:5: column "time": "2019-10-27 02:00" repeats line 4; if these are clock times of a place with summer time, give them in UTC, or with their offset in the format iso`},
-		{"another step for good", filling(hourly(), GapsZero), hours("2020-01-01 00:00", "2020-01-01 01:00", "2020-01-01 02:00", "2020-01-01 03:00", "2020-01-01 05:00", "2020-01-01 07:00", "2020-01-01 09:00"),
-			`w.csv:8: column "time": "2020-01-01 09:00": the step changes from 1 h to 2 h after line 5; every step must be the same`},
+		{"another step for good", filling(hourly(), GapsZero), hours(everyOther(12, 10)...),
+			`w.csv:23: column "time": "2020-01-02 07:00": the step changes from 1 h to 2 h after line 13; every step must be the same; where rows are only missing, write each of them with empty values, which are filled`},
+		{"nine rows of another step", filling(hourly(), GapsZero), hours(everyOther(12, 9)...), ""},
 		{"a bad value beside a gap", zero, days("2020-01-01,1,1", "2020-01-02,-1,1", "2020-01-04,1,1"),
 			`w.csv:3: column "rain": "-1" is negative rain; a negative code for a missing value belongs in weather.missing, and a trace of rain is written as 0`},
 	} {

@@ -322,8 +322,9 @@ func (r *reader) clockChange(unix, d int64) bool {
 	return false
 }
 
-// skip notes that rows are missing before w, which comes n steps after the row before. The same jump three times in a row
-// is a change of step, unless rows between could not be read.
+// skip notes that rows are missing before w, which comes n steps after the row before. The same jump several times in a row
+// is a change of step, unless rows between could not be read. Where gaps are filled it takes more of them: rows may be
+// missing here and there.
 func (r *reader) skip(w *row, n int64) {
 	oneMonth := !r.months && r.civil(w.at).Equal(r.civil(r.last).AddDate(0, 1, 0))
 	switch {
@@ -336,12 +337,16 @@ func (r *reader) skip(w *row, n int64) {
 		r.jump, r.jumps, r.jumpFrom = n, 1, r.lastLine
 	}
 	r.jumpsOne = oneMonth
-	if r.jumps == 3 && !w.broken {
+	often, hint := 3, ""
+	if r.fills() && !oneMonth {
+		often, hint = 10, "; where rows are only missing, write each of them with empty values, which are filled"
+	}
+	if r.jumps == often && !w.broken {
 		to := r.spanText(n * r.step)
 		if oneMonth {
 			to = "1 month"
 		}
-		r.inRow(w.line, r.src.Time, wrong("%q: the step changes from %s to %s after line %d; every step must be the same",
+		r.inRow(w.line, r.src.Time, wrong("%q: the step changes from %s to %s after line %d; every step must be the same"+hint,
 			w.time, r.spanText(r.step), to, r.jumpFrom)).noun = "place"
 		r.unsure = true
 	}

@@ -172,7 +172,12 @@ func clean(text string) string {
 		if r == '\n' || r == '\t' {
 			return ' '
 		}
-		if !unicode.IsGraphic(r) {
+		switch {
+		case r == '\u200c', r == '\u200d': // they join letters of some scripts, or keep them apart
+			return r
+		case r == '\u00ad', r == '\u200b': // where a word may be broken
+			return -1
+		case !unicode.IsGraphic(r):
 			return unicode.ReplacementChar
 		}
 		return r
