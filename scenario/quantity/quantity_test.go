@@ -349,6 +349,7 @@ func FuzzParse(f *testing.F) {
 			f.Add(s, int(k))
 		}
 	}
+	f.Add("2*10"+strings.Repeat("0", 3000)+" m", 0) // nothing of it is to be repeated
 	f.Fuzz(func(t *testing.T, text string, k int) {
 		kind := Kind(uint(k) % uint(kinds))
 		v, err := Parse(text, kind)

@@ -111,9 +111,15 @@ var (
 	minutes    = regexp.MustCompile(`^([0-9]+)(?:°|deg) *([0-9]{1,2}) *['′’]$`)
 )
 
+// longestSlip is the largest number of bytes of a text that is explained by repeating parts of it.
+const longestSlip = 120
+
 // notOne explains a text that is a power of ten written out, a range, a fraction or two quantities.
 func notOne(text string) error {
 	text = strings.TrimSpace(text)
+	if len(text) > longestSlip {
+		return nil
+	}
 	if m := timesTen.FindStringSubmatch(text); m != nil {
 		number := strings.ReplaceAll(m[1], ",", ".")
 		exp := strings.Map(func(r rune) rune {
@@ -168,6 +174,9 @@ func spaced(unit string) string {
 
 // moreThanUnit explains a unit after which something else follows.
 func moreThanUnit(text, number, name string, kind Kind) error {
+	if len(name) > longestSlip {
+		return nil
+	}
 	i := strings.IndexAny(name, " ,;#(")
 	if i < 0 {
 		i = strings.Index(name, "//")
