@@ -60,10 +60,10 @@ func TestNotesMerge(t *testing.T) {
 		{Code: "a", Severity: result.Warn, Option: "x", Text: "One."}, {Code: "a", Severity: result.Warn, Option: "x", Text: "Two."},
 		{Code: "a", Severity: result.Warn, Option: "x", Text: "One."},
 	})
-	if len(ns) != 2 {
-		t.Fatalf("%d notes, want one of each text", len(ns))
+	if len(ns.list) != 2 {
+		t.Fatalf("%d notes, want one of each text", len(ns.list))
 	}
-	if of := ns[0].concerns([]string{"w", "x"}, nil); of != "option B" {
+	if of := ns.list[0].concerns(newScope([]string{"w", "x"}, nil)); of != "option B" {
 		t.Errorf("the first is about %q", of)
 	}
 }

@@ -1,6 +1,7 @@
 package render
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -107,12 +108,13 @@ func (v *view) change(c *result.Case) {
 			ratio.add(ranged(*d.Ratio, d.RatioCI, -2))
 		}
 	}
+	cells := sideBySide(diff, ratio)
 	for i, o := range options {
 		rank := "–"
 		if o.Decision != nil {
 			rank = strconv.Itoa(o.Decision.Rank)
 		}
-		row := []string{rank, diff.cells()[i], ratio.cells()[i], "", "", v.referenceText()}
+		row := []string{rank, cells[i][0], cells[i][1], "", "", v.referenceText()}
 		if ch := o.Bands[band].Change; ch != nil {
 			d := by.change(ch)
 			row[3] = percent(d.ShareBetter)
@@ -176,15 +178,11 @@ func (v *view) otherChanges(options []*result.Option, band int, by *measure) {
 		cols = append(cols, col)
 	}
 	t := table{caption: "change against " + v.reference, head: head, left: []bool{true, true, true}}
+	t.rows = sideBySide(cols...)
 	for i, o := range options {
-		var row []string
-		for _, col := range cols {
-			row = append(row, col.cells()[i])
-		}
 		if o.Bands[band].Change == nil {
-			row[0] = v.referenceText()
+			t.rows[i][0] = v.referenceText()
 		}
-		t.rows = append(t.rows, row)
 	}
 	v.rows(t, options)
 }
@@ -231,13 +229,21 @@ func (v *view) orders(c *result.Case, band int, by *measure) {
 	}
 }
 
-// disagree reports whether some pair of options stands in opposite orders by the two figures.
+// disagree reports whether some pair of options stands in opposite orders by the two figures, none of which is below zero.
 func disagree(a, b []float64) bool {
-	for i := range a {
-		for j := range a {
-			if stats.Less(a[i], a[j]) && stats.Less(b[j], b[i]) {
-				return true
-			}
+	index := make([]int, len(a))
+	for i := range index {
+		index[i] = i
+	}
+	slices.SortFunc(index, func(i, j int) int { return cmp.Compare(a[i], a[j]) })
+	below, most := 0, 0.0 // how many have less of the first than option j, and the most of the second that they have
+	for _, j := range index {
+		for stats.Less(a[index[below]], a[j]) {
+			most = max(most, b[index[below]])
+			below++
+		}
+		if below > 0 && stats.Less(b[j], most) {
+			return true
 		}
 	}
 	return false

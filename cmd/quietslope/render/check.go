@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"regexp"
-	"slices"
 	"strconv"
 	"strings"
 
@@ -32,7 +31,7 @@ func Check(c *result.Check) *Page {
 	recordFields(p, &c.Record)
 	p.field("start", "baseline from %s m in the cover and %s m in the deep layer", centimetres(c.Start.CoverM), centimetres(c.Start.DeepM))
 	audit(p, c)
-	if len(ns) > 0 {
+	if len(ns.list) > 0 {
 		p.heading("Notes")
 		if refs := ns.wholeStudy(); refs != "" {
 			p.para("%s; about the whole study: %s.", ns.count(), refs)
@@ -71,10 +70,10 @@ func understood(p *Page, keys []result.Understood) {
 }
 
 // checkOptions lists what every option was understood to be.
-func checkOptions(p *Page, c *result.Check, ns notes) {
+func checkOptions(p *Page, c *result.Check, ns *notes) {
 	p.heading("Options and their rates")
 	p.para("Stores of the baseline: %s.", ratesText(&c.Rates))
-	var known origins
+	known := origins{}
 	for i, o := range c.Options {
 		text := o.Name
 		if refs := ns.refs(nil, o.Name, ""); refs != "" {
@@ -103,29 +102,30 @@ func checkOptions(p *Page, c *result.Check, ns notes) {
 	}
 }
 
-// origins are the ways in which the rates of drains came about, with the option that each is first said of.
-type origins []origin
+// origins are the ways in which the rates of drains came about, by their form with no figures, with the option that each is
+// first said of.
+type origins map[string]origin
 
 type origin struct {
 	option int
 	parts  []string
-	form   string // with no figures
 }
 
 var digits = regexp.MustCompile(`[0-9]+(\.[0-9]+)?(e[-+]?[0-9]+)?`)
 
 // instead says how the rate of a drain of an option came about: in full, or, where a long formula was said before, what
 // differs.
-func (known *origins) instead(option int, from string) string {
+func (known origins) instead(option int, from string) string {
 	const long = 3 // parts
 	parts := strings.Split(from, ", ")
 	form := digits.ReplaceAllString(from, "#")
-	k := slices.IndexFunc(*known, func(o origin) bool { return o.form == form })
-	if k < 0 || len(parts) < long {
-		*known = append(*known, origin{option, parts, form})
+	before, said := known[form]
+	if !said {
+		known[form] = origin{option, parts}
+	}
+	if !said || len(parts) < long {
 		return from
 	}
-	before := (*known)[k]
 	var differs []string
 	for i, part := range parts {
 		if part != before.parts[i] {

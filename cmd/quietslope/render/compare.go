@@ -45,7 +45,7 @@ func Comparison(c *result.Comparison) *Page {
 type view struct {
 	Page
 	c         *result.Comparison
-	notes     notes
+	notes     *notes
 	letters   map[string]string // of the options, by name
 	baseline  string            // its letter
 	reference string            // the letter of the option that changes are measured against

@@ -27,7 +27,7 @@ func (v *view) counted() {
 	if v.reference != v.baseline {
 		v.field("changes", "measured against %s, %s. The years and the start are still those of the baseline, %s.", v.reference, v.c.Settings.Against, v.baseline)
 	}
-	if v.c.Settings.DecideOn == "" && len(v.notes) > 0 {
+	if v.c.Settings.DecideOn == "" && len(v.notes.list) > 0 {
 		v.field("notes", "%s.", v.notes.headline())
 	}
 }

@@ -52,6 +52,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
 		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), "("+percentRange(f.AnnualProbability, f.AnnualProbabilityCI)+"%)")
 	}
+	cells := sideBySide(events, lasting, load, with)
 	for i, o := range options {
 		f := &o.Bands[band]
 		peak, longest := "–", days(f.LongestDays)
@@ -61,7 +62,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 		if f.Events == 0 && f.DaysPerYear > 0 {
 			longest = "–"
 		}
-		t.rows = append(t.rows, []string{events.cells()[i], lasting.cells()[i], load.cells()[i], with.cells()[i], longest, peak})
+		t.rows = append(t.rows, append(cells[i], longest, peak))
 	}
 	v.rows(t, options)
 	if text := v.notes.onBand(c, b.Name); text != "" {

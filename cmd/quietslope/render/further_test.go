@@ -136,7 +136,7 @@ func TestNotesInCases(t *testing.T) {
 		`on "watch" A in cases 1, 3, B in case 2; on "onset" C`:       join(at("watch", "a", 0, 2), at("onset", "c", 0, 1, 2, 3), at("watch", "b", 1)),
 		`on "watch", "onset" and "failure", as said below the tables`: join(at("watch", "a", 0, 2), at("watch", "b", 1), at("watch", "c", 3), at("onset", "c", 0, 1), at("onset", "a", 2), at("onset", "d", 3), at("failure", "a", 0), at("failure", "b", 1), at("failure", "c", 2)),
 	} {
-		if got := (note{places: places}).concerns(options, cases); got != want {
+		if got := (note{places: places}).concerns(newScope(options, cases)); got != want {
 			t.Errorf("got %q, want %q", got, want)
 		}
 	}

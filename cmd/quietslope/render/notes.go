@@ -2,6 +2,7 @@ package render
 
 import (
 	"fmt"
+	"maps"
 	"slices"
 	"strconv"
 	"strings"
@@ -16,37 +17,71 @@ type note struct {
 }
 
 // notes numbers the warnings: those to weigh first, then the remarks, each in the order of the result.
-type notes []note
+type notes struct {
+	list     []note
+	at       map[spot][]int // the notes, by their places in the list, about exactly this
+	anywhere map[spot][]int // the same, whatever the case: a spot of theirs has none
+}
 
-func newNotes(ws []result.Warning) notes {
-	var ns notes
+// spot is what a warning is about, each part of it "" where it names none.
+type spot struct{ climate, condition, option, band string }
+
+func newNotes(ws []result.Warning) *notes {
+	type words struct{ code, severity, text string }
+	ns := &notes{at: map[spot][]int{}, anywhere: map[spot][]int{}}
+	seen := map[words]int{}
 	for _, severity := range []string{result.Warn, result.Note} {
 		for _, w := range ws {
 			if (w.Severity == result.Warn) != (severity == result.Warn) {
 				continue
 			}
-			same := func(n note) bool {
-				return n.first.Code == w.Code && n.first.Severity == w.Severity && n.first.Text == w.Text
+			i, known := seen[words{w.Code, w.Severity, w.Text}]
+			if !known {
+				i = len(ns.list)
+				seen[words{w.Code, w.Severity, w.Text}] = i
+				ns.list = append(ns.list, note{first: w})
 			}
-			if i := slices.IndexFunc(ns, same); i >= 0 {
-				ns[i].places = append(ns[i].places, w)
-			} else {
-				ns = append(ns, note{w, []result.Warning{w}})
-			}
+			ns.list[i].places = append(ns.list[i].places, w)
+			here, somewhere := spot{w.Climate, w.Condition, w.Option, w.Band}, spot{option: w.Option, band: w.Band}
+			ns.at[here], ns.anywhere[somewhere] = append(ns.at[here], i), append(ns.anywhere[somewhere], i)
 		}
 	}
 	return ns
 }
 
+// about are the notes about exactly this option and band, either of which may be "", in a case, or in any where it is
+// nil. A note that names no case is about every one.
+func (ns *notes) about(c *result.Case, option, band string) []int {
+	var found []int
+	if c == nil {
+		found = slices.Clone(ns.anywhere[spot{option: option, band: band}])
+	} else {
+		found = slices.Concat(
+			ns.at[spot{"", "", option, band}], ns.at[spot{c.Climate, "", option, band}],
+			ns.at[spot{"", c.Condition, option, band}], ns.at[spot{c.Climate, c.Condition, option, band}])
+	}
+	slices.Sort(found)
+	return slices.Compact(found)
+}
+
+// noteNumbers are the numbers of notes, for print.
+func noteNumbers(found []int) string {
+	var ns []int
+	for _, i := range found {
+		ns = append(ns, i+1)
+	}
+	return numbers(ns)
+}
+
 // count says how many notes there are of either kind.
-func (ns notes) count() string {
+func (ns *notes) count() string {
 	warn := 0
-	for _, n := range ns {
+	for _, n := range ns.list {
 		if n.first.Severity == result.Warn {
 			warn++
 		}
 	}
-	remarks := len(ns) - warn
+	remarks := len(ns.list) - warn
 	switch {
 	case remarks == 0:
 		return plural(warn, "warning")
@@ -57,7 +92,7 @@ func (ns notes) count() string {
 }
 
 // headline says how many notes there are and where.
-func (ns notes) headline() string {
+func (ns *notes) headline() string {
 	text := ns.count() + ", numbered under Notes and named beside the figures"
 	if refs := ns.wholeStudy(); refs != "" {
 		text += "; about the whole study: " + refs
@@ -66,43 +101,42 @@ func (ns notes) headline() string {
 }
 
 // has reports whether there is a warning of this code about an option on a band in a case.
-func (ns notes) has(code string, c *result.Case, option, band string) bool {
-	return ns.which(func(w result.Warning) bool {
-		return w.Code == code && w.Option == option && w.Band == band && ofCase(w, c)
-	}) != ""
+func (ns *notes) has(code string, c *result.Case, option, band string) bool {
+	return slices.ContainsFunc(ns.about(c, option, band), func(i int) bool { return ns.list[i].first.Code == code })
 }
 
 // numbersOf are the numbers of the notes with a code in a case.
-func (ns notes) numbersOf(code string, c *result.Case) string {
-	return ns.which(func(w result.Warning) bool { return w.Code == code && ofCase(w, c) })
+func (ns *notes) numbersOf(code string, c *result.Case) string {
+	var found []int
+	for i, n := range ns.list {
+		if n.first.Code == code && slices.ContainsFunc(n.places, func(w result.Warning) bool { return ofCase(w, c) }) {
+			found = append(found, i)
+		}
+	}
+	return noteNumbers(found)
 }
 
-// refs are the numbers of the notes about exactly this option and band, either of which may be "", in this case, or in
-// any where it is nil.
-func (ns notes) refs(c *result.Case, option, band string) string {
-	return ns.which(func(w result.Warning) bool { return w.Option == option && w.Band == band && ofCase(w, c) })
+// refs are the numbers of the notes about exactly this option and band, as about finds them.
+func (ns *notes) refs(c *result.Case, option, band string) string {
+	return noteNumbers(ns.about(c, option, band))
 }
 
 // onBand says which notes hold for which options of a case on a band, such as "Note 5 holds for B and C, note 6 for H.";
 // "" for none.
-func (ns notes) onBand(c *result.Case, band string) string {
+func (ns *notes) onBand(c *result.Case, band string) string {
+	of := map[int][]int{} // options, by note
+	for k := range c.Options {
+		for _, i := range ns.about(c, c.Options[k].Name, band) {
+			of[i] = append(of[i], k)
+		}
+	}
 	var texts []string
-	for i, n := range ns {
-		var of []int
-		for k := range c.Options {
-			if slices.ContainsFunc(n.places, func(w result.Warning) bool {
-				return w.Option == c.Options[k].Name && w.Band == band && ofCase(w, c)
-			}) {
-				of = append(of, k)
-			}
+	for _, i := range slices.Sorted(maps.Keys(of)) {
+		text := fmt.Sprintf("note %d for %s", i+1, byLetter(of[i]))
+		if texts == nil {
+			text = fmt.Sprintf("Note %d holds for %s", i+1, byLetter(of[i]))
 		}
-		switch {
-		case len(of) == 0:
-		case texts == nil:
-			texts = append(texts, fmt.Sprintf("Note %d holds for %s", i+1, byLetter(of)))
-		default:
-			texts = append(texts, fmt.Sprintf("note %d for %s", i+1, byLetter(of)))
-		}
+		texts = append(texts, text)
 	}
 	if texts == nil {
 		return ""
@@ -111,60 +145,80 @@ func (ns notes) onBand(c *result.Case, band string) string {
 }
 
 // wholeStudy are the numbers of the notes that name nothing in particular.
-func (ns notes) wholeStudy() string {
-	return ns.which(func(w result.Warning) bool { return w.Option+w.Band+w.Climate+w.Condition == "" })
-}
+func (ns *notes) wholeStudy() string { return noteNumbers(ns.about(&result.Case{}, "", "")) }
 
 // ofCaseOnly are the numbers of the notes about a case that name nothing else.
-func (ns notes) ofCaseOnly(c *result.Case) string {
-	return ns.which(func(w result.Warning) bool {
-		return w.Option+w.Band == "" && w.Climate+w.Condition != "" && ofCase(w, c)
-	})
-}
-
-// which are the numbers, for print, of the notes about something that is asked for.
-func (ns notes) which(asked func(result.Warning) bool) string {
-	var found []int
-	for i, n := range ns {
-		if slices.ContainsFunc(n.places, asked) {
-			found = append(found, i+1)
-		}
-	}
-	return numbers(found)
+func (ns *notes) ofCaseOnly(c *result.Case) string {
+	found := slices.Concat(ns.at[spot{climate: c.Climate}], ns.at[spot{condition: c.Condition}], ns.at[spot{climate: c.Climate, condition: c.Condition}])
+	slices.Sort(found)
+	return noteNumbers(slices.Compact(found))
 }
 
 // ofCase reports whether a warning is about this case; one that names no case is about every one.
 func ofCase(w result.Warning, c *result.Case) bool {
-	return c == nil || (w.Climate == "" || w.Climate == c.Climate) && (w.Condition == "" || w.Condition == c.Condition)
+	return (w.Climate == "" || w.Climate == c.Climate) && (w.Condition == "" || w.Condition == c.Condition)
 }
 
 // write prints the notes about options of the given names and about cases, nil where there are none.
-func (ns notes) write(p *Page, options []string, cases []result.Case) {
-	for i, n := range ns {
+func (ns *notes) write(p *Page, options []string, cases []result.Case) {
+	in := newScope(options, cases)
+	for i, n := range ns.list {
 		text := "remark"
 		if n.first.Severity == result.Warn {
 			text = "WARNING"
 		}
-		if of := n.concerns(options, cases); of != "" {
+		if of := n.concerns(in); of != "" {
 			text += ", " + of
 		}
 		p.item(numbered, strconv.Itoa(i+1), text+": "+n.first.Text)
 	}
 }
 
+// scope is the options and cases that notes are about.
+type scope struct {
+	options map[string]int      // their places, by name
+	cases   map[[2]string][]int // their places, by climate and condition; "" is any
+	n       int                 // how many cases there are, at least one
+}
+
+// newScope makes the scope of options of the given names and of cases, nil where there are none.
+func newScope(options []string, cases []result.Case) *scope {
+	in := &scope{map[string]int{}, map[[2]string][]int{}, max(1, len(cases))}
+	for i, name := range options {
+		in.options[name] = i
+	}
+	for i, c := range cases {
+		for _, key := range [][2]string{{"", ""}, {c.Climate, ""}, {"", c.Condition}, {c.Climate, c.Condition}} {
+			in.cases[key] = append(in.cases[key], i)
+		}
+	}
+	return in
+}
+
+// casesOf are the places of the cases that a warning is about.
+func (in *scope) casesOf(w result.Warning) []int {
+	if len(in.cases) == 0 {
+		return []int{0}
+	}
+	return in.cases[[2]string{w.Climate, w.Condition}]
+}
+
 // concerns says what a note is about; "" where that is the whole study. Where a list would be too long to read, it names
 // the bands alone, since the notes are named below the tables too.
-func (n note) concerns(options []string, cases []result.Case) string {
+func (n note) concerns(in *scope) string {
 	var places []place
-	var texts, bands []string
-	parts := 0
+	about := map[place][]result.Warning{}
 	for _, w := range n.places {
 		p := place{w.Band, w.Option != ""}
-		if slices.Contains(places, p) {
-			continue
+		if about[p] == nil {
+			places = append(places, p)
 		}
-		places = append(places, p)
-		of := n.at(p, options, cases)
+		about[p] = append(about[p], w)
+	}
+	var texts, bands []string
+	parts := 0
+	for _, p := range places {
+		of := in.say(p, about[p])
 		text := strings.Join(of, ", ")
 		if p.option && p.band != "" {
 			bands, parts = append(bands, inQuotes(p.band)), parts+len(of)
@@ -186,26 +240,37 @@ type place struct {
 	option bool
 }
 
-// at says which options a note is about in a place, and in which cases. Cases with the same options go together.
-func (n note) at(p place, options []string, cases []result.Case) []string {
-	in := make([][]int, max(1, len(cases))) // the options in each case; -1 for a band or a case as such
-	for i := range in {
-		for _, w := range n.places {
-			if p == (place{w.Band, w.Option != ""}) && (len(cases) == 0 || ofCase(w, &cases[i])) {
-				in[i] = append(in[i], slices.Index(options, w.Option))
-			}
+// say says which options warnings of a place are about, and in which cases. Cases with the same options go together.
+func (in *scope) say(p place, ws []result.Warning) []string {
+	of := make([][]int, in.n) // the options in each case; -1 for a band or a case as such
+	for _, w := range ws {
+		option, known := in.options[w.Option]
+		if !known {
+			option = -1
 		}
-		slices.Sort(in[i])
-		in[i] = slices.Compact(in[i])
+		for _, i := range in.casesOf(w) {
+			of[i] = append(of[i], option)
+		}
+	}
+	var sets []string          // of options, in the order of the first case of each
+	same := map[string][]int{} // the cases of a set
+	for i := range of {
+		if len(of[i]) == 0 {
+			continue
+		}
+		slices.Sort(of[i])
+		of[i] = slices.Compact(of[i])
+		set := fmt.Sprint(of[i])
+		if same[set] == nil {
+			sets = append(sets, set)
+		}
+		same[set] = append(same[set], i+1)
 	}
 	var texts []string
-	for i, of := range in {
-		same := make([]bool, len(in))
-		for k := range in {
-			same[k] = slices.Equal(of, in[k])
-		}
-		if len(of) == 0 || slices.Index(same, true) < i {
-			continue
+	for _, set := range sets {
+		of, where := of[same[set][0]-1], ""
+		if len(same[set]) < in.n {
+			where = casesNamed(same[set])
 		}
 		text := ""
 		switch {
@@ -218,27 +283,12 @@ func (n note) at(p place, options []string, cases []result.Case) []string {
 		case p.band != "":
 			text = "band " + inQuotes(p.band)
 		}
-		where := casesText(same)
 		if text != "" && where != "" {
 			text += " in "
 		}
 		texts = append(texts, text+where)
 	}
 	return texts
-}
-
-// casesText names some of the cases; "" where it is all of them.
-func casesText(in []bool) string {
-	var ns []int
-	for i, yes := range in {
-		if yes {
-			ns = append(ns, i+1)
-		}
-	}
-	if len(ns) == 0 || len(ns) == len(in) {
-		return ""
-	}
-	return casesNamed(ns)
 }
 
 // casesNamed names cases by their numbers.

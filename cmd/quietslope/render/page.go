@@ -192,6 +192,17 @@ func (c *column) add(value, ranged string) {
 	c.values, c.ranges = append(c.values, value), append(c.ranges, ranged)
 }
 
+// sideBySide are the cells of columns, row by row.
+func sideBySide(columns ...column) [][]string {
+	rows := make([][]string, len(columns[0].values))
+	for _, c := range columns {
+		for i, cell := range c.cells() {
+			rows[i] = append(rows[i], cell)
+		}
+	}
+	return rows
+}
+
 func (c *column) cells() []string {
 	whole, part := 0, 0
 	split := func(v string) (string, string) {

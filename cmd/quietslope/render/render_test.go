@@ -151,7 +151,7 @@ func checkFixture() *result.Check {
 
 // TestOrigins: a long formula is said once, and then what differs.
 func TestOrigins(t *testing.T) {
-	var known origins
+	known := origins{}
 	for i, tt := range []struct{ from, want string }{
 		{"as given", "as given"},
 		{"K·D with K 0.02 m/d, D 1.6 m, L 8 m", "K·D with K 0.02 m/d, D 1.6 m, L 8 m"},

@@ -3,7 +3,6 @@ package render
 import (
 	"fmt"
 	"regexp"
-	"slices"
 	"strconv"
 	"strings"
 
@@ -12,7 +11,7 @@ import (
 )
 
 func (v *view) warnings() {
-	if len(v.notes) == 0 {
+	if len(v.notes.list) == 0 {
 		return
 	}
 	v.heading("Notes")
@@ -74,7 +73,12 @@ var indexed = regexp.MustCompile(`^([a-z_]+)\[(\d+)\]\.(.*)$`)
 
 // merge puts keys together, in the order of the first of each.
 func merge(keys []result.Understood) []alike {
+	type what struct {
+		list, rest, value string
+		byDefault         bool
+	}
 	var all []alike
+	known := map[what]int{} // places in all of keys in lists
 	for _, k := range keys {
 		e := alike{rest: k.Key, value: k.Value, byDefault: k.Default}
 		if m := indexed.FindStringSubmatch(k.Key); m != nil {
@@ -82,14 +86,15 @@ func merge(keys []result.Understood) []alike {
 				e.list, e.rest, e.at = m[1], m[3], []int{n}
 			}
 		}
-		same := func(o alike) bool {
-			return e.list != "" && o.list == e.list && o.rest == e.rest && o.value == e.value && o.byDefault == e.byDefault
-		}
-		if i := slices.IndexFunc(all, same); i >= 0 {
+		of := what{e.list, e.rest, e.value, e.byDefault}
+		if i, again := known[of]; again {
 			all[i].at = append(all[i].at, e.at...)
-		} else {
-			all = append(all, e)
+			continue
 		}
+		if e.list != "" {
+			known[of] = len(all)
+		}
+		all = append(all, e)
 	}
 	return all
 }

@@ -19,7 +19,7 @@ func (v *view) inShort() {
 	name, T := inQuotes(v.c.Bands[band].Name), v.c.Record.YearsCounted
 	by := measureOf(v.c.Settings.DecideBy)
 	v.heading("In short")
-	for i, n := range v.notes {
+	for i, n := range v.notes.list {
 		if n.first.Code == "implausible_weather" || n.first.Code == "record_short" && T < veryFewYears {
 			v.para("Check first: %s (note %d)", n.first.Text, i+1)
 		}
@@ -70,7 +70,7 @@ func (v *view) inShort() {
 		v.para("%s", text+v.neighbours(c))
 	}
 	v.otherCases(band, by)
-	if len(v.notes) > 0 {
+	if len(v.notes.list) > 0 {
 		v.para("%s. What is weak about these figures stands there.", v.notes.headline())
 	}
 }

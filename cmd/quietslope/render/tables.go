@@ -107,9 +107,11 @@ func (v *view) drains(c *result.Case) {
 		},
 		left: []bool{true, true, true, false, true, false, true, true, true},
 	}
+	cells := sideBySide(rates, ceilings, means, peaks, flows)
 	for i, d := range drains {
-		t.rows = append(t.rows, []string{words(d.Measure), d.Layer, rates.cells()[i], centimetres(d.InvertM),
-			ceilings.cells()[i], percent(d.RunningShare), means.cells()[i], peaks.cells()[i], flows.cells()[i]})
+		of := cells[i]
+		t.rows = append(t.rows, []string{words(d.Measure), d.Layer, of[0], centimetres(d.InvertM),
+			of[1], percent(d.RunningShare), of[2], of[3], of[4]})
 	}
 	v.section(c, "Drains over the counted years")
 	v.rows(t.dropEmpty(), options)

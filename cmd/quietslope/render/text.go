@@ -169,15 +169,18 @@ const (
 	cutLabel = 30 // to which they are shortened before a table is cut
 )
 
+// apart stands between the columns of a table.
+const apart = "  "
+
 // table draws a table.
 func (t *lines) table(b table) {
-	if !b.cut || fitting(b, len(b.groups)) == len(b.groups) {
+	if !b.cut {
 		t.whole(b)
 		return
 	}
 	for from := 0; from < len(b.groups); {
 		rest := b.columns(func(c int) bool { return c >= from })
-		n := fitting(rest, len(rest.groups))
+		n := fitting(rest)
 		if from > 0 {
 			t.WriteByte('\n')
 		}
@@ -188,33 +191,79 @@ func (t *lines) table(b table) {
 
 // fitting is the number of the first columns, in whole groups, at least one, that fit the page with labels that can still
 // be read.
-func fitting(b table, most int) int {
-	for n := most; ; {
-		of := b.columns(func(c int) bool { return c < n })
-		over := widest(of.draw(math.MaxInt)) - pageWidth
-		last := n - 1 // first column of the last group
-		for last > 0 && b.groups[last-1] == b.groups[n-1] {
-			last--
+func fitting(b table) int {
+	fit := 0
+	labels := b.widestLabel()
+	for fit < len(b.groups) {
+		n := fit + 1 // columns with one more group
+		for n < len(b.groups) && b.groups[n] == b.groups[fit] {
+			n++
 		}
-		if over <= 0 || of.widestLabel()-over >= cutLabel || last == 0 {
-			return n
+		over := b.columns(func(c int) bool { return c < n }).width() - pageWidth
+		if fit > 0 && over > 0 && labels-over < cutLabel {
+			break
 		}
-		n = last
+		fit = n
 	}
+	return fit
 }
 
 // whole draws a table in one piece.
 func (t *lines) whole(b table) {
-	drawn := b.draw(math.MaxInt)
-	if over := widest(drawn) - pageWidth; over > 0 {
-		drawn = b.draw(max(b.widestLabel()-over, minLabel))
+	labels := math.MaxInt
+	if over := b.width() - pageWidth; over > 0 {
+		labels = max(b.widestLabel()-over, minLabel)
 	}
-	for line := range strings.Lines(drawn) {
+	for line := range strings.Lines(b.draw(labels)) {
 		t.line(strings.TrimSuffix(line, "\n"))
 	}
 }
 
-func (b *table) widestLabel() int {
+// width is how wide the table would be drawn with whole labels.
+func (b table) width() int {
+	first := max(b.widestLabel(), displaywidth.String(b.first))
+	if len(b.lines()) > 1 {
+		first = max(first, displaywidth.String(b.caption))
+	}
+	widths := []int{first}
+	for c := range b.head[0] {
+		widest := 0
+		for _, line := range b.lines() {
+			widest = max(widest, displaywidth.String(line[c]))
+		}
+		for _, row := range b.rows {
+			widest = max(widest, displaywidth.String(row[c]))
+		}
+		widths = append(widths, widest)
+	}
+	for len(widths) > 0 && widths[len(widths)-1] == 0 {
+		widths = widths[:len(widths)-1]
+	}
+	all := 0
+	for c, w := range widths {
+		if c > 0 {
+			all += len(apart)
+		}
+		all += w
+	}
+	return all
+}
+
+// lines are the lines of the head, with what columns have in common where these begin.
+func (b table) lines() [][]string {
+	if b.groups == nil {
+		return b.head
+	}
+	once := make([]string, len(b.groups))
+	for c, g := range b.groups {
+		if c == 0 || g != b.groups[c-1] {
+			once[c] = g
+		}
+	}
+	return append([][]string{once}, b.head...)
+}
+
+func (b table) widestLabel() int {
 	widest := 0
 	for _, l := range b.labels {
 		widest = max(widest, displaywidth.String(l.in(math.MaxInt)))
@@ -223,17 +272,8 @@ func (b *table) widestLabel() int {
 }
 
 // draw draws the table with labels of at most the given width.
-func (b *table) draw(width int) string {
-	lines := b.head
-	if b.groups != nil { // each where its columns begin
-		once := make([]string, len(b.groups))
-		for c, g := range b.groups {
-			if c == 0 || g != b.groups[c-1] {
-				once[c] = g
-			}
-		}
-		lines = append([][]string{once}, lines...)
-	}
+func (b table) draw(width int) string {
+	lines := b.lines()
 	head := make([]string, 1+len(lines[0]))
 	for l, line := range lines {
 		first := ""
@@ -257,7 +297,7 @@ func (b *table) draw(width int) string {
 	for i, row := range b.rows {
 		rows = append(rows, append([]string{b.labels[i].in(width)}, row...))
 	}
-	return drawTable(head, rows, b.left, tablewriter.WithPadding(tw.Padding{Right: "  ", Overwrite: true}),
+	return drawTable(head, rows, b.left, tablewriter.WithPadding(tw.Padding{Right: apart, Overwrite: true}),
 		tablewriter.WithRenderer(renderer.NewBlueprint(tw.Rendition{
 			Borders:  tw.BorderNone,
 			Symbols:  tw.NewSymbols(tw.StyleNone),
@@ -291,15 +331,6 @@ func drawTable(head []string, rows [][]string, left []bool, options ...tablewrit
 		panic(err)
 	}
 	return b.String()
-}
-
-// widest is the width of the widest line, less the blanks that end it.
-func widest(text string) int {
-	w := 0
-	for line := range strings.Lines(text) {
-		w = max(w, displaywidth.String(strings.TrimRight(line, " \n")))
-	}
-	return w
 }
 
 // listing writes keys, and their values side by side where the keys are not too long.
