@@ -1,6 +1,7 @@
 package main
 
 import (
+	"bytes"
 	"context"
 	"fmt"
 	"io"
@@ -156,7 +157,17 @@ func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (
 	if err != nil {
 		return err
 	}
+	// Laid out in memory first, since layout does not look for Ctrl-C and a file is begun only when it can be finished.
+	content, err := await(ctx, func() ([]byte, error) {
+		var b bytes.Buffer
+		err := o.format.write(&b, found, func() *render.Page { return lay(found) })
+		return b.Bytes(), err
+	})
+	if err != nil {
+		return err
+	}
 	return o.write(ctx, func(w io.Writer) error {
-		return o.format.write(w, found, func() *render.Page { return lay(found) })
+		_, err := w.Write(content)
+		return err
 	})
 }

@@ -18,6 +18,7 @@ import (
 	"github.com/google/go-cmp/cmp"
 	"github.com/rogpeppe/go-internal/testscript"
 
+	"quietslope/cmd/quietslope/render"
 	"quietslope/scenario"
 	"quietslope/scenario/fault"
 )
@@ -481,6 +482,30 @@ func TestSpare(t *testing.T) {
 			t.Errorf("%s: %T", name, err)
 		}
 	}
+}
+
+// TestInterruptedLayout: a layout that takes long is left behind, and no file with it.
+func TestInterruptedLayout(t *testing.T) {
+	study, err := filepath.Abs("../../testdata/demo/study.yaml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	ctx, cancel := context.WithCancel(t.Context())
+	before := formats
+	defer func() { formats = before }()
+	block := make(chan struct{})
+	defer close(block)
+	formats = append(slices.Clone(before), format{"slow", "never done", func(io.Writer, any, func() *render.Page) error {
+		cancel()
+		<-block
+		return nil
+	}})
+	t.Chdir(t.TempDir())
+	code, stdout, stderr := program(ctx, "check", study, "--format", "slow", "--out", "x")
+	if code != 130 || stdout != "" || !strings.Contains(stderr, "interrupted") {
+		t.Errorf("status %d, %q, %q", code, stdout, stderr)
+	}
+	holdsOnly(t, ".")
 }
 
 // TestInterrupted: with Ctrl-C pressed nothing is written and the status is 130, at once.
