@@ -42,7 +42,7 @@ func Load(path string) (*Study, error) {
 		if near := fault.NearestFile(path, func(name string) bool {
 			return strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml")
 		}); near != "" {
-			hint = fmt.Sprintf("; did you mean %s?", filepath.ToSlash(filepath.Join(filepath.Dir(path), near)))
+			hint = fmt.Sprintf("; did you mean %s?", fault.Name(filepath.ToSlash(filepath.Join(filepath.Dir(path), near))))
 		}
 		return nil, whole("there is no such file%s", hint)
 	case errors.Is(err, syscall.ENOTDIR), errors.Is(err, syscall.ENAMETOOLONG), errors.Is(err, syscall.EINVAL):
@@ -67,7 +67,7 @@ func unreadable(path string, err error) error {
 	if errors.As(err, &pe) {
 		err = pe.Err
 	}
-	return fmt.Errorf("%s: the file cannot be read: %w", path, err)
+	return fmt.Errorf("%s: the file cannot be read: %w", fault.Name(path), err)
 }
 
 // Parse reads and checks the text of a study file. The file need not exist: its name stands in errors, and its folder

@@ -41,7 +41,7 @@ func arrange(app *cli.App, args []string) ([]string, error) {
 	}
 	command := app.Command(name)
 	if command == nil && len(rest) > 0 && app.Command(rest[0]) != nil {
-		return nil, usagef("", "the command comes first; did you mean quietslope %s %s?", rest[0], name)
+		return nil, usagef("", "the command comes first; did you mean quietslope %s %s?", rest[0], fault.Name(name))
 	}
 	if command == nil {
 		return nil, unknownCommand(app, name)
@@ -89,7 +89,7 @@ func oneArgument(command *cli.Command, arguments []string) error {
 	case len(arguments) == 0:
 		return usagef(command.Name, "name the %s, as in: quietslope %s %s", what, command.Name, such)
 	case len(arguments) > 1 && strings.TrimLeft(arguments[1], "–—") != arguments[1]:
-		return usagef(command.Name, "an option begins with two hyphens, not with a dash; write --%s", strings.TrimLeft(arguments[1], "–—-"))
+		return usagef(command.Name, "an option begins with two hyphens, not with a dash; write --%s", fault.Name(strings.TrimLeft(arguments[1], "–—-")))
 	case len(arguments) > 1 && command.ArgsUsage == studyArgument && slices.ContainsFunc(arguments, isTable):
 		return usagef(command.Name, "one study file is enough, got %q and %q; the study names its weather, as weather.file", arguments[0], arguments[1])
 	case len(arguments) > 1:
@@ -164,6 +164,7 @@ func unknownOption(command *cli.Command, word, name string) error {
 			near = k
 		}
 	}
+	word = fault.Name(word)
 	switch {
 	case slices.Contains(formatNames(), name) && slices.Contains(known, flagFormat):
 		return usagef(command.Name, "unknown option %s; did you mean --%s %s?", word, flagFormat, name)
@@ -186,8 +187,8 @@ func unknownCommand(app *cli.App, name string) error {
 	if name == "version" {
 		return usagef("", "unknown command %q; did you mean --version?", name)
 	}
-	if strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml") {
-		return usagef("", "a command comes before the study file; did you mean quietslope compare %s?", name)
+	if isStudy(name) {
+		return usagef("", "a command comes before the study file; did you mean quietslope compare %s?", fault.Name(name))
 	}
 	return usagef("", "unknown command %q", name)
 }

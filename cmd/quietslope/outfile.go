@@ -10,6 +10,8 @@ import (
 	"path/filepath"
 	"strings"
 	"syscall"
+
+	"quietslope/scenario/fault"
 )
 
 // outFile is a file that a result will be written to: whole, or not at all.
@@ -32,7 +34,7 @@ func openOut(command, name string) (*outFile, error) {
 	case name == "-":
 		return nil, refuse("leave --out away to write to standard output")
 	case strings.HasPrefix(name, "-"):
-		return nil, refuse("a file name that begins with - is not taken; write ./%s", name)
+		return nil, refuse("a file name that begins with - is not taken; write ./%s", fault.Name(name))
 	}
 	if device(name) {
 		return nil, refuse("is no plain file; leave --out away to write to standard output")

@@ -9,6 +9,7 @@ import (
 	"runtime/debug"
 	"strings"
 	"syscall"
+	"unicode"
 
 	"github.com/urfave/cli/v2"
 
@@ -113,7 +114,7 @@ func (e *outputError) Error() string {
 	case errors.As(e.err, &l):
 		cause = l.Err
 	}
-	return fmt.Sprintf("%s: the result could not be written: %v", e.where, cause)
+	return fmt.Sprintf("%s: the result could not be written: %v", fault.Name(e.where), cause)
 }
 
 func (e *outputError) Unwrap() error { return e.err }
@@ -142,7 +143,8 @@ func report(ctx context.Context, stderr io.Writer, err error) int {
 	return exitFault
 }
 
-// printError prints every problem of a list with the program's name before it.
+// printError prints every problem of a list with the program's name before it. Names are shown as fault.Name does; whatever
+// else came from outside must not steer the terminal either.
 func printError(w io.Writer, err error) {
 	if list, ok := err.(interface{ Unwrap() []error }); ok {
 		for _, e := range list.Unwrap() {
@@ -150,7 +152,13 @@ func printError(w io.Writer, err error) {
 		}
 		return
 	}
-	fmt.Fprintf(w, "quietslope: %s\n", strings.TrimRight(err.Error(), "\n"))
+	text := strings.Map(func(r rune) rune {
+		if unicode.IsGraphic(r) || r == '\n' || r == '\t' {
+			return r
+		}
+		return unicode.ReplacementChar
+	}, err.Error())
+	fmt.Fprintf(w, "quietslope: %s\n", strings.TrimRight(text, "\n"))
 }
 
 // await runs f, and gives up on it as soon as ctx ends: f may hang in a read that knows no context. A panic of f comes

@@ -205,6 +205,39 @@ func quoteAll(args []string) []string {
 	return out
 }
 
+// TestHostileWords: no name of a file and no word of a command line steers the terminal; names that do are shown in quotes.
+func TestHostileWords(t *testing.T) {
+	t.Chdir(t.TempDir())
+	const esc = "\x1b[31m"
+	if err := errors.Join(os.WriteFile(esc+".yaml", []byte("study: [\n"), 0o666), os.WriteFile("study.yam", nil, 0o666), os.Mkdir(esc, 0o777), os.WriteFile(esc+"/x.yml", nil, 0o666)); err != nil {
+		t.Fatal(err)
+	}
+	for _, tt := range []struct {
+		args []string
+		says string
+	}{
+		{[]string{"check", esc + ".yaml"}, `quietslope: "\x1b[31m.yaml":1:`},
+		{[]string{"check", esc + "!.yaml"}, `quietslope: "\x1b[31m!.yaml": there is no such file` + "\n"}, // nor is the other named
+		{[]string{"check", esc + "/x.yaml"}, `did you mean "\x1b[31m/x.yml"?`},
+		{[]string{"check", "study.yaml "}, `quietslope: "study.yaml ": there is no such file`},
+		{[]string{"check", "s.yaml", "--" + esc}, `unknown option "--\x1b[31m"; there are --format, --out`},
+		{[]string{"schema", "--" + esc}, `unknown option "--\x1b[31m"`},
+		{[]string{"check", "s.yaml", "—" + esc}, `write --"\x1b[31m"`},
+		{[]string{esc, "check"}, `did you mean quietslope check "\x1b[31m"?`},
+		{[]string{esc}, `unknown command "\x1b[31m"`},
+		{[]string{esc + ".yaml"}, `did you mean quietslope compare "\x1b[31m.yaml"?`},
+		{[]string{"check", "s.yaml", "--out=-" + esc}, `write ./"-\x1b[31m"`},
+		{[]string{"check", "s.yaml", "--out", esc + "/no/x"}, `there is no folder "\x1b[31m/no"`},
+		{[]string{"check", "s.yaml", "--format", esc}, `unknown format "\x1b[31m"`},
+		{[]string{"check", esc, "b"}, `got "\x1b[31m" and "b"`},
+	} {
+		code, stdout, stderr := program(t.Context(), tt.args...)
+		if code != 2 || stdout != "" || !strings.Contains(stderr, tt.says) || strings.Contains(stderr, "\x1b") {
+			t.Errorf("%q: status %d, %q, %q", tt.args, code, stdout, stderr)
+		}
+	}
+}
+
 // TestArrange: options may stand anywhere, and reach the library before the arguments.
 func TestArrange(t *testing.T) {
 	app := newApp(io.Discard, io.Discard)
@@ -251,6 +284,8 @@ func TestReport(t *testing.T) {
 		{t.Context(), fmt.Errorf("wrapped: %w", &fault.Error{Text: "bad"}), 2, "quietslope: wrapped: bad\n"},
 		{t.Context(), errors.New("balance does not close"), 1, "quietslope: balance does not close\n"},
 		{t.Context(), &outputError{"x.txt", &os.PathError{Op: "write", Path: ".part", Err: syscall.ENOSPC}}, 1, "quietslope: x.txt: the result could not be written: no space left on device\n"},
+		{t.Context(), &outputError{"\x1b[31m", syscall.EACCES}, 1, `quietslope: "\x1b[31m": the result could not be written: permission denied` + "\n"},
+		{t.Context(), errors.New("a\x1b[31m\u202eb\tc\xff"), 1, "quietslope: a\ufffd[31m\ufffdb\tc\ufffd\n"},
 		{t.Context(), &outputError{"standard output", &os.PathError{Op: "write", Path: "|1", Err: syscall.EPIPE}}, 1, ""},
 		{gone, fmt.Errorf("option: %w", context.Canceled), 130, "quietslope: interrupted before the result was complete\n"},
 		{t.Context(), context.Canceled, 1, "quietslope: context canceled\n"}, // nobody pressed Ctrl-C

@@ -2,6 +2,7 @@ package main
 
 import (
 	"io"
+	"strings"
 
 	"github.com/urfave/cli/v2"
 
@@ -31,10 +32,19 @@ Examples:
 			if err != nil {
 				return err
 			}
+			if f := o.file; f != nil && f.earlier != nil && (isStudy(f.name) || isStudy(f.path)) {
+				return usagef(c.Command.Name, "--out %q is there already and may be a study; name a file that ends in .json", f.name)
+			}
 			return o.write(c.Context, func(w io.Writer) error {
 				_, err := w.Write(scenario.Schema())
 				return err
 			})
 		},
 	}
+}
+
+// isStudy says whether a file's name is that of a study.
+func isStudy(name string) bool {
+	name = strings.ToLower(name)
+	return strings.HasSuffix(name, ".yaml") || strings.HasSuffix(name, ".yml")
 }

@@ -34,6 +34,29 @@ func TestSchema(t *testing.T) {
 	}
 }
 
+// TestSchemaSparesStudies: the schema takes the place of no study.
+func TestSchemaSparesStudies(t *testing.T) {
+	for _, name := range []string{"study.yaml", "Study.YML", "link.json"} {
+		t.Chdir(t.TempDir())
+		study := strings.Replace(name, "link.json", "study.yml", 1)
+		if err := os.WriteFile(study, []byte("mine\n"), 0o666); err != nil {
+			t.Fatal(err)
+		}
+		if study != name {
+			if err := os.Symlink(study, name); err != nil {
+				t.Fatal(err)
+			}
+		}
+		code, _, stderr := program(t.Context(), "schema", "--out", name)
+		if text, err := os.ReadFile(study); code != 2 || !strings.Contains(stderr, "name a file that ends in .json") || err != nil || string(text) != "mine\n" {
+			t.Errorf("%s: status %d, %s, %q, %v", name, code, stderr, text, err)
+		}
+	}
+	if code, _, stderr := program(t.Context(), "schema", "--out", "new.yaml"); code != 0 { // nothing is lost
+		t.Errorf("status %d, %s", code, stderr)
+	}
+}
+
 // TestSchemaMeetsExamples: the examples of the reference and the starter study meet the schema.
 func TestSchemaMeetsExamples(t *testing.T) {
 	s, err := jsonschema.NewCompiler().Compile("../../testdata/study.schema.json")

@@ -6,7 +6,10 @@ package fault
 import (
 	"errors"
 	"fmt"
+	"strconv"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 )
 
 // Most is the largest number of problems that one run reports.
@@ -16,7 +19,7 @@ const Most = 10
 //
 //	FILE:LINE:COL: KEY: TEXT
 //
-// followed by the excerpt, where there is one; parts that are zero are left out.
+// followed by the excerpt, where there is one; parts that are zero are left out. FILE is written as Name does.
 type Error struct {
 	File    string // as the user named it
 	Line    int    // 1-based, 0 when the whole file is meant
@@ -28,7 +31,7 @@ type Error struct {
 
 func (e *Error) Error() string {
 	var b strings.Builder
-	b.WriteString(e.File)
+	b.WriteString(Name(e.File))
 	if e.Line > 0 {
 		fmt.Fprintf(&b, ":%d", e.Line)
 		if e.Col > 0 {
@@ -48,6 +51,16 @@ func (e *Error) Error() string {
 		b.WriteString(e.Excerpt)
 	}
 	return b.String()
+}
+
+// Name is the name of a file, or another word that a user typed, as a message shows it: as it is, or in quotes, with
+// escapes, where it would steer the terminal, or where one could not see where it ends.
+func Name(name string) string {
+	unseen := func(r rune) bool { return !unicode.IsGraphic(r) }
+	if !utf8.ValidString(name) || strings.ContainsFunc(name, unseen) || strings.TrimSpace(name) != name {
+		return strconv.Quote(name)
+	}
+	return name
 }
 
 // List collects problems, so that one run can report several.

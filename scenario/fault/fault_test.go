@@ -15,10 +15,23 @@ func TestErrorText(t *testing.T) {
 		{Error{File: "s.yaml", Line: 3, Col: 7, Key: "cover.seepage", Text: "is missing"}, "s.yaml:3:7: cover.seepage: is missing"},
 		{Error{File: "s.yaml", Line: 3, Text: "is odd", Excerpt: "  3 | x"}, "s.yaml:3: is odd\n  3 | x"},
 		{Error{File: "w.csv", Text: "is empty"}, "w.csv: is empty"},
+		{Error{File: "\x1b[31m s.yaml", Line: 3, Text: "is odd"}, `"\x1b[31m s.yaml":3: is odd`},
 		{Error{Key: "--option", Text: "is not known"}, "--option: is not known"},
 	} {
 		if got := tt.err.Error(); got != tt.want {
 			t.Errorf("got %q, want %q", got, tt.want)
+		}
+	}
+}
+
+func TestName(t *testing.T) {
+	for name, want := range map[string]string{
+		"": "", "a b/ü (1).yaml": "a b/ü (1).yaml", `it's "6"`: `it's "6"`, "日本.csv": "日本.csv", "a\u00a0b": "a\u00a0b",
+		"a\x1b[31m": `"a\x1b[31m"`, "a\nb": `"a\nb"`, "a\x00": `"a\x00"`, "a\xff": `"a\xff"`, "a\u009bm": `"a\u009bm"`, "gpj\u202efdp": `"gpj\u202efdp"`,
+		" a": `" a"`, "a ": `"a "`, "a\u00a0": `"a\u00a0"`, "\t": `"\t"`,
+	} {
+		if got := Name(name); got != want {
+			t.Errorf("%q: %s, want %s", name, got, want)
 		}
 	}
 }

@@ -29,7 +29,7 @@ func Nearest(word string, known []string) string {
 
 // NearestFile returns the name of the file in the same folder that a path to none most likely stands for: one with the same
 // name but for what follows its first point, otherwise one whose name is close. It returns "" where there is none, and
-// looks only at names that the caller accepts.
+// looks only at names that the caller accepts and that can be shown as they are.
 func NearestFile(path string, accept func(name string) bool) string {
 	entries, err := os.ReadDir(filepath.Dir(path))
 	if err != nil {
@@ -40,7 +40,7 @@ func NearestFile(path string, accept func(name string) bool) string {
 	var stems []string
 	names := map[string]string{}
 	for _, e := range entries {
-		if e.IsDir() || !accept(e.Name()) {
+		if e.IsDir() || Name(e.Name()) != e.Name() || !accept(e.Name()) {
 			continue
 		}
 		s, _, _ := strings.Cut(e.Name(), ".")
