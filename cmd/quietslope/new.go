@@ -1,6 +1,7 @@
 package main
 
 import (
+	"cmp"
 	"context"
 	"embed"
 	"errors"
@@ -14,6 +15,8 @@ import (
 	"unicode/utf8"
 
 	"github.com/urfave/cli/v2"
+
+	"quietslope/scenario/fault"
 )
 
 //go:embed starter
@@ -42,6 +45,10 @@ Examples:
 		Flags: []cli.Flag{&cli.BoolFlag{Name: flagForce, Usage: "replace a study.yaml and a weather.csv that are there already"}},
 		Action: func(c *cli.Context) error {
 			dir := c.Args().First()
+			if strings.HasPrefix(dir, "-") {
+				return usagef(c.Command.Name, "%q begins with -, which would be taken for an option; write ./%s", dir, fault.Name(dir))
+			}
+			dir = filepath.Clean(dir) // which also takes away a / at the end, that would follow a link
 			if err := writeStarter(c.Context, dir, c.Bool(flagForce)); err != nil {
 				return err
 			}
@@ -63,7 +70,6 @@ func writeStarter(ctx context.Context, dir string, force bool) (err error) {
 	}
 	var files []*outFile
 	var write []func(io.Writer) error
-	var there []string
 	for _, name := range starterFiles {
 		content, err := starter.ReadFile("starter/" + name)
 		if err != nil {
@@ -73,17 +79,15 @@ func writeStarter(ctx context.Context, dir string, force bool) (err error) {
 		if err != nil {
 			return err
 		}
-		if file.earlier != nil {
-			there = append(there, name)
-		}
+		file.replaces = force
 		files = append(files, file)
 		write = append(write, func(w io.Writer) error {
 			_, err := w.Write(content)
 			return err
 		})
 	}
-	if len(there) > 0 && !force {
-		return usagef("new", "%q holds %s already, so nothing was written; name another folder, or replace with --force", dir, strings.Join(there, " and "))
+	if err := alreadyThere(dir); err != nil && !force {
+		return err
 	}
 	for _, f := range files {
 		if err := f.writable(); err != nil {
@@ -94,25 +98,42 @@ func writeStarter(ctx context.Context, dir string, force bool) (err error) {
 		return err
 	}
 	if missing {
-		if err := os.Mkdir(dir, 0o777); err != nil {
-			return &outputError{dir, err}
+		switch made := os.Mkdir(dir, 0o777); {
+		case made == nil:
+			defer func() {
+				if err != nil {
+					os.Remove(dir) // only where it is empty
+				}
+			}()
+		case !errors.Is(made, fs.ErrExist): // one that another run has made meanwhile is as good
+			return &outputError{dir, made}
 		}
-		defer func() {
-			if err != nil {
-				os.Remove(dir) // only where it is empty
-			}
-		}()
 	}
-	return replaceAll(ctx, files, write...)
+	err = replaceAll(ctx, files, write...)
+	if !force && errors.Is(err, fs.ErrExist) { // written by another run, or by a person, meanwhile
+		return cmp.Or(alreadyThere(dir), err)
+	}
+	return err
+}
+
+// alreadyThere refuses a folder that holds any of the files.
+func alreadyThere(dir string) error {
+	var there []string
+	for _, name := range starterFiles {
+		if _, err := os.Lstat(inFolder(dir, name)); err == nil {
+			there = append(there, name)
+		}
+	}
+	if there == nil {
+		return nil
+	}
+	return usagef("new", "%q holds %s already, so nothing was written; name another folder, or replace with --force", dir, strings.Join(there, " and "))
 }
 
 // starterFolder reports whether a folder has to be made, and refuses what is none or cannot become one.
 func starterFolder(dir string) (missing bool, err error) {
 	refuse := func(format string, args ...any) (bool, error) {
 		return false, usagef("new", "%q "+format, append([]any{dir}, args...)...)
-	}
-	if strings.HasPrefix(dir, "-") {
-		return refuse("begins with -, which would be taken for an option; write ./%s", dir)
 	}
 	info, err := os.Stat(dir)
 	switch {
@@ -127,11 +148,10 @@ func starterFolder(dir string) (missing bool, err error) {
 	case !errors.Is(err, fs.ErrNotExist):
 		return false, &outputError{dir, err}
 	}
-	clean := filepath.Clean(dir) // without a / at the end, which would follow a link
-	if _, err := os.Lstat(clean); err == nil {
+	if info, err := os.Lstat(dir); err == nil && info.Mode()&fs.ModeSymlink != 0 {
 		return refuse("is a link to nothing; name a folder")
 	}
-	parent := filepath.Dir(clean)
+	parent := filepath.Dir(dir)
 	if _, err := os.Stat(parent); errors.Is(err, fs.ErrNotExist) {
 		return refuse("cannot be made, since there is no folder %q; make that first", parent)
 	}
@@ -156,7 +176,7 @@ func starterFile(name string) (*outFile, error) {
 func nextSteps(dir string) string {
 	study, weather := inFolder(dir, starterFiles[0]), inFolder(dir, starterFiles[1])
 	var b strings.Builder
-	fmt.Fprintf(&b, "Wrote a study of an invented slope, to be changed into your own:\n  %s\n  %s\n\nNext:\n", study, weather)
+	fmt.Fprintf(&b, "Wrote a study of an invented slope, to be changed into your own:\n  %s\n  %s\n\nNext:\n", fault.Name(study), fault.Name(weather))
 	steps := [][2]string{
 		{"quietslope check " + shellWord(study), "how the study and its weather are understood"},
 		{"quietslope compare " + shellWord(study), "its options side by side"},
@@ -180,6 +200,9 @@ func inFolder(dir, name string) string {
 
 // shellWord quotes a path for a shell where it needs that.
 func shellWord(path string) string {
+	if shown := fault.Name(path); shown != path { // bash and zsh read its escapes within $'...'
+		return "$'" + strings.ReplaceAll(shown[1:len(shown)-1], "'", `\'`) + "'"
+	}
 	plain := func(r rune) bool {
 		return r >= 0x80 || 'a' <= r && r <= 'z' || 'A' <= r && r <= 'Z' || '0' <= r && r <= '9' || strings.ContainsRune("_-./,:+@%", r) || r == filepath.Separator
 	}

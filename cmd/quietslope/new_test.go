@@ -5,11 +5,13 @@ import (
 	"encoding/json"
 	"errors"
 	"io"
+	"io/fs"
 	"os"
 	"path/filepath"
 	"regexp"
 	"slices"
 	"strings"
+	"sync"
 	"testing"
 
 	"quietslope/scenario"
@@ -118,6 +120,10 @@ func TestNewFolders(t *testing.T) {
 		code int
 		says string // on the stream that belongs to the status
 	}{
+		{[]string{"gone/."}, 0, "quietslope compare gone/study.yaml "},
+		{[]string{"nowhere/../other"}, 0, "quietslope compare other/study.yaml "},
+		{[]string{"esc\x1b[31m's"}, 0, `quietslope compare $'esc\x1b[31m\'s/study.yaml' `},
+		{[]string{"--", "-\x1b"}, 2, `write ./"-\x1b"`},
 		{[]string{"there"}, 0, "quietslope compare there/study.yaml "},
 		{[]string{"way"}, 2, `"way" holds study.yaml and weather.csv already`}, // the same folder
 		{[]string{"new/"}, 0, "quietslope compare new/study.yaml "},
@@ -144,7 +150,7 @@ func TestNewFolders(t *testing.T) {
 		if tt.code == 0 {
 			said, silent = stdout, stderr
 		}
-		if code != tt.code || !strings.Contains(said, tt.says) || silent != "" {
+		if code != tt.code || !strings.Contains(said, tt.says) || silent != "" || strings.Contains(said, "\x1b") {
 			t.Errorf("%q: status %d, %q, %q", tt.args, code, stdout, stderr)
 		}
 		if tt.args[0] == "half" && tt.code == 2 {
@@ -154,7 +160,7 @@ func TestNewFolders(t *testing.T) {
 			holdsOnly(t, "half", "weather.csv")
 		}
 	}
-	holdsOnly(t, ".", "-x", "Fräulein's hill", "file", "half", "linked", "lost", "new", "odd", "study.yaml", "there", "way", "weather.csv", "~")
+	holdsOnly(t, ".", "-x", "Fräulein's hill", "esc\x1b[31m's", "file", "gone", "half", "linked", "lost", "new", "odd", "other", "study.yaml", "there", "way", "weather.csv", "~")
 	holdsOnly(t, "half", "study.yaml", "weather.csv")
 	holdsOnly(t, "there", "notes", "study.yaml", "weather.csv")
 	holdsOnly(t, "odd", "study.yaml")
@@ -169,6 +175,125 @@ func TestNewInterrupted(t *testing.T) {
 		t.Errorf("status %d, %q, %q", code, stdout, stderr)
 	}
 	holdsOnly(t, ".")
+	// Wherever it ends, also once the folder is made.
+	for looks := 0; ; looks++ {
+		switch err := writeStarter(&endsAfter{t.Context(), looks}, "d", false); {
+		case err == nil && looks > 2: // it was looked at more often than this
+			holdsOnly(t, "d", starterFiles...)
+			return
+		case !errors.Is(err, context.Canceled):
+			t.Fatalf("ended after %d looks: %v", looks, err)
+		}
+		holdsOnly(t, ".")
+	}
+}
+
+// endsAfter is a context that has ended once it was looked at so many times.
+type endsAfter struct {
+	context.Context
+	looks int
+}
+
+func (c *endsAfter) Err() error {
+	if c.looks--; c.looks < 0 {
+		return context.Canceled
+	}
+	return nil
+}
+
+// TestNewRace: of many runs at once in one folder, one writes the study and the others are refused.
+func TestNewRace(t *testing.T) {
+	t.Chdir(t.TempDir())
+	for range 20 {
+		var errs [20]error
+		var runs sync.WaitGroup
+		for i := range errs {
+			runs.Go(func() { errs[i] = writeStarter(t.Context(), "d", false) })
+		}
+		runs.Wait()
+		done := 0
+		for _, err := range errs {
+			var refused *usageError
+			switch {
+			case err == nil:
+				done++
+			case !errors.As(err, &refused) || !strings.Contains(err.Error(), `"d" holds study.yaml`):
+				t.Error(err)
+			}
+		}
+		if done != 1 {
+			t.Errorf("%d runs wrote the study", done)
+		}
+		holdsOnly(t, "d", starterFiles...)
+		if err := os.RemoveAll("d"); err != nil {
+			t.Fatal(err)
+		}
+	}
+}
+
+// TestNewMeanwhile: what comes up while the files are written is neither replaced nor taken away.
+func TestNewMeanwhile(t *testing.T) {
+	write := func(text string) func(io.Writer) error {
+		return func(w io.Writer) error { _, err := io.WriteString(w, text); return err }
+	}
+	holds := func(name, want string) {
+		t.Helper()
+		if got, err := os.ReadFile(name); err != nil || string(got) != want {
+			t.Errorf("%s: %q, %v, want %q", name, got, err, want)
+		}
+	}
+	for _, late := range []string{"a", "b"} {
+		t.Run(late, func(t *testing.T) {
+			t.Chdir(t.TempDir())
+			files := []*outFile{{name: "a", path: "a"}, {name: "b", path: "b"}}
+			err := replaceAll(t.Context(), files, write("new\n"), func(w io.Writer) error {
+				return errors.Join(write("new\n")(w), os.WriteFile(late, []byte("mine\n"), 0o666))
+			})
+			if !errors.Is(err, fs.ErrExist) {
+				t.Error(err)
+			}
+			holdsOnly(t, ".", late)
+			holds(late, "mine\n")
+		})
+	}
+	t.Run("between", func(t *testing.T) { // the first, once placed, is replaced by another's, and the second by mine
+		t.Chdir(t.TempDir())
+		defer func() { link = os.Link }()
+		link = func(from, to string) error {
+			if to == "b" {
+				if err := errors.Join(os.WriteFile("c", []byte("another's\n"), 0o666), os.Rename("c", "a"), os.WriteFile("b", []byte("mine\n"), 0o666)); err != nil {
+					t.Error(err)
+				}
+			}
+			return os.Link(from, to)
+		}
+		if err := replaceAll(t.Context(), []*outFile{{name: "a", path: "a"}, {name: "b", path: "b"}}, write("new\n"), write("new\n")); !errors.Is(err, fs.ErrExist) {
+			t.Error(err)
+		}
+		holdsOnly(t, ".", "a", "b")
+		holds("a", "another's\n")
+		holds("b", "mine\n")
+	})
+	t.Run("without links", func(t *testing.T) {
+		t.Chdir(t.TempDir())
+		defer func() { link = os.Link }()
+		link = func(string, string) error { return errors.ErrUnsupported }
+		files := []*outFile{{name: "a", path: "a"}, {name: "b", path: "b"}}
+		if err := replaceAll(t.Context(), files, write("new\n"), write("new\n")); err != nil {
+			t.Error(err)
+		}
+		if err := replaceAll(t.Context(), files, write("newer\n"), write("newer\n")); !errors.Is(err, fs.ErrExist) {
+			t.Error(err)
+		}
+		if err := os.Remove("a"); err != nil {
+			t.Fatal(err)
+		}
+		if err := replaceAll(t.Context(), files, write("newer\n"), write("newer\n")); !errors.Is(err, fs.ErrExist) {
+			t.Error(err)
+		}
+		holdsOnly(t, ".", "b")
+		holds("b", "new\n")
+	})
 }
 
 // TestReplaceAll: two files are written both or not at all.

@@ -20,11 +20,14 @@ type outFile struct {
 	name    string      // as the user named it
 	path    string      // the same with links followed
 	earlier os.FileInfo // nil when there is none
+
+	// replaces says whether a file that has come up since may be replaced, too.
+	replaces bool
 }
 
 // openOut settles where a result goes, before anything is computed. It opens nothing for good.
 func openOut(command, name string) (*outFile, error) {
-	o := &outFile{command: command, name: name, path: name}
+	o := &outFile{command: command, name: name, path: name, replaces: true}
 	refuse := func(format string, args ...any) error {
 		return usagef(command, "--out %q: %s", name, fmt.Sprintf(format, args...))
 	}
@@ -115,70 +118,110 @@ func (o *outFile) replace(ctx context.Context, f func(io.Writer) error) error {
 // replaceAll writes files beside those that they will replace, each with its own f, and puts them in their places once
 // all are whole. When one cannot be written or ctx ends before that, nothing is left of any. When one cannot be put in
 // its place, those before it are taken away again where there was no earlier file.
-func replaceAll(ctx context.Context, files []*outFile, write ...func(io.Writer) error) (err error) {
-	var whole []string // names of the files written beside
-	var placed []*outFile
+func replaceAll(ctx context.Context, files []*outFile, write ...func(io.Writer) error) error {
+	var written []*whole
+	placed := 0
 	defer func() {
-		for _, name := range whole[len(placed):] {
-			os.Remove(name)
+		for _, w := range written[placed:] {
+			os.Remove(w.name)
 		}
-		if len(placed) == len(files) {
+		if placed == len(files) {
 			return
 		}
-		for _, o := range placed {
-			if o.earlier == nil {
+		for i, o := range files[:placed] {
+			now, err := os.Lstat(o.path)
+			if o.earlier == nil && err == nil && os.SameFile(now, written[i].info) { // not what others put there since
 				os.Remove(o.path)
 			}
 		}
 	}()
 	for i, o := range files {
-		name, err := o.writeBeside(ctx, write[i])
+		w, err := o.writeBeside(ctx, write[i])
 		if err != nil {
 			return err
 		}
-		whole = append(whole, name)
+		written = append(written, w)
 	}
 	if err := ctx.Err(); err != nil {
 		return err
 	}
 	for i, o := range files {
-		if err := os.Rename(whole[i], o.path); err != nil {
+		if err := o.place(written[i].name); err != nil {
 			return &outputError{o.name, err}
 		}
-		placed = append(placed, o)
+		placed++
 	}
 	return nil
 }
 
-// writeBeside writes a file whole, in the same folder and under a name of its own, which it returns.
-func (o *outFile) writeBeside(ctx context.Context, f func(io.Writer) error) (name string, err error) {
+// link is a variable for tests.
+var link = os.Link
+
+// place puts the file of a name in its place. Where nothing may be replaced, something that stands there is
+// fs.ErrExist.
+func (o *outFile) place(name string) error {
+	if o.replaces {
+		return os.Rename(name, o.path)
+	}
+	switch err := link(name, o.path); { // unlike a renaming it replaces nothing
+	case err == nil:
+		os.Remove(name)
+		return nil
+	case errors.Is(err, fs.ErrExist):
+		return err
+	}
+	// Some file systems know no links. An empty file holds the place there.
+	f, err := os.OpenFile(o.path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
+	if err != nil {
+		return err
+	}
+	f.Close()
+	if err := os.Rename(name, o.path); err != nil {
+		os.Remove(o.path)
+		return err
+	}
+	return nil
+}
+
+// whole is a file that is written whole, under a name of its own.
+type whole struct {
+	name string
+	info os.FileInfo
+}
+
+// writeBeside writes a file whole, in the same folder.
+func (o *outFile) writeBeside(ctx context.Context, f func(io.Writer) error) (*whole, error) {
 	temporary, err := createBeside(o.path)
 	if err != nil {
-		return "", &outputError{o.name, err}
+		return nil, &outputError{o.name, err}
 	}
-	whole := false
+	done := false
 	defer func() {
-		if !whole {
+		if !done {
 			temporary.Close()
 			os.Remove(temporary.Name())
 		}
 	}()
 	if err := f(&guarded{ctx, temporary, o.name}); err != nil {
-		return "", err
+		return nil, err
 	}
 	if o.earlier != nil {
 		if err := temporary.Chmod(o.earlier.Mode().Perm()); err != nil {
-			return "", &outputError{o.name, err}
+			return nil, &outputError{o.name, err}
 		}
 	}
 	if err := temporary.Sync(); err != nil {
-		return "", &outputError{o.name, err}
+		return nil, &outputError{o.name, err}
+	}
+	info, err := temporary.Stat()
+	if err != nil {
+		return nil, &outputError{o.name, err}
 	}
 	if err := temporary.Close(); err != nil {
-		return "", &outputError{o.name, err}
+		return nil, &outputError{o.name, err}
 	}
-	whole = true
-	return temporary.Name(), nil
+	done = true
+	return &whole{temporary.Name(), info}, nil
 }
 
 // createBeside makes a new file in the folder of path. Unlike os.CreateTemp it leaves the mode to the user's umask.
