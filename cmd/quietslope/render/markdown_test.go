@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"regexp"
 	"slices"
 	"strings"
 	"testing"
@@ -253,6 +254,18 @@ func TestMarkdown(t *testing.T) {
 	}
 	if err := Comparison(never()).Markdown(failing{}); !errors.Is(err, errFull) {
 		t.Errorf("a failed write gave %v", err)
+	}
+}
+
+// TestMarkdownDollar: a name that holds dollar signs is not taken for a formula by what knows formulas. CommonMark does not,
+// so that the other tests cannot see it.
+func TestMarkdownDollar(t *testing.T) {
+	c := fixture(demoOptions[:2], []string{"$x$", "second"})
+	c.Study = "costs $5 or $6"
+	c.Cases[0].Options[1].Name, c.Cases[0].Options[1].Measures = "$y^2$", []string{"$$z$$"}
+	md := asMarkdown(t, Comparison(c))
+	if bare := regexp.MustCompile(`(^|[^\\])\$.*`).FindString(md); bare != "" || !strings.Contains(md, `\$\$z\$\$`) {
+		t.Errorf("a dollar sign on its own: %q", bare)
 	}
 }
 
