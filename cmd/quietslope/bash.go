@@ -75,9 +75,17 @@ func readBash(line, breaks string) bashLine {
 func (b bashLine) answer(w io.Writer, p proposal) {
 	typed := b.words[len(b.words)-1]
 	if p.kind == wordsKind {
+		var fit []string
 		for _, word := range p.words {
 			if full := p.before + word.text; strings.HasPrefix(full, typed) {
-				fmt.Fprintln(w, quoteBash(full[b.head:], b.quote))
+				fit = append(fit, full[b.head:])
+			}
+		}
+		for _, text := range fit {
+			if len(fit) == 1 {
+				fmt.Fprintln(w, endBash(text, b.quote))
+			} else {
+				fmt.Fprintln(w, quoteBash(text, b.quote))
 			}
 		}
 		return
@@ -95,6 +103,23 @@ func (b bashLine) answer(w io.Writer, p proposal) {
 		drop = typed[len(p.before):b.head]
 	}
 	fmt.Fprintf(w, "%s\n%s\n%s\n", path, add, drop)
+}
+
+// endBash quotes a text after which the word ends. Bash then closes the quote that is open, but not where the text already
+// ends in such a quote: that one must close the word itself.
+func endBash(text string, quote byte) string {
+	last := len(text) - 1
+	if quote == 0 || last < 0 {
+		return quoteBash(text, quote)
+	}
+	before, q := quoteBash(text[:last], quote), string(quote)
+	switch {
+	case text[last] == quote:
+		return before + q + `\` + q
+	case quote == '"' && text[last] == '!':
+		return before + `"'!'""`
+	}
+	return quoteBash(text, quote)
 }
 
 // quoteBash quotes a text for bash, inside the quote that is open, or with backslashes where none is.

@@ -101,6 +101,9 @@ func complete(ctx context.Context, app *cli.App, args []string) {
 	case found.kind == wordsKind:
 		for _, w := range found.words {
 			if shell == "fish" {
+				if found.before == "" && strings.HasPrefix(w.text, "~") && !strings.ContainsAny(words[len(words)-1], `\'"`) {
+					continue // fish does not quote it, and would put a folder in its place
+				}
 				b.WriteString(found.before)
 			}
 			b.WriteString(w.text)

@@ -21,18 +21,22 @@ import (
 // hardNames are names of options that a shell could misread, each with a beginning of its own.
 var hardNames = []string{
 	"as it stands", "trenches 8 m (deep)", `"wide" trenches`, "it's cheap", "$HOME & more; `ls`", "Gräben für das Wasser", "50 % *or* less?",
-	"at a:b=c@d, e", `back\slash`, "what!now", "~tilde", "#3", "<b>|{x,y}[z]",
+	"at a:b=c@d, e", `back\slash`, "what!now", "~tilde", "#3", "<b>|{x,y}[z]", `pipes 6"`, `drains 6'`, "now!",
 }
 
 // hardStudy is a study with hardNames, and with some of them for its conditions.
 func hardStudy() string {
+	return namedStudy(hardNames...) + "conditions:\n  - {name: \"it's worn\", drains: 50 %}\n  - {name: $5 (half), drains: 70 %}\n"
+}
+
+// namedStudy is a study with options of these names.
+func namedStudy(names ...string) string {
 	head, _, _ := strings.Cut(smallStudy, "  - name: as it stands\n")
 	var b strings.Builder
 	b.WriteString(head)
-	for _, n := range hardNames {
+	for _, n := range names {
 		fmt.Fprintf(&b, "  - name: '%s'\n", strings.ReplaceAll(n, "'", "''"))
 	}
-	b.WriteString("conditions:\n  - {name: \"it's worn\", drains: 50 %}\n  - {name: $5 (half), drains: 70 %}\n")
 	return b.String()
 }
 
@@ -198,6 +202,17 @@ func TestQuoteBash(t *testing.T) {
 			t.Errorf("%s is read as %q", line, got)
 		}
 	})
+	rapid.Check(t, func(t *rapid.T) { // at the end of a word, where bash adds a quote to all but a quote
+		text := rapid.StringMatching("[^\n\x00]*").Draw(t, "text") + rapid.SampledFrom([]string{"", "'", `"`, "!", `\`}).Draw(t, "end")
+		quote := rapid.SampledFrom([]string{"'", `"`}).Draw(t, "quote")
+		quoted := endBash(text, quote[0])
+		if !strings.HasSuffix(quoted, quote) {
+			quoted += quote
+		}
+		if got := readBash("quietslope "+quote+quoted, " =:"); len(got.words) != 1 || got.words[0] != text || got.quote != 0 {
+			t.Errorf("%s for %q is read as %q", quoted, text, got.words)
+		}
+	})
 	if _, err := exec.LookPath("bash"); err != nil {
 		t.Skip("there is no bash to ask")
 	}
@@ -234,6 +249,8 @@ func shellFolder(t *testing.T) (typed string) {
 		os.MkdirAll(bin, 0o777), os.MkdirAll(work+"/sub folder", 0o777),
 		os.WriteFile(bin+"/quietslope", []byte(recorder), 0o777),
 		os.WriteFile(work+"/hard.yaml", []byte(hardStudy()), 0o666),
+		os.WriteFile(work+"/tilde.yaml", []byte(namedStudy("a", "~")), 0o666),
+		os.WriteFile(work+"/user.yaml", []byte(namedStudy("a", "~root")), 0o666),
 		os.WriteFile(work+"/sub folder/it's $5.yml", []byte(hardStudy()), 0o666),
 		os.WriteFile(work+"/sub folder/plain one.yaml", nil, 0o666),
 		os.WriteFile(work+"/sub folder/notes.txt", nil, 0o666),
@@ -290,7 +307,9 @@ var inEveryShell = []completed{
 	{"quietslope compare --f", []string{"--format"}, []string{"--out"}},
 	{"quietslope compare --format ", formatNames(), []string{"hard.yaml"}},
 	{"quietslope compare hard.yaml --format j", []string{"json"}, []string{"text"}},
-	{"quietslope levels hard.yaml --option ", hardNames, []string{"text"}},
+	{"quietslope levels hard.yaml --option ", hardNames[:10], []string{"text"}},
+	{"quietslope levels hard.yaml --option \\~", hardNames[10:11], []string{"text"}},
+	{"quietslope levels hard.yaml --option ", hardNames[11:], []string{"text"}},
 	{"quietslope levels --option tren", []string{""}, hardNames}, // no study yet
 	{"quietslope levels hard.yaml --condition ", []string{"as built", "it's worn", "$5 (half)"}, []string{"as it stands"}},
 	{"quietslope levels hard.yaml --option Gr", []string{"Gräben für das Wasser"}, []string{"as it stands"}},
@@ -366,6 +385,8 @@ func TestFishCompletes(t *testing.T) {
 	lines := append(slices.Clone(inEveryShell), []completed{
 		{"quietslope compare --format=", []string{"--format=text", "--format=json"}, nil},
 		{"quietslope levels hard.yaml --option=a", []string{"--option=as it stands", "--option=at a:b=c@d, e"}, []string{"--option=it's cheap"}},
+		{"quietslope levels hard.yaml --option ", nil, []string{"~tilde"}}, // it would be taken for somebody's folder
+		{"quietslope levels hard.yaml --option '", []string{"~tilde"}, nil},
 		{"quietslope levels hard.yaml --option 'as i", []string{"as it stands"}, []string{"it's cheap"}},
 		{"quietslope levels hard.yaml --option \\$H", []string{"$HOME & more; `ls`"}, []string{"it's cheap"}},
 		{"quietslope levels 'sub folder/it\\'s $5.yml' --option as\\ ", []string{"as it stands"}, []string{"it's cheap"}},

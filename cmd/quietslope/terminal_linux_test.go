@@ -121,18 +121,22 @@ func TestTypedCompletion(t *testing.T) {
 		{"quietslope levels hard.yaml --option at\\ a:b=c@\t\n", []string{"levels", "hard.yaml", "--option", "at a:b=c@d, e"}},
 		{"~/bin/quietslope levels hard.yaml --option as\t--option it\t\n", []string{"levels", "hard.yaml", "--option", "as it stands", "--option", "it's cheap"}},
 	}
-	for _, n := range hardNames {
-		begins := string([]rune(n)[:2])
+	add := func(file, begins, name string) {
 		for _, before := range []string{"--option ", "--option=", "--option '", "--option=\"", "--option \""} {
 			word := before + quoteBash(begins, before[len(before)-1])
-			given := strings.TrimRight(before, `"'`) + n
-			want := []string{"levels", "hard.yaml", given}
+			given := strings.TrimRight(before, `"'`) + name
+			want := []string{"levels", file, given}
 			if rest, apart := strings.CutPrefix(given, "--option "); apart {
-				want = []string{"levels", "hard.yaml", "--option", rest}
+				want = []string{"levels", file, "--option", rest}
 			}
-			lines = append(lines, typing{"quietslope levels hard.yaml " + word + "\t\n", want})
+			lines = append(lines, typing{"quietslope levels " + file + " " + word + "\t\n", want})
 		}
 	}
+	for _, n := range hardNames {
+		add("hard.yaml", string([]rune(n)[:2]), n)
+	}
+	add("tilde.yaml", "~", "~")
+	add("user.yaml", "~", "~root")
 
 	for _, tt := range []struct {
 		shell string
