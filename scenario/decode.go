@@ -1,6 +1,7 @@
 package scenario
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"regexp"
@@ -369,7 +370,11 @@ func namedByKey(n *node, s *shape) string {
 func (d *decoder) readTexts(n *node, s *shape, v *value) *value {
 	if n.is != listNode {
 		if n.is == textNode {
-			d.add(v.place, "a list is wanted here; write [%s]", listText(n.text))
+			var texts []string
+			for _, text := range strings.FieldsFunc(n.text, func(r rune) bool { return !n.quoted && (r == ',' || r == ';') }) {
+				texts = append(texts, listText(strings.TrimSpace(text)))
+			}
+			d.add(v.place, "a list is wanted here; write [%s]", cmp.Or(strings.Join(texts, ", "), `""`))
 		} else {
 			d.add(v.place, `a list of texts is wanted here, such as ["", NA]`)
 		}

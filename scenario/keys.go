@@ -377,7 +377,7 @@ var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fi
 		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.02 m/d"},
 	notYet("conductivity_below"),
 	notYet("drain_radius"),
-	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
+	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; it grows with the spacing; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
 		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true, eg: "0.80 m"},
 	{name: "working_head", says: "height of the water above the trenches that the rate is worked out for; only with spacing", absent: "by default half of depth, the only value supported yet",
 		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true, eg: "1.5 m"},

@@ -292,10 +292,10 @@ func (p *prepared) gapWarnings(ws *warnings) {
 	}
 	var of, lost []string
 	if rain > 0 {
-		of, lost = append(of, plural(rain, "step")+" without rain"), append(lost, "rain that fell and was not recorded is missing from every level")
+		of, lost = append(of, plural(rain, "step")+" without a value of rain"), append(lost, "rain that fell and was not recorded is missing from every level")
 	}
 	if pet > 0 {
-		of, lost = append(of, plural(pet, "step")+" without evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
+		of, lost = append(of, plural(pet, "step")+" without a value of evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
 	}
 	what := strings.Join(of, " and ")
 	if p.study.Weather.Gaps == weather.GapsZero {

@@ -115,7 +115,7 @@ func (k Kind) Units() []string {
 func Parse(text string, kind Kind) (float64, error) {
 	v, err := parse(text, kind)
 	if err != nil {
-		if better := notOne(text); better != nil {
+		if better := notOne(text, kind); better != nil {
 			err = better
 		}
 		return 0, err

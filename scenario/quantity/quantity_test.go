@@ -175,7 +175,7 @@ func TestParseErrors(t *testing.T) {
 		{"\u22123 m", Length, `"−3 m": the minus sign is a hyphen; write -3 m`},
 		{"3-4 m", Length, `"3-4 m": one value is wanted here, not two or a range; write 3 m or 4 m`},
 		{"3 4 m", Length, `"3 4 m": one decimal number is wanted, such as 12 or 0.5`},
-		{"10² m", Length, `"10² m": unknown unit "² m"; a length is written in m, mm, cm, km, in or ft`},
+		{"10² m", Length, `"10² m": a power of ten is written with an e; write 1e2 m`},
 		{"1.2.3 m", Length, `"1.2.3 m": one decimal number is wanted, such as 12 or 0.5`},
 		{".inf", Length, `".inf": an infinite number is not accepted; write a length such as 12 m`},
 		{"nan", Rate, `"nan": a number is wanted; write a rate such as 0.01 /d`},

@@ -129,6 +129,9 @@ func misspelt(text, number, unit string) error {
 	if wellSpelt(number) {
 		return nil
 	}
+	if strings.HasPrefix(unit, ":") { // a time of day
+		return fmt.Errorf("%s: one decimal number is wanted, such as 12 or 0.5", quote(text))
+	}
 	if len(unit) > 20 { // no unit that is known, and too long to repeat
 		unit = ""
 	}
@@ -164,7 +167,7 @@ func misspelt(text, number, unit string) error {
 	if point := strings.Replace(s, ",", ".", 1); point != s && wellSpelt(point) {
 		return write("a decimal point is a full stop", sign+point)
 	}
-	if joined := strings.NewReplacer("_", "", "'", "", "\u2019", "").Replace(s); joined != s && wellSpelt(joined) {
+	if joined := strings.ReplaceAll(s, "_", ""); joined != s && wellSpelt(joined) {
 		return write("digits are not grouped", sign+joined)
 	}
 	if strings.HasPrefix(s, ".") && wellSpelt("0"+s) {

@@ -1,9 +1,11 @@
 package quantity
 
 import (
+	"cmp"
 	"fmt"
 	"regexp"
 	"strings"
+	"unicode"
 )
 
 // This file helps those who write a quantity in a usual way that is not read: it finds out what was meant, so that the
@@ -106,7 +108,8 @@ func usualUnit(name string) string {
 const decimalPattern = `[-+−–]?[0-9]+(?:[.,][0-9]+)?`
 
 var (
-	timesTen   = regexp.MustCompile(`^(` + decimalPattern + `) *[x×X·*] *10 *\^? *([-+−–⁻]?[0-9⁰¹²³⁴-⁹]+)( .*|[^0-9].*)?$`)
+	timesTen   = regexp.MustCompile(`^(` + decimalPattern + `) *[x×X·*] *10 *((?:\^|\*\*) *[-+−–⁻]?[0-9⁰¹²³⁴-⁹]+|[-+−–⁻]?[⁰¹²³⁴-⁹]+|[-+−–][0-9]+)( .*|[^0-9].*)?$`)
+	tenTo      = regexp.MustCompile(`^()10 *((?:\^|\*\*) *[-+−–⁻]?[0-9⁰¹²³⁴-⁹]+|⁻?[⁰¹²³⁴-⁹]+)( .*|[^0-9].*)?$`)
 	twoNumbers = regexp.MustCompile(`^([0-9]+(?:\.[0-9]+)?) *([^0-9\s]*) *(to|-|–|—|and|or|/|;|,|\.\.|±|\+/-) *([0-9]+(?:\.[0-9]+)?) *([^0-9]+)$`)
 	minutes    = regexp.MustCompile(`^([0-9]+)(?:°|deg) *([0-9]{1,2}) *['′’]$`)
 )
@@ -115,13 +118,17 @@ var (
 const longestSlip = 120
 
 // notOne explains a text that is a power of ten written out, a range, a fraction or two quantities.
-func notOne(text string) error {
+func notOne(text string, kind Kind) error {
 	text = strings.TrimSpace(text)
 	if len(text) > longestSlip {
 		return nil
 	}
-	if m := timesTen.FindStringSubmatch(text); m != nil {
-		number := strings.ReplaceAll(m[1], ",", ".")
+	m := timesTen.FindStringSubmatch(text)
+	if m == nil {
+		m = tenTo.FindStringSubmatch(text)
+	}
+	if m != nil {
+		number := cmp.Or(strings.ReplaceAll(m[1], ",", "."), "1")
 		exp := strings.Map(func(r rune) rune {
 			for i, sup := range []rune("⁰¹²³⁴⁵⁶⁷⁸⁹") {
 				if r == sup {
@@ -129,8 +136,8 @@ func notOne(text string) error {
 				}
 			}
 			return r
-		}, superscripts.Replace(m[2]))
-		return fmt.Errorf("%s: a power of ten is written with an e; write %se%s%s", quote(text), number, strings.TrimPrefix(exp, "+"), spaced(m[3]))
+		}, strings.TrimSpace(superscripts.Replace(m[2])))
+		return fmt.Errorf("%s: a power of ten is written with an e; write %se%s%s", quote(text), number, strings.TrimPrefix(exp, "+"), spaced(m[3], kind))
 	}
 	if m := minutes.FindStringSubmatch(text); m != nil {
 		v, err := number64(m[1], 0)
@@ -139,35 +146,44 @@ func notOne(text string) error {
 			return fmt.Errorf("%s: an angle is one decimal number; write %s deg", quote(text), four(v+part/60))
 		}
 	}
-	m := twoNumbers.FindStringSubmatch(plain(text))
+	m = twoNumbers.FindStringSubmatch(plain(text))
 	if m == nil || strings.EqualFold(m[2], "e") {
 		return nil
 	}
-	first, second, unit := m[1], m[4], spaced(m[5])
+	unit := spaced(m[5], kind)
+	first, second := m[1]+cmp.Or(spaced(m[2], kind), unit), m[4]+unit
 	switch m[3] {
 	case "±", "+/-":
-		return fmt.Errorf("%s: one value is wanted here; write %s%s", quote(text), first, unit)
+		return fmt.Errorf("%s: one value is wanted here; write %s", quote(text), first)
 	case "/":
-		if m[2] == "" {
-			a, err := number64(first, 0)
-			b, err2 := number64(second, 0)
-			if err != nil || err2 != nil || b == 0 {
-				return nil
-			}
-			return fmt.Errorf("%s: a number is decimal; write %s%s", quote(text), four(a/b), unit)
+		a, err := number64(m[1], 0)
+		b, err2 := number64(m[4], 0)
+		if m[2] != "" || err != nil || err2 != nil || b == 0 {
+			break
 		}
+		if u, ok := Duration.unitOf(usualUnit(m[5])); ok && kind == Rate { // 1/120 d is 1/(120 d)
+			return fmt.Errorf("%s: a number is decimal; write %s /%s", quote(text), four(a/b), u.name)
+		}
+		return fmt.Errorf("%s: a number is decimal; write %s%s if a fraction is meant, or else %s or %s", quote(text), four(a/b), unit, first, second)
 	case ",":
 		if m[2] == "" {
 			return nil // a decimal comma
 		}
+	case "-", "–":
+		if m[1] == "10" && m[2] == "" && (kind == Conductivity || kind == Rate) {
+			return fmt.Errorf("%s: a power of ten is written with an e; write 1e-%s if one is meant, or one value, not a range", quote(text), second)
+		}
 	}
-	return fmt.Errorf("%s: one value is wanted here, not two or a range; write %s%s or %s%s", quote(text), first, unit, second, unit)
+	return fmt.Errorf("%s: one value is wanted here, not two or a range; write %s or %s", quote(text), first, second)
 }
 
-// spaced is a unit with one blank before it.
-func spaced(unit string) string {
+// spaced is a unit with one blank before it, as the kind has it where the kind does.
+func spaced(unit string, kind Kind) string {
 	if unit = strings.TrimSpace(unit); unit == "" {
 		return ""
+	}
+	if u, ok := kind.unitOf(usualUnit(unit)); ok {
+		unit = u.name
 	}
 	return " " + unit
 }
@@ -195,6 +211,9 @@ func moreThanUnit(text, number, name string, kind Kind) error {
 	right := number + " " + u.name
 	if rest := strings.TrimLeft(name[i:], " "); rest[0] == '#' {
 		return fmt.Errorf("%s: a blank stands before the # of a remark; write %s %s", quote(text), right, rest)
+	}
+	if strings.ContainsFunc(name[i:], unicode.IsLetter) { // "below ground" or "runoff" may turn the meaning round
+		return fmt.Errorf("%s: nothing may follow the unit; write %s if that is what the key means without the words after it, and these behind a blank and a #", quote(text), right)
 	}
 	return fmt.Errorf("%s: nothing may follow the unit; write %s, and a remark after a blank and a #", quote(text), right)
 }

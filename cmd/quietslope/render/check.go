@@ -84,7 +84,7 @@ func checkOptions(p *Page, c *result.Check, ns *notes) {
 			p.item(below, "", "stores: "+ratesText(&o.Rates))
 		}
 		if len(o.Drains) == 0 {
-			p.item(below, "", "no drains")
+			p.item(below, "", "no trench or bored drains")
 		}
 		for _, d := range o.Drains {
 			text := fmt.Sprintf("%s, acting above %s m over the base of %s: rate %s /d", words(d.Measure), centimetres(d.InvertM), layerName(d.Layer), typed(d.RatePerDay, 4))
