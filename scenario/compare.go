@@ -69,7 +69,7 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	}
 	p.counted = countYears(record, starts)
 	if p.counted.years == 0 {
-		return nil, noCompleteYear(s, record, starts)
+		return nil, noCompleteYear(record, starts)
 	}
 	p.base, err = p.replayer.replay(ctx, p.works[p.baseline], p.counted)
 	return p, err

@@ -86,7 +86,7 @@ func decodeStudy(root *node, found *problems) *Study {
 	d.bands(s, file.get("bands"))
 	d.options(s, file.get("options"))
 	d.conditions(s, file.get("conditions"))
-	d.count(s, file.sub("count"), file.get("bands"))
+	d.count(s, file.sub("count"))
 	d.declared(s, file.sub("declared"))
 	d.sayTaken()
 	if len(found.list) == 0 {
@@ -171,7 +171,7 @@ func (d *decoder) checkUnique(what string, name *value, seen map[string]Place) {
 	seen[fold] = name.place
 }
 
-func (d *decoder) count(s *Study, b *blockValue, bands *value) {
+func (d *decoder) count(s *Study, b *blockValue) {
 	c := &s.Count
 	*c = Count{
 		Apart:      b.get("apart").num,

@@ -149,7 +149,7 @@ func TestWarmUpCountsInBalance(t *testing.T) {
 }
 
 func TestNearestYearIsTheFirst(t *testing.T) {
-	err := noCompleteYear(ground(), record("2003-07-02T00:00", 24*time.Hour, 366), time.January) // 183 d in either year
+	err := noCompleteYear(record("2003-07-02T00:00", 24*time.Hour, 366), time.January) // 183 d in either year
 	if !strings.Contains(err.Error(), "and January 2003 to December 2003 lacks") {
 		t.Error(err)
 	}

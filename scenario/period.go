@@ -130,7 +130,7 @@ func lowestMonth(r *weather.Record, levels []float64) time.Month {
 }
 
 // noCompleteYear says which months the nearest year lacks, and which starting month would do, if one does.
-func noCompleteYear(s *Study, r *weather.Record, starts time.Month) error {
+func noCompleteYear(r *weather.Record, starts time.Month) error {
 	n := len(r.Rain)
 	best, most := 0, -1
 	for year := r.First.Year() - 1; year <= r.Start(n-1).Year(); year++ {

@@ -91,12 +91,12 @@ func TestLowestMonth(t *testing.T) {
 }
 
 func TestNoCompleteYear(t *testing.T) {
-	err := noCompleteYear(ground(), record("2003-03-01T00:00", 24*time.Hour, 300), time.January)
+	err := noCompleteYear(record("2003-03-01T00:00", 24*time.Hour, 300), time.January)
 	want := "weather.csv: holds no complete year from January on: it runs from 2003-03-01 to 2003-12-25, and January 2003 to December 2003 lacks all or part of January 2003, February 2003, December 2003; give a longer record"
 	if err.Error() != want {
 		t.Errorf("got  %s\nwant %s", err, want)
 	}
-	err = noCompleteYear(ground(), record("2003-03-01T00:00", 24*time.Hour, 380), time.January)
+	err = noCompleteYear(record("2003-03-01T00:00", 24*time.Hour, 380), time.January)
 	if !strings.Contains(err.Error(), "count.year_starts: March, from which it holds 1 complete year") {
 		t.Errorf("no better month is named: %s", err)
 	}
