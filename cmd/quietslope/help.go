@@ -291,6 +291,20 @@ var studyNotes = map[string]string{
 `,
 }
 
+// exampleLayers are the two layers of the examples.
+const exampleLayers = `  cover:
+    thickness: 4.0 m
+    drainable_porosity: 8 %
+    conductivity: 0.044 m/d
+    seepage: 0.011 /d
+    percolation: 0.0045 /d
+  deep:
+    thickness: 9.0 m
+    drainable_porosity: 1.4 %
+    seepage: 0.007 /d
+    lateral_inflow: 0.05 mm/d
+`
+
 // studyExamples stand below the notes of a section. Each text is part of a study as it would stand there, so that they
 // make one when put together; a second text of one block is another way to write it.
 var studyExamples = []struct{ section, lead, text string }{
@@ -317,33 +331,11 @@ prepared_by: A. N. Engineer
 	{"ground", "With levels that were read at the start of the record; without start it begins steady", `ground:
   surface: {infiltration: 85 %}
   soil: {available_water: 120 mm}
-  cover:
-    thickness: 4.0 m
-    drainable_porosity: 8 %
-    conductivity: 0.044 m/d
-    seepage: 0.011 /d
-    percolation: 0.0045 /d
-  deep:
-    thickness: 9.0 m
-    drainable_porosity: 1.4 %
-    seepage: 0.007 /d
-    lateral_inflow: 0.05 mm/d
-  start: {cover: 1.2 m, deep: 3.4 m}
+` + exampleLayers + `  start: {cover: 1.2 m, deep: 3.4 m}
   calibrated_to: 4.9 m
 `},
 	{"ground", "With rates that were calibrated by a stepping formula, which are converted", `ground:
-  cover:
-    thickness: 4.0 m
-    drainable_porosity: 8 %
-    conductivity: 0.044 m/d
-    seepage: 0.011 /d
-    percolation: 0.0045 /d
-  deep:
-    thickness: 9.0 m
-    drainable_porosity: 1.4 %
-    seepage: 0.007 /d
-    lateral_inflow: 0.05 mm/d
-  rates_from: {scheme: centred, step: 1 d}
+` + exampleLayers + `  rates_from: {scheme: centred, step: 1 d}
 `},
 	{"slope", "Example", `slope: {angle: 11 deg, unit_weight: 19.5 kN/m3, friction: 13.8 deg, flow: parallel}
 `},

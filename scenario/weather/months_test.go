@@ -1,7 +1,6 @@
 package weather
 
 import (
-	"errors"
 	"fmt"
 	"strings"
 	"testing"
@@ -9,8 +8,6 @@ import (
 
 	"github.com/google/go-cmp/cmp"
 	"pgregory.net/rapid"
-
-	"quietslope/scenario/fault"
 )
 
 // monthly is a source of months with times in the given format.
@@ -162,16 +159,7 @@ func TestMonthRefusals(t *testing.T) {
 			`w.csv:5: column "pet": "1501" is 50.0333 mm/d; evapotranspiration above 50 mm/d is not possible, so check weather.columns.pet.unit`},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
-			r, err := readText(tt.src, tt.text)
-			if err == nil {
-				t.Fatalf("accepted: %+v", r)
-			}
-			if d := cmp.Diff(tt.want, err.Error()); d != "" {
-				t.Error(d)
-			}
-			if fe := (*fault.Error)(nil); !errors.As(err, &fe) {
-				t.Errorf("%T is not a fault.Error", err)
-			}
+			refused(t, tt.src, tt.text, tt.want)
 		})
 	}
 }

@@ -216,6 +216,21 @@ func TestMissingCodes(t *testing.T) {
 	}
 }
 
+// refused holds the message about a record against what is wanted of it.
+func refused(t *testing.T, src Source, text, want string) {
+	t.Helper()
+	r, err := readText(src, text)
+	if err == nil {
+		t.Fatalf("accepted: %+v", r)
+	}
+	if d := cmp.Diff(want, err.Error()); d != "" {
+		t.Error(d)
+	}
+	if fe := (*fault.Error)(nil); !errors.As(err, &fe) {
+		t.Errorf("%T is not a fault.Error", err)
+	}
+}
+
 // TestRefusals holds the exact text of every refusal.
 func TestRefusals(t *testing.T) {
 	days := func(rows ...string) string { return "date,rain,pet\n" + strings.Join(rows, "\n") + "\n" }
@@ -409,16 +424,7 @@ func TestRefusals(t *testing.T) {
 				"    2020-01-01 to 2020-01-02, 2 steps: no pet from line 2"},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
-			r, err := readText(tt.src, tt.text)
-			if err == nil {
-				t.Fatalf("accepted: %+v", r)
-			}
-			if d := cmp.Diff(tt.want, err.Error()); d != "" {
-				t.Error(d)
-			}
-			if fe := (*fault.Error)(nil); !errors.As(err, &fe) {
-				t.Errorf("%T is not a fault.Error", err)
-			}
+			refused(t, tt.src, tt.text, tt.want)
 		})
 	}
 }
