@@ -254,7 +254,7 @@ func (k *sketch) study() *node {
 	root.entry("bands").value = bands
 	root.entry("options").value = k.options(root)
 	count := root.entry("count").value
-	on := bands.items[rapid.IntRange(0, len(bands.items)-1).Draw(k.t, "decide_on")].text1("name")
+	on := bands.items[rapid.IntRange(0, len(bands.items)-1).Draw(k.t, "decide_on")].textOf("name")
 	count.entries = slices.DeleteFunc(count.entries, func(e entry) bool { return e.key == "decide_on" })
 	if len(bands.items) > 1 || k.coin("decide_on") || len(count.entries) == 0 {
 		count.entries = append(count.entries, entry{key: "decide_on", value: word(on)})
@@ -297,7 +297,7 @@ func (k *sketch) bands(root *node) *node {
 				if b.entry(key) == nil {
 					return def
 				}
-				v, err := quantity.Parse(b.text1(key), kind)
+				v, err := quantity.Parse(b.textOf(key), kind)
 				if err != nil {
 					k.t.Fatal(err)
 				}
@@ -305,7 +305,7 @@ func (k *sketch) bands(root *node) *node {
 			}
 			s := slope.Slope{
 				Angle: number("angle", quantity.Angle, 0), Depth: number("slip_depth", quantity.Length, deepest), UnitWeight: number("unit_weight", quantity.UnitWeight, 0),
-				Friction: number("friction", quantity.Angle, 0), Cohesion: number("cohesion", quantity.Stress, 0), Standing: b.text1("flow") == "standing",
+				Friction: number("friction", quantity.Angle, 0), Cohesion: number("cohesion", quantity.Stress, 0), Standing: b.textOf("flow") == "standing",
 			}
 			return quantity.FormatNumber(s.FactorOfSafety(level - (deepest - s.Depth)))
 		}
@@ -404,14 +404,14 @@ func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool
 		}
 	}
 	if choice == "spacing" && k.coin("working_head") {
-		depth, err := quantity.Parse(m.text1("depth"), quantity.Length)
+		depth, err := quantity.Parse(m.textOf("depth"), quantity.Length)
 		if err != nil {
 			k.t.Fatal(err)
 		}
 		m.entries = append(m.entries, entry{key: "working_head", value: word(quantity.Format(depth/2, quantity.Length))})
 	}
 	if source >= 0 {
-		m.entries = append(m.entries, entry{key: likeField.name, value: word(above[source].text1("name"))})
+		m.entries = append(m.entries, entry{key: likeField.name, value: word(above[source].textOf("name"))})
 		for _, e := range above[source].entry(f.name).value.entries { // a list is given anew
 			if e.value.is == listNode {
 				k.plant(m, e.key, func() *node { return draw(e.key) })

@@ -23,11 +23,11 @@ func expandOptions(root *node, found *problems) {
 	}
 	x := &expander{problems: found, places: map[string]int{}}
 	marked := slices.ContainsFunc(list.value.items, func(item *node) bool {
-		return item != nil && item.text1("baseline") == "true"
+		return item != nil && item.textOf("baseline") == "true"
 	})
 	for _, item := range list.value.items {
 		if item != nil && item.is == blockNode {
-			x.names = append(x.names, item.text1("name"))
+			x.names = append(x.names, item.textOf("name"))
 		}
 	}
 	var items []*node
@@ -65,8 +65,8 @@ func (n *node) entry(key string) *entry {
 	return nil
 }
 
-// text1 is the text of a key, "" where there is none.
-func (n *node) text1(key string) string {
+// textOf is the text of a key, "" where there is none.
+func (n *node) textOf(key string) string {
 	if e := n.entry(key); e != nil && e.value != nil && e.value.is == textNode {
 		return e.value.text
 	}
@@ -129,7 +129,7 @@ func measureFields(key string) (fields []field, like bool) {
 
 // written resolves every like of an option.
 func (x *expander) written(item *node) writtenOption {
-	o := writtenOption{name: item.text1("name"), from: map[string]string{}}
+	o := writtenOption{name: item.textOf("name"), from: map[string]string{}}
 	copied := *item
 	copied.entries = slices.Clone(item.entries)
 	o.item = &copied
@@ -283,14 +283,14 @@ func (x *expander) perValue(item *node) []*node {
 	first := item.entries[spots[0].measure].value.entries[spots[0].key]
 	refuse := func(p Place, format string, args ...any) []*node {
 		x.add(p, format, args...)
-		return []*node{with(item, spots[0], nil, item.text1("name"))}
+		return []*node{with(item, spots[0], nil, item.textOf("name"))}
 	}
 	if len(spots) > 1 {
 		second := item.entries[spots[1].measure].value.entries[spots[1].key]
-		bare := with(item, spots[0], nil, item.text1("name"))
+		bare := with(item, spots[0], nil, item.textOf("name"))
 		x.add(x.at(second.line, second.col, item.entries[spots[1].measure].key, second.key), "%s has a list already; an option has one list at most, so write an option for each value of one of them", first.key)
 		for _, s := range spots[1:] {
-			bare = with(bare, s, nil, item.text1("name"))
+			bare = with(bare, s, nil, item.textOf("name"))
 		}
 		return []*node{bare}
 	}
@@ -301,7 +301,7 @@ func (x *expander) perValue(item *node) []*node {
 	case n > mostValues:
 		return refuse(at, "the list has %d values; at most %d make an option each", n, mostValues)
 	}
-	if mark := item.entry("baseline"); mark != nil && item.text1("baseline") == "true" && len(first.value.items) > 1 {
+	if mark := item.entry("baseline"); mark != nil && item.textOf("baseline") == "true" && len(first.value.items) > 1 {
 		return refuse(x.at(mark.line, mark.col, mark.key), "the list of %s makes several options, and only one can be the baseline; mark another one", first.key)
 	}
 	if e := item.entry("name"); e != nil && e.value != nil && e.value.is == textNode && checkName(e.value.text) != "" {
@@ -326,7 +326,7 @@ func (x *expander) perValue(item *node) []*node {
 			x.add(x.at(v.line, v.col, measure, first.key), "%s is %s in other words; keep one of them", quoted(v.text), quoted(seen[sameValue(v.text, &field.shape)]))
 		default:
 			seen[sameValue(v.text, &field.shape)] = v.text
-			name := madeName(item.text1("name"), first.key, v.text)
+			name := madeName(item.textOf("name"), first.key, v.text)
 			if utf8.RuneCountInString(name) > utf8.RuneCountInString(longest) {
 				longest = name
 			}
@@ -337,7 +337,7 @@ func (x *expander) perValue(item *node) []*node {
 		return refuse(x.at(e.line, e.col, e.key), "with its value the name of an option of the list has %d characters, as in %s; a name has at most %d, so shorten it", n, strconv.Quote(longest), longestName)
 	}
 	if len(made) == 0 {
-		return []*node{with(item, spots[0], nil, item.text1("name"))}
+		return []*node{with(item, spots[0], nil, item.textOf("name"))}
 	}
 	return made
 }
