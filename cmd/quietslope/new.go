@@ -10,6 +10,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"syscall"
 	"unicode/utf8"
@@ -116,12 +117,13 @@ func writeStarter(ctx context.Context, dir string, force bool) (err error) {
 	return err
 }
 
-// alreadyThere refuses a folder that holds any of the files.
+// alreadyThere refuses a folder that holds any of the files. It looks for the last first: where another run is placing
+// them, those before it are then there too.
 func alreadyThere(dir string) error {
 	var there []string
-	for _, name := range starterFiles {
+	for _, name := range slices.Backward(starterFiles) {
 		if _, err := os.Lstat(inFolder(dir, name)); err == nil {
-			there = append(there, name)
+			there = slices.Insert(there, 0, name)
 		}
 	}
 	if there == nil {
