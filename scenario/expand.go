@@ -307,25 +307,28 @@ func (x *expander) perValue(item *node) []*node {
 	if e := item.entry("name"); e != nil && e.value != nil && e.value.is == textNode && checkName(e.value.text) != "" {
 		return []*node{with(item, spots[0], first.value.items[0], e.value.text)} // so that the name is refused as it is written
 	}
-	if hint := x.withoutUnit(measure, &first); hint != "" {
+	fields, _ := measureFields(measure)
+	number := &fields[slices.IndexFunc(fields, func(f field) bool { return f.name == first.key })].shape // lists found it
+	if hint := x.withoutUnit(number, first.value.items); hint != "" {
 		return refuse(at, "%s", hint)
 	}
 	var made []*node
-	fields, _ := measureFields(measure)
-	field := fields[slices.IndexFunc(fields, func(f field) bool { return f.name == first.key })] // lists found it
-	seen := map[string]string{}                                                                  // texts, by value
+	seen := map[string]string{} // texts, by value
 	longest := ""
 	for _, v := range first.value.items {
-		switch {
-		case v == nil: // reported
+		if v == nil { // reported
+			continue
+		}
+		place, value := x.at(v.line, v.col, measure, first.key), sameValue(v.text, number)
+		switch twin := seen[value]; {
 		case v.is != textNode:
-			x.add(x.at(v.line, v.col, measure, first.key), "a value is wanted in this list, such as [8 m, 12 m]")
-		case seen[sameValue(v.text, &field.shape)] == v.text:
-			x.add(x.at(v.line, v.col, measure, first.key), "%s stands twice in this list; keep one of them", quoted(v.text))
-		case seen[sameValue(v.text, &field.shape)] != "":
-			x.add(x.at(v.line, v.col, measure, first.key), "%s is %s in other words; keep one of them", quoted(v.text), quoted(seen[sameValue(v.text, &field.shape)]))
+			x.add(place, "a value is wanted in this list, such as [8 m, 12 m]")
+		case twin == v.text:
+			x.add(place, "%s stands twice in this list; keep one of them", quoted(v.text))
+		case twin != "":
+			x.add(place, "%s is %s in other words; keep one of them", quoted(v.text), quoted(twin))
 		default:
-			seen[sameValue(v.text, &field.shape)] = v.text
+			seen[value] = v.text
 			name := madeName(item.textOf("name"), first.key, v.text)
 			if utf8.RuneCountInString(name) > utf8.RuneCountInString(longest) {
 				longest = name
@@ -356,15 +359,13 @@ func sameValue(text string, s *shape) string {
 
 // withoutUnit says what to write for a list of quantities of which some have no unit, as in [8, 12, 24 m], and "" for any
 // other.
-func (x *expander) withoutUnit(measure string, list *entry) string {
-	fields, _ := measureFields(measure)
-	f := slices.IndexFunc(fields, func(f field) bool { return f.name == list.key })
-	if f < 0 || fields[f].shape.form != formQuantity || fields[f].shape.bare != "" || fields[f].shape.kind == quantity.Share {
+func (x *expander) withoutUnit(number *shape, items []*node) string {
+	kind := number.kind
+	if number.form != formQuantity || number.bare != "" || kind == quantity.Share {
 		return ""
 	}
-	kind := fields[f].shape.kind
 	unit, bare := kind.Unit(), 0
-	for _, v := range list.value.items {
+	for _, v := range items {
 		if v == nil || v.is != textNode || !strings.ContainsFunc(v.text, isDigit) {
 			return ""
 		}
@@ -374,7 +375,7 @@ func (x *expander) withoutUnit(measure string, list *entry) string {
 	}
 	var right, joined []string // with a unit each; with the parts of a number that a decimal comma cut in two put together
 	whole := ""
-	for _, v := range list.value.items {
+	for _, v := range items {
 		text := v.text
 		cut := false
 		if _, err := quantity.ParseNumber(text); err == nil {
