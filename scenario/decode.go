@@ -199,11 +199,11 @@ func (d *decoder) unknownKey(at Place, key, path string, fields []field) string 
 	case len(elsewhere) > 0:
 		here := ""
 		if len(known) <= 8 {
-			here = "; the keys here are " + joinWords(known, "and")
+			here = "; the keys here are " + fault.Words(known, "and")
 		}
-		d.add(at, "this key does not belong here; it stands under %s%s", joinWords(elsewhere, "or"), here)
+		d.add(at, "this key does not belong here; it stands under %s%s", fault.Words(elsewhere, "or"), here)
 	default:
-		d.add(at, "unknown key; the keys here are %s", joinWords(known, "and"))
+		d.add(at, "unknown key; the keys here are %s", fault.Words(known, "and"))
 	}
 	return near
 }
@@ -226,13 +226,13 @@ func (d *decoder) unknownSetting(at Place, key string, known []string) string {
 	case strings.HasSuffix(key, "thickness"):
 		d.add(at, "a thickness cannot be set, because levels and drains hang on it; write a study of its own for it")
 	case len(begins) > 0:
-		d.add(at, "set names each number in one word; write %s", joinWords(begins, "or"))
+		d.add(at, "set names each number in one word; write %s", fault.Words(begins, "or"))
 	case len(ends) > 0:
-		d.add(at, "unknown key; did you mean %s?", joinWords(ends, "or"))
+		d.add(at, "unknown key; did you mean %s?", fault.Words(ends, "or"))
 	case near != "":
-		d.add(at, "unknown key; did you mean %s? The keys of set are %s", near, joinWords(known, "and"))
+		d.add(at, "unknown key; did you mean %s? The keys of set are %s", near, fault.Words(known, "and"))
 	default:
-		d.add(at, "unknown key; the keys of set are %s", joinWords(known, "and"))
+		d.add(at, "unknown key; the keys of set are %s", fault.Words(known, "and"))
 	}
 	return near
 }
@@ -280,7 +280,7 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 				v.text, v.word = n.text, true
 				return v
 			}
-			return bad("%s is neither %s nor a block such as %s", quoted(n.text), joinWords(s.words, "nor"), blockForm(s))
+			return bad("%s is neither %s nor a block such as %s", quoted(n.text), fault.Words(s.words, "nor"), blockForm(s))
 		case n.is == textNode:
 			if hint := noBlank(n.text); hint != "" {
 				return bad("%s", hint)
@@ -308,7 +308,7 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 	switch n.is {
 	case blockNode:
 		if len(s.later) > 0 {
-			return bad("%s other than %s is not supported yet", lastOf(key), joinWords(s.words, "or"))
+			return bad("%s other than %s is not supported yet", lastOf(key), fault.Words(s.words, "or"))
 		}
 		return bad("one value is wanted here, not a block of keys")
 	case listNode:
@@ -458,7 +458,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 			return v
 		}
 		if slices.Contains(s.later, n.text) {
-			return bad("%s: %s is not supported yet; write %s", lastOf(at.Key), n.text, joinWords(s.words, "or"))
+			return bad("%s: %s is not supported yet; write %s", lastOf(at.Key), n.text, fault.Words(s.words, "or"))
 		}
 	}
 	if s.cell && n.text != "" && strings.ContainsRune(formulaSigns, rune(n.text[0])) {
@@ -507,7 +507,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 	}
 	if err != nil {
 		if len(s.words) > 0 && !strings.ContainsFunc(n.text, unicode.IsDigit) {
-			return bad("%v, or %s", err, joinWords(s.words, "or"))
+			return bad("%v, or %s", err, fault.Words(s.words, "or"))
 		}
 		if m := shareAndWord.FindStringSubmatch(n.text); m != nil && strings.HasPrefix(at.Key, "conditions[") {
 			if x, err := quantity.Parse(m[1], quantity.Share); err == nil && x >= 0 && x <= 1 {
@@ -596,7 +596,7 @@ func (s *shape) meantWord(text string) string {
 	if len(words) == 5 && words[0] == "yes" { // true and false are read too, but nobody needs to know
 		words = words[:3]
 	}
-	return joinWords(words, "or")
+	return fault.Words(words, "or")
 }
 
 // monthNamed returns the month of an English name in any case, and 0 for any other text.

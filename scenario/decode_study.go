@@ -233,7 +233,7 @@ func quotedWords(names []string, last string) string {
 		}
 		list = append(list, quoted(n))
 	}
-	return joinWords(list, last)
+	return fault.Words(list, last)
 }
 
 func (d *decoder) declared(s *Study, b *blockValue) {

@@ -4,6 +4,7 @@ import (
 	"slices"
 	"strings"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
 )
 
@@ -61,12 +62,12 @@ func (k KeyDoc) Written() string {
 	case k.Form == "word" && len(k.Words) == 1:
 		return k.Words[0] + ", and no other yet"
 	case k.Form == "word":
-		text = joinWords(k.Words, "or")
+		text = fault.Words(k.Words, "or")
 	case k.Range != "":
 		text += " " + k.Range
 	}
 	if k.Form != "word" && len(k.Words) > 0 {
-		text += ", or " + joinWords(k.Words, "or")
+		text += ", or " + fault.Words(k.Words, "or")
 	}
 	if k.List {
 		text += ", or a list"
@@ -102,7 +103,7 @@ func laterKeys(keys []string, fields []field, path string) []string {
 		case f.later:
 			keys = append(keys, key)
 		case len(f.shape.later) > 0:
-			keys = append(keys, key+" as "+joinWords(f.shape.later, "or"))
+			keys = append(keys, key+" as "+fault.Words(f.shape.later, "or"))
 		}
 		keys = laterKeys(keys, f.shape.fields, inside(key, &f.shape))
 	}

@@ -78,11 +78,3 @@ func quoted(text string) string {
 	}
 	return strconv.Quote(text)
 }
-
-// joinWords joins words as "a, b or c".
-func joinWords(words []string, last string) string {
-	if len(words) < 2 {
-		return strings.Join(words, "")
-	}
-	return strings.Join(words[:len(words)-1], ", ") + " " + last + " " + words[len(words)-1]
-}

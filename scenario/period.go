@@ -159,18 +159,11 @@ func noCompleteYear(r *weather.Record, starts time.Month) error {
 	advice := "; give a longer record"
 	for m := time.January; m <= time.December; m++ {
 		if p := countYears(r, m); p.years > 0 {
-			advice = fmt.Sprintf("; give a longer record, or count.year_starts: %s, from which it holds %s", m, plural(p.years, "complete year"))
+			advice = fmt.Sprintf("; give a longer record, or count.year_starts: %s, from which it holds %s", m, fault.Count(p.years, "complete year"))
 			break
 		}
 	}
 	return &fault.Error{File: r.Name, Text: text + advice}
-}
-
-func plural(n int, what string) string {
-	if n == 1 {
-		return "1 " + what
-	}
-	return fmt.Sprintf("%d %ss", n, what)
 }
 
 // wholeYears finds the whole multiples of 12 months in the record from its first step: ends[k-1] is the first step after

@@ -10,6 +10,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/quantity"
 )
 
@@ -134,7 +135,7 @@ func (b *schemaBuilder) key(f *field, path string) object {
 	doc := docOf(f, path)
 	text := sentence(doc.Says) + " " + sentence("value: "+doc.Written())
 	if len(doc.Units) > 1 { // else the range shows it
-		text += " " + sentence("units: "+joinWords(doc.Units, "or"))
+		text += " " + sentence("units: "+fault.Words(doc.Units, "or"))
 	}
 	out := object{{"description", text}}
 	if def, ok := f.defaultValue(); ok {
@@ -216,7 +217,7 @@ func (b *schemaBuilder) quantity(s *shape) object {
 	wanted := "write " + s.kind.String() + atOrAbove[sign]
 	def := object{
 		{"type", "string"}, {"pattern", quantity.Pattern(s.kind, sign)},
-		{"errorMessage", wanted + " with its unit: " + joinWords(s.kind.Units(), "or")},
+		{"errorMessage", wanted + " with its unit: " + fault.Words(s.kind.Units(), "or")},
 	}
 	if s.kind != quantity.Share {
 		return b.ref(name, def)

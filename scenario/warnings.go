@@ -9,6 +9,7 @@ import (
 	"strings"
 	"time"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
 	"quietslope/scenario/weather"
 	"quietslope/stats"
@@ -249,9 +250,9 @@ func (p *prepared) groundWarnings(g *Ground, option string) warnings {
 func (p *prepared) recordWarnings(ws *warnings) {
 	switch n := p.counted.years; {
 	case n < fewYears:
-		ws.add(warn("record_short"), "%s counted: too few to compare options by counts. Find a longer record, at least %d years, and use this one for looking at levels only.", plural(n, "complete year"), shortRecordYears)
+		ws.add(warn("record_short"), "%s counted: too few to compare options by counts. Find a longer record, at least %d years, and use this one for looking at levels only.", fault.Count(n, "complete year"), shortRecordYears)
 	case n < shortRecordYears:
-		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", plural(n, "complete year"), shortRecordYears)
+		ws.add(warn("record_short"), "%s counted; at least %d are advised where rare levels matter. Do not read return periods beyond the record into the counts.", fault.Count(n, "complete year"), shortRecordYears)
 	}
 	if p.record.Monthly() {
 		soil := ""
@@ -269,7 +270,7 @@ func (p *prepared) recordWarnings(ws *warnings) {
 		ws.add(warn("implausible_weather"), "%s: %s. Every figure rests on it.", at, q.Text)
 	}
 	if p.replayer.warm.repeats {
-		ws.add(note("warm_up_repeats_record"), "The warm-up of %s is longer than the record, which was replayed from its beginning more than once to fill it.", plural(p.replayer.warm.years, "year"))
+		ws.add(note("warm_up_repeats_record"), "The warm-up of %s is longer than the record, which was replayed from its beginning more than once to fill it.", fault.Count(p.replayer.warm.years, "year"))
 	}
 }
 
@@ -292,10 +293,10 @@ func (p *prepared) gapWarnings(ws *warnings) {
 	}
 	var of, lost []string
 	if rain > 0 {
-		of, lost = append(of, plural(rain, "step")+" without a value of rain"), append(lost, "rain that fell and was not recorded is missing from every level")
+		of, lost = append(of, fault.Count(rain, "step")+" without a value of rain"), append(lost, "rain that fell and was not recorded is missing from every level")
 	}
 	if pet > 0 {
-		of, lost = append(of, plural(pet, "step")+" without a value of evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
+		of, lost = append(of, fault.Count(pet, "step")+" without a value of evapotranspiration"), append(lost, "without evapotranspiration levels are too high")
 	}
 	what := strings.Join(of, " and ")
 	if p.study.Weather.Gaps == weather.GapsZero {
@@ -305,7 +306,7 @@ func (p *prepared) gapWarnings(ws *warnings) {
 	}
 	if years := p.filledYears(); len(years) > 0 {
 		ws.add(warn("years_much_filled"), "Much of the rain is filled in %s: %s. A month there has fewer than %d days of measured rain, or more than %.0f %% of the year's days or rain are filled. Their events rest on it; complete these years, or cut the record.",
-			plural(len(years), "counted year"), firstOf(years, ", ", 8), leastValidDays, 100*mostFilled)
+			fault.Count(len(years), "counted year"), firstOf(years, ", ", 8), leastValidDays, 100*mostFilled)
 	}
 }
 
@@ -534,7 +535,7 @@ func (p *prepared) countWarnings(ws *warnings, options []optionFigures) {
 			switch {
 			case f.Events == 0 && f.DaysPerYear == 0:
 				ws.add(at, "None in %s, which does not mean that none can come: up to %s events a year fit this record at %s %%.",
-					plural(p.counted.years, "year"), strconv.FormatFloat(f.EventsPerYearCI[1], 'g', 2, 64), short(100*p.study.Count.Confidence))
+					fault.Count(p.counted.years, "year"), strconv.FormatFloat(f.EventsPerYearCI[1], 'g', 2, 64), short(100*p.study.Count.Confidence))
 			case f.Events == 0:
 				at.Code = "events_peak_outside"
 				ws.add(at, "Passed on %s d a year, in events that peak outside the counted years, so that none of them is counted. Read days and load.", short(math.Round(10*f.DaysPerYear)/10))
@@ -589,7 +590,7 @@ func (p *prepared) choiceWarnings(ws *warnings, options []optionFigures, against
 	if !passed {
 		w := warn("nothing_to_decide_on")
 		w.Band = band
-		ws.add(w, "No option's level rises above this band in the counted years, so the record cannot compare them on it. Make sure of the band's level; if it is right, read this as none in %s, and decide on a lower band.", plural(p.counted.years, "year"))
+		ws.add(w, "No option's level rises above this band in the counted years, so the record cannot compare them on it. Make sure of the band's level; if it is right, read this as none in %s, and decide on a lower band.", fault.Count(p.counted.years, "year"))
 		return
 	}
 	for i := range options {

@@ -43,7 +43,7 @@ Examples:
 				if near := fault.Nearest(shell, shells); near != "" {
 					return usagef(c.Command.Name, "unknown shell %q; did you mean %s?", shell, near)
 				}
-				return usagef(c.Command.Name, "unknown shell %q; use %s", shell, orWords(shells))
+				return usagef(c.Command.Name, "unknown shell %q; use %s", shell, fault.Words(shells, "or"))
 			}
 			script, err := shellScripts.ReadFile("shell/completion." + shell)
 			if err != nil {

@@ -115,11 +115,11 @@ func formatNamed(c *cli.Context) (format, error) {
 	case !c.IsSet(flagFormat): // a command without the option
 		return formats[0], nil
 	case name == "":
-		return format{}, usagef(c.Command.Name, "--format needs a value; use %s", orWords(formatNames()))
+		return format{}, usagef(c.Command.Name, "--format needs a value; use %s", fault.Words(formatNames(), "or"))
 	case near != "":
 		return format{}, usagef(c.Command.Name, "unknown format %q; did you mean %s?", name, near)
 	}
-	return format{}, usagef(c.Command.Name, "unknown format %q; use %s", name, orWords(formatNames()))
+	return format{}, usagef(c.Command.Name, "unknown format %q; use %s", name, fault.Words(formatNames(), "or"))
 }
 
 // loadStudy reads a study and makes sure that the result would replace neither it nor its weather.

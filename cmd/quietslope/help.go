@@ -228,13 +228,6 @@ func writeUnits(b *strings.Builder, docs []scenario.KeyDoc) {
 	}
 }
 
-func orWords(words []string) string {
-	if len(words) < 2 {
-		return strings.Join(words, "")
-	}
-	return strings.Join(words[:len(words)-1], ", ") + " or " + words[len(words)-1]
-}
-
 // wrap breaks a text at blanks into lines of helpWidth. Blanks at its beginning stay; the later lines begin with below.
 func wrap(text, below string) string {
 	var b strings.Builder

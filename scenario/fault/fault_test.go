@@ -77,3 +77,17 @@ func TestNearest(t *testing.T) {
 		}
 	}
 }
+
+func TestWords(t *testing.T) {
+	for _, tt := range []struct {
+		words []string
+		want  string
+	}{{nil, ""}, {[]string{"a"}, "a"}, {[]string{"a", "b"}, "a or b"}, {[]string{"a", "b", "c"}, "a, b or c"}} {
+		if got := Words(tt.words, "or"); got != tt.want {
+			t.Errorf("%q gives %q, want %q", tt.words, got, tt.want)
+		}
+	}
+	if got := Count(0, "step") + ", " + Count(1, "step") + ", " + Count(2, "step"); got != "0 steps, 1 step, 2 steps" {
+		t.Error(got)
+	}
+}

@@ -6,6 +6,8 @@ import (
 	"math"
 	"slices"
 	"time"
+
+	"quietslope/scenario/fault"
 )
 
 // Audit is what a person should look at before trusting a record.
@@ -500,7 +502,7 @@ func (a *auditor) suspicious() []Suspicious {
 	}
 	for _, k := range kinds {
 		f := *rest[k]
-		f.text = fmt.Sprintf("%s of the kind %s between these times", count(seen[k]-mostFindings, "more finding"), k)
+		f.text = fmt.Sprintf("%s of the kind %s between these times", fault.Count(seen[k]-mostFindings, "more finding"), k)
 		list(f)
 	}
 	return out

@@ -4,8 +4,9 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strings"
 	"time"
+
+	"quietslope/scenario/fault"
 )
 
 // Gaps says what becomes of steps that have no value: a missing code in a column, or rows that are not there.
@@ -119,7 +120,7 @@ func (r *reader) fillColumn(rec *Record, column string, x []float64) {
 		}
 	}
 	if len(without) > 0 {
-		r.problem(0, column, "no %s of the record has a value, so gaps there have no mean to be filled with; %s", orList(without), r.wayOut())
+		r.problem(0, column, "no %s of the record has a value, so gaps there have no mean to be filled with; %s", fault.Words(without, "or"), r.wayOut())
 		return
 	}
 	eachMonth(rec, func(m, i int, length float64) {
@@ -127,14 +128,6 @@ func (r *reader) fillColumn(rec *Record, column string, x []float64) {
 			x[i] = means[m].over(length)
 		}
 	})
-}
-
-// orList writes names as a sentence does: a, b or c.
-func orList(names []string) string {
-	if n := len(names); n > 1 {
-		return strings.Join(names[:n-1], ", ") + " or " + names[n-1]
-	}
-	return names[0]
 }
 
 // monthMean is what fell, or was drawn, in the valid steps of one month of the year, all years together.

@@ -3,6 +3,8 @@ package weather
 import (
 	"slices"
 	"time"
+
+	"quietslope/scenario/fault"
 )
 
 // A record whose rows are a calendar month apart is placed by months: row.at and the times in series are then the number
@@ -114,9 +116,9 @@ func startOfMonth(n int64, in *time.Location) time.Time {
 
 func monthsText(n int64) string {
 	if n%12 == 0 {
-		return count(int(n/12), "year")
+		return fault.Count(int(n/12), "year")
 	}
-	return count(int(n), "month")
+	return fault.Count(int(n), "month")
 }
 
 // civil is a time by the clock of the first row, as if it were UTC.

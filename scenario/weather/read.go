@@ -439,7 +439,7 @@ func (r *reader) wrongWidth(line int) {
 	case len(r.fields) < r.width && r.ended:
 		hint = "; it is the last line: the file may have been cut off"
 	}
-	r.inRow(line, "", wrong("the row has %s where the header has %d"+hint, count(len(r.fields), "field"), r.width))
+	r.inRow(line, "", wrong("the row has %s where the header has %d"+hint, fault.Count(len(r.fields), "field"), r.width))
 }
 
 // value reads a number or a missing code.
@@ -526,13 +526,5 @@ func (k *kind) more() string {
 	case len(k.cells) > 1:
 		also = "; also " + quoteList(k.cells[1:])
 	}
-	return fmt.Sprintf(" (and in %s%s)", count(k.rows-1, "more "+k.noun), also)
-}
-
-// count writes a number with its noun.
-func count(n int, noun string) string {
-	if n == 1 {
-		return "1 " + noun
-	}
-	return fmt.Sprintf("%d %ss", n, noun)
+	return fmt.Sprintf(" (and in %s%s)", fault.Count(k.rows-1, "more "+k.noun), also)
 }

@@ -454,7 +454,7 @@ func TestManyProblems(t *testing.T) {
 			t.Fatal(err)
 		}
 		for _, l := range lines[:9] {
-			if !strings.HasSuffix(l, " (and in "+count(again, "more row")+")") {
+			if !strings.HasSuffix(l, " (and in "+fault.Count(again, "more row")+")") {
 				t.Error(l)
 			}
 		}

@@ -421,7 +421,7 @@ func (r *reader) end() error {
 func (r *reader) refuseGaps() {
 	r.endStretch(r.last + r.step)
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s without values, in %s; complete the record, ", count(int(r.gapSteps), "step"), count(r.gapCount, "gap"))
+	fmt.Fprintf(&b, "%s without values, in %s; complete the record, ", fault.Count(int(r.gapSteps), "step"), fault.Count(r.gapCount, "gap"))
 	if r.complete.to >= r.complete.from {
 		fmt.Fprintf(&b, "cut it to its longest stretch without gaps, %s to %s, ", r.timeText(r.complete.from), r.timeText(r.complete.to))
 	}
@@ -432,7 +432,7 @@ func (r *reader) refuseGaps() {
 	}
 	hinted := false
 	for _, g := range r.gaps {
-		fmt.Fprintf(&b, "\n    %s to %s, %s: ", r.timeText(g.from), r.timeText(g.to), count(int((g.to-g.from)/r.step+1), "step"))
+		fmt.Fprintf(&b, "\n    %s to %s, %s: ", r.timeText(g.from), r.timeText(g.to), fault.Count(int((g.to-g.from)/r.step+1), "step"))
 		switch {
 		case g.kind == rowsMissing:
 			fmt.Fprintf(&b, "no rows before line %d", g.line)
@@ -449,7 +449,7 @@ func (r *reader) refuseGaps() {
 		}
 	}
 	if more := r.gapCount - len(r.gaps); more > 0 {
-		fmt.Fprintf(&b, "\n    and %s", count(more, "more gap"))
+		fmt.Fprintf(&b, "\n    and %s", fault.Count(more, "more gap"))
 	}
 	r.problem(r.gaps[0].line, "", "%s", b.String())
 }
