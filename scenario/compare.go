@@ -361,7 +361,7 @@ func (p *prepared) bandFigure(b *Band, e *stats.Exceedance) result.BandFigure {
 	years, confidence := p.counted.years, p.study.Count.Confidence
 	f := result.BandFigure{
 		Name: b.Name, LevelM: b.Level,
-		Events: e.Count, EventsPerYear: float64(e.Count) / float64(years),
+		Events: int(e.Count), EventsPerYear: e.Count / float64(years), // one replay: the count is whole
 		DaysPerYear: stats.Mean(e.DaysByYear), DaysInBandPerYear: e.DaysInBand, AnnualProbability: stats.Mean(e.AnyByYear),
 		LongestDays: e.Longest, LoadMDaysPerYear: stats.Mean(e.LoadByYear), DaysByMonth: e.ByMonth,
 	}

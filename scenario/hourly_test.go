@@ -206,7 +206,7 @@ func TestHourlyStudy(t *testing.T) {
 			if count == 0 {
 				t.Errorf("option %d, band %d: nothing to count", k, band)
 			}
-			lo, hi := stats.PoissonInterval(count, years, 0.8)
+			lo, hi := stats.PoissonInterval(float64(count), years, 0.8)
 			if f.EventsPerYearCI[0] != lo || f.EventsPerYearCI[1] != hi {
 				t.Errorf("option %d, band %d: interval %v", k, band, f.EventsPerYearCI)
 			}

@@ -274,7 +274,7 @@ func TestCountWarnings(t *testing.T) {
 				e.YearsAbove++
 			}
 			e.AnyByYear = append(e.AnyByYear, above)
-			e.Count += int(events(y))
+			e.Count += events(y)
 		}
 		return f
 	}

@@ -33,15 +33,17 @@ type Event struct {
 // EventsByYear has each counted event, whole, in the year of its peak; the event may reach into other years. The
 // other yearly figures are of the steps above that start in the year, whatever their event. So there can be years
 // with steps above but without an event.
+//
+// Of one series the counts are whole numbers. Average gives the mean of several, and then they may have a fraction.
 type Exceedance struct {
-	Events []Event // of the whole series, in order of time, counted or not
-	Count  int     // counted events
+	Events []Event // of the whole series, in order of time, counted or not; nil in a mean of several
+	Count  float64 // counted events
 
 	EventsByYear []float64 // number of counted events
 	DaysByYear   []float64 // length of the steps above, d
 	LoadByYear   []float64 // sum of (level - threshold)*length over the steps above, m·d
 	AnyByYear    []float64 // 1 in a year with a step above, else 0: its mean is the annual probability
-	YearsAbove   int       // number of years with a step above
+	YearsAbove   float64   // number of years with a step above
 
 	DaysInBand float64     // length of the counted steps above the level and not above the next, d per year
 	ByMonth    [12]float64 // length of the counted steps above that start in each month, d per year; January first
@@ -161,7 +163,7 @@ func Exceed(levels []float64, cal *Calendar, th Threshold, apart float64) Exceed
 
 	for y, s := range byYear {
 		x.DaysByYear[y], x.LoadByYear[y] = s.days.total, s.load.total
-		x.YearsAbove += int(x.AnyByYear[y])
+		x.YearsAbove += x.AnyByYear[y]
 	}
 	if cal.Years > 0 {
 		t := float64(cal.Years)
@@ -171,7 +173,7 @@ func Exceed(levels []float64, cal *Calendar, th Threshold, apart float64) Exceed
 		}
 	}
 	if x.Count > 0 {
-		x.MeanSpan = allSpan.total / float64(x.Count)
+		x.MeanSpan = allSpan.total / x.Count
 		x.MeanExcess = allLoad.total / allDays.total
 	}
 	return x

@@ -15,11 +15,17 @@ import (
 // χ²(p; f) is the p-quantile of the chi-squared distribution with f degrees of freedom. Without an event lo = 0 and
 // hi = -ln(a)/T, which is 3.0/T at 90 %. Without a year nothing is known: lo = 0, hi = +Inf.
 //
-// Source: Garwood 1936, Biometrika 28:437-442.
-func PoissonInterval(events int, years, confidence float64) (lo, hi float64) {
+// A count that is the mean of several (see Average) may have a fraction. The same formula then takes it as it is, as
+// quantiles of gamma distributions of shape k and k+1: the limits rise without a step from those of one whole count
+// to those of the next, and keep the distance of a whole event between the two shapes, which is what makes them safe.
+// They are of one count: that the mean of several counts scatters less than one of them is not made use of.
+//
+// Source: Garwood 1936, Biometrika 28:437-442, for whole counts. With fractions it is the interval of Fay & Feuer 1997,
+// Statist. Med. 16:791-801, where every weight is one (from memory).
+func PoissonInterval(events, years, confidence float64) (lo, hi float64) {
 	a := tail(confidence)
-	if events < 0 {
-		panic("stats: negative number of events")
+	if !(events >= 0) {
+		panic("stats: number of events is not 0 or more")
 	}
 	if !(years > 0) {
 		return 0, math.Inf(1)
@@ -27,9 +33,8 @@ func PoissonInterval(events int, years, confidence float64) (lo, hi float64) {
 	if events == 0 {
 		return 0, -math.Log(a) / years
 	}
-	k := float64(events)
-	lo = distuv.ChiSquared{K: 2 * k}.Quantile(a) / 2
-	hi = distuv.ChiSquared{K: 2*k + 2}.Quantile(1-a) / 2
+	lo = distuv.ChiSquared{K: 2 * events}.Quantile(a) / 2
+	hi = distuv.ChiSquared{K: 2*events + 2}.Quantile(1-a) / 2
 	return lo / years, hi / years
 }
 
@@ -40,27 +45,31 @@ func PoissonInterval(events int, years, confidence float64) (lo, hi float64) {
 // B(p; ...) is the p-quantile of the beta distribution. With k = 0 it is [0, 1 - a^(1/n)], with k = n its mirror
 // [a^(1/n), 1], and with n = 0 nothing is known: [0, 1].
 //
-// Source: Clopper & Pearson 1934, Biometrika 26:404-413.
-func BinomialInterval(k, n int, confidence float64) (lo, hi float64) {
+// As in PoissonInterval, k may be a mean of several numbers and have a fraction; the limits then lie between those of
+// the whole numbers on either side.
+//
+// Source: Clopper & Pearson 1934, Biometrika 26:404-413, for whole k. Korn & Graubard 1998, Survey Methodology
+// 24:193-201, put numbers with a fraction into the same quantiles (from memory).
+func BinomialInterval(k float64, n int, confidence float64) (lo, hi float64) {
 	a := tail(confidence)
-	if k < 0 || k > n {
+	if !(k >= 0 && k <= float64(n)) {
 		panic("stats: k is not between 0 and n")
 	}
 	lo, hi = 0, 1
-	x, y := float64(k), float64(n-k)
+	rest := float64(n) - k
 	switch {
 	case k == 0:
-	case k == n:
-		lo = math.Pow(a, 1/x)
+	case rest == 0:
+		lo = math.Pow(a, 1/k)
 	default:
-		lo = distuv.Beta{Alpha: x, Beta: y + 1}.Quantile(a)
+		lo = distuv.Beta{Alpha: k, Beta: rest + 1}.Quantile(a)
 	}
 	switch {
-	case k == n:
+	case rest == 0:
 	case k == 0:
-		hi = -math.Expm1(math.Log(a) / y)
+		hi = -math.Expm1(math.Log(a) / rest)
 	default:
-		hi = distuv.Beta{Alpha: x + 1, Beta: y}.Quantile(1 - a)
+		hi = distuv.Beta{Alpha: k + 1, Beta: rest}.Quantile(1 - a)
 	}
 	return lo, hi
 }
