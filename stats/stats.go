@@ -5,6 +5,9 @@
 // year. PoissonInterval, BinomialInterval and Resamples.Interval say how far such figures can be trusted on a record
 // of that length. Resamples.Compare sets one series against another in the same years.
 //
+// Average makes one exceedance of those of several replays before the second step, and Losses puts a price on what
+// Exceed found. What is done with money over the years is in stats/money.
+//
 // Lengths of time are days, rates are per year, and levels have whatever unit the caller gives them; the comments say
 // m. A confidence is a share strictly between 0 and 1. Arguments that no data can cause, such as slices of different
 // lengths or a confidence of 1.5, are mistakes of the caller and panic; an empty series, no year or no resample is

@@ -24,9 +24,10 @@ func TestImportsPointOneWay(t *testing.T) {
 		"quietslope/cascade/slope":     {},
 		"quietslope/cascade/soil":      {},
 		"quietslope/stats":             {},
+		"quietslope/stats/money":       {"quietslope/stats"},
 	}
 	pure := []string{"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/scheme", "quietslope/cascade/slope",
-		"quietslope/cascade/soil", "quietslope/stats"}
+		"quietslope/cascade/soil", "quietslope/stats", "quietslope/stats/money"}
 
 	out, err := exec.Command("go", "list", "-f", `{{.ImportPath}} {{join .Imports " "}}`, "quietslope/...").Output()
 	if err != nil {
