@@ -13,6 +13,12 @@
 // negative balance, and the demand that it cannot meet. Between the storages at which an outlet begins to flow or
 // reaches its ceiling the equations are linear with constant coefficients, so each step is advanced with the
 // exponential solution, not with a stepping formula: one step gives what any number of shorter ones give.
+//
+// One drain of the cover may carry a flow with the square of the storage above its invert beside the linear one, as
+// Hooghoudt's equation of parallel drains has it (S. B. Hooghoudt 1940, Versl. Landbouwk. Onderz. 46(14), from memory) and,
+// without a linear part, the nonlinear reservoir Q = a*S^n with n = 2 (V. T. Chow, D. R. Maidment & L. W. Mays 1988, Applied
+// Hydrology, from memory). Above that invert S1 follows a Riccati equation with constant coefficients, which has a closed
+// solution too; what it makes of S2 is integrated by Gauss's formula to the last digits but a few. See curve.
 package cascade
 
 import (
@@ -24,6 +30,7 @@ import (
 // Limits of what can be replayed. They are far outside anything physical; they keep the arithmetic finite.
 const (
 	maxRate    = 1e6  // 1/d
+	maxSquare  = 1e6  // 1/(mm d)
 	maxStorage = 1e9  // mm
 	maxFlux    = 1e12 // mm/d
 	maxDays    = 1e4  // length of a step
@@ -32,17 +39,22 @@ const (
 
 // Outlet is one way out of a store. At storage S it carries
 //
-//	q(S) = min(Rate*max(0, S-Invert), Ceiling)    mm/d
+//	q(S) = min(Rate*u + Square*u^2, Ceiling),  u = max(0, S-Invert)    mm/d
 type Outlet struct {
 	Rate    float64 // 1/d, 0 to 1e6
 	Invert  float64 // storage below which nothing flows, mm, >= 0
 	Ceiling float64 // largest flow, mm/d, >= 0; +Inf for none
+	Square  float64 // 1/(mm d), 0 to 1e6; above 0 only for one drain of the cover, without a ceiling
 }
 
 // Flow returns what the outlet carries at a storage in mm, in mm/d.
 func (o Outlet) Flow(storage float64) float64 {
-	return min(o.Rate*max(0, storage-o.Invert), o.Ceiling)
+	u := max(0, storage-o.Invert)
+	return min(u*(o.Rate+o.Square*u), o.Ceiling)
 }
+
+// flows tells whether the outlet carries anything at any storage.
+func (o Outlet) flows() bool { return (o.Rate > 0 || o.Square > 0) && o.Ceiling > 0 }
 
 // Store is one of the two stores.
 type Store struct {
@@ -72,6 +84,7 @@ func (m Model) Check() error {
 	add(m.Cover.check("cover"))
 	add(m.Percolation.check("percolation"))
 	add(m.Deep.check("deep store"))
+	add(m.checkSquares())
 	add(within("lateral inflow", m.Lateral, maxFlux, "mm/d"))
 	if len(errs) > 0 {
 		return errors.Join(errs...)
@@ -110,8 +123,37 @@ func (o Outlet) check(name string) error {
 	if err := within(name+": invert", o.Invert, maxStorage, "mm"); err != nil {
 		return err
 	}
+	if err := within(name+": square", o.Square, maxSquare, "/(mm d)"); err != nil {
+		return err
+	}
 	if !(o.Ceiling >= 0) {
 		return fmt.Errorf("%s: ceiling %v mm/d is not 0 or more", name, o.Ceiling)
+	}
+	if o.Square > 0 && !math.IsInf(o.Ceiling, 1) {
+		return fmt.Errorf("%s: square %v /(mm d) with a ceiling of %v mm/d; only an outlet without a ceiling can have a square", name, o.Square, o.Ceiling)
+	}
+	return nil
+}
+
+// checkSquares reports a square where there can be none, and more than one.
+func (m Model) checkSquares() error {
+	if s := m.Percolation.Square; s > 0 {
+		return fmt.Errorf("percolation: square %v /(mm d); only a drain of the cover can have one", s)
+	}
+	for i, d := range m.Deep.Drains {
+		if d.Square > 0 {
+			return fmt.Errorf("deep store: drain %d: square %v /(mm d); only a drain of the cover can have one", i+1, d.Square)
+		}
+	}
+	first := 0
+	for i, d := range m.Cover.Drains {
+		if !(d.Square > 0) {
+			continue
+		}
+		if first > 0 {
+			return fmt.Errorf("cover: drains %d and %d have a square; only one can", first, i+1)
+		}
+		first = i + 1
 	}
 	return nil
 }
@@ -130,7 +172,7 @@ func drains(s Store, outlets []Outlet) bool {
 		return true
 	}
 	for _, o := range outlets {
-		if o.Rate > 0 && o.Ceiling > 0 {
+		if o.flows() {
 			return true
 		}
 	}

@@ -619,6 +619,12 @@ func TestFlow(t *testing.T) {
 			t.Errorf("Flow(%v) = %v, want %v", tt.s, got, tt.want)
 		}
 	}
+	o = cascade.Outlet{Rate: 0.5, Square: 0.25, Invert: 10, Ceiling: none}
+	for _, tt := range []struct{ s, want float64 }{{0, 0}, {10, 0}, {12, 2}, {18, 20}} {
+		if got := o.Flow(tt.s); got != tt.want {
+			t.Errorf("Flow(%v) with a square = %v, want %v", tt.s, got, tt.want)
+		}
+	}
 }
 
 func TestCheck(t *testing.T) {
@@ -648,6 +654,18 @@ func TestCheck(t *testing.T) {
 		{"no capacity", func(m *cascade.Model) { m.Cover.Capacity = 0 }, "cover: capacity 0 mm"},
 		{"NaN capacity", func(m *cascade.Model) { m.Deep.Capacity = nan }, "deep store: capacity NaN mm"},
 		{"absurd capacity", func(m *cascade.Model) { m.Deep.Capacity = 1e12 }, "deep store: capacity"},
+		{"negative square", func(m *cascade.Model) { m.Cover.Drains[0].Square = -1 }, "cover: drain 1: square -1 /(mm d) is not between 0 and"},
+		{"NaN square", func(m *cascade.Model) { m.Cover.Drains[0].Square = nan }, "cover: drain 1: square NaN /(mm d)"},
+		{"endless square", func(m *cascade.Model) { m.Cover.Drains[0].Square = none }, "cover: drain 1: square +Inf /(mm d)"},
+		{"absurd square", func(m *cascade.Model) { m.Cover.Drains[0].Square = 1.1e6 }, "cover: drain 1: square 1.1e+06 /(mm d)"},
+		{"square and ceiling", func(m *cascade.Model) { m.Cover.Drains[0].Square = 1 }, "cover: drain 1: square 1 /(mm d) with a ceiling of 3 mm/d"},
+		{"square of percolation", func(m *cascade.Model) { m.Percolation.Square = 1 }, "percolation: square 1 /(mm d); only a drain of the cover"},
+		{"square in the deep store", func(m *cascade.Model) {
+			m.Deep.Drains = append(m.Deep.Drains, cascade.Outlet{Square: 1, Ceiling: none})
+		}, "deep store: drain 2: square 1 /(mm d); only a drain of the cover"},
+		{"two squares", func(m *cascade.Model) {
+			m.Cover.Drains = append(m.Cover.Drains, cascade.Outlet{Square: 1, Ceiling: none}, cascade.Outlet{Rate: 1, Square: 1, Ceiling: none})
+		}, "cover: drains 2 and 3 have a square; only one can"},
 		{"negative lateral", func(m *cascade.Model) { m.Lateral = -1 }, "lateral inflow -1 mm/d"},
 		{"endless lateral", func(m *cascade.Model) { m.Lateral = none }, "lateral inflow +Inf"},
 		{"too many drains", func(m *cascade.Model) { m.Cover.Drains = make([]cascade.Outlet, 101) }, "101 drains"},

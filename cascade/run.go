@@ -10,6 +10,9 @@ const (
 	// maxSegments is the number of segments in one step beyond which something is wrong with this package: the cover
 	// passes each of its segments at most once in a step and the deep store at most twice.
 	maxSegments = 1000
+	// maxParts is the same for the parts into which segments are cut where the cover has a drain with a square. Between two
+	// events there are at most some hundred.
+	maxParts = 200 * maxSegments
 	// keptLengths is the number of different step lengths whose transitions are kept; months need four.
 	keptLengths = 8
 	// block is the number of steps that are added up plainly before they go into the compensated sums.
@@ -37,6 +40,7 @@ type Run struct {
 type table struct {
 	days  float64
 	pairs []transition
+	lags  []lag // for pairs in which the cover has a drain with a square
 }
 
 // NewRun returns a replay that starts at the given storages, in mm. It fails when the model cannot be replayed (see
@@ -132,8 +136,12 @@ func (r *Run) table(days float64) *table {
 	t.days = days
 	if t.pairs == nil {
 		t.pairs = make([]transition, len(r.cover.base)*len(r.deep.base))
+		if r.cover.curved() {
+			t.lags = make([]lag, len(t.pairs))
+		}
 	}
 	clear(t.pairs)
+	clear(t.lags)
 	return t
 }
 
@@ -143,9 +151,10 @@ func (r *Run) pair() pair {
 	p := pair{
 		base1: r.cover.base[i], width1: r.cover.width[i], flow1: r.cover.total[i].at, rate1: r.cover.total[i].rate,
 		base2: r.deep.base[j], width2: r.deep.width[j], rate2: r.deep.total[j].rate,
-		perc:  r.cover.outlets[percolation][i].rate,
-		b:     r.lateral + r.cover.outlets[percolation][i].at - r.deep.total[j].at,
-		held1: i >= r.cover.full, held2: j >= r.deep.full,
+		perc:    r.cover.outlets[percolation][i].rate,
+		b:       r.lateral + r.cover.outlets[percolation][i].at - r.deep.total[j].at,
+		square1: r.cover.total[i].square,
+		held1:   i >= r.cover.full, held2: j >= r.deep.full,
 	}
 	return p
 }
@@ -180,6 +189,9 @@ func (r *Run) glide(t *table, perDay float64, depths, cover, deep []float64) int
 	case r.cover.empty:
 		most = 0
 	}
+	if p.square1 > 0 {
+		return r.glideCurved(t, &p, perDay, depths, cover, deep)
+	}
 	c := *r.transition(t, &p)
 	constant := c.f2 * p.b
 	u1, u2 := r.u1, r.u2
@@ -210,6 +222,7 @@ func (r *Run) glide(t *table, perDay float64, depths, cover, deep []float64) int
 	r.sums.in.add(sum)
 	r.count(&p, steps*t.days,
 		c.f1*sum1+c.g1*a,
+		0,
 		c.f2*sum2+c.g2*p.b*steps+c.h2*sum1+c.h3*a,
 		a*t.days)
 	return n
@@ -221,6 +234,9 @@ func (r *Run) glide(t *table, perDay float64, depths, cover, deep []float64) int
 // endless exchange between two segments impossible, whatever the rounding.
 //
 // Events that fall together, or closer than the times can be told apart, follow each other after a time of zero.
+//
+// Where the cover has a drain with a square its segment is passed in parts that are short enough for the quadrature of
+// [curve]; the end of a part is not an event.
 func (r *Run) walk(t *table, rate float64) error {
 	if !(math.Abs(rate) <= maxFlux) {
 		return fmt.Errorf("net input of %v mm/d", rate)
@@ -228,7 +244,7 @@ func (r *Run) walk(t *table, rate float64) error {
 	way1 := r.startCover(rate)
 	way2 := r.startDeep()
 	left := t.days
-	for range maxSegments {
+	for events, parts := 0, 0; events < maxSegments && parts < maxParts; parts++ {
 		if err := r.enter(way1, way2); err != nil {
 			return err
 		}
@@ -236,43 +252,54 @@ func (r *Run) walk(t *table, rate float64) error {
 		a, speed := 0.0, 0.0 // speed is du1/dt
 		if !p.held1 {
 			a = rate - p.flow1
-			speed = a - p.rate1*r.u1
+			speed = a - r.u1*(p.rate1+p.square1*r.u1)
 		}
 
 		h, event := left, stepEnds
-		if s := r.coverLeaves(&p, way1, rate); s <= h {
+		var bent curve
+		if p.square1 > 0 {
+			bent = p.curve(r.u1, a)
+			if bent.rests() {
+				r.u1, speed = min(bent.u, p.width1), 0
+			} else if s := bent.part(); s < h {
+				h, event = s, partEnds
+			}
+		}
+		if s := r.coverLeaves(&p, &bent, way1, rate); s <= h {
 			h, event = s, coverLeaves
 		}
 		if p.held2 {
-			if s := r.letsGo(&p, way1, a, speed); s <= h {
+			if s := r.letsGo(&p, &bent, way1, a); s <= h {
 				h, event = s, deepLetsGo
 			}
 		} else if way1 != 0 && way2 != way1 {
-			if s := r.turns(&p, way1, speed); s <= h {
+			if s := r.turns(&p, &bent, way1, speed, h); s <= h {
 				h, event = s, deepTurns
 			}
 		}
-		c := r.over(t, &p, h)
-		next1 := c.e1*r.u1 + c.f1*a
-		next2 := c.e2*r.u2 + (c.f2*p.b + c.h1*r.u1 + c.h2*a)
-		if !p.held2 && (way2 > 0 && next2 > p.width2 || way2 < 0 && next2 < 0 && r.j > 0) {
+		next := r.over(t, &p, &bent, a, h)
+		if !p.held2 && (way2 > 0 && next.u2 > p.width2 || way2 < 0 && next.u2 < 0 && r.j > 0) {
 			target := 0.0
 			if way2 > 0 {
 				target = p.width2
 			}
-			h, event = p.crossing(r.u1, r.u2, a, target, h), deepLeaves
-			c = r.over(t, &p, h)
-			next1 = c.e1*r.u1 + c.f1*a
-			next2 = target
+			if p.square1 > 0 {
+				h = bent.crossing(&p, r.u2, target, h)
+			} else {
+				h = p.crossing(r.u1, r.u2, a, target, h)
+			}
+			event = deepLeaves
+			next = r.over(t, &p, &bent, a, h)
+			next.u2 = target
 		}
 		surplus := rate - p.flow1 // of a held cover
-		r.count(&p, h,
-			c.f1*r.u1+c.g1*a,
-			c.f2*r.u2+c.g2*p.b+c.h2*r.u1+c.h3*a,
-			surplus*h)
-		r.u1 = min(max(next1, 0), p.width1)
-		r.u2 = min(max(next2, 0), p.width2)
+		r.count(&p, h, next.volume1, next.squares1, next.volume2, surplus*h)
+		r.u1 = min(max(next.u1, 0), p.width1)
+		r.u2 = min(max(next.u2, 0), p.width2)
 
+		if event != partEnds {
+			events++
+		}
 		switch event {
 		case stepEnds:
 			return nil
@@ -298,18 +325,23 @@ func (r *Run) walk(t *table, rate float64) error {
 // What ends a part of a step.
 const (
 	stepEnds = iota
+	partEnds
 	coverLeaves
 	deepLeaves
 	deepTurns
 	deepLetsGo
 )
 
-// over returns the transition over a part of a step.
-func (r *Run) over(t *table, p *pair, h float64) transition {
-	if h == t.days {
-		return *r.transition(t, p)
+// over returns where the stores come to after a part of a step.
+func (r *Run) over(t *table, p *pair, bent *curve, a, h float64) motion {
+	if p.square1 > 0 {
+		return bent.move(p, r.u2, h)
 	}
-	return p.transition(h)
+	if h == t.days {
+		return r.transition(t, p).move(r.u1, r.u2, a, p.b)
+	}
+	c := p.transition(h)
+	return c.move(r.u1, r.u2, a, p.b)
 }
 
 // startCover lets go of a held cover whose balance has changed its sign, and returns the direction in which the cover
@@ -393,8 +425,8 @@ func (r *Run) enter(way1, way2 int) error {
 // coverLeaves returns the time after which the cover comes to the edge of its segment; +Inf for never.
 //
 // With y the distance still to go and v the speed at the edge, dy/dt = -v - rate1*y, so the edge is reached when
-// (exp(rate1*t) - 1)/rate1 = y/v.
-func (r *Run) coverLeaves(p *pair, way1 int, rate float64) float64 {
+// (exp(rate1*t) - 1)/rate1 = y/v. With a square see [curve.reaches].
+func (r *Run) coverLeaves(p *pair, bent *curve, way1 int, rate float64) float64 {
 	if p.held1 || way1 == 0 {
 		return math.Inf(1)
 	}
@@ -405,6 +437,9 @@ func (r *Run) coverLeaves(p *pair, way1 int, rate float64) float64 {
 	if v*float64(way1) <= 0 {
 		return math.Inf(1) // it comes to rest first
 	}
+	if p.square1 > 0 {
+		return bent.reaches(p, target, v)
+	}
 	return lapse((target-r.u1)/v, p.rate1)
 }
 
@@ -412,11 +447,14 @@ func (r *Run) coverLeaves(p *pair, way1 int, rate float64) float64 {
 // segments.
 //
 // With v the speed of the deep store and s that of the cover at the start, v(t)*exp(rate2*t) = v + perc*s*(exp(k*t) - 1)/k
-// with k = rate2 - rate1.
-func (r *Run) turns(p *pair, way1 int, speed float64) float64 {
+// with k = rate2 - rate1. With a square see [curve.turns]; there it is +Inf too if it does not turn within h.
+func (r *Run) turns(p *pair, bent *curve, way1 int, speed, h float64) float64 {
 	push := p.perc * speed
 	if push*float64(way1) <= 0 {
 		return math.Inf(1)
+	}
+	if p.square1 > 0 {
+		return bent.turns(p, r.gain()*float64(way1), h)
 	}
 	return lapse(max(0, -r.gain()/push), p.rate2-p.rate1)
 }
@@ -439,7 +477,7 @@ func (r *Run) enough() float64 {
 }
 
 // letsGo returns the time after which the full deep store begins to fall; +Inf for never within these segments.
-func (r *Run) letsGo(p *pair, way1 int, a, speed float64) float64 {
+func (r *Run) letsGo(p *pair, bent *curve, way1 int, a float64) float64 {
 	if way1 >= 0 || p.held1 {
 		return math.Inf(1)
 	}
@@ -447,9 +485,12 @@ func (r *Run) letsGo(p *pair, way1 int, a, speed float64) float64 {
 	if enough > r.u1 {
 		return 0
 	}
-	v := a - p.rate1*enough // speed of the cover when it gets there
+	v := a - enough*(p.rate1+p.square1*enough) // speed of the cover when it gets there
 	if p.perc == 0 || enough < 0 || v >= 0 {
 		return math.Inf(1)
+	}
+	if p.square1 > 0 {
+		return bent.reaches(p, enough, v)
 	}
 	return lapse((enough-r.u1)/v, p.rate1)
 }

@@ -6,13 +6,15 @@ import (
 	"sort"
 )
 
-// line is a flow within a segment: at + rate*u mm/d, where u mm is the storage above the foot of the segment.
-type line struct{ at, rate float64 }
+// line is a flow within a segment: at + rate*u + square*u^2 mm/d, where u mm is the storage above the foot of the segment.
+// It is a straight one but for the drain with a square.
+type line struct{ at, rate, square float64 }
 
-func (l line) flow(u float64) float64 { return l.at + l.rate*u }
+func (l line) flow(u float64) float64 { return l.at + u*(l.rate+l.square*u) }
 
 // segments is a store cut at every storage where its outlets change: zero, each invert, each storage at which a ceiling
-// is reached, the capacity. Segment i runs from base[i] up by width[i], and within it each outlet is a line.
+// is reached, the capacity. Segment i runs from base[i] up by width[i], and within it each outlet is a line. Counted from the
+// foot of a segment that is f above its invert, a drain that carries Rate*s + Square*s^2 has the rate Rate + 2*Square*f.
 //
 // The state of a store is the number of its segment and the storage u above the foot of that segment. Counting from the
 // foot keeps the full relative precision where a fast outlet with an invert makes a segment of a few micrometres.
@@ -35,7 +37,7 @@ func newSegments(capacity float64, outlets []Outlet) segments {
 	edges := []float64{0}
 	ends := make([]float64, len(outlets)) // storage at which the ceiling is reached
 	for o, out := range outlets {
-		if out.Rate == 0 || out.Ceiling == 0 {
+		if !out.flows() {
 			continue
 		}
 		ends[o] = out.Invert + out.Ceiling/out.Rate
@@ -63,7 +65,8 @@ func newSegments(capacity float64, outlets []Outlet) segments {
 		f := make([]line, n+2)
 		for i := range n {
 			if s.base[i] >= out.Invert && s.base[i] < ends[o] {
-				f[i].rate = out.Rate
+				f[i].rate = out.Rate + 2*out.Square*(s.base[i]-out.Invert)
+				f[i].square = out.Square
 			}
 			f[i+1].at = f[i].flow(s.width[i])
 		}
@@ -73,6 +76,7 @@ func newSegments(capacity float64, outlets []Outlet) segments {
 	for i := range s.total {
 		for _, f := range s.outlets {
 			s.total[i].rate += f[i].rate
+			s.total[i].square += f[i].square
 		}
 	}
 	for i := range n {
@@ -93,4 +97,14 @@ func (s segments) place(storage float64) (i int, u float64) {
 // within tells whether a storage is one that the store can have.
 func (s segments) within(storage float64) bool {
 	return storage >= 0 && storage <= s.base[s.full]
+}
+
+// curved tells whether an outlet has a square.
+func (s segments) curved() bool {
+	for _, l := range s.total {
+		if l.square > 0 {
+			return true
+		}
+	}
+	return false
 }

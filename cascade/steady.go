@@ -1,6 +1,9 @@
 package cascade
 
-import "fmt"
+import (
+	"fmt"
+	"math"
+)
 
 // Steady returns the storages, in mm, at which both stores rest under a constant net input in mm/d, within 0 and the
 // capacities. Where more than one storage is at rest, as below the lowest invert without input, it returns the lowest.
@@ -34,9 +37,19 @@ func (s *segments) rest(input float64) (storage float64, ok bool) {
 	}
 	for i := range s.full {
 		if input <= s.total[i+1].at {
-			u := (input - s.total[i].at) / s.total[i].rate
+			u := s.total[i].storage(input)
 			return s.base[i] + min(max(u, 0), s.width[i]), true
 		}
 	}
 	return s.base[s.full], !s.open
+}
+
+// storage returns the storage above the foot of the segment at which the line carries flow.
+func (l line) storage(flow float64) float64 {
+	x := flow - l.at
+	if l.square == 0 {
+		return x / l.rate
+	}
+	// The root of square*u^2 + rate*u = x, so written that nothing cancels.
+	return 2 * x / (l.rate + math.Sqrt(l.rate*l.rate+4*l.square*x))
 }

@@ -119,8 +119,8 @@ func (r *Run) Totals() Totals {
 	return t
 }
 
-// sums is what a Run adds up. Every flow is a line within a segment, so the time spent in each segment and the integral
-// of the storage above its foot give what passed through each outlet.
+// sums is what a Run adds up. Every flow is a line within a segment, so the time spent in each segment and the integrals
+// of the storage above its foot, and of its square, give what passed through each outlet.
 type sums struct {
 	days, in                 sum
 	overflow, unmet, refused sum
@@ -128,13 +128,14 @@ type sums struct {
 	start1, start2           float64
 }
 
-// spent is the time spent in each segment, d, and the integral of the storage above its foot, mm d.
-type spent struct{ time, volume []sum }
+// spent is the time spent in each segment, d, and the integral of the storage above its foot, mm d, and where there is a
+// drain with a square that of the square of this storage, mm^2 d.
+type spent struct{ time, volume, squares []sum }
 
 func newSums(n1, n2 int, start1, start2 float64) sums {
 	return sums{
-		cover:  spent{make([]sum, n1), make([]sum, n1)},
-		deep:   spent{make([]sum, n2), make([]sum, n2)},
+		cover:  spent{make([]sum, n1), make([]sum, n1), make([]sum, n1)},
+		deep:   spent{make([]sum, n2), make([]sum, n2), nil},
 		start1: start1, start2: start2,
 	}
 }
@@ -144,6 +145,9 @@ func (s *spent) passed(outlet []line) float64 {
 	for i, l := range outlet {
 		q.add(l.at * s.time[i].value())
 		q.add(l.rate * s.volume[i].value())
+		if l.square > 0 {
+			q.add(l.square * s.squares[i].value())
+		}
 	}
 	return q.value()
 }
@@ -156,13 +160,16 @@ func (s *spent) passedAll(outlets [][]line) []float64 {
 	return q
 }
 
-// count adds a time spent in the present pair of segments, with the integrals of u1 and u2 over it and, for a held
-// cover, the integral of its balance.
-func (r *Run) count(p *pair, time, volume1, volume2, surplus float64) {
+// count adds a time spent in the present pair of segments, with the integrals of u1, of its square and of u2 over it and,
+// for a held cover, the integral of its balance. The square is not needed where no drain has one.
+func (r *Run) count(p *pair, time, volume1, squares1, volume2, surplus float64) {
 	s := &r.sums
 	s.days.add(time)
 	s.cover.time[r.i].add(time)
 	s.cover.volume[r.i].add(volume1)
+	if p.square1 > 0 {
+		s.cover.squares[r.i].add(squares1)
+	}
 	s.deep.time[r.j].add(time)
 	s.deep.volume[r.j].add(volume2)
 	switch r.i {
