@@ -34,7 +34,14 @@ type prepared struct {
 // caseWorks are all the options in one condition of the works.
 type caseWorks struct {
 	condition string
-	works     []*works
+	works     []*works     // of every option, its drains as new
+	rows      [][]weighted // of every option, what its figures are the mean of
+}
+
+// weighted is an option with its drains at one of the ages that its figures are the mean over.
+type weighted struct {
+	works  *works
+	weight float64
 }
 
 // prepare reads the record, replays the baseline and settles the years that are counted.
@@ -82,22 +89,36 @@ const maxReplays = 5000
 func (p *prepared) work() error {
 	s := p.study
 	p.cases = nil
-	if n := len(s.Options) * (1 + len(s.Conditions)); n > maxReplays {
+	if n := len(s.Options) * (1 + len(s.Conditions)); n > maxReplays { // those of one state, which people can count
 		return s.Fault(s.PlaceOf("options"), "%d options in %d conditions are %d replays, more than %d; compare fewer at a time", len(s.Options), 1+len(s.Conditions), n, maxReplays)
 	}
 	for _, c := range append([]Condition{asBuilt}, s.Conditions...) {
 		found := caseWorks{condition: c.Name}
 		for i := range s.Options {
-			w := newWorks(s, &s.Options[i], &c)
+			w := newWorks(s, &s.Options[i], &c, asNew)
 			if err := w.check(s); err != nil {
 				return err
 			}
 			found.works = append(found.works, w)
+			found.rows = append(found.rows, s.row(w, &c))
 		}
 		p.cases = append(p.cases, found)
 	}
 	p.works = p.cases[0].works
 	return nil
+}
+
+// row is what the figures of an option are the mean of.
+func (s *Study) row(asNew *works, c *Condition) []weighted {
+	_, states := s.ownStates(asNew.option)
+	if len(states) == 1 {
+		return []weighted{{asNew, 1}}
+	}
+	var row []weighted
+	for _, a := range states {
+		row = append(row, weighted{newWorks(s, asNew.option, c, a.state), a.weight})
+	}
+	return row
 }
 
 // baselineOf is the place of the baseline among the options.
@@ -141,18 +162,9 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 
 	n := len(s.Options)
 	all := make([]optionFigures, n*len(p.cases)) // the options of each case in turn
-	err = each(len(all), func(i int) error {
-		if i == p.baseline { // of the first case
-			all[i] = p.figures(p.base)
-			return nil
-		}
-		t, err := p.replayer.replay(ctx, p.cases[i/n].works[i%n], p.counted)
-		if err != nil {
-			return err
-		}
-		all[i] = p.figures(t)
-		p.replayer.drop(t.recharge, t.cover, t.deep)
-		return nil
+	err = each(len(all), func(i int) (err error) {
+		all[i], err = p.rowFigures(ctx, p.cases[i/n].works[i%n], p.cases[i/n].rows[i%n])
+		return err
 	})
 	if err != nil {
 		return nil, err
@@ -188,6 +200,12 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 	for k, w := range p.cases {
 		options := all[k*n : (k+1)*n]
 		rank(s, options)
+		p.costs(options, resamples)
+		if k == 0 {
+			if err := p.states(ctx, options, resamples); err != nil {
+				return nil, err
+			}
+		}
 		found := result.Case{Climate: AsRecorded, Condition: w.condition}
 		for i := range options {
 			found.Options = append(found.Options, options[i].Option)
@@ -219,6 +237,7 @@ type optionFigures struct {
 	result.Option
 	trace  traceSummary
 	passed []stats.Exceedance // by band
+	losses []float64          // by counted year; nil where no band has a loss
 }
 
 // traceSummary is what the warnings ask of a replay, so that its series need not be kept.
@@ -241,6 +260,19 @@ func summarise(t *trace) traceSummary {
 	return s
 }
 
+// replayed is what one replay of an option says by itself.
+func (p *prepared) replayed(ctx context.Context, w *works) (optionFigures, error) {
+	if w == p.base.works {
+		return p.figures(p.base), nil
+	}
+	t, err := p.replayer.replay(ctx, w, p.counted)
+	if err != nil {
+		return optionFigures{}, err
+	}
+	defer p.replayer.drop(t.recharge, t.cover, t.deep)
+	return p.figures(t), nil
+}
+
 // figures works out all that one replay says by itself.
 func (p *prepared) figures(t *trace) optionFigures {
 	w := t.works
@@ -248,7 +280,7 @@ func (p *prepared) figures(t *trace) optionFigures {
 	from, to := p.counted.from, p.counted.to
 	f := optionFigures{trace: summarise(t)}
 	f.Option = result.Option{
-		Name: w.option.Name, Baseline: w.option.Baseline, Measures: w.option.describe(), Rates: w.rates(),
+		Name: w.option.Name, Baseline: w.option.Baseline, Minimum: w.option.Minimum, Measures: w.option.describe(), Rates: w.rates(),
 		Drains:            []result.Drain{},
 		RechargeMMPerYear: total(t.recharge[from:to]) / years,
 		Level:             p.levelFigures(t),
@@ -270,6 +302,9 @@ func (p *prepared) figures(t *trace) optionFigures {
 	}
 	if on := p.study.Count.DecideOn; on >= 0 {
 		f.Bands[on].Spells = p.spells(&f.passed[on])
+	}
+	if losses := p.study.lossBands(); losses != nil {
+		f.losses = stats.Losses(t.deep, &p.counted.calendar, losses, f.passed)
 	}
 	return f
 }
@@ -322,7 +357,7 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 	peak := outlet.Flow(storage(largest(counted), porosity)) // a higher level never carries less
 	f := result.Drain{
 		Measure: d.measure, Layer: d.layer, RatePerDay: d.rate, InvertM: d.invert, CeilingMMPerDay: finite(d.ceiling),
-		Law: "linear", RunningShare: float64(running) / float64(len(counted)),
+		Law: d.law(), RunningShare: float64(running) / float64(len(counted)),
 		MeanMMPerDay: carried[d.index] / t.counted.Days, PeakMMPerDay: peak,
 	}
 	if area := p.study.Site.PlanArea; area > 0 {
@@ -361,7 +396,7 @@ func (p *prepared) bandFigure(b *Band, e *stats.Exceedance) result.BandFigure {
 	years, confidence := p.counted.years, p.study.Count.Confidence
 	f := result.BandFigure{
 		Name: b.Name, LevelM: b.Level,
-		Events: int(e.Count), EventsPerYear: e.Count / float64(years), // one replay: the count is whole
+		Events: e.Count, EventsPerYear: e.Count / float64(years),
 		DaysPerYear: stats.Mean(e.DaysByYear), DaysInBandPerYear: e.DaysInBand, AnnualProbability: stats.Mean(e.AnyByYear),
 		LongestDays: e.Longest, LoadMDaysPerYear: stats.Mean(e.LoadByYear), DaysByMonth: e.ByMonth,
 	}
@@ -399,7 +434,7 @@ func (p *prepared) judge(f, against *optionFigures, r *stats.Resamples) {
 	if on := p.study.Count.DecideOn; on >= 0 {
 		m := measureNamed(p.study.Count.DecideBy)
 		value, ci := m.figure(&f.Bands[on])
-		f.Decision = &result.Decision{Measure: m.name, Value: value, CI: ci}
+		f.Decision = &result.Decision{Measure: m.name, Value: value, CI: ci, MeetsTarget: p.study.Count.Target.met(&f.Bands[on])}
 	}
 }
 
@@ -504,7 +539,13 @@ func (p *prepared) settings() result.Settings {
 	c := &p.study.Count
 	s := result.Settings{
 		YearStarts: p.counted.starts.String(), ApartDays: c.Apart, Confidence: c.Confidence, Resamples: c.Resamples,
-		Seed: c.Seed, BlockYears: c.MeanBlock, DecideBy: c.DecideBy,
+		Seed: c.Seed, BlockYears: c.MeanBlock, DesignLife: c.DesignLife, DecideBy: c.DecideBy,
+	}
+	if t := c.Target; t != nil {
+		s.Target = &result.Target{Measure: t.Measure, Value: t.Most}
+	}
+	if m := p.study.Money; m != nil {
+		s.Money = &result.Money{Currency: m.Currency, HorizonYears: m.Horizon, DiscountRate: m.Rate, PricesOf: m.PricesOf, Contingency: m.Contingency}
 	}
 	if c.DecideOn >= 0 {
 		s.DecideOn = p.study.Bands[c.DecideOn].Name

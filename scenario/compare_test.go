@@ -244,7 +244,7 @@ func deepLevels(t interface {
 }, s *Study, option int, r *weather.Record) *trace {
 	t.Helper()
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
-	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[option], &asBuilt), period{to: len(r.Rain)})
+	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[option], &asBuilt, asNew), period{to: len(r.Rain)})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -380,7 +380,7 @@ func TestSupply(t *testing.T) {
 // TestKeptOutMultiplies: shares that several measures keep out leave the product of what each lets in.
 func TestKeptOutMultiplies(t *testing.T) {
 	s := ground(Option{Name: "both", Measures: []Measure{{Cut: &SurfaceWater{KeptOut: 0.1}}, {Cut: &SurfaceWater{KeptOut: 0.5}}}})
-	if got := newWorks(s, &s.Options[1], &asBuilt).keptOut; math.Abs(got-0.55) > 1e-15 {
+	if got := newWorks(s, &s.Options[1], &asBuilt, asNew).keptOut; math.Abs(got-0.55) > 1e-15 {
 		t.Errorf("%v is kept out, want 0.55", got)
 	}
 }

@@ -44,7 +44,7 @@ func (p *prepared) conversion(ctx context.Context) (*result.Conversion, error) {
 // through the same warm-up, and finds the largest differences of the levels over the record.
 func (p *prepared) schemeDifference(ctx context.Context) (*result.LevelDifference, error) {
 	g := &p.study.Ground
-	w := newWorks(p.study, &Option{Name: "the ground without measures", Place: p.study.PlaceOf("ground.rates_from")}, &asBuilt)
+	w := newWorks(p.study, &Option{Name: "the ground without measures", Place: p.study.PlaceOf("ground.rates_from")}, &asBuilt, asNew)
 	t, run, _, err := p.replayer.begin(ctx, w, period{})
 	if err != nil {
 		return nil, err

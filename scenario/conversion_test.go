@@ -19,7 +19,7 @@ func TestConvertedRates(t *testing.T) {
 			s := ground()
 			s.Ground.Scheme, s.Ground.SchemeStep = by, 1
 			s.Ground.Lateral = 0.05
-			w := newWorks(s, &s.Options[0], &asBuilt)
+			w := newWorks(s, &s.Options[0], &asBuilt, asNew)
 			if given := w.rates().Given; given == nil || given.CoverSeepagePerDay != 0.011 || given.DeepSeepagePerDay != 0.007 {
 				t.Fatalf("given are %+v", w.rates().Given)
 			}
@@ -83,10 +83,10 @@ func TestConvertedRates(t *testing.T) {
 func TestTrenchInConvertedGround(t *testing.T) {
 	s := ground(Option{Name: "trench", Measures: []Measure{
 		{Key: "set", Set: []Assignment{{Key: "cover.seepage", Value: 0.1}}},
-		{Key: "trench_drains", Trench: &TrenchDrains{Depth: 3, Spacing: 10, Conductivity: 0.02, Equivalent: 0.8, Efficiency: 1, Ceiling: math.Inf(1)}},
+		{Key: "trench_drains", Trench: &TrenchDrains{Depth: 3, Spacing: 10, Conductivity: 0.02, Equivalent: 0.8, Head: 1.5, Efficiency: 1, Ceiling: math.Inf(1)}},
 	}})
 	s.Ground.Scheme, s.Ground.SchemeStep = scheme.Centred, 1
-	w := newWorks(s, &s.Options[1], &asBuilt)
+	w := newWorks(s, &s.Options[1], &asBuilt, asNew)
 	exact, _ := scheme.Centred.ExactRate(0.1045, 1) // set first, converted then
 	n := 0.06 * 0.1045 / exact
 	if got, want := w.model.Cover.Drains[0].Rate, math.Pi*math.Pi*0.02*(0.8+0.75)/(n*100); math.Abs(got-want) > 1e-15 {
@@ -107,7 +107,7 @@ func TestBoredDrainsInConvertedGround(t *testing.T) {
 		{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: 2, Efficiency: 1, Ceiling: math.Inf(1)}},
 	}})
 	s.Ground.Scheme, s.Ground.SchemeStep = scheme.Centred, 1
-	w := newWorks(s, &s.Options[1], &asBuilt)
+	w := newWorks(s, &s.Options[1], &asBuilt, asNew)
 	exact, _ := scheme.Centred.ExactRate(0.2, 1)
 	n := 0.014 * 0.2 / exact
 	for _, tt := range []struct {
@@ -140,7 +140,7 @@ func TestConversionAtCapacity(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	tr, err := p.replayer.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), period{to: len(r.Rain)})
+	tr, err := p.replayer.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt, asNew), period{to: len(r.Rain)})
 	if err != nil {
 		t.Fatal(err)
 	}

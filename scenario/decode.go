@@ -38,6 +38,7 @@ type blockValue struct {
 	later   []string // keys that were refused as not supported yet
 	empty   bool     // the study gives it without any key
 	partial bool     // keys that it needs are not missing: what they were to be taken from was refused
+	made    made     // of an option
 }
 
 // get returns the value of a key. It is never nil.
@@ -71,7 +72,9 @@ type decoder struct {
 	*problems
 	places map[string]Place
 	// What is said once, though it holds for several bands or options.
-	misordered, noConductivity bool
+	misordered, noConductivity, noMoney bool
+
+	costs []ownCost // of the options so far
 }
 
 // readBlock reads the keys of a block. A nil node stands for a block that is left out and whose keys all have
@@ -81,7 +84,7 @@ func (d *decoder) readBlock(n *node, fields []field, place Place) *blockValue {
 	given := map[string]*node{}
 	refused := map[string]bool{} // present, but without a value that can be read
 	if n != nil {
-		b.empty, b.partial = len(n.entries) == 0, n.partial
+		b.empty, b.partial, b.made = len(n.entries) == 0, n.partial, n.made
 		known := make([]string, 0, len(fields))
 		for _, f := range fields {
 			known = append(known, f.name)
@@ -304,6 +307,10 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 		return v
 	case formTexts:
 		return d.readTexts(n, s, v)
+	case formOneOrMore:
+		if n.is == listNode {
+			return d.readTexts(n, s, v)
+		}
 	}
 	switch n.is {
 	case blockNode:
@@ -452,7 +459,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 	if !oneLine(n.text) {
 		return bad("the text %s is not one line of plain text", quoted(n.text))
 	}
-	if s.form != formText && s.form != formFilled && s.form != formName {
+	if s.form != formText && s.form != formFilled && s.form != formName && s.form != formOneOrMore {
 		if slices.Contains(s.words, n.text) {
 			v.word = true
 			return v
@@ -467,9 +474,12 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 	var err error
 	switch s.form {
 	case formText:
-	case formFilled:
+	case formFilled, formOneOrMore:
 		if strings.TrimSpace(n.text) == "" {
 			return bad("a text is wanted here, and this one is blank")
+		}
+		if s.form == formOneOrMore {
+			v.texts = []string{n.text}
 		}
 	case formName:
 		if wrong := checkName(n.text); wrong != "" {

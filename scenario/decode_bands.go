@@ -44,6 +44,14 @@ func (d *decoder) bands(s *Study, list *value) {
 		b := item.block
 		band := Band{Name: b.get("name").text, Level: math.NaN(), Until: math.NaN(), Place: item.place}
 		d.checkUnique("band", b.get("name"), seen)
+		for _, loss := range []struct {
+			key string
+			of  *float64
+		}{{"loss_per_event", &band.LossPerEvent}, {"loss_per_day", &band.LossPerDay}} {
+			v := b.get(loss.key)
+			*loss.of = v.num
+			d.needMoney(s, v, "a loss")
+		}
 		for _, key := range datums {
 			if v := b.get(key); v.given {
 				if band.GivenAs != "" {

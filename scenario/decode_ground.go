@@ -33,6 +33,7 @@ func (d *decoder) ground(s *Study, b, record *blockValue) {
 		DeepSeepage:       deep.get("seepage").num,
 		Lateral:           deep.get("lateral_inflow").num,
 		CalibratedTo:      b.get("calibrated_to").num,
+		Consolidation:     deep.get("consolidation").or(0),
 	}
 	from := b.sub("rates_from")
 	g.Scheme = schemeNamed(from.get("scheme").text)

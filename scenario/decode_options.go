@@ -10,10 +10,13 @@ import (
 
 func (d *decoder) options(s *Study, list *value) {
 	seen := map[string]Place{}
-	baseline := -1
+	baseline, minimum := -1, -1
 	for i, item := range list.items {
 		b := item.block
 		o := Option{Name: b.get("name").text, Place: item.place}
+		if b != nil {
+			o.list, o.varied = b.made.list, b.made.varied
+		}
 		if name := b.get("name"); name.given {
 			o.Place = name.place
 		}
@@ -25,7 +28,15 @@ func (d *decoder) options(s *Study, list *value) {
 				baseline = i
 			}
 		}
+		if mark := b.get("minimum"); mark.text == "true" {
+			if minimum >= 0 {
+				d.add(mark.place, "%s is the minimum already; only one option can be", quoted(s.Options[minimum].Name))
+			} else {
+				o.Minimum, minimum = true, i
+			}
+		}
 		d.measures(s, &o, b)
+		d.cost(s, &o, b)
 		s.Options = append(s.Options, o)
 	}
 	if len(s.Options) == 0 {
@@ -167,6 +178,7 @@ var groundNumbers = map[string]func(*Ground) *float64{
 	"deep.seepage":               func(g *Ground) *float64 { return &g.DeepSeepage },
 	"deep.lateral_inflow":        func(g *Ground) *float64 { return &g.Lateral },
 	"deep.full_at":               func(g *Ground) *float64 { return &g.DeepFullAt },
+	"deep.consolidation":         func(g *Ground) *float64 { return &g.Consolidation },
 }
 
 // assign changes one number of the ground.
@@ -189,18 +201,24 @@ func (d *decoder) vegetation(s *Study, b *blockValue) *Vegetation {
 
 func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 	depth, spacing, rate := b.get("depth"), b.get("spacing"), b.get("rate")
-	conductivity, equivalent, head, law := b.get("conductivity"), b.get("equivalent_depth"), b.get("working_head"), b.get("law")
+	conductivity, below, radius := b.get("conductivity"), b.get("conductivity_below"), b.get("drain_radius")
+	equivalent, head, law := b.get("equivalent_depth"), b.get("working_head"), b.get("law")
 	t := &TrenchDrains{
 		Depth:        depth.num,
 		Rate:         rate.or(0),
 		Spacing:      spacing.or(0),
 		Conductivity: conductivity.or(0),
+		Below:        below.or(0),
+		Radius:       radius.or(usualRadius),
 		Equivalent:   equivalent.num,
+		Head:         head.or(depth.num / 2),
+		Quadratic:    law.text == "quadratic",
 		Efficiency:   b.get("efficiency").num,
 		Ceiling:      b.get("ceiling").none(),
+		Decline:      d.decline(b.get("decline")),
 	}
-	below := g.CoverThickness - t.Depth // of the cover under the trenches
-	if below < -tie {
+	under := g.CoverThickness - t.Depth // thickness of the cover below the trenches
+	if under < -tie {
 		d.add(depth.place, "%s is deeper than the cover, which is %s thick; trench drains act on the cover only", quoted(depth.text), metres(g.CoverThickness))
 	}
 	switch {
@@ -210,7 +228,7 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 		d.add(b.place, "neither rate nor spacing is given; give the spacing, such as 12 m, with conductivity, or a rate that was measured or worked out elsewhere")
 	}
 	if rate.given {
-		for _, v := range []*value{conductivity, equivalent, head, law} {
+		for _, v := range []*value{conductivity, below, radius, equivalent, head, law} {
 			if v.given && !spacing.given {
 				d.add(v.place, "this has no meaning beside a rate; delete it, or give the spacing in place of the rate")
 			}
@@ -232,18 +250,56 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 		}
 	}
 	switch {
-	case !equivalent.given && below > tie && !b.partial:
-		d.add(b.place, "computing the equivalent depth is not supported yet; give equivalent_depth, the depth of flow below the trenches, or a depth of %s, which reaches the contact", metres(g.CoverThickness))
-	case !equivalent.given && math.Abs(below) <= tie:
-		equivalent.shown = "0 m"
-	case equivalent.given && below >= -tie && t.Equivalent > below+tie:
-		d.add(equivalent.place, "%s is more than lies below the trenches: the cover is %s thick and they are %s deep, which leaves %s", quoted(equivalent.text), metres(g.CoverThickness), metres(t.Depth), metres(max(0, below)))
+	case equivalent.given && radius.given:
+		d.add(radius.place, "the equivalent_depth is given too, so that nothing is computed from the drain_radius; keep one of the two")
+	case radius.given && 2*t.Radius >= t.Spacing:
+		d.add(radius.place, "drains of a radius of %s leave no ground between them at a spacing of %s; the radius is that of a drain which takes in as much as the trench, about its wetted perimeter divided by π", quoted(radius.text), quoted(spacing.text))
 	}
-	if head.given && math.Abs(head.num-t.Depth/2) > tie {
-		d.add(head.place, "a working_head other than half of depth is not supported yet; delete it, or write %s", metres(t.Depth/2))
+	switch {
+	case equivalent.given && under >= -tie && t.Equivalent > under+tie:
+		d.add(equivalent.place, "%s is more than lies below the trenches: the cover is %s thick and they are %s deep, which leaves %s", quoted(equivalent.text), metres(g.CoverThickness), metres(t.Depth), metres(max(0, under)))
+	case !equivalent.given && t.equivalentDepth(g) >= 0:
+		equivalent.shown = metres(t.equivalentDepth(g))
 	}
-	head.shown = quantity.Format(t.Depth/2, quantity.Length)
+	if !radius.given && !equivalent.given && under > tie {
+		radius.shown = quantity.Format(usualRadius, quantity.Length)
+	}
+	switch {
+	case t.Quadratic && head.given:
+		d.add(head.place, "the quadratic law follows the height of the water itself and has no working_head; delete it, or write law: linear")
+	case head.given && t.Head > t.Depth+tie:
+		d.add(head.place, "%s is more than the depth of the trenches, %s: water that stands so high above them lies above ground", quoted(head.text), metres(t.Depth))
+	case !t.Quadratic && !math.IsNaN(t.Head):
+		head.shown = metres(t.Head)
+	}
+	if v := b.get("ceiling"); t.Quadratic && v.given && !v.word {
+		d.add(v.place, "the quadratic law is replayed without a ceiling; delete it, or write law: linear")
+	}
 	return t
+}
+
+// usualRadius is that of a drain whose radius is not given, m.
+const usualRadius = 0.1
+
+// decline reads how drains clog; nil for drains that never do.
+func (d *decoder) decline(v *value) *Decline {
+	b := v.block
+	if b == nil {
+		return nil
+	}
+	every, restored := b.get("flushed_every"), b.get("restored_to")
+	years := func(v *value) float64 { return v.num / 365.25 }
+	decline := &Decline{HalfLife: years(b.get("half_life")), Every: math.Inf(1), Restored: restored.or(1)}
+	if every.given {
+		decline.Every = years(every)
+	}
+	switch {
+	case every.given && !restored.given:
+		d.add(every.place, "a flush seldom makes drains as new; say what it restores, such as restored_to: 95 %%")
+	case restored.given && !every.given:
+		d.add(restored.place, "without flushing nothing is restored; give flushed_every, such as 5 y, or delete the key")
+	}
+	return decline
 }
 
 func (d *decoder) bored(g *Ground, b *blockValue) *BoredDrains {
@@ -257,6 +313,7 @@ func (d *decoder) bored(g *Ground, b *blockValue) *BoredDrains {
 		Efficiency: b.get("efficiency").num,
 		Ceiling:    b.get("ceiling").none(),
 		Length:     b.get("length").or(0),
+		Decline:    d.decline(b.get("decline")),
 	}
 	if n := b.get("number").num; !math.IsNaN(n) {
 		drains.Number = int(n)

@@ -69,6 +69,12 @@ func decodeStudy(root *node, found *problems) *Study {
 		return nil
 	}
 	expandOptions(root, found)
+	return d.study(root)
+}
+
+// study reads a tree in which every option is written out.
+func (d *decoder) study(root *node) *Study {
+	found := d.problems
 	file := d.readBlock(root, studyShape.fields, Place{})
 	s := &Study{
 		File:       found.src.file,
@@ -77,12 +83,14 @@ func decodeStudy(root *node, found *problems) *Study {
 		CheckedBy:  file.get("checked_by").text,
 		Declared:   Declared{},
 		src:        found.src,
+		root:       root,
 		places:     d.places,
 	}
 	d.weather(s, file.sub("weather"))
 	d.site(s, file.sub("site"))
 	d.ground(s, file.sub("ground"), file.sub("weather"))
 	d.slope(s, file.get("slope"))
+	d.money(s, file.get("money"))
 	d.bands(s, file.get("bands"))
 	d.options(s, file.get("options"))
 	d.conditions(s, file.get("conditions"))
@@ -179,6 +187,7 @@ func (d *decoder) count(s *Study, b *blockValue) {
 		MeanBlock:  b.get("mean_block").num / 365.25,
 		DecideOn:   -1,
 		DecideBy:   b.get("decide_by").text,
+		DesignLife: int(b.get("design_life").or(0)),
 	}
 	if m := b.get("year_starts").num; !math.IsNaN(m) {
 		c.YearStarts = int(m)
@@ -212,6 +221,51 @@ func (d *decoder) count(s *Study, b *blockValue) {
 		d.add(s.PlaceOf("count.decide_on"), "several bands are given, so say which of them ranks the options: give decide_on as %s", quotedWords(names, "or"))
 	default:
 		on.shown = "none"
+	}
+	d.target(s, b.get("target"))
+}
+
+// target reads what an option must keep to.
+func (d *decoder) target(s *Study, v *value) {
+	b := v.block
+	if b == nil {
+		return
+	}
+	for _, key := range targetShape.choice {
+		g := b.get(key)
+		if !g.given {
+			continue
+		}
+		if t := s.Count.Target; t != nil {
+			d.add(g.place, "the target is given as %s already; keep one of them", t.GivenAs)
+			continue
+		}
+		t := &Target{Measure: key, Most: g.num, GivenAs: key, Text: g.text, Place: g.place}
+		if key == "return_period" {
+			t.Measure, t.Most = "annual_probability", 365.25/g.num
+		}
+		s.Count.Target = t
+	}
+	switch {
+	case s.Count.Target == nil && b.empty:
+		d.add(v.place, "the target is empty; give one of %s, such as {days: 2}", fault.Words(targetShape.choice, "or"))
+	case s.Count.Target != nil && s.Count.DecideOn < 0 && len(s.Bands) > 1 && !d.places["count.decide_on"].given():
+		d.add(v.place, "several bands are given, so say which of them the target is for: give decide_on")
+	}
+}
+
+// given tells whether the study has the key of the place.
+func (p Place) given() bool { return p.Line > 0 }
+
+// money reads how costs and losses are added up.
+func (d *decoder) money(s *Study, v *value) {
+	b := v.block
+	if b == nil {
+		return
+	}
+	s.Money = &Money{
+		Currency: b.get("currency").text, Rate: b.get("discount_rate").num, Contingency: b.get("contingency").num,
+		Horizon: int(b.get("horizon").or(0)), PricesOf: int(b.get("prices_of").or(0)),
 	}
 }
 
@@ -283,7 +337,7 @@ func (v *value) inForce(f *field) string {
 		return v.shown
 	case v.word:
 		return v.text
-	case f.shape.form == formTexts:
+	case f.shape.form == formTexts || f.shape.form == formOneOrMore && len(v.texts) > 1:
 		var texts []string
 		for _, t := range v.texts {
 			texts = append(texts, listText(t))

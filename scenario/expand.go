@@ -120,7 +120,7 @@ func (x *expander) place(name string) int {
 // measureFields are the keys of an option that hold a measure, by name.
 func measureFields(key string) (fields []field, like bool) {
 	for i := range optionFields {
-		if f := &optionFields[i]; f.name == key && f.shape.form == formBlock && !f.later {
+		if f := &optionFields[i]; f.name == key && key != "cost" && f.shape.form == formBlock && !f.later {
 			return f.shape.fields, slices.ContainsFunc(f.shape.fields, func(f field) bool { return f.name == likeField.name })
 		}
 	}
@@ -202,7 +202,7 @@ func replaced(measure, key string, own *node) bool {
 }
 
 // withSpacing are the keys of trench_drains that have a meaning beside a spacing only, and the spacing.
-var withSpacing = []string{"spacing", "conductivity", "equivalent_depth", "working_head", "law"}
+var withSpacing = []string{"spacing", "conductivity", "conductivity_below", "drain_radius", "equivalent_depth", "working_head", "law"}
 
 // unknownOption reports a like that names no option above.
 func (x *expander) unknownOption(at Place, measure, name, own string) {
@@ -333,7 +333,9 @@ func (x *expander) perValue(item *node) []*node {
 			if utf8.RuneCountInString(name) > utf8.RuneCountInString(longest) {
 				longest = name
 			}
-			made = append(made, with(item, spots[0], v, name))
+			one := with(item, spots[0], v, name)
+			one.made.list, one.made.varied = item.textOf("name"), join(measure, first.key)
+			made = append(made, one)
 		}
 	}
 	if n, e := utf8.RuneCountInString(longest), item.entry("name"); n > longestName && e != nil {

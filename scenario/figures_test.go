@@ -71,7 +71,7 @@ func TestActualETOfCountedYears(t *testing.T) {
 	s, r := ground(), invented(5, 5)
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
 	c := period{from: 400, to: 400 + 3*365}
-	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
+	tr, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt, asNew), c)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -86,12 +86,12 @@ func TestFromDry(t *testing.T) {
 	s, r := ground(), invented(3, 2)
 	p := replayer{study: s, record: r}
 	c := period{from: 100, to: 500}
-	steady, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
+	steady, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt, asNew), c)
 	if err != nil {
 		t.Fatal(err)
 	}
 	s.Ground.Start = &StartLevels{}
-	dry, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt), c)
+	dry, err := p.replay(context.Background(), newWorks(s, &s.Options[0], &asBuilt, asNew), c)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -109,7 +109,7 @@ func TestSteadyStart(t *testing.T) {
 	for i := range r.Rain {
 		r.Rain[i] = []float64{1, 3, 7}[i/365]
 	}
-	w := newWorks(s, &s.Options[0], &asBuilt)
+	w := newWorks(s, &s.Options[0], &asBuilt, asNew)
 	p := replayer{study: s, record: r, warm: warmUp{years: 1, passes: []int{365}}}
 	tr, err := p.replay(context.Background(), w, period{from: 0, to: 730})
 	if err != nil {

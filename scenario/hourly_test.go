@@ -200,8 +200,8 @@ func TestHourlyStudy(t *testing.T) {
 				}
 			}
 			f := &o.Bands[band]
-			if f.Events != count || math.Abs(f.DaysPerYear*years*24-float64(above)) > 1e-6 || math.Abs(f.LoadMDaysPerYear*years-load) > 1e-9 {
-				t.Errorf("option %d, band %d: %d events, %v h, load %v; want %d, %d, %v", k, band, f.Events, f.DaysPerYear*years*24, f.LoadMDaysPerYear*years, count, above, load)
+			if f.Events != float64(count) || math.Abs(f.DaysPerYear*years*24-float64(above)) > 1e-6 || math.Abs(f.LoadMDaysPerYear*years-load) > 1e-9 {
+				t.Errorf("option %d, band %d: %v events, %v h, load %v; want %d, %d, %v", k, band, f.Events, f.DaysPerYear*years*24, f.LoadMDaysPerYear*years, count, above, load)
 			}
 			if count == 0 {
 				t.Errorf("option %d, band %d: nothing to count", k, band)

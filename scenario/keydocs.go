@@ -43,7 +43,7 @@ func docOf(f *field, path string) KeyDoc {
 	s := &f.shape
 	doc := KeyDoc{
 		Path: join(path, f.name), Says: f.says, Form: s.form.name(s.kind), Words: s.shownWords(), Range: s.rangeWords(),
-		Required: f.need != "", Default: f.def, Absent: f.absent, List: strings.HasPrefix(path, "options[].") && f.listable(),
+		Required: f.need != "", Default: f.def, Absent: f.absent, List: listPath(path) && f.listable(),
 	}
 	switch s.form {
 	case formQuantity:
@@ -52,6 +52,13 @@ func docOf(f *field, path string) KeyDoc {
 		doc.Default = "[" + f.def + "]"
 	}
 	return doc
+}
+
+// listPath tells whether a number of the block at a path may be a list: that of a measure, but of no block inside one.
+func listPath(path string) bool {
+	measure, ok := strings.CutPrefix(path, "options[].")
+	fields, _ := measureFields(measure)
+	return ok && fields != nil
 }
 
 // Written says how the value of the key is written, its range, and what holds when it is left out: "length above 0 m and
@@ -121,6 +128,8 @@ func (f form) name(kind quantity.Kind) string {
 		return "word"
 	case formTexts:
 		return "list of texts"
+	case formOneOrMore:
+		return "text or list of texts"
 	case formNumber:
 		return "number"
 	case formWhole:

@@ -13,18 +13,19 @@ import (
 type form int
 
 const (
-	formText     form = iota // one line of text, which may be blank
-	formFilled               // one line of text, not blank
-	formName                 // a name by the rules of checkName
-	formWord                 // one of the words of the shape
-	formTexts                // a list of texts, as typed
-	formNumber               // a bare number
-	formWhole                // a whole number
-	formQuantity             // a number with a unit
-	formYears                // a whole number of years, with unit
-	formMonth                // the English name of a month
-	formBlock                // a block of keys
-	formList                 // a list of blocks
+	formText      form = iota // one line of text, which may be blank
+	formFilled                // one line of text, not blank
+	formName                  // a name by the rules of checkName
+	formWord                  // one of the words of the shape
+	formTexts                 // a list of texts, as typed
+	formOneOrMore             // a text that is not blank, or a list of such texts
+	formNumber                // a bare number
+	formWhole                 // a whole number
+	formQuantity              // a number with a unit
+	formYears                 // a whole number of years, with unit
+	formMonth                 // the English name of a month
+	formBlock                 // a block of keys
+	formList                  // a list of blocks
 )
 
 // shape says what a value must be.
@@ -66,18 +67,22 @@ type field struct {
 // Limits beyond which a number is taken for a slip. Where no reason stands beside it, a limit is a judgement, and far
 // outside of what a slope has.
 const (
-	maxRate         = 1e6   // 1/d; what the engine is tested for
-	maxThickness    = 500   // m
-	maxLevel        = 1000  // m
-	maxFlux         = 1e5   // mm/d
-	maxIntensity    = 1e4   // mm/h
-	maxConductivity = 1e5   // m/d; clean gravel has some 1e4
-	maxWater        = 5000  // mm
-	maxSpacing      = 10000 // m
-	maxArea         = 1e9   // m2
-	maxDrains       = 100000
-	maxSafety       = 10     // factor of safety; no slope that moves comes near
-	maxResamples    = 100000 // a year of them takes 0.8 MB
+	maxRate          = 1e6   // 1/d; what the engine is tested for
+	maxThickness     = 500   // m
+	maxLevel         = 1000  // m
+	maxFlux          = 1e5   // mm/d
+	maxIntensity     = 1e4   // mm/h
+	maxConductivity  = 1e5   // m/d; clean gravel has some 1e4
+	maxWater         = 5000  // mm
+	maxSpacing       = 10000 // m
+	maxArea          = 1e9   // m2
+	maxDrains        = 100000
+	maxSafety        = 10     // factor of safety; no slope that moves comes near
+	maxResamples     = 100000 // a year of them takes 0.8 MB
+	maxMoney         = 1e13   // of any currency
+	maxHorizon       = 500    // y
+	maxConsolidation = 1e6    // m2/y; fissured clays have some 0.1 to 1000
+	mostCosts        = 20     // that one cost may add up
 	// A soil that meets the full demand down to its last tenth of a millimetre takes ever shorter parts of a day to
 	// work out. Allen et al. (1998, FAO-56, table 22) have 0.2 to 0.7 (range from memory).
 	maxReadily = 0.95
@@ -111,6 +116,7 @@ var (
 	ceilingShape   = amount(quantity.Flux, above(0, maxFlux), "none")
 	fullAtShape    = amount(quantity.Length, above(0, maxLevel), "none")
 	angleShape     = amount(quantity.Angle, limits{lo: 0, hi: 90, loOpen: true, hiOpen: true})
+	moneyShape     = shape{form: formNumber, limits: atLeast(0, maxMoney)}
 	answerShape    = shape{form: formWord, words: []string{"yes", "no", "unknown", "true", "false"}}
 )
 
@@ -156,7 +162,8 @@ var (
 			shape: rateShape, need: "the rate at which water leaves the deep layer, such as", eg: "0.007 /d"},
 		{name: "lateral_inflow", says: "steady inflow from the side or from uphill",
 			shape: amount(quantity.Flux, atLeast(0, maxFlux)), def: "0 mm/d", eg: "0.05 mm/d"},
-		notYet("consolidation"),
+		{name: "consolidation", says: "coefficient of consolidation of the clay, for the time until trenches have drained it", absent: "may be left out",
+			shape: amount(quantity.Consolidation, above(0, maxConsolidation)), quiet: true, eg: "3 m2/y"},
 		{name: "full_at", says: "level above the base at which the deep layer is full and refuses more", absent: "by default the thickness of the deep layer",
 			shape: fullAtShape, eg: "8.5 m"},
 	}
@@ -196,7 +203,8 @@ var studyShape = block(
 		shape: shape{form: formList, fields: bandFields, choice: datums}, need: "a list of critical deep levels, such as: - {name: movement onset, level: 4.2 m}"},
 	field{name: "count", says: "how exceedances are counted and options ranked",
 		shape: countShape},
-	notYet("money"),
+	field{name: "money", says: "how costs and losses are added up over the years", absent: "may be left out, without costs and losses",
+		shape: moneyBlock, quiet: true},
 	notYet("climates"),
 	field{name: "options", says: "what could be done; all options are replayed on the same record",
 		shape: shape{form: formList, fields: optionFields}, need: "a list of what could be done, the first being the ground as it is: - name: as it stands"},
@@ -302,8 +310,10 @@ var bandFields = []field{
 		shape: shape{form: formNumber, limits: above(0, maxSafety)}, quiet: true, eg: "1.0"},
 	{name: "until", says: "level, or factor of safety, at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
 		shape: shape{form: formQuantity, kind: quantity.Length, limits: atLeast(-1000, 10000), bare: bySafety}, eg: "3.9 m"},
-	notYet("loss_per_event"),
-	notYet("loss_per_day"),
+	{name: "loss_per_event", says: "what an event costs that reaches this band and no higher one with a loss_per_event; needs money",
+		shape: moneyShape, def: "0", quiet: true, eg: "250000"},
+	{name: "loss_per_day", says: "what a day costs on which this is the highest band passed that has a loss_per_day; needs money",
+		shape: moneyShape, def: "0", quiet: true, eg: "1800"},
 }
 
 var countShape = block(
@@ -323,16 +333,75 @@ var countShape = block(
 		shape: oneOf("load", "days", "events", "annual_probability"), def: "load", eg: "days"},
 	field{name: "mean_block", says: "mean length of the runs of years that are drawn together",
 		shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "2 y"},
-	notYet("target"),
-	notYet("design_life"),
+	field{name: "target", says: "what an option must keep to on decide_on", absent: "may be left out",
+		shape: targetShape, quiet: true},
+	field{name: "design_life", says: "years over which drains age where money gives no horizon",
+		shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(1, maxHorizon)}, def: "50 y"},
 )
+
+// targetShape has a key for each figure that a target can be set on.
+var targetShape = shape{form: formBlock, choice: []string{"load", "days", "events", "annual_probability", "return_period"}, fields: []field{
+	{name: "load", says: "most load, m·d a year", absent: oneTarget,
+		shape: shape{form: formNumber, limits: atLeast(0, 1e6)}, quiet: true, eg: "0.5"},
+	{name: "days", says: "most days a year", absent: oneTarget,
+		shape: shape{form: formNumber, limits: atLeast(0, 366)}, quiet: true, eg: "2"},
+	{name: "events", says: "most events a year", absent: oneTarget,
+		shape: shape{form: formNumber, limits: atLeast(0, 366)}, quiet: true, eg: "0.1"},
+	{name: "annual_probability", says: "largest share of years with a passage", absent: oneTarget,
+		shape: shareShape, quiet: true, eg: "5 %"},
+	{name: "return_period", says: "one in so many years has a passage, at most: the inverse of annual_probability, as counted", absent: oneTarget,
+		shape: amount(quantity.Duration, atLeast(365.25, 365250)), quiet: true, eg: "20 y"},
+}}
+
+// oneTarget is what holds of a target that does not give one of its figures.
+const oneTarget = "one of load, days, events, annual_probability and return_period is required"
+
+var moneyBlock = block(
+	field{name: "currency", says: "name or sign of the currency, printed beside every sum",
+		shape: titleShape, need: "the currency, such as", eg: "EUR"},
+	field{name: "horizon", says: "years over which costs and losses are counted",
+		shape: shape{form: formYears, kind: quantity.Duration, limits: atLeast(1, maxHorizon)}, need: "the years over which costs and losses are counted, such as", eg: "50 y"},
+	field{name: "discount_rate", says: "yearly rate at which later sums count less; real, so without inflation",
+		shape: amount(quantity.Share, limits{lo: 0, hi: 1, hiOpen: true}), need: "the yearly rate at which later sums count less, such as", eg: "3 %"},
+	field{name: "prices_of", says: "year whose prices all sums are in",
+		shape: shape{form: formWhole, limits: atLeast(1900, 2200)}, need: "the year whose prices all sums are in, such as", eg: "2026"},
+	field{name: "contingency", says: "share added to every capital sum for what is not foreseen",
+		shape: shareShape, def: "0 %", eg: "20 %"},
+)
+
+var costShape = block(
+	field{name: "capital", says: "paid at the start, and again whenever life is over",
+		shape: moneyShape, def: "0", quiet: true, eg: "210000"},
+	field{name: "per_metre", says: "the same for each metre: plan area divided by spacing for trenches, number times length for bores",
+		shape: moneyShape, def: "0", quiet: true, eg: "95"},
+	field{name: "per_year", says: "upkeep, inspection and readings, each year",
+		shape: moneyShape, def: "0", quiet: true, eg: "600"},
+	field{name: "per_flush", says: "paid whenever decline.flushed_every has passed",
+		shape: moneyShape, def: "0", quiet: true, eg: "4000"},
+	field{name: "life", says: "time after which capital and metres are paid again", absent: "by default never renewed",
+		shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "", quiet: true, eg: "30 y"},
+	field{name: "like", says: "name of an option above whose cost is taken, or of several whose costs are added up", absent: "may be left out",
+		shape: shape{form: formOneOrMore, most: mostCosts}, quiet: true, eg: "name of the other option"},
+)
+
+// declineField says how drains clog.
+var declineField = field{name: "decline", says: "how the drains clog, and what flushing restores", absent: "by default they never clog",
+	quiet: true, shape: block(
+		field{name: "half_life", says: "time after which half of the rate is left, without flushing",
+			shape: amount(quantity.Duration, above(0, 365250)), need: "the time after which half of the rate is left, such as", eg: "12 y"},
+		field{name: "flushed_every", says: "time between flushes", absent: "by default never flushed",
+			shape: amount(quantity.Duration, atLeast(30, 365250)), quiet: true, eg: "5 y"},
+		field{name: "restored_to", says: "share of the rate as new that a flush restores", absent: "required with flushed_every",
+			shape: someShareShape, quiet: true, eg: "95 %"},
+	)}
 
 var optionFields = []field{
 	{name: "name", says: "what the option is called in every result",
 		shape: nameShape, need: "a name, such as", eg: "trenches"},
 	{name: "baseline", says: "whether this is the option that all others are compared with; only one can be", absent: "by default the first option is, where none is marked",
 		shape: oneOf("true", "false"), eg: "true"},
-	notYet("minimum"),
+	{name: "minimum", says: "whether this is the least that has to be done anyway; it is marked in the table of costs", absent: "by default no option is",
+		shape: oneOf("true", "false"), quiet: true, eg: "true"},
 	{name: "trench_drains", says: "parallel trenches that drain the cover, down to their own level and no further", absent: "may be left out",
 		shape: trenchShape, quiet: true},
 	{name: "bored_drains", says: "bores that drain the deep layer, down to their own level and no further", absent: "may be left out",
@@ -359,7 +428,8 @@ var optionFields = []field{
 		), quiet: true},
 	{name: "set", says: "numbers of ground that this option changes, before its other measures act", absent: "may be left out",
 		shape: shape{form: formBlock, fields: settable, filled: true}, quiet: true},
-	notYet("cost"),
+	{name: "cost", says: "what the option costs; needs money", absent: "may be left out: nothing for the baseline, not known for any other",
+		shape: costShape, quiet: true},
 }
 
 // likeField takes the measure of another option. The reader puts that option's keys in its place, before it is decoded.
@@ -373,21 +443,23 @@ var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fi
 		shape: drainRateShape, quiet: true, eg: "0.02 /d", not: withSpacing},
 	{name: "spacing", says: "distance from trench to trench, from which the rate is worked out", absent: "either rate or spacing is required",
 		shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true, eg: "12 m"},
-	{name: "conductivity", says: "hydraulic conductivity of the cover; only with spacing", absent: "by default ground.cover.conductivity",
+	{name: "conductivity", says: "hydraulic conductivity of the cover, of what lies above the trenches' level; only with spacing", absent: "by default ground.cover.conductivity",
 		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.02 m/d"},
-	notYet("conductivity_below"),
-	notYet("drain_radius"),
-	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; it grows with the spacing; only with spacing", absent: "by default 0 m for trenches down to the contact; required for others",
+	{name: "conductivity_below", says: "the same of what lies below the trenches' level; only with spacing", absent: "by default as conductivity",
+		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.005 m/d"},
+	{name: "drain_radius", says: "radius of a drain that takes in as much: wetted perimeter divided by π; only with spacing", absent: "by default 0.1 m; unused on the contact",
+		shape: amount(quantity.Length, above(0, 10)), quiet: true, eg: "0.2 m"},
+	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; it grows with the spacing; only with spacing", absent: "by default computed from spacing, drain_radius and the cover below the trenches",
 		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true, eg: "0.80 m"},
-	{name: "working_head", says: "height of the water above the trenches that the rate is worked out for; only with spacing", absent: "by default half of depth, the only value supported yet",
+	{name: "working_head", says: "height midway of the water above the trenches that the linear rate is worked out for; only with spacing", absent: "by default half of depth",
 		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true, eg: "1.5 m"},
 	{name: "law", says: "how the outflow grows with the height of the water above the trenches; only with spacing",
-		shape: shape{form: formWord, words: []string{"linear"}, later: []string{"quadratic"}}, def: "linear"},
+		shape: shape{form: formWord, words: []string{"linear", "quadratic"}}, def: "linear", eg: "quadratic"},
 	{name: "efficiency", says: "share of the rate that is reached, to allow for poor workmanship",
 		shape: someShareShape, def: "100 %", eg: "80 %"},
 	{name: "ceiling", says: "most that the trenches carry away",
 		shape: ceilingShape, def: "none", eg: "12 mm/d"},
-	notYet("decline"),
+	declineField,
 	likeField,
 }}
 
@@ -400,11 +472,11 @@ var boredShape = block(
 		shape: someShareShape, def: "100 %", eg: "80 %"},
 	field{name: "ceiling", says: "most that the drains carry away",
 		shape: ceilingShape, def: "none", eg: "5 mm/d"},
-	field{name: "number", says: "how many bores there are; no figure depends on it",
+	field{name: "number", says: "how many bores there are; costs per metre depend on it",
 		shape: shape{form: formWhole, limits: atLeast(1, maxDrains)}, def: "none", eg: "12"},
-	field{name: "length", says: "length of each bore; only a warning depends on it",
+	field{name: "length", says: "length of each bore; costs per metre and a warning depend on it",
 		shape: amount(quantity.Length, above(0, maxLevel)), def: "none", eg: "45 m"},
-	notYet("decline"),
+	declineField,
 	likeField,
 )
 

@@ -108,7 +108,7 @@ func TestWarmUp(t *testing.T) {
 		var all []*works
 		for _, r := range rates {
 			s.Ground.DeepSeepage = r
-			all = append(all, newWorks(s, &s.Options[0], &asBuilt))
+			all = append(all, newWorks(s, &s.Options[0], &asBuilt, asNew))
 		}
 		return all
 	}
@@ -186,7 +186,7 @@ func TestWorks(t *testing.T) {
 		}},
 	)
 	s.Ground.CoverConductivity = 0.05
-	a, b := newWorks(s, &s.Options[1], &asBuilt), newWorks(s, &s.Options[2], &asBuilt)
+	a, b := newWorks(s, &s.Options[1], &asBuilt, asNew), newWorks(s, &s.Options[2], &asBuilt, asNew)
 	// Half of the depth is the working head, half of that stands above the drain on average.
 	near("rate", a.model.Cover.Drains[0].Rate, 0.8*math.Pi*math.Pi*0.02*(0.85+0.75)/(0.06*100))
 	near("invert", a.model.Cover.Drains[0].Invert, 1000*0.06*1)
@@ -203,5 +203,5 @@ func TestWorks(t *testing.T) {
 		t.Error("set has changed the study's own ground")
 	}
 	s.Ground.DeepSeepage = 5
-	near("zero-invert rate of the cover", newWorks(s, &s.Options[2], &asBuilt).minZeroInvertRate(), 0.011+0.0045+math.Pi*math.Pi*0.05/(0.03*100))
+	near("zero-invert rate of the cover", newWorks(s, &s.Options[2], &asBuilt, asNew).minZeroInvertRate(), 0.011+0.0045+math.Pi*math.Pi*0.05/(0.03*100))
 }

@@ -186,6 +186,9 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 		values = append(values, b.text(s))
 	case formTexts:
 		values = append(values, object{{"type", "array"}, {"items", b.text(&textShape)}, {"maxItems", s.most}})
+	case formOneOrMore:
+		text := b.text(&filledShape)
+		values = append(values, text, object{{"type", "array"}, {"items", text}, {"minItems", 1}, {"maxItems", s.most}})
 	case formMonth:
 		values = append(values, object{{"type", "string"}, {"pattern", "^(" + anyCase(words[len(s.words):]...) + ")$"}})
 	case formNumber:

@@ -22,6 +22,7 @@ type Study struct {
 	Slope      *slope.Slope // nil for none
 	Bands      []Band       // rising
 	Count      Count
+	Money      *Money      // nil for none
 	Options    []Option    // in the order of the file, one for each value of a list; exactly one has Baseline set
 	Conditions []Condition // besides as built
 	Site       Site
@@ -30,6 +31,7 @@ type Study struct {
 	Understood []Entry // every key with the value in force, in the order of the documentation
 
 	src    *source          // the text, for pointing into it; nil for a study that was not read
+	root   *node            // the same as a tree, with every option written out
 	places map[string]Place // of every key that the study gives
 }
 
@@ -82,6 +84,7 @@ type Ground struct {
 	DeepSeepage   float64 // 1/d
 	Lateral       float64 // mm/d
 	DeepFullAt    float64 // m above the base of the deep layer; +Inf for none
+	Consolidation float64 // coefficient of consolidation of the clay, m2/y; 0 when not given
 
 	Scheme     scheme.Scheme // the formula
 	SchemeStep float64       // its step, d
@@ -109,6 +112,9 @@ type Band struct {
 	Until   float64 // arrest level, same datum, <= Level
 	Safety  float64 // the factor of safety that it was given as; 0 for any other
 	Place   Place
+
+	LossPerEvent float64 // of an event that reaches this band and no higher one that has a loss per event
+	LossPerDay   float64 // of a day on which this is the highest band passed that has a loss per day
 }
 
 // Count is the count block.
@@ -121,14 +127,47 @@ type Count struct {
 	MeanBlock  float64 // y
 	DecideOn   int     // index into Bands; -1 where nothing is ranked: several bands, one option
 	DecideBy   string  // load, days, events or annual_probability
+	Target     *Target // nil for none
+	DesignLife int     // y
+}
+
+// Target is what an option must keep to on the band that the options are decided on.
+type Target struct {
+	Measure string  // load, days, events or annual_probability
+	Most    float64 // per year; of annual_probability a share
+	GivenAs string  // the key, which for a return period is not that of the measure
+	Text    string  // as typed
+	Place   Place
+}
+
+// Money says how costs and losses are added up.
+type Money struct {
+	Currency    string
+	Horizon     int     // y
+	Rate        float64 // discount rate, share per year
+	PricesOf    int     // year
+	Contingency float64 // share of every capital sum
 }
 
 // Option is one thing that could be done.
 type Option struct {
 	Name     string
 	Baseline bool
+	Minimum  bool
 	Measures []Measure // in the order of the file; empty for nothing done
+	Costs    []Cost    // one for each cost that it adds up; nil where none is given
 	Place    Place
+
+	list   string // the name that the study has for the list which made it, "" for none
+	varied string // the key of that list, such as trench_drains.spacing
+}
+
+// Cost is one part of what an option costs, with a life of its own.
+type Cost struct {
+	Capital, PerMetre float64 // paid at the start, and again whenever the life is over
+	PerYear, PerFlush float64
+	Life              float64 // y; +Inf for never renewed
+	Drains            string  // the measure whose metres and flushes are meant: trench_drains, bored_drains or "" for none
 }
 
 // Measure is one part of an option. Exactly one of the pointers is set.
@@ -148,10 +187,22 @@ type TrenchDrains struct {
 	Depth        float64 // m below ground
 	Rate         float64 // 1/d; 0 when worked out from the spacing
 	Spacing      float64 // m; 0 when the rate is given
-	Conductivity float64 // m/d; 0 for that of the cover
-	Equivalent   float64 // equivalent depth below drain level, m; NaN when not given
+	Conductivity float64 // above the drains' level, m/d; 0 for that of the cover
+	Below        float64 // the same below their level; 0 for as above
+	Radius       float64 // m
+	Equivalent   float64 // equivalent depth below drain level, m; NaN when it is computed
+	Head         float64 // working head, m
+	Quadratic    bool    // the law
 	Efficiency   float64 // share
 	Ceiling      float64 // largest flow, mm/d; +Inf for none
+	Decline      *Decline
+}
+
+// Decline is how drains clog: half of their rate is left after each half-life, until a flush restores a share.
+type Decline struct {
+	HalfLife float64 // y
+	Every    float64 // time between flushes, y; +Inf for never
+	Restored float64 // share of the rate as new
 }
 
 // BoredDrains act on the deep layer.
@@ -162,6 +213,7 @@ type BoredDrains struct {
 	Ceiling    float64 // largest flow, mm/d; +Inf for none
 	Number     int     // 0 when not given
 	Length     float64 // m; 0 when not given
+	Decline    *Decline
 }
 
 // SurfaceWater keeps a share of the infiltration out.

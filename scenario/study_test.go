@@ -618,7 +618,7 @@ func invariant(s *Study) error {
 				return fmt.Errorf("measure %+v", m)
 			}
 		}
-		if w := newWorks(s, &s.Options[i], &asBuilt); w.ground.CoverPorosity > 1 || w.ground.DeepPorosity > 1 {
+		if w := newWorks(s, &s.Options[i], &asBuilt, asNew); w.ground.CoverPorosity > 1 || w.ground.DeepPorosity > 1 {
 			return fmt.Errorf("porosities of %s: %v and %v", s.Options[i].Name, w.ground.CoverPorosity, w.ground.DeepPorosity)
 		}
 	}

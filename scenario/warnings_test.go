@@ -54,7 +54,7 @@ func quiet() *prepared {
 func (p *prepared) rework() {
 	p.works = nil
 	for i := range p.study.Options {
-		p.works = append(p.works, newWorks(p.study, &p.study.Options[i], &asBuilt))
+		p.works = append(p.works, newWorks(p.study, &p.study.Options[i], &asBuilt, asNew))
 	}
 }
 

@@ -18,10 +18,11 @@ const (
 	inDeep  = "deep"
 )
 
-// works is an option in one condition made into numbers: the ground after its changes, the water that still enters, and
-// the two stores with the drains beside their natural outlets.
+// works is an option in one condition, with its drains in one state, made into numbers: the ground after its changes, the
+// water that still enters, and the two stores with the drains beside their natural outlets.
 type works struct {
 	option *Option
+	state  state
 	ground Ground  // rates and porosities are those of exact stores
 	given  *Ground // the same before they were converted; nil where they were exact
 	uptake
@@ -57,17 +58,23 @@ type drainage struct {
 	measure string // as in the study
 	place   Place
 	layer   string
-	rate    float64 // 1/d, after efficiency
+	rate    float64 // 1/d, after efficiency; of a quadratic law that of its linear part
+	square  float64 // 1/(mm d), of a quadratic law
+	worked  float64 // 1/d, the rate of the linear law at the working head, by which drains are timed and judged
+	share   float64 // of what the drains do as new that is left
 	invert  float64 // m above the base of its layer
 	ceiling float64 // mm/d; +Inf for none
 	index   int     // among the drains of its store in the model
-	from    string  // how the rate came about
+	// It was worked out anew with every second drain stopped, so that its state is in its rate already.
+	respaced bool
+	from     string // how the rate came about
 }
 
 // newWorks applies an option's measures to the ground of the study: first the changed numbers, then everything else, so
-// that a trench is worked out in the ground that it is dug in. Of what the works do, the shares of the condition are left.
-func newWorks(s *Study, o *Option, c *Condition) *works {
-	w := &works{option: o, ground: s.Ground}
+// that a trench is worked out in the ground that it is dug in. Of what the works do, the shares of the condition are left,
+// and of what the drains do those of their state.
+func newWorks(s *Study, o *Option, c *Condition, in state) *works {
+	w := &works{option: o, state: in, ground: s.Ground}
 	for _, m := range o.Measures {
 		for _, a := range m.Set {
 			w.ground.assign(a)
@@ -89,16 +96,16 @@ func newWorks(s *Study, o *Option, c *Condition) *works {
 	for _, m := range o.Measures {
 		switch {
 		case m.Trench != nil:
-			w.addDrain(m, trench(m, g), c)
+			w.addDrain(m, trench(m.Trench, g, in), c)
 		case m.Bored != nil:
-			w.addDrain(m, bored(m), c)
+			w.addDrain(m, bored(m.Bored), c)
 		case m.Cut != nil:
 			w.keptOut = both(w.keptOut, c.SurfaceWater*m.Cut.KeptOut)
 		case m.Vegetation != nil:
 			w.interception = both(w.interception, c.Vegetation*m.Vegetation.Interception)
 			w.petFactor *= 1 + c.Vegetation*(m.Vegetation.PETFactor-1)
 		case m.CutOff != nil:
-			w.model.Lateral *= 1 - c.Drains*m.CutOff.Intercepted
+			w.model.Lateral *= 1 - c.Drains*in.left(nil)*m.CutOff.Intercepted
 		}
 	}
 	return w
@@ -142,10 +149,14 @@ func (g *Ground) toExact() {
 // storage is the drainable water in mm below a level in m.
 func storage(level, porosity float64) float64 { return 1000 * porosity * level }
 
-// addDrain makes a drain one of the outlets of its store, at the rate that the condition leaves of it.
+// addDrain makes a drain one of the outlets of its store, at the rate that its state and the condition leave of it.
 func (w *works) addDrain(m Measure, d drainage, c *Condition) {
 	d.measure, d.place = m.Key, m.Place
-	d.rate *= c.Drains
+	if !d.respaced {
+		d.share = w.state.left(m.decline())
+		d.rate, d.square, d.worked = d.share*d.rate, d.share*d.square, d.share*d.worked
+	}
+	d.rate, d.square, d.worked = c.Drains*d.rate, c.Drains*d.square, c.Drains*d.worked
 	if w.given != nil && strings.HasPrefix(d.from, asGiven) {
 		d.from += "; rates of drains are not converted"
 	}
@@ -155,42 +166,82 @@ func (w *works) addDrain(m Measure, d drainage, c *Condition) {
 	}
 	d.index = len(store.Drains)
 	store.Drains = append(store.Drains, cascade.Outlet{
-		Rate: d.rate, Invert: storage(d.invert, porosity), Ceiling: d.ceiling,
+		Rate: d.rate, Square: d.square, Invert: storage(d.invert, porosity), Ceiling: d.ceiling,
 	})
 	w.drains = append(w.drains, d)
 }
 
 // trench turns trench drains into an outlet of the cover. Between parallel trenches the water leaves at the reaction
-// factor of the cover, whose flow depth is the equivalent depth below the drains and half of the working head above them,
-// the head being half of the trench's depth.
-func trench(m Measure, g *Ground) drainage {
-	t := m.Trench
+// factor of the cover, for the mean height of the water above the drains that belongs to the working head midway; by the
+// quadratic law it leaves by Hooghoudt's equation at whatever height it stands. Where every second trench is stopped the
+// others are worked out anew at twice the spacing.
+func trench(t *TrenchDrains, g *Ground, in state) drainage {
 	d := drainage{layer: inCover, ceiling: t.Ceiling, invert: max(0, g.CoverThickness-t.Depth)}
 	if t.Spacing == 0 {
 		d.rate = t.Efficiency * t.Rate
+		d.worked = d.rate
 		d.from = asGiven + timesEfficiency(t.Efficiency)
 		return d
 	}
-	conductivity := t.Conductivity
-	if conductivity == 0 {
-		conductivity = g.CoverConductivity
+	l := t.layout(g)
+	d.worked = t.Efficiency * l.ReactionFactor(t.Head)
+	if in.everySecond {
+		asNew := d.worked
+		apart := *t
+		apart.Spacing *= 2
+		l = apart.layout(g)
+		d.worked = t.Efficiency * l.ReactionFactor(t.Head)
+		d.respaced, d.share = true, 0.25 // nothing flows, and of that a quarter
+		if asNew > 0 {
+			d.share = d.worked / asNew
+		}
 	}
-	equivalent := t.Equivalent
-	if math.IsNaN(equivalent) { // a trench that reaches the contact has nothing below it
-		equivalent = 0
+	with := fmt.Sprintf("K %s m/d", short(l.Above))
+	if l.Below != l.Above {
+		with += fmt.Sprintf(" (%s m/d below the trenches)", short(l.Below))
 	}
-	head := t.Depth / 2
-	flow := equivalent + head/2
-	d.rate = t.Efficiency * drain.ReactionFactor(conductivity, flow, g.CoverPorosity, t.Spacing)
-	d.from = fmt.Sprintf("π²·K·D/(μ·L²) with K %s m/d, D %s m, μ %s %%, L %s m",
-		short(conductivity), short(flow), short(100*g.CoverPorosity), short(t.Spacing)) + timesEfficiency(t.Efficiency)
+	with += fmt.Sprintf(", μ %s %%, L %s m, d %s m", short(100*l.Porosity), short(l.Spacing), short(l.Equivalent))
+	if t.Quadratic {
+		d.rate, d.square = l.Quadratic()
+		d.rate, d.square = t.Efficiency*d.rate, t.Efficiency*d.square
+		d.from = "Hooghoudt's equation, (8·K·d·h + 4·K·h²)/L², with " + with + timesEfficiency(t.Efficiency)
+		return d
+	}
+	d.rate = d.worked
+	d.from = "π²·K·(d + h/2)/(μ·L²) with " + with + fmt.Sprintf(", h %s m", short(t.Head)) + timesEfficiency(t.Efficiency)
 	return d
 }
 
-func bored(m Measure) drainage {
-	b := m.Bored
+// layout is the trenches as package drain sees them, in a ground.
+func (t *TrenchDrains) layout(g *Ground) drain.Layout {
+	l := drain.Layout{
+		Spacing: t.Spacing, Above: t.Conductivity, Below: t.Below, Equivalent: t.Equivalent, Porosity: g.CoverPorosity,
+	}
+	if l.Above == 0 {
+		l.Above = g.CoverConductivity
+	}
+	if l.Below == 0 {
+		l.Below = l.Above
+	}
+	if math.IsNaN(l.Equivalent) {
+		l.Equivalent = t.equivalentDepth(g)
+	}
+	return l
+}
+
+// equivalentDepth is the depth of flow below the trenches as it is computed, m: 0 for trenches down to the contact.
+func (t *TrenchDrains) equivalentDepth(g *Ground) float64 {
+	under := g.CoverThickness - t.Depth
+	if under <= tie {
+		return 0
+	}
+	return drain.EquivalentDepth(under, t.Radius, t.Spacing)
+}
+
+func bored(b *BoredDrains) drainage {
+	rate := b.Efficiency * b.Rate
 	return drainage{
-		layer: inDeep, rate: b.Efficiency * b.Rate, invert: b.Level, ceiling: b.Ceiling,
+		layer: inDeep, rate: rate, worked: rate, invert: b.Level, ceiling: b.Ceiling,
 		from: asGiven + timesEfficiency(b.Efficiency),
 	}
 }
@@ -212,13 +263,13 @@ func (o *Option) describe() []string {
 		switch {
 		case m.Trench != nil && m.Trench.Spacing > 0:
 			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s m apart", short(m.Trench.Depth), short(m.Trench.Spacing))+
-				besides(m.Trench.Efficiency, m.Trench.Ceiling))
+				m.Trench.byLaw()+besides(m.Trench.Efficiency, m.Trench.Ceiling)+m.Trench.Decline.describe())
 		case m.Trench != nil:
 			texts = append(texts, fmt.Sprintf("trench drains %s m deep, %s /d", short(m.Trench.Depth), short(m.Trench.Rate))+
-				besides(m.Trench.Efficiency, m.Trench.Ceiling))
+				besides(m.Trench.Efficiency, m.Trench.Ceiling)+m.Trench.Decline.describe())
 		case m.Bored != nil:
 			texts = append(texts, fmt.Sprintf("bored drains at %s m in the deep layer, %s /d", short(m.Bored.Level), short(m.Bored.Rate))+
-				besides(m.Bored.Efficiency, m.Bored.Ceiling))
+				besides(m.Bored.Efficiency, m.Bored.Ceiling)+m.Bored.Decline.describe())
 		case m.Cut != nil:
 			texts = append(texts, fmt.Sprintf("%s %% of the infiltration kept out", short(100*m.Cut.KeptOut)))
 		case m.Vegetation != nil:
@@ -232,6 +283,24 @@ func (o *Option) describe() []string {
 		}
 	}
 	return texts
+}
+
+func (t *TrenchDrains) byLaw() string {
+	if t.Quadratic {
+		return ", by the quadratic law"
+	}
+	return ""
+}
+
+func (d *Decline) describe() string {
+	if d == nil {
+		return ""
+	}
+	text := fmt.Sprintf(", half clogged after %s y", short(d.HalfLife))
+	if !math.IsInf(d.Every, 1) {
+		text += fmt.Sprintf(", flushed every %s y back to %s %%", short(d.Every), short(100*d.Restored))
+	}
+	return text
 }
 
 func (v *Vegetation) describe() string {

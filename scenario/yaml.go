@@ -34,8 +34,15 @@ type node struct {
 	first   map[string]int // of a block: the line in which each key stands first
 	items   []*node        // of a list
 	partial bool           // of a block: keys that it needs stand in another block, which could not be had
+	made    made           // of an option: what it was made from
 	line    int            // where it begins, counted from 1
 	col     int
+}
+
+// made says from which list an option was made.
+type made struct {
+	list   string // the name of the option that has the list
+	varied string // the key of that list, such as trench_drains.spacing
 }
 
 type nodeKind int

@@ -13,7 +13,7 @@ func TestImportsPointOneWay(t *testing.T) {
 		"quietslope/cmd/quietslope":        {"quietslope/cmd/quietslope/render", "quietslope/scenario", "quietslope/scenario/fault", "quietslope/scenario/result"},
 		"quietslope/cmd/quietslope/render": {"quietslope/scenario", "quietslope/scenario/result", "quietslope/stats"},
 		"quietslope/scenario": {"quietslope/cascade", "quietslope/cascade/drain", "quietslope/cascade/scheme", "quietslope/cascade/slope",
-			"quietslope/cascade/soil", "quietslope/stats", "quietslope/scenario/fault", "quietslope/scenario/quantity", "quietslope/scenario/result", "quietslope/scenario/weather"},
+			"quietslope/cascade/soil", "quietslope/stats", "quietslope/stats/money", "quietslope/scenario/fault", "quietslope/scenario/quantity", "quietslope/scenario/result", "quietslope/scenario/weather"},
 		"quietslope/scenario/weather":  {"quietslope/scenario/fault"},
 		"quietslope/scenario/quantity": {},
 		"quietslope/scenario/result":   {},

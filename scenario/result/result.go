@@ -75,9 +75,27 @@ type Settings struct {
 	Resamples  int     `json:"resamples"`
 	Seed       uint64  `json:"seed"`
 	BlockYears float64 `json:"block_years"`
+	DesignLife int     `json:"design_life_years"`
 	DecideOn   string  `json:"decide_on,omitempty"`
 	DecideBy   string  `json:"decide_by"`
+	Target     *Target `json:"target,omitempty"`
+	Money      *Money  `json:"money,omitempty"`
 	Against    string  `json:"against,omitempty"` // the option that changes are measured against, where it is not the baseline
+}
+
+// Target is what an option must keep to on the band that decides: at most Value a year.
+type Target struct {
+	Measure string  `json:"measure"`
+	Value   float64 `json:"value"`
+}
+
+// Money says how costs and losses are added up.
+type Money struct {
+	Currency     string  `json:"currency"`
+	HorizonYears int     `json:"horizon_years"`
+	DiscountRate float64 `json:"discount_rate"`
+	PricesOf     int     `json:"prices_of"`
+	Contingency  float64 `json:"contingency"`
 }
 
 // Band is a band of the study, with its level in every datum that is known.
@@ -120,17 +138,64 @@ type Case struct {
 
 // Option is what one option does.
 type Option struct {
-	Name              string       `json:"name"`
-	Baseline          bool         `json:"baseline"`
-	Measures          []string     `json:"measures"`
-	Rates             Rates        `json:"rates"`
-	Drains            []Drain      `json:"drains"`
-	RechargeMMPerYear float64      `json:"recharge_mm_per_year"`
-	ActualETMMPerYear *float64     `json:"actual_et_mm_per_year,omitempty"`
-	Level             Level        `json:"level"`
-	WaterBalance      Balance      `json:"water_balance"`
-	Bands             []BandFigure `json:"bands"`
-	Decision          *Decision    `json:"decision,omitempty"`
+	Name     string   `json:"name"`
+	Baseline bool     `json:"baseline"`
+	Minimum  bool     `json:"minimum,omitempty"` // the least that has to be done anyway
+	Measures []string `json:"measures"`
+	// DrainsAs is the state of the drains that the option's figures are for, as in State: as new, or the mean over the ages
+	// that they have. Left out for an option without drains.
+	DrainsAs          string        `json:"drains_as,omitempty"`
+	Rates             Rates         `json:"rates"`
+	Drains            []Drain       `json:"drains"`
+	RechargeMMPerYear float64       `json:"recharge_mm_per_year"`
+	ActualETMMPerYear *float64      `json:"actual_et_mm_per_year,omitempty"`
+	Level             Level         `json:"level"`
+	WaterBalance      Balance       `json:"water_balance"`
+	Bands             []BandFigure  `json:"bands"`
+	Decision          *Decision     `json:"decision,omitempty"`
+	States            []State       `json:"states,omitempty"` // in the first case only
+	TimeToEffect      *TimeToEffect `json:"time_to_effect,omitempty"`
+	Cost              *Cost         `json:"cost,omitempty"` // where it is known
+}
+
+// State is the deciding figure of an option with its drains in one state.
+type State struct {
+	State       string    `json:"state"`        // as_new, mean_between_flushes, mean_over_horizon, before_flush, never_flushed, half_stopped or all_stopped
+	EffectShare float64   `json:"effect_share"` // of what the drains do as new; the mean of several drains
+	Value       float64   `json:"value"`
+	CI          *Interval `json:"ci,omitempty"`
+	MeetsTarget string    `json:"meets_target,omitempty"` // as in Decision
+}
+
+// TimeToEffect is the time until nine tenths of what an option does to the deep level have come about.
+type TimeToEffect struct {
+	StoreDays float64  `json:"store_days"`          // for the two stores
+	ClayDays  *float64 `json:"clay_days,omitempty"` // for the clay between trenches, where a coefficient of consolidation is given
+	Days      float64  `json:"days"`                // the longer
+}
+
+// Cost is what an option costs, what it avoids and what that is worth, over the horizon of the settings. Sums without a
+// comparison are of the option; the baseline's are taken off where something is avoided.
+type Cost struct {
+	Capital           float64   `json:"capital"` // at the start, with contingency
+	PresentValue      float64   `json:"present_value"`
+	AnnualEquivalent  float64   `json:"annual_equivalent"`
+	Metres            *float64  `json:"metres,omitempty"` // of drain
+	Flushes           *int      `json:"flushes,omitempty"`
+	Renewals          *int      `json:"renewals,omitempty"`
+	PerEventAvoided   *float64  `json:"per_event_avoided,omitempty"`
+	PerEventAvoidedCI *Interval `json:"per_event_avoided_ci,omitempty"`
+	PerDayAvoided     *float64  `json:"per_day_avoided,omitempty"`
+	PerDayAvoidedCI   *Interval `json:"per_day_avoided_ci,omitempty"`
+	AnnualLoss        *float64  `json:"annual_loss,omitempty"`
+	AnnualLossCI      *Interval `json:"annual_loss_ci,omitempty"`
+	NetBenefit        *float64  `json:"net_benefit,omitempty"`
+	NetBenefitCI      *Interval `json:"net_benefit_ci,omitempty"`
+	BenefitCost       *float64  `json:"benefit_cost,omitempty"`
+	StepFrom          string    `json:"step_from,omitempty"` // the next cheaper option that is not dominated
+	StepBenefitCost   *float64  `json:"step_benefit_cost,omitempty"`
+	BreakEvenLoss     *float64  `json:"break_even_loss_per_event,omitempty"`
+	ToldApart         bool      `json:"told_apart"` // from the baseline, on the band and by the figure that decide
 }
 
 // Rates are the rates of the two stores as replayed.
@@ -203,7 +268,7 @@ type Interval [2]float64
 type BandFigure struct {
 	Name                string      `json:"name"`
 	LevelM              float64     `json:"level_m"`
-	Events              int         `json:"events"`
+	Events              float64     `json:"events"` // whole, unless the figures are a mean over ages of the drains
 	EventsPerYear       float64     `json:"events_per_year"`
 	EventsPerYearCI     Interval    `json:"events_per_year_ci"`
 	DaysPerYear         float64     `json:"days_per_year"`
@@ -258,6 +323,10 @@ type Decision struct {
 	Value   float64   `json:"value"`
 	CI      *Interval `json:"ci,omitempty"` // left out where the years hold no exceedance to resample
 	Rank    int       `json:"rank"`         // 1 is least; equal figures share a rank
+
+	MeetsTarget string `json:"meets_target,omitempty"` // yes, no, or not_shown: the figure does and the end of its range does not
+	OnFrontier  *bool  `json:"on_frontier,omitempty"`  // no other option of known cost is as cheap and as good, and better in one
+	DominatedBy string `json:"dominated_by,omitempty"` // such an option
 }
 
 // Check is the result of check.

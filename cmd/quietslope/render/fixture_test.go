@@ -94,7 +94,7 @@ func fixture(options []strengths, bands []string) *result.Comparison {
 		for b, name := range bands {
 			scale := s.strength / (1 + 4*float64(b))
 			f := result.BandFigure{
-				Name: name, LevelM: c.Bands[b].LevelM, Events: int(61 * scale), EventsPerYear: float64(int(61*scale)) / years,
+				Name: name, LevelM: c.Bands[b].LevelM, Events: float64(int(61 * scale)), EventsPerYear: float64(int(61*scale)) / years,
 				DaysPerYear: 64.21 * scale, AnnualProbability: float64(int(30*scale)) / years,
 				LongestDays: 171 * scale, LoadMDaysPerYear: 21.347 * scale * scale,
 				EventsPerYearCI:     result.Interval{0.7 * 61 * scale / years, (1.2*61*scale + 3) / years},

@@ -38,7 +38,7 @@ func withLoads(cases ...[]float64) *result.Comparison {
 			o := one.Options[i]
 			f := o.Bands[0]
 			f.LoadMDaysPerYear, f.LoadMDaysPerYearCI = load, ci(load/2, load*2)
-			f.DaysPerYear, f.Events = load*3, int(20*load)
+			f.DaysPerYear, f.Events = load*3, float64(int(20*load))
 			if i > 0 {
 				change := *f.Change
 				change.ToldApart, change.LoadMDaysPerYear.Difference = load != loads[0], load-loads[0]

@@ -1,0 +1,216 @@
+package scenario
+
+import (
+	"math"
+	"slices"
+
+	"quietslope/scenario/result"
+	"quietslope/stats"
+	"quietslope/stats/money"
+)
+
+// plans are the parts of an option's cost over time.
+func (s *Study) plans(o *Option) []money.Plan {
+	var plans []money.Plan
+	for _, c := range o.Costs {
+		plan := money.Plan{
+			Capital: (c.Capital + c.PerMetre*s.metres(o.drains(c.Drains))) * (1 + s.Money.Contingency),
+			Life:    c.Life, PerYear: c.PerYear, PerFlush: c.PerFlush, FlushedEvery: math.Inf(1),
+		}
+		if c.PerFlush > 0 {
+			plan.FlushedEvery = o.drains(c.Drains).decline().Every
+		}
+		plans = append(plans, plan)
+	}
+	return plans
+}
+
+// metres of drain of a measure: parallel trenches over the plan area, or bores; 0 where they are not known.
+func (s *Study) metres(m *Measure) float64 {
+	switch {
+	case m == nil:
+	case m.Trench != nil && m.Trench.Spacing > 0:
+		return s.Site.PlanArea / m.Trench.Spacing
+	case m.Bored != nil:
+		return float64(m.Bored.Number) * m.Bored.Length
+	}
+	return 0
+}
+
+// cost is what an option costs by itself; nil where the study does not say. The baseline costs nothing unless it says so.
+func (s *Study) cost(o *Option) *result.Cost {
+	if s.Money == nil || o.Costs == nil && !o.Baseline {
+		return nil
+	}
+	horizon := s.Money.Horizon
+	c := &result.Cost{}
+	renewals := 0
+	for _, plan := range s.plans(o) {
+		c.Capital += plan.Capital
+		c.PresentValue += plan.PresentValue(s.Money.Rate, horizon)
+		renewals += plan.Renewals(horizon)
+	}
+	c.AnnualEquivalent = c.PresentValue * money.Recovery(s.Money.Rate, horizon)
+	metres, flushes, flushed := 0.0, 0, false
+	for i := range o.Measures {
+		m := &o.Measures[i]
+		metres += s.metres(m)
+		if d := m.decline(); d != nil && !math.IsInf(d.Every, 1) {
+			flushed = true
+			flushes += money.Plan{FlushedEvery: d.Every}.Flushes(horizon)
+		}
+	}
+	if metres > 0 {
+		c.Metres = &metres
+	}
+	if flushed {
+		c.Flushes = &flushes
+	}
+	if renewals > 0 {
+		c.Renewals = &renewals
+	}
+	return c
+}
+
+// costs adds to the options of one case what they cost and what they avoid for it.
+func (p *prepared) costs(options []optionFigures, r *stats.Resamples) {
+	s := p.study
+	for i := range options {
+		f := &options[i]
+		f.TimeToEffect = f.trace.works.timeToEffect()
+		f.Cost = s.cost(f.trace.works.option)
+	}
+	base := &options[p.baseline]
+	if base.Cost == nil {
+		return
+	}
+	for i := range options {
+		if options[i].Cost != nil {
+			p.worth(&options[i], base, r)
+		}
+	}
+	p.frontier(options, r)
+}
+
+// benefitFactor turns an avoided yearly loss into a present value: that of a year before the works act does not count.
+func (p *prepared) benefitFactor(f *optionFigures) float64 {
+	start := 0.0
+	if t := f.TimeToEffect; t != nil {
+		start = yearsOf(t.Days)
+	}
+	return money.BenefitFactor(p.study.Money.Rate, p.study.Money.Horizon, start)
+}
+
+// benefit is the present value of the losses that an option avoids.
+func (p *prepared) benefit(f, base *optionFigures) float64 {
+	if f == base {
+		return 0
+	}
+	return p.benefitFactor(f) * (stats.Mean(base.losses) - stats.Mean(f.losses))
+}
+
+// worth holds what an option avoids against what it costs more than the baseline. A ratio to what is avoided has a meaning
+// only where the record shows that something is.
+func (p *prepared) worth(f, base *optionFigures, r *stats.Resamples) {
+	confidence, c := p.study.Count.Confidence, f.Cost
+	more := c.PresentValue - base.Cost.PresentValue
+	if f.losses != nil {
+		loss := stats.Mean(f.losses)
+		c.AnnualLoss, c.AnnualLossCI = &loss, interval(r.Interval(f.losses, confidence))
+	}
+	if f == base {
+		return
+	}
+	factor := p.benefitFactor(f)
+	if f.losses != nil {
+		net := p.benefit(f, base) - more
+		c.NetBenefit = &net
+		if d := r.Compare(f.losses, base.losses, confidence).DifferenceCI; d != nil {
+			c.NetBenefitCI = &result.Interval{-factor*d[1] - more, -factor*d[0] - more}
+		}
+	}
+	on := p.study.Count.DecideOn
+	if on < 0 {
+		return
+	}
+	c.ToldApart = p.toldApart(f, base, r)
+	if !c.ToldApart || more <= 0 {
+		return
+	}
+	yearly := c.AnnualEquivalent - base.Cost.AnnualEquivalent
+	per := func(measure string) (avoided float64, each *float64, ci *result.Interval) {
+		m := measureNamed(measure)
+		d := r.Compare(m.byYear(&f.passed[on]), m.byYear(&base.passed[on]), confidence)
+		if avoided = -d.Difference; avoided <= 0 {
+			return 0, nil, nil
+		}
+		one := yearly / avoided
+		if d.DifferenceCI != nil && d.DifferenceCI[1] < 0 {
+			ci = &result.Interval{yearly / -d.DifferenceCI[0], yearly / -d.DifferenceCI[1]}
+		}
+		return avoided, &one, ci
+	}
+	_, c.PerDayAvoided, c.PerDayAvoidedCI = per("days")
+	var events float64
+	events, c.PerEventAvoided, c.PerEventAvoidedCI = per("events")
+	if events > 0 && factor > 0 {
+		loss := more / (events * factor)
+		c.BreakEvenLoss = &loss
+	}
+	if f.losses != nil {
+		ratio := p.benefit(f, base) / more
+		c.BenefitCost = &ratio
+	}
+}
+
+// toldApart tells whether the record shows that two options differ on the band and by the figure that decide.
+func (p *prepared) toldApart(f, other *optionFigures, r *stats.Resamples) bool {
+	on, m := p.study.Count.DecideOn, measureNamed(p.study.Count.DecideBy)
+	confidence := p.study.Count.Confidence
+	return r.Compare(m.byYear(&f.passed[on]), m.byYear(&other.passed[on]), confidence).ToldApart(confidence)
+}
+
+// frontier marks the options of known cost that no other makes pointless, and works out what each step from one of them to
+// the next dearer one brings for its cost.
+func (p *prepared) frontier(options []optionFigures, r *stats.Resamples) {
+	if p.study.Count.DecideOn < 0 {
+		return
+	}
+	var known []*optionFigures
+	var costs, figures []float64
+	for i := range options {
+		if f := &options[i]; f.Cost != nil {
+			known = append(known, f)
+			costs, figures = append(costs, f.Cost.PresentValue), append(figures, f.Decision.Value)
+		}
+	}
+	var order []*optionFigures // on the frontier, the cheapest first
+	for i, by := range money.Frontier(costs, figures) {
+		on := by < 0
+		known[i].Decision.OnFrontier = &on
+		if on {
+			order = append(order, known[i])
+		} else {
+			known[i].Decision.DominatedBy = known[by].Name
+		}
+	}
+	slices.SortStableFunc(order, func(a, b *optionFigures) int {
+		switch x, y := a.Cost.PresentValue, b.Cost.PresentValue; {
+		case x < y:
+			return -1
+		case x > y:
+			return 1
+		}
+		return 0
+	})
+	base := &options[p.baseline]
+	for k := 1; k < len(order); k++ {
+		from, to := order[k-1], order[k]
+		to.Cost.StepFrom = from.Name
+		more := to.Cost.PresentValue - from.Cost.PresentValue
+		if more > 0 && to.losses != nil && p.toldApart(to, from, r) {
+			ratio := (p.benefit(to, base) - p.benefit(from, base)) / more
+			to.Cost.StepBenefitCost = &ratio
+		}
+	}
+}

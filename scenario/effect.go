@@ -1,0 +1,63 @@
+package scenario
+
+import (
+	"math"
+	"strings"
+
+	"quietslope/cascade"
+	"quietslope/cascade/drain"
+	"quietslope/scenario/result"
+)
+
+// effective is the share of a change of the deep level after which the works count as acting.
+const effective = 0.9
+
+// timeToEffect is the time until nine tenths of what an option does to the deep level have come about, with its drains
+// running as new: in the deep store alone for what acts there only, in both stores for anything else; and for the clay
+// between trenches, drained to them alone, by consolidation. An option that does nothing has none, and nor has the baseline,
+// which is there already.
+func (w *works) timeToEffect() *result.TimeToEffect {
+	if w.option.Baseline || len(w.option.Measures) == 0 {
+		return nil
+	}
+	cover, deep := w.ground.CoverSeepage+w.ground.Percolation, w.ground.DeepSeepage
+	for _, d := range w.drains {
+		if d.layer == inDeep {
+			deep += d.worked
+		} else {
+			cover += d.worked
+		}
+	}
+	if w.option.actsDeepOnly() {
+		cover = math.Inf(1)
+	}
+	t := &result.TimeToEffect{StoreDays: cascade.ResponseTime(cover, deep, effective)}
+	t.Days = t.StoreDays
+	if c := w.ground.Consolidation; c > 0 {
+		for _, m := range w.option.Measures {
+			if m.Trench != nil && m.Trench.Spacing > 0 {
+				days := drain.ConsolidationTime(m.Trench.Spacing, c/365.25)
+				t.ClayDays, t.Days = &days, max(t.Days, days)
+			}
+		}
+	}
+	if math.IsInf(t.Days, 1) { // nothing drains a store: it never gets there
+		return nil
+	}
+	return t
+}
+
+// actsDeepOnly tells whether all that an option does is done to the deep store.
+func (o *Option) actsDeepOnly() bool {
+	for _, m := range o.Measures {
+		for _, a := range m.Set {
+			if !strings.HasPrefix(a.Key, "deep.") {
+				return false
+			}
+		}
+		if m.Bored == nil && m.CutOff == nil && m.Set == nil {
+			return false
+		}
+	}
+	return true
+}

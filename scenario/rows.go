@@ -1,0 +1,239 @@
+package scenario
+
+import (
+	"context"
+
+	"quietslope/scenario/result"
+	"quietslope/stats"
+)
+
+// rowFigures replays what an option's figures are the mean of and takes that mean. asNew is the option with its drains as
+// new.
+func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted) (optionFigures, error) {
+	var parts []optionFigures
+	var weights []float64
+	for _, w := range row {
+		f, err := p.replayed(ctx, w.works)
+		if err != nil {
+			return optionFigures{}, err
+		}
+		parts, weights = append(parts, f), append(weights, w.weight)
+	}
+	f := p.mean(asNew, parts, weights)
+	if o := asNew.option; o.drained() {
+		f.DrainsAs, _ = p.study.ownStates(o)
+	}
+	return f, nil
+}
+
+// mean is the weighted mean of the figures of several replays of an option, which is not what a replay with mean drains
+// would give. The rates and drains are those of the drains as new in this condition; the flows are means, but for the peak, which is the
+// largest, since outlets are sized by it. Warnings see the furthest of the replays. Single events belong to one replay
+// each, so there is no list of them.
+func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) optionFigures {
+	if len(parts) == 1 {
+		return parts[0]
+	}
+	of := func(figure func(*optionFigures) float64) float64 {
+		sum := 0.0
+		for i := range parts {
+			sum += weights[i] * figure(&parts[i])
+		}
+		return sum
+	}
+	f := parts[0]
+	f.Drains = nil
+	for i := range parts[0].Drains {
+		d := parts[0].Drains[i]
+		d.RatePerDay = asNew.drains[i].rate
+		d.RunningShare = of(func(f *optionFigures) float64 { return f.Drains[i].RunningShare })
+		d.MeanMMPerDay = of(func(f *optionFigures) float64 { return f.Drains[i].MeanMMPerDay })
+		for _, part := range parts {
+			if other := part.Drains[i]; other.PeakMMPerDay > d.PeakMMPerDay {
+				d.PeakMMPerDay, d.PeakLPerS = other.PeakMMPerDay, other.PeakLPerS
+			}
+		}
+		f.Drains = append(f.Drains, d)
+	}
+	f.Level = result.Level{
+		MeanM: of(func(f *optionFigures) float64 { return f.Level.MeanM }),
+		MaxM:  of(func(f *optionFigures) float64 { return f.Level.MaxM }),
+		Q50M:  of(func(f *optionFigures) float64 { return f.Level.Q50M }),
+		Q95M:  of(func(f *optionFigures) float64 { return f.Level.Q95M }),
+		Q99M:  of(func(f *optionFigures) float64 { return f.Level.Q99M }),
+	}
+	cover := func(figure func(*result.CoverBalance) float64) float64 {
+		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Cover) })
+	}
+	deep := func(figure func(*result.DeepBalance) float64) float64 {
+		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Deep) })
+	}
+	f.WaterBalance = result.Balance{
+		Cover: result.CoverBalance{
+			InMM:            cover(func(b *result.CoverBalance) float64 { return b.InMM }),
+			SeepageMM:       cover(func(b *result.CoverBalance) float64 { return b.SeepageMM }),
+			PercolationMM:   cover(func(b *result.CoverBalance) float64 { return b.PercolationMM }),
+			DrainsMM:        cover(func(b *result.CoverBalance) float64 { return b.DrainsMM }),
+			OverflowMM:      cover(func(b *result.CoverBalance) float64 { return b.OverflowMM }),
+			UnmetMM:         cover(func(b *result.CoverBalance) float64 { return b.UnmetMM }),
+			StorageChangeMM: cover(func(b *result.CoverBalance) float64 { return b.StorageChangeMM }),
+			ErrorMM:         cover(func(b *result.CoverBalance) float64 { return b.ErrorMM }),
+		},
+		Deep: result.DeepBalance{
+			InMM:            deep(func(b *result.DeepBalance) float64 { return b.InMM }),
+			LateralMM:       deep(func(b *result.DeepBalance) float64 { return b.LateralMM }),
+			SeepageMM:       deep(func(b *result.DeepBalance) float64 { return b.SeepageMM }),
+			DrainsMM:        deep(func(b *result.DeepBalance) float64 { return b.DrainsMM }),
+			RefusedMM:       deep(func(b *result.DeepBalance) float64 { return b.RefusedMM }),
+			StorageChangeMM: deep(func(b *result.DeepBalance) float64 { return b.StorageChangeMM }),
+			ErrorMM:         deep(func(b *result.DeepBalance) float64 { return b.ErrorMM }),
+		},
+	}
+	f.trace.works = asNew
+	for _, part := range parts[1:] {
+		f.trace.fromDry = max(f.trace.fromDry, part.trace.fromDry)
+		f.trace.coverMax = max(f.trace.coverMax, part.trace.coverMax)
+		f.trace.deepMax = max(f.trace.deepMax, part.trace.deepMax)
+		f.trace.refusedShare = max(f.trace.refusedShare, part.trace.refusedShare)
+	}
+	f.passed, f.Bands = nil, nil
+	for i := range p.study.Bands {
+		var passed []stats.Exceedance
+		for _, part := range parts {
+			passed = append(passed, part.passed[i])
+		}
+		e := stats.Average(passed, weights)
+		f.passed = append(f.passed, e)
+		f.Bands = append(f.Bands, p.bandFigure(&p.study.Bands[i], &e))
+	}
+	if parts[0].losses != nil {
+		f.losses = make([]float64, p.counted.years)
+		for i, part := range parts {
+			for y, loss := range part.losses {
+				f.losses[y] += weights[i] * loss
+			}
+		}
+	}
+	return f
+}
+
+// states replays every drained option with its drains in every further state, and shows the deciding figure in each.
+func (p *prepared) states(ctx context.Context, options []optionFigures, r *stats.Resamples) error {
+	on := p.study.Count.DecideOn
+	if on < 0 {
+		return nil
+	}
+	type job struct {
+		option int
+		works  *works
+	}
+	var jobs []job
+	for i := range options {
+		for _, in := range p.study.furtherStates(&p.study.Options[i]) {
+			w := p.works[i]
+			if in.name != stateNew {
+				w = newWorks(p.study, w.option, &asBuilt, in)
+			}
+			jobs = append(jobs, job{i, w})
+		}
+	}
+	found := make([]result.State, len(jobs))
+	err := each(len(jobs), func(k int) error {
+		f, err := p.replayed(ctx, jobs[k].works)
+		if err == nil {
+			p.judge(&f, &f, r)
+			found[k] = stateOf(&f, jobs[k].works.state.name, jobs[k].works.effectShare())
+		}
+		return err
+	})
+	if err != nil {
+		return err
+	}
+	for i := range options {
+		f := &options[i]
+		var further []result.State
+		for k, j := range jobs {
+			if j.option == i {
+				further = append(further, found[k])
+			}
+		}
+		if further == nil {
+			continue
+		}
+		own := stateOf(f, f.DrainsAs, p.meanShare(p.cases[0].rows[i]))
+		if f.DrainsAs == stateNew {
+			f.States = append([]result.State{own}, further...)
+		} else {
+			f.States = append([]result.State{further[0], own}, further[1:]...)
+		}
+	}
+	return nil
+}
+
+func stateOf(f *optionFigures, name string, share float64) result.State {
+	return result.State{State: name, EffectShare: share, Value: f.Decision.Value, CI: f.Decision.CI, MeetsTarget: f.Decision.MeetsTarget}
+}
+
+// effectShare is the share of what an option's drains do as new that is left, the mean of all its drains.
+func (w *works) effectShare() float64 {
+	var shares []float64
+	for _, d := range w.drains {
+		shares = append(shares, d.share)
+	}
+	for _, m := range w.option.Measures {
+		if m.CutOff != nil {
+			shares = append(shares, w.state.left(nil))
+		}
+	}
+	return stats.Mean(shares)
+}
+
+// meanShare is the mean of the shares over the ages of a row.
+func (p *prepared) meanShare(row []weighted) float64 {
+	share := 0.0
+	for _, part := range row {
+		share += part.weight * part.works.effectShare()
+	}
+	return share
+}
+
+// met says whether a band's figures meet the target: yes, no, or not_shown where the figure does and the end of its range
+// does not. A figure without a range is zero in every year, and meets it.
+func (t *Target) met(b *result.BandFigure) string {
+	if t == nil {
+		return ""
+	}
+	value, ci := measureNamed(t.Measure).figure(b)
+	switch {
+	case stats.Less(t.Most, value):
+		return "no"
+	case ci != nil && stats.Less(t.Most, ci[1]):
+		return "not_shown"
+	}
+	return "yes"
+}
+
+// lossBands are the bands as losses see them; nil where none has a loss.
+func (s *Study) lossBands() []stats.LossBand {
+	var bands []stats.LossBand
+	any := false
+	for _, b := range s.Bands {
+		bands = append(bands, stats.LossBand{Level: b.Level, PerEvent: b.LossPerEvent, PerDay: b.LossPerDay})
+		any = any || b.LossPerEvent > 0 || b.LossPerDay > 0
+	}
+	if !any {
+		return nil
+	}
+	return bands
+}
+
+// law names how a drain's outflow grows with the height of the water above it.
+func (d *drainage) law() string {
+	if d.square > 0 {
+		return "quadratic"
+	}
+	return "linear"
+}
+
+// yearsOf is a time in days as years.
+func yearsOf(days float64) float64 { return days / 365.25 }
