@@ -100,6 +100,13 @@ func TestAgainstR(t *testing.T) {
 			t.Errorf("%v: got %.17g", row, got)
 		}
 	}
+	// Counts well below one have lower limits of 1e-20 and less, which are zero but for the formula.
+	nearly := func(row []string, got, want float64) {
+		t.Helper()
+		if !(math.Abs(got-want) <= max(1e-11*math.Abs(want), 1e-13)) {
+			t.Errorf("%v: got %.17g", row, got)
+		}
+	}
 	sample := []float64{5, 1, 4, 1, 9, 2.6, 5.35}
 	slices.Sort(sample)
 	seen := map[string]int{}
@@ -121,6 +128,14 @@ func TestAgainstR(t *testing.T) {
 			lo, hi := BinomialInterval(k, n, c)
 			same(row, lo, a)
 			same(row, hi, b)
+		case "gamma":
+			lo, hi := PoissonInterval(k, 1, c)
+			nearly(row, lo, a)
+			same(row, hi, b)
+		case "beta":
+			lo, hi := BinomialInterval(k, n, c)
+			nearly(row, lo, a)
+			nearly(row, hi, b)
 		case "expanded":
 			same(row, expandedTail(n, c), b)
 		case "sign":
@@ -132,7 +147,7 @@ func TestAgainstR(t *testing.T) {
 			t.Errorf("unknown row %v", row)
 		}
 	}
-	if len(seen) != 5 || len(rows) < 300 {
+	if len(seen) != 7 || len(rows) < 500 {
 		t.Errorf("the table has %v", seen)
 	}
 }
@@ -208,6 +223,64 @@ func TestIntervalsCover(t *testing.T) {
 	})
 }
 
+// TestFractionsOfACount: limits of counts with a fraction lie between those of the whole counts on either side, rise
+// with the count, and do not jump where a count is whole or none or all.
+func TestFractionsOfACount(t *testing.T) {
+	const rounding = 1e-12
+	rapid.Check(t, func(t *rapid.T) {
+		n := rapid.IntRange(1, 120).Draw(t, "n")
+		whole := rapid.IntRange(0, n-1).Draw(t, "whole")
+		c := rapid.Float64Range(0.05, 0.999).Draw(t, "confidence")
+		part := rapid.Float64Range(0, 1).Draw(t, "part")
+		more := rapid.Float64Range(0, 1).Draw(t, "more")
+		below := float64(whole)
+		k := below + min(part, more)
+		next := below + max(part, more)
+		for name, limits := range map[string]func(float64) (float64, float64){
+			"poisson":  func(k float64) (float64, float64) { return PoissonInterval(k, float64(n), c) },
+			"binomial": func(k float64) (float64, float64) { return BinomialInterval(k, n, c) },
+		} {
+			last := [2]float64{math.Inf(-1), math.Inf(-1)}
+			for _, x := range []float64{below, k, next, below + 1} {
+				lo, hi := limits(x)
+				rate := x / float64(n)
+				if !(lo >= last[0]-rounding && hi >= last[1]-rounding) || !(lo <= rate+rounding && hi >= rate-rounding) {
+					t.Fatalf("%s, %v of %d at %v: %v to %v after %v", name, x, n, c, lo, hi, last)
+				}
+				last = [2]float64{lo, hi}
+			}
+			const little = 1e-9
+			for _, x := range []float64{below, below + 1} {
+				lo, hi := limits(x)
+				for _, by := range []float64{-little, little} {
+					if x+by < 0 || x+by > float64(n) {
+						continue
+					}
+					if l, h := limits(x + by); math.Abs(l-lo) > 1e-7 || math.Abs(h-hi) > 1e-7 {
+						t.Fatalf("%s, %v of %d at %v: %v to %v, beside it %v to %v", name, x, n, c, lo, hi, l, h)
+					}
+				}
+			}
+		}
+	})
+}
+
+// TestFractionsByHand has limits in closed form. A gamma distribution of shape 1/2 is half the square of a normal
+// variable; its quantile at 5 % is that of a normal variable at 52.5 %, 0.0627068 (from memory, recomputed from the
+// error function). A beta distribution of shapes 1/2 and 1/2 is the arcsine law: its p-quantile is sin²(πp/2).
+func TestFractionsByHand(t *testing.T) {
+	z := math.Sqrt2 * math.Erfinv(0.05)
+	within(t, 0.5e-7, "z", 0.5, z, 0.0627068)
+	lo, _ := PoissonInterval(0.5, 1, 0.9)
+	within(t, 1e-14, "lower", 0.5, lo, z*z/2)
+	// B(0.95; 3/2, 1/2) of half an outcome in one trial solves (2/π)(asin(√x) - √(x(1-x))) = 0.95.
+	_, hi := BinomialInterval(0.5, 1, 0.9)
+	within(t, 1e-12, "upper", 0.5, 2/math.Pi*(math.Asin(math.Sqrt(hi))-math.Sqrt(hi*(1-hi))), 0.95)
+	// and its mirror the lower end.
+	lo, _ = BinomialInterval(0.5, 1, 0.9)
+	within(t, 1e-12, "lower", 0.5, lo, 1-hi)
+}
+
 func TestQuantile(t *testing.T) {
 	x := []float64{1, 2, 3, 4}
 	for _, tt := range []struct{ p, want float64 }{{0, 1}, {1, 4}, {0.5, 2.5}, {1 / 3.0, 2}, {0.25, 1.75}} {
@@ -249,6 +322,17 @@ func TestMistakesPanic(t *testing.T) {
 		"confidence 0":      func() { r.Interval(make([]float64, 3), 0) },
 		"more than all":     func() { BinomialInterval(3, 2, 0.9) },
 		"negative events":   func() { PoissonInterval(-1, 2, 0.9) },
+		"NaN events":        func() { PoissonInterval(math.NaN(), 2, 0.9) },
+		"a little too many": func() { BinomialInterval(2.0000001, 2, 0.9) },
+		"NaN of 2":          func() { BinomialInterval(math.NaN(), 2, 0.9) },
+		"nothing to mean":   func() { Average(nil, nil) },
+		"weights too few":   func() { Average(make([]Exceedance, 2), []float64{1}) },
+		"weights too light": func() { Average(make([]Exceedance, 2), []float64{0.5, 0.4}) },
+		"negative weight":   func() { Average(make([]Exceedance, 2), []float64{1.5, -0.5}) },
+		"uneven series":     func() { AverageSeries([][]float64{{1}, {1, 2}}, []float64{0.5, 0.5}) },
+		"losses of others":  func() { Losses(nil, plain(0), make([]LossBand, 2), make([]Exceedance, 1)) },
+		"bands falling":     func() { Losses(nil, plain(0), []LossBand{{Level: 2}, {Level: 1}}, make([]Exceedance, 2)) },
+		"losses too long":   func() { Losses([]float64{1}, plain(2), nil, nil) },
 		"negative years":    func() { SignTest(-1, 2) },
 		"other years":       func() { r.Means(make([]float64, 2)) },
 		"other years again": func() { r.Compare(make([]float64, 3), make([]float64, 4), 0.9) },
