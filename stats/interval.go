@@ -16,12 +16,14 @@ import (
 // hi = -ln(a)/T, which is 3.0/T at 90 %. Without a year nothing is known: lo = 0, hi = +Inf.
 //
 // A count that is the mean of several (see Average) may have a fraction. The same formula then takes it as it is, as
-// quantiles of gamma distributions of shape k and k+1: the limits rise without a step from those of one whole count
-// to those of the next, and keep the distance of a whole event between the two shapes, which is what makes them safe.
-// They are of one count: that the mean of several counts scatters less than one of them is not made use of.
+// quantiles of gamma distributions of shapes k and k+1: the limits rise without a step from those of one whole count to
+// those of the next. They are as wide as those of a single count; that the mean of several may scatter less than one of
+// them is not made use of.
 //
-// Source: Garwood 1936, Biometrika 28:437-442, for whole counts. With fractions it is the interval of Fay & Feuer 1997,
-// Statist. Med. 16:791-801, where every weight is one (from memory).
+// Limits of a count well below one event may be off by 1e-13 of an event, where the lower one is next to nothing.
+//
+// Source: Garwood 1936, Biometrika 28:437-442, for whole counts. Counts with a fraction are common practice; Fay & Feuer
+// 1997, Statist. Med. 16:791-801, take such gamma quantiles for weighted sums of counts (from memory).
 func PoissonInterval(events, years, confidence float64) (lo, hi float64) {
 	a := tail(confidence)
 	if !(events >= 0) {
