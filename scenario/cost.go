@@ -2,7 +2,6 @@ package scenario
 
 import (
 	"math"
-	"slices"
 
 	"quietslope/scenario/result"
 	"quietslope/stats"
@@ -103,7 +102,7 @@ func (p *prepared) benefitFactor(f *optionFigures) float64 {
 
 // benefit is the present value of the losses that an option avoids.
 func (p *prepared) benefit(f, base *optionFigures) float64 {
-	if f == base {
+	if f == base || f.losses == nil {
 		return 0
 	}
 	return p.benefitFactor(f) * (stats.Mean(base.losses) - stats.Mean(f.losses))
@@ -170,47 +169,40 @@ func (p *prepared) toldApart(f, other *optionFigures, r *stats.Resamples) bool {
 	return r.Compare(m.byYear(&f.passed[on]), m.byYear(&other.passed[on]), confidence).ToldApart(confidence)
 }
 
-// frontier marks the options of known cost that no other makes pointless, and works out what each step from one of them to
-// the next dearer one brings for its cost.
+// frontier marks the options of known cost that no other makes pointless, and works out what each dearer one of them brings
+// for what it costs more than the last one that was worth its own step.
 func (p *prepared) frontier(options []optionFigures, r *stats.Resamples) {
 	if p.study.Count.DecideOn < 0 {
 		return
 	}
+	base := &options[p.baseline]
 	var known []*optionFigures
-	var costs, figures []float64
+	var costs, figures, benefits []float64
 	for i := range options {
 		if f := &options[i]; f.Cost != nil {
 			known = append(known, f)
 			costs, figures = append(costs, f.Cost.PresentValue), append(figures, f.Decision.Value)
+			benefits = append(benefits, p.benefit(f, base))
 		}
 	}
-	var order []*optionFigures // on the frontier, the cheapest first
+	var among []int
 	for i, by := range money.Frontier(costs, figures) {
 		on := by < 0
 		known[i].Decision.OnFrontier = &on
 		if on {
-			order = append(order, known[i])
+			among = append(among, i)
 		} else {
 			known[i].Decision.DominatedBy = known[by].Name
 		}
 	}
-	slices.SortStableFunc(order, func(a, b *optionFigures) int {
-		switch x, y := a.Cost.PresentValue, b.Cost.PresentValue; {
-		case x < y:
-			return -1
-		case x > y:
-			return 1
-		}
-		return 0
-	})
-	base := &options[p.baseline]
-	for k := 1; k < len(order); k++ {
-		from, to := order[k-1], order[k]
-		to.Cost.StepFrom = from.Name
-		more := to.Cost.PresentValue - from.Cost.PresentValue
-		if more > 0 && to.losses != nil && p.toldApart(to, from, r) {
-			ratio := (p.benefit(to, base) - p.benefit(from, base)) / more
-			to.Cost.StepBenefitCost = &ratio
+	if base.losses == nil {
+		return
+	}
+	differ := func(option, against int) bool { return p.toldApart(known[option], known[against], r) }
+	for _, step := range money.Steps(costs, benefits, among, differ) {
+		if step.Against >= 0 {
+			c := known[step.Option].Cost
+			c.StepFrom, c.StepBenefitCost = known[step.Against].Name, step.Ratio
 		}
 	}
 }

@@ -107,12 +107,11 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 		f.Bands = append(f.Bands, p.bandFigure(&p.study.Bands[i], &e))
 	}
 	if parts[0].losses != nil {
-		f.losses = make([]float64, p.counted.years)
-		for i, part := range parts {
-			for y, loss := range part.losses {
-				f.losses[y] += weights[i] * loss
-			}
+		var losses [][]float64
+		for _, part := range parts {
+			losses = append(losses, part.losses)
 		}
+		f.losses = stats.AverageSeries(losses, weights)
 	}
 	return f
 }

@@ -192,7 +192,7 @@ type Cost struct {
 	NetBenefit        *float64  `json:"net_benefit,omitempty"`
 	NetBenefitCI      *Interval `json:"net_benefit_ci,omitempty"`
 	BenefitCost       *float64  `json:"benefit_cost,omitempty"`
-	StepFrom          string    `json:"step_from,omitempty"` // the next cheaper option that is not dominated
+	StepFrom          string    `json:"step_from,omitempty"` // the last cheaper option that was worth its own step
 	StepBenefitCost   *float64  `json:"step_benefit_cost,omitempty"`
 	BreakEvenLoss     *float64  `json:"break_even_loss_per_event,omitempty"`
 	ToldApart         bool      `json:"told_apart"` // from the baseline, on the band and by the figure that decide

@@ -58,8 +58,8 @@ type Step struct {
 	Against int      // index of the last option before it that was worth its step; -1 for the first
 	Cost    float64  // what it costs more
 	Benefit float64  // what it brings more
-	Ratio   *float64 // Benefit/Cost; nil for the first, and where it costs no more
-	Pays    bool     // it brings more, and at least what it costs more; true for the first
+	Ratio   *float64 // Benefit/Cost; nil for the first, where it costs no more, and where the two are not known to differ
+	Pays    bool     // it is known to bring more, and at least what it costs more; true for the first
 }
 
 // Steps compares options by what each next one adds: in order of cost, each option is set against the last one before it
@@ -70,10 +70,11 @@ type Step struct {
 //
 // Costs and benefits are present values, or amounts per year, both the same. Among are the indices of the options to
 // compare, such as those on the frontier. Of options that cost the same, the one with the greatest benefit comes first.
+// Differ tells whether two options are known to differ in what they bring; a step that may bring nothing does not pay.
 //
 // Source: the incremental benefit-cost ratio of mutually exclusive alternatives, Newnan, Eschenbach & Lavelle,
 // Engineering Economic Analysis, chapter on economic analysis in the public sector.
-func Steps(costs, benefits []float64, among []int) []Step {
+func Steps(costs, benefits []float64, among []int, differ func(option, against int) bool) []Step {
 	if len(costs) != len(benefits) {
 		panic("money: costs and benefits differ in number")
 	}
@@ -88,9 +89,12 @@ func Steps(costs, benefits []float64, among []int) []Step {
 		s := Step{Option: i, Against: last, Pays: true}
 		if last >= 0 {
 			s.Benefit = benefits[i] - benefits[last]
-			s.Pays = stats.Less(benefits[last], benefits[i])
+			apart := differ(i, last)
+			s.Pays = apart && stats.Less(benefits[last], benefits[i])
 			if rank[i] != rank[last] {
 				s.Cost = costs[i] - costs[last]
+			}
+			if rank[i] != rank[last] && apart {
 				ratio := s.Benefit / s.Cost
 				s.Ratio = &ratio
 				s.Pays = s.Pays && !stats.Less(s.Benefit, s.Cost)

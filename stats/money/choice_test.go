@@ -132,9 +132,9 @@ func TestStepsPublished(t *testing.T) {
 		k := len(costs) - 1
 		printed(t, "cost of a dam", costs[k], d.cost, 0)
 		printed(t, "ratio of a dam", benefits[k]/costs[k], d.ratio, 2)
-		checkSteps(t, "one dam", Steps(costs, benefits, []int{k, 0}), 2, []step{{0, -1, none, true}, {k, 0, d.ratio, d.ratio > 1}})
+		checkSteps(t, "one dam", Steps(costs, benefits, []int{k, 0}, always), 2, []step{{0, -1, none, true}, {k, 0, d.ratio, d.ratio > 1}})
 	}
-	checkSteps(t, "dams", Steps(costs, benefits, all(5)), 2, []step{
+	checkSteps(t, "dams", Steps(costs, benefits, all(5), always), 2, []step{
 		{0, -1, none, true}, {1, 0, 1.46, true}, {3, 1, -1.85, false}, {2, 1, 1.36, true}, {4, 2, 0.35, false},
 	})
 
@@ -144,14 +144,14 @@ func TestStepsPublished(t *testing.T) {
 	first, second := 1.2e6*Recovery(0.08, 10), 2e6*Recovery(0.08, 20)
 	same(t, "capital a year", first, 178834.8, 0.6/178834.8) // from a factor of six decimals
 	same(t, "capital a year", second, 203704, 1/203704.0)
-	checkSteps(t, "problem 9.33", Steps([]float64{0, first + 80000, second + 75000}, []float64{0, 430000, 440000}, all(3)), 2, []step{
+	checkSteps(t, "problem 9.33", Steps([]float64{0, first + 80000, second + 75000}, []float64{0, 430000, 440000}, all(3), always), 2, []step{
 		{0, -1, none, true}, {1, 0, 1.66, true}, {2, 1, 0.50, false},
 	})
 	printed(t, "problem 9.33, last step", 10000/(second+75000-first-80000), 10000/19869.2, 4)
 
 	// The same book, problem 9.36, at 0.5 % a month over 60 months: 60 and 500 for 1.25 and 8 a month. Printed: 1.08 and 0.79.
 	month := Recovery(0.005, 60)
-	checkSteps(t, "problem 9.36", Steps([]float64{0, 60 * month, 500 * month}, []float64{0, 1.25, 8}, all(3)), 2, []step{
+	checkSteps(t, "problem 9.36", Steps([]float64{0, 60 * month, 500 * month}, []float64{0, 1.25, 8}, all(3), always), 2, []step{
 		{0, -1, none, true}, {1, 0, 1.08, true}, {2, 1, 0.79, false},
 	})
 
@@ -163,7 +163,7 @@ func TestStepsPublished(t *testing.T) {
 		costs = append(costs, p[0]+p[1]*Annuity(0.10, 50)-p[2]*Discount(0.10, 50))
 		benefits = append(benefits, p[3]*Annuity(0.10, 50))
 	}
-	checkSteps(t, "example 10-7", Steps(costs, benefits, all(4)), 2, []step{
+	checkSteps(t, "example 10-7", Steps(costs, benefits, all(4), always), 2, []step{
 		{0, -1, none, true}, {1, 0, 1.34, true}, {2, 1, 0.91, false}, {3, 1, 1.16, true},
 	})
 }
@@ -200,7 +200,7 @@ func TestSteps(t *testing.T) {
 		if among == nil {
 			among = all(len(tt.costs))
 		}
-		checkSteps(t, tt.name, Steps(tt.costs, tt.benefits, among), 12, tt.want)
+		checkSteps(t, tt.name, Steps(tt.costs, tt.benefits, among, always), 12, tt.want)
 	}
 }
 
@@ -211,7 +211,7 @@ func TestStepsLeadToTheBest(t *testing.T) {
 		n := rapid.IntRange(1, 10).Draw(t, "options")
 		amount := rapid.Map(rapid.IntRange(0, 20), func(n int) float64 { return float64(n) / 4 })
 		costs, benefits := rapid.SliceOfN(amount, n, n).Draw(t, "costs"), rapid.SliceOfN(amount, n, n).Draw(t, "benefits")
-		steps := Steps(costs, benefits, rapid.Permutation(all(n)).Draw(t, "order"))
+		steps := Steps(costs, benefits, rapid.Permutation(all(n)).Draw(t, "order"), always)
 		best, last := math.Inf(-1), -1
 		for i := range n {
 			best = max(best, benefits[i]-costs[i])
@@ -228,4 +228,16 @@ func TestStepsLeadToTheBest(t *testing.T) {
 			t.Fatalf("the steps lead to %d", last)
 		}
 	})
+}
+
+// always stands for options that are known to differ.
+func always(int, int) bool { return true }
+
+// TestStepsUnknown: an option that is not known to differ from the one below it has no ratio, and the next step starts from
+// that one again.
+func TestStepsUnknown(t *testing.T) {
+	none := math.NaN()
+	unknown := func(option, against int) bool { return option != 1 }
+	checkSteps(t, "not known", Steps([]float64{0, 10, 20}, []float64{0, 40, 50}, all(3), unknown), 12,
+		[]step{{0, -1, none, true}, {1, 0, none, false}, {2, 0, 2.5, true}})
 }

@@ -314,7 +314,7 @@ func TestMistakesPanic(t *testing.T) {
 		"negative horizon": func() { Plan{Life: 3}.Renewals(-1) },
 		"start NaN":        func() { BenefitFactor(0.03, 50, math.NaN()) },
 		"costs missing":    func() { Frontier(nil, []float64{1}) },
-		"benefits missing": func() { Steps([]float64{1}, nil, nil) },
+		"benefits missing": func() { Steps([]float64{1}, nil, nil, always) },
 	} {
 		func() {
 			defer func() {
