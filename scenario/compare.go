@@ -44,8 +44,9 @@ type weighted struct {
 	weight float64
 }
 
-// prepare reads the record, replays the baseline and settles the years that are counted.
-func prepare(ctx context.Context, s *Study) (*prepared, error) {
+// prepare reads the record, replays the baseline and settles the years that are counted. A warm-up that is left to the tool is
+// long enough for the works besides those of the study too.
+func prepare(ctx context.Context, s *Study, besides ...*works) (*prepared, error) {
 	record, err := weather.Read(ctx, weatherSource(s))
 	if err != nil {
 		return nil, err
@@ -54,7 +55,7 @@ func prepare(ctx context.Context, s *Study) (*prepared, error) {
 	if err := p.work(); err != nil {
 		return nil, err
 	}
-	var all []*works
+	all := besides
 	for _, c := range p.cases {
 		all = append(all, c.works...)
 	}

@@ -36,6 +36,15 @@ func (s *Study) metres(m *Measure) float64 {
 	return 0
 }
 
+// metresOf is the length of all drains of an option, m; 0 where it is not known.
+func (s *Study) metresOf(o *Option) float64 {
+	sum := 0.0
+	for i := range o.Measures {
+		sum += s.metres(&o.Measures[i])
+	}
+	return sum
+}
+
 // cost is what an option costs by itself; nil where the study does not say. The baseline costs nothing unless it says so.
 func (s *Study) cost(o *Option) *result.Cost {
 	if s.Money == nil || o.Costs == nil && !o.Baseline {
@@ -50,16 +59,15 @@ func (s *Study) cost(o *Option) *result.Cost {
 		renewals += plan.Renewals(horizon)
 	}
 	c.AnnualEquivalent = c.PresentValue * money.Recovery(s.Money.Rate, horizon)
-	metres, flushes, flushed := 0.0, 0, false
+	flushes, flushed := 0, false
 	for i := range o.Measures {
 		m := &o.Measures[i]
-		metres += s.metres(m)
 		if d := m.decline(); d != nil && !math.IsInf(d.Every, 1) {
 			flushed = true
 			flushes += money.Plan{FlushedEvery: d.Every}.Flushes(horizon)
 		}
 	}
-	if metres > 0 {
+	if metres := s.metresOf(o); metres > 0 {
 		c.Metres = &metres
 	}
 	if flushed {

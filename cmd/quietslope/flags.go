@@ -24,6 +24,8 @@ const (
 	flagCondition = "condition"
 	flagFrom      = "from"
 	flagTo        = "to"
+	flagVary      = "vary"
+	flagBetween   = "between"
 )
 
 // format is a way to write a result.

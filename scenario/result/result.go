@@ -329,6 +329,36 @@ type Decision struct {
 	DominatedBy string `json:"dominated_by,omitempty"` // such an option
 }
 
+// Size is the result of size: one number of an option over a range, and the value that just meets the target.
+type Size struct {
+	Head
+	Settings  Settings `json:"settings"`
+	Option    string   `json:"option"`
+	Condition string   `json:"condition"`
+	Vary      string   `json:"vary"`
+	Unit      string   `json:"unit"` // of the values; share for shares, blank for plain numbers
+	DecideOn  string   `json:"decide_on"`
+	Measure   string   `json:"measure"` // of the figures
+	Target    *Target  `json:"target,omitempty"`
+	// Answer is the last value, counted from the safe end, before the first whose figure misses the target. Shown is the
+	// same for the end of the figure's range.
+	Answer     *SizePoint  `json:"answer,omitempty"`
+	Shown      *SizePoint  `json:"shown,omitempty"`
+	MeetsAgain []float64   `json:"meets_again,omitempty"` // values of the curve beyond the first miss that meet the target
+	Reason     string      `json:"reason,omitempty"`      // why there is no answer, or why it is an end of the range
+	Curve      []SizePoint `json:"curve"`                 // in order of value
+}
+
+// SizePoint is the option with one value of the number.
+type SizePoint struct {
+	Value        float64   `json:"value"`
+	Figure       float64   `json:"figure"`
+	CI           *Interval `json:"ci,omitempty"`
+	Meets        string    `json:"meets,omitempty"` // the target: yes, no, not_shown
+	Metres       *float64  `json:"metres,omitempty"`
+	PresentValue *float64  `json:"present_value,omitempty"`
+}
+
 // Check is the result of check.
 type Check struct {
 	Head
