@@ -29,14 +29,14 @@ import (
 // function: E. T. Whittaker & G. N. Watson, A Course of Modern Analysis, ch. 21 (from memory). With the terms below both
 // are exact to 1e-15, so there is no step between them.
 func EquivalentDepth(below, radius, spacing float64) float64 {
-	x := 2 * math.Pi * below / spacing
+	x := 2 * math.Pi * (below / spacing)
 	if x < 1 {
 		// The term pi^2/(4x) is the resistance of the depth D itself: taken out, nothing overflows for a small D.
 		lost := math.Log(below/(math.Pi*radius)) - 2*math.Log1p(math.Exp(-math.Pi*math.Pi/x)+math.Exp(-3*math.Pi*math.Pi/x))
 		if lost <= 0 {
 			return below
 		}
-		return below / (1 + 8*below/(math.Pi*spacing)*lost)
+		return below / (1 + 4/(math.Pi*math.Pi)*x*lost)
 	}
 	q := math.Exp(-2 * x)
 	q4 := q * q * q * q
@@ -45,7 +45,7 @@ func EquivalentDepth(below, radius, spacing float64) float64 {
 	if resistance <= 0 {
 		return below
 	}
-	return min(below, math.Pi*spacing/(8*resistance))
+	return min(below, math.Pi/8*spacing/resistance)
 }
 
 // MoodyDepth returns the equivalent depth, m, by another closed form, with the arguments of [EquivalentDepth]:
@@ -53,7 +53,7 @@ func EquivalentDepth(below, radius, spacing float64) float64 {
 //	d = D/(1 + D/L*(8/pi*ln(D/r) - (3.55 - 1.6*D/L + 2*(D/L)^2)))    D/L up to 0.3
 //	d = pi*L/(8*(ln(L/r) - 1.15))                                    D/L above 0.3
 //
-// It was made to give Hooghoudt's table, which joins the radial and the level flow at 0.7*D, and gives it within 0.6 %. It
+// It was made to give Hooghoudt's table, which joins the radial and the level flow at 0.7*D, and gives it within 0.7 %. It
 // lies above [EquivalentDepth], by up to 6.5 % where D is eight radii or more, and by some 0.1 % for an infinite D. At
 // D/L = 0.3 it steps down by up to 0.6 %, for spacings of a hundred radii or more. The result is never above D.
 //
@@ -72,7 +72,7 @@ func MoodyDepth(below, radius, spacing float64) float64 {
 	if resistance <= 0 {
 		return below
 	}
-	return min(below, math.Pi*spacing/(8*resistance))
+	return min(below, math.Pi/8*spacing/resistance)
 }
 
 // TrenchRadius returns the radius, m, of the round drain that takes in water as a trench or a body of gravel does whose
@@ -96,7 +96,7 @@ const least = 1e-6
 // fails where the closest drains do not carry the flow, and where the widest do.
 func SteadySpacing(flow, head, above, below float64, equivalent func(spacing float64) float64) (float64, error) {
 	if !(flow > 0 && head > 0) {
-		return 0, fmt.Errorf("no spacing goes with a flow of %v m/d and a water table %v m above the drains: both have to be above 0", flow, head)
+		return 0, fmt.Errorf("a flow of %v m/d and a water table %v m above the drains: both have to be above 0", flow, head)
 	}
 	carries := func(spacing float64) bool {
 		l := Layout{Spacing: spacing, Above: above, Below: below, Equivalent: equivalent(spacing)}

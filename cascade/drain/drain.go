@@ -23,8 +23,8 @@
 // water flows below the drains, with a mean of 2/3 of h, and an ellipse where it flows above them, with a mean of pi/4 of
 // h: it holds less water than 8/pi^2 of h. Judged by the water that is stored, the linear rate is therefore low at a true
 // steady state, by 1 - pi^2/12 = 18 % for flow below the drains and by 1 - pi^3/32 = 3 % for flow above them; the
-// quadratic law by 18 % and 1 - pi^6/1024 = 6 %. The stores hold the water for longer than the ground would, which is on
-// the safe side.
+// quadratic law by 18 % and 1 - pi^6/1024 = 6 %. The stores hold more water for the same flow than the ground does, which is
+// on the safe side. The linear law at a water table well below the height that it was worked out for is not.
 package drain
 
 import "math"

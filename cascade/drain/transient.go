@@ -28,7 +28,7 @@ func StepOutflow(t float64) float64 {
 	if t < early {
 		root := math.Sqrt(t)
 		z := math.Pi / (2 * root)
-		return 4 * root / math.Pi * (1/math.Sqrt(math.Pi) - 2*(ierfc(z)-ierfc(2*z)+ierfc(3*z)))
+		return 4 * root / math.Pi * (1/math.Sqrt(math.Pi) - 2*(ierfc(z)-ierfc(2*z)))
 	}
 	sum := 0.0
 	for n := 9.0; n > 0; n -= 2 {
@@ -55,7 +55,7 @@ func StepHead(t float64) float64 {
 	if t < early {
 		late := 0.0
 		sign := 1.0
-		for k := 1.0; k <= 9; k += 2 {
+		for k := 1.0; k <= 5; k += 2 {
 			z := k * math.Pi / (4 * math.Sqrt(t))
 			late += sign * (math.Erfc(z) - 2*z*ierfc(z))
 			sign = -sign
