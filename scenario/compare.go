@@ -198,12 +198,16 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 		c.Settings.Against = s.Options[against].Name
 	}
 	raised := make([]warnings, len(p.cases))
+	laws := warnings{}
 	for k, w := range p.cases {
 		options := all[k*n : (k+1)*n]
 		rank(s, options)
 		p.costs(options, resamples)
 		if k == 0 {
 			if err := p.states(ctx, options, resamples); err != nil {
+				return nil, err
+			}
+			if err := p.lawWarnings(ctx, &laws, options, resamples); err != nil {
 				return nil, err
 			}
 		}
@@ -215,6 +219,12 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 		raised[k] = p.resultWarnings(options, against, resamples)
 	}
 	ws := warnings(p.studyWarnings(all[:n]))
+	for i := range all[:n] {
+		p.actionWarnings(&ws, &all[i])
+	}
+	ws = append(ws, laws...)
+	p.targetWarnings(&ws, all[:n])
+	p.worthWarnings(&ws, all[:n], resamples)
 	conversion, err := p.conversion(ctx)
 	if err != nil {
 		return nil, err
@@ -348,11 +358,15 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 	if d.layer == inDeep {
 		levels, porosity, carried = t.deep, w.ground.DeepPorosity, t.counted.Deep.Drains
 	}
-	running := 0
+	running, head, full := 0, 0.0, 0.0
 	counted := levels[p.counted.from:p.counted.to]
-	for _, h := range counted {
-		if h > d.invert && d.rate > 0 {
+	for i, h := range counted {
+		if h > d.invert && d.rate+d.square > 0 {
 			running++
+			head += h - d.invert
+			if outlet.Flow(storage(h, porosity)) >= outlet.Ceiling {
+				full += p.counted.calendar.Days[p.counted.from+i]
+			}
 		}
 	}
 	peak := outlet.Flow(storage(largest(counted), porosity)) // a higher level never carries less
@@ -360,6 +374,14 @@ func (p *prepared) drainFigures(t *trace, d drainage) result.Drain {
 		Measure: d.measure, Layer: d.layer, RatePerDay: d.rate, InvertM: d.invert, CeilingMMPerDay: finite(d.ceiling),
 		Law: d.law(), RunningShare: float64(running) / float64(len(counted)),
 		MeanMMPerDay: carried[d.index] / t.counted.Days, PeakMMPerDay: peak,
+	}
+	if running > 0 {
+		head /= float64(running)
+		f.MeanHeadM = &head
+	}
+	if !math.IsInf(d.ceiling, 1) {
+		full /= float64(p.counted.years)
+		f.CeilingDaysPerYear = &full
 	}
 	if area := p.study.Site.PlanArea; area > 0 {
 		// 1 mm over 1 m² is 1 L.

@@ -47,6 +47,21 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 		d := parts[0].Drains[i]
 		d.RatePerDay = asNew.drains[i].rate
 		d.RunningShare = of(func(f *optionFigures) float64 { return f.Drains[i].RunningShare })
+		d.MeanHeadM, d.CeilingDaysPerYear = nil, nil
+		var head, heads, full float64
+		for k, part := range parts {
+			if h := part.Drains[i].MeanHeadM; h != nil { // the drain runs at this age
+				head, heads = head+weights[k]*part.Drains[i].RunningShare**h, heads+weights[k]*part.Drains[i].RunningShare
+			}
+			if days := part.Drains[i].CeilingDaysPerYear; days != nil {
+				full += weights[k] * *days
+				d.CeilingDaysPerYear = &full
+			}
+		}
+		if heads > 0 {
+			head /= heads
+			d.MeanHeadM = &head
+		}
 		d.MeanMMPerDay = of(func(f *optionFigures) float64 { return f.Drains[i].MeanMMPerDay })
 		for _, part := range parts {
 			if other := part.Drains[i]; other.PeakMMPerDay > d.PeakMMPerDay {

@@ -92,7 +92,10 @@ func (p *prepared) studyWarnings(options []optionFigures) []result.Warning {
 		}
 		p.drainWarnings(&ws, w, replayed)
 		p.practiceWarnings(&ws, w)
+		p.designWarnings(&ws, w)
+		p.effectWarnings(&ws, w)
 	}
+	p.moneyWarnings(&ws)
 	return ws
 }
 
@@ -366,83 +369,6 @@ func firstOf(words []string, sep string, most int) string {
 	return strings.Join(words[:most], sep) + fmt.Sprintf(" and %d more", len(words)-most)
 }
 
-// drainWarnings hold each drain of an option against the levels without works and, where the option was replayed, against
-// what it carried.
-func (p *prepared) drainWarnings(ws *warnings, w *works, replayed []result.Drain) {
-	for i, d := range w.drains {
-		levels := p.base.cover
-		if d.layer == inDeep {
-			levels = p.base.deep
-		}
-		levels = levels[p.counted.from:p.counted.to]
-		dry := 0
-		for _, h := range levels {
-			if h <= d.invert {
-				dry++
-			}
-		}
-		share := float64(dry) / float64(len(levels))
-		at := warn("drain_never_runs")
-		at.Option = w.option.Name
-		switch {
-		case replayed != nil && replayed[i].RunningShare == 0 && dry < len(levels):
-			ws.add(at, "The %s lie at %.2f m, and in this option the %s level is never above that: what else the option does leaves them nothing to carry. Set them deeper or leave them out.",
-				measureWords(d.measure), d.invert, d.layer)
-		case replayed != nil && replayed[i].RunningShare == 0, replayed == nil && dry == len(levels):
-			ws.add(at, "The %s lie at %.2f m and the baseline's %s level never rises above %.2f m: they do nothing in this record. Set them deeper where there is water below them, or check why there is none.",
-				measureWords(d.measure), d.invert, d.layer, largest(levels))
-		case share > drainDryShare:
-			at.Code = "drain_runs_rarely"
-			ws.add(at, "The %s lie at %.2f m, at or above the baseline's %s level on %.0f %% of the steps. They act on the highest levels only; make sure that this is meant.",
-				measureWords(d.measure), d.invert, d.layer, math.Floor(100*share))
-		}
-		if !plausibleRate(d.rate) {
-			at.Code = "implausible_drain_rate"
-			ws.add(at, "The %s drain at %s /d; usual are %s to %s /d. Check conductivity, spacing and their units.",
-				measureWords(d.measure), short(d.rate), short(leastRate), short(mostRate))
-		}
-	}
-}
-
-func plausibleRate(r float64) bool { return r >= leastRate && r <= mostRate }
-
-// practiceWarnings hold the works as planned against common practice.
-func (p *prepared) practiceWarnings(ws *warnings, w *works) {
-	for _, m := range w.option.Measures {
-		at := warn("")
-		at.Option = w.option.Name
-		switch {
-		case m.Trench != nil:
-			if m.Trench.Depth > mostTrenchDepth {
-				at.Code = "trench_deep"
-				ws.add(at, "Trenches %.1f m deep are beyond common practice (about %.0f m). Check that they can be built on moving ground.", m.Trench.Depth, mostTrenchDepth)
-			}
-			if k := m.Trench.Conductivity; k != 0 && !(k >= leastConductivity && k <= mostConductivity) {
-				at.Code = "implausible_ground"
-				ws.add(at, "The trench's conductivity is %s m/d; usual are %s to %s m/d. Check the unit and the source.", short(k), short(leastConductivity), short(mostConductivity))
-			}
-		case m.Bored != nil:
-			if m.Bored.Length > mostBoreLength {
-				at.Code = "bore_long"
-				ws.add(at, "Bores %.0f m long are beyond common practice (about %.0f m). Long bores deviate and miss the water.", m.Bored.Length, mostBoreLength)
-			}
-			if m.Bored.Efficiency > mostBoredShare {
-				at.Code = "bored_drains_efficient"
-				ws.add(at, "Bored drains are taken as %.0f %% efficient. In clay they often reach less water than planned; see what a lower efficiency does.", 100*m.Bored.Efficiency)
-			}
-		case m.Cut != nil && m.Cut.KeptOut > mostKeptOut:
-			at.Code = "much_kept_out"
-			ws.add(at, "Surface water works are taken to keep out %s %% of the infiltration. That is a share over the whole plan area, so run-off from at least that share of it must be collected and led away from the slope; check that it can be, or lower kept_out.", short(100*m.Cut.KeptOut))
-		case m.Vegetation != nil && (m.Vegetation.PETFactor != 1 || m.Vegetation.Interception > 0):
-			at.Code = "planting_at_once"
-			ws.add(at, "The planting acts in full from the first day and alike in all seasons. It takes years to grow, and does little in winter, when levels are high; do not count on it for the first years, and see what half of it does.")
-		case m.CutOff != nil && m.CutOff.Intercepted > mostIntercepted:
-			at.Code = "cut_off_complete"
-			ws.add(at, "The cut-off drain is taken to intercept %s %% of the lateral inflow. Water passes below and around it: no more can be taken than the share of the wet depth that it cuts; check its depth against that, or lower intercepted.", short(100*m.CutOff.Intercepted))
-		}
-	}
-}
-
 // conversionWarnings say where converted rates do not stand for the scheme that they were calibrated with.
 func conversionWarnings(ws *warnings, c *result.Conversion) {
 	switch {
@@ -455,8 +381,6 @@ func conversionWarnings(ws *warnings, c *result.Conversion) {
 			c.Scheme, c.LargestDifference.DeepM, c.LargestDifference.DeepAt)
 	}
 }
-
-func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }
 
 // resultWarnings are those that the replays of one case raise. Changes are against one of the options.
 func (p *prepared) resultWarnings(options []optionFigures, against int, r *stats.Resamples) warnings {
