@@ -39,13 +39,13 @@ func (p *pair) curve(u, a float64) curve {
 	return c
 }
 
-// rests tells whether the store is at its upper root but for rounding, and puts it there: nothing of a motion of 1e-17 mm
-// is left in a storage of 1 mm.
+// rests tells whether the store is at its upper root but for rounding, and puts it there for any time: nothing of a motion
+// of 1e-17 mm is left in a storage of 1 mm.
 func (c *curve) rests() bool {
 	if !(c.w2 > 0 && math.Abs(c.root) <= 1e-17*(1+c.u)) {
 		return false
 	}
-	c.u, c.v = max(c.u+c.root, 0), 0
+	*c = curve{u: max(c.u+c.root, 0)}
 	return true
 }
 
@@ -233,7 +233,11 @@ func (c *curve) turns(p *pair, gain, h float64) float64 {
 
 // glideCurved is glide where the cover has a drain with a square. It leaves steps to walk that are longer than a part, or
 // than the deep store allows for the same formula; the bound of S2 holds as it does there.
-func (r *Run) glideCurved(t *table, p *pair, perDay float64, depths, cover, deep []float64) int {
+func (r *Run) glideCurved(t *table, perDay float64, depths, cover, deep []float64) int {
+	p := r.pair()
+	if p.held2 {
+		return 0
+	}
 	cached := &t.lags[r.i*len(r.deep.base)+r.j]
 	if !cached.known {
 		*cached = p.lag(t.days)
@@ -283,6 +287,6 @@ func (r *Run) glideCurved(t *table, p *pair, perDay float64, depths, cover, deep
 	}
 	r.u1, r.u2 = u1, u2
 	r.sums.in.add(sum)
-	r.count(p, float64(n)*days, volume1*days, squares1*days, volume2, 0)
+	r.count(&p, float64(n)*days, volume1*days, squares1*days, volume2, 0)
 	return n
 }

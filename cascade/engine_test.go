@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"slices"
 	"strings"
 	"testing"
 
@@ -22,7 +23,8 @@ func check(t *testing.T, property func(*rapid.T)) {
 	}
 }
 
-// drawModel draws a model in which every kind of outlet, breakpoint and capacity comes up. Rates go from 0 to most.
+// drawModel draws a model in which every kind of outlet, breakpoint and capacity comes up. Rates go from 0 to most. Half of
+// the models have a drain with a square.
 func drawModel(t *rapid.T, most float64) cascade.Model {
 	rate := func(name string) float64 {
 		if rapid.IntRange(0, 9).Draw(t, name+" zero") == 0 {
@@ -47,6 +49,13 @@ func drawModel(t *rapid.T, most float64) cascade.Model {
 		return s
 	}
 	m := cascade.Model{Cover: store("cover"), Deep: store("deep")}
+	if rapid.Bool().Draw(t, "has a square") {
+		d := cascade.Outlet{
+			Square: math.Pow(10, rapid.Float64Range(-6, math.Log10(most)).Draw(t, "square")), Ceiling: none,
+			Rate: rate("drain with a square"), Invert: float64(rapid.IntRange(0, 40).Draw(t, "invert of the square")) * 5,
+		}
+		m.Cover.Drains = slices.Insert(m.Cover.Drains, rapid.IntRange(0, len(m.Cover.Drains)).Draw(t, "place of the square"), d)
+	}
 	m.Percolation = cascade.Outlet{Rate: rate("percolation"), Ceiling: maybe("percolation ceiling", 0, 20)}
 	if rapid.Bool().Draw(t, "percolation has an invert") {
 		m.Percolation.Invert = rapid.Float64Range(0, 50).Draw(t, "percolation invert")
@@ -337,7 +346,10 @@ func TestMoreDrainageNeverRaises(t *testing.T) {
 		if rapid.Bool().Draw(t, "in the deep store") {
 			s = &n.Deep
 		}
-		kind := rapid.IntRange(0, 5).Draw(t, "change")
+		kind := rapid.IntRange(0, 6).Draw(t, "change")
+		if kind == 6 {
+			n.Cover.Drains, kind = moreSquare(t, m), -1
+		}
 		if kind > 1 && len(s.Drains) == 0 {
 			kind = 0
 		}
@@ -377,6 +389,19 @@ func TestMoreDrainageNeverRaises(t *testing.T) {
 	})
 }
 
+// moreSquare returns the drains of the cover with a greater square, or with a square if none had one.
+func moreSquare(t *rapid.T, m cascade.Model) []cascade.Outlet {
+	more := math.Pow(10, rapid.Float64Range(-6, 2).Draw(t, "more of a square"))
+	drains := slices.Clone(m.Cover.Drains)
+	for i := range drains {
+		if drains[i].Square > 0 {
+			drains[i].Square += more
+			return drains
+		}
+	}
+	return append(drains, cascade.Outlet{Square: more, Invert: rapid.Float64Range(0, 100).Draw(t, "invert of a square"), Ceiling: none})
+}
+
 // TestTimeScales: with rates and fluxes c times as great and steps 1/c as long everything is the same.
 func TestTimeScales(t *testing.T) {
 	check(t, func(t *rapid.T) {
@@ -385,7 +410,7 @@ func TestTimeScales(t *testing.T) {
 		days := rapid.SampledFrom(stepLengths).Draw(t, "days")
 		c := rapid.Float64Range(0.1, 10).Draw(t, "factor")
 		fast := func(o cascade.Outlet) cascade.Outlet {
-			return cascade.Outlet{Rate: o.Rate * c, Invert: o.Invert, Ceiling: o.Ceiling * c}
+			return cascade.Outlet{Rate: o.Rate * c, Square: o.Square * c, Invert: o.Invert, Ceiling: o.Ceiling * c}
 		}
 		faster := func(s cascade.Store) cascade.Store {
 			f := cascade.Store{Capacity: s.Capacity, Seepage: s.Seepage * c}

@@ -109,7 +109,12 @@ func (r *Run) replay(depths []float64, days float64, cover, deep []float64) (int
 		if deep != nil {
 			d = deep[k : k+n]
 		}
-		done := r.glide(tab, perDay, depths[k:k+n], c, d)
+		done := 0
+		if r.cover.total[r.i].square > 0 {
+			done = r.glideCurved(tab, perDay, depths[k:k+n], c, d)
+		} else {
+			done = r.glide(tab, perDay, depths[k:k+n], c, d)
+		}
 		k += done
 		if done == n {
 			continue
@@ -189,9 +194,6 @@ func (r *Run) glide(t *table, perDay float64, depths, cover, deep []float64) int
 	case r.cover.empty:
 		most = 0
 	}
-	if p.square1 > 0 {
-		return r.glideCurved(t, &p, perDay, depths, cover, deep)
-	}
 	c := *r.transition(t, &p)
 	constant := c.f2 * p.b
 	u1, u2 := r.u1, r.u2
@@ -259,14 +261,17 @@ func (r *Run) walk(t *table, rate float64) error {
 		var bent curve
 		if p.square1 > 0 {
 			bent = p.curve(r.u1, a)
-			if bent.rests() {
+		}
+		leaves := r.coverLeaves(&p, &bent, way1, rate)
+		if p.square1 > 0 {
+			if math.IsInf(leaves, 1) && bent.rests() {
 				r.u1, speed = min(bent.u, p.width1), 0
 			} else if s := bent.part(); s < h {
 				h, event = s, partEnds
 			}
 		}
-		if s := r.coverLeaves(&p, &bent, way1, rate); s <= h {
-			h, event = s, coverLeaves
+		if leaves <= h {
+			h, event = leaves, coverLeaves
 		}
 		if p.held2 {
 			if s := r.letsGo(&p, &bent, way1, a); s <= h {
