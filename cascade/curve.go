@@ -49,12 +49,14 @@ func (c *curve) rests() bool {
 	return true
 }
 
-// part returns the time over which the quadrature is good: (2*w + 2*g)*t = 2. The poles of the solution nearest to a part
-// of this length are then at least this length away from its start, so that the error of Gauss's formula of eight points
-// is of the order of 5.8^-17 of the change of the storage (the sum of the half-axes of an ellipse around the part that
-// reaches to the pole is 5.8; the rule is that of P. J. Davis & P. Rabinowitz 1984, Methods of Numerical Integration, section
-// 4.6, from memory). Each part takes the distance to rest down by a factor of at least 2, so there are never many.
-func (c *curve) part() float64 { return 1 / (c.w + c.g) }
+// part returns the time over which the quadrature is good: (w + g)*t = 3/4. No pole of the solution is then nearer to the
+// start of the part than 4/3 of its length, so that the error of Gauss's formula of eight points is of the order of
+// 7.2^-17 of the change of the storage: 7.2 is the sum of the half-axes of the ellipse around the part, in halves of its
+// length, that reaches to such a pole (P. J. Davis & P. Rabinowitz 1984, Methods of Numerical Integration, section 4.6, from
+// memory). The distance to rest is at least halved in three parts, and they grow as it shrinks from far above.
+func (c *curve) part() float64 { return longest / (c.w + c.g) }
+
+const longest = 0.75
 
 // rise returns u1(t) - u within a part.
 func (c *curve) rise(t float64) float64 {
@@ -252,8 +254,8 @@ func (r *Run) glideCurved(t *table, perDay float64, depths, cover, deep []float6
 	for k, depth := range depths {
 		a := depth*perDay - p.flow1
 		c := curve{u: u1, v: a - u1*(p.rate1+p.square1*u1), g: half + p.square1*u1, w2: w0 + a*p.square1}
-		// (2*w + 2*g + rate2)*days <= 2, and the range of a that replay takes; false for NaN.
-		room := 1 - (c.g+p.rate2/2)*days
+		// (w + g + rate2/2)*days <= 3/4, and the range of a that walk takes; false for NaN.
+		room := longest - (c.g+p.rate2/2)*days
 		if !(room >= 0 && math.Abs(c.w2)*(days*days) <= room*room && a >= -maxFlux && a <= maxFlux) {
 			n = k
 			break

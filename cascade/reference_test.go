@@ -11,12 +11,18 @@ import (
 	"quietslope/cascade"
 )
 
-// TestReference compares every step of testdata/ref/engine.csv: random models with every kind of outlet, breakpoint and
-// capacity, solved by a general-purpose integrator (SciPy's DOP853) that shares nothing with this package. Its header
-// says how it was made, by which script, and what it meets.
+// TestReference compares every step of testdata/ref/engine.csv and quadratic.csv: random models with every kind of outlet,
+// breakpoint and capacity, solved by a general-purpose integrator (SciPy's DOP853) that shares nothing with this package.
+// Their headers say how they were made, by which script, and what they meet. Every model of the second has a drain with
+// a square, above and below its upper root and, with evaporation, drawn down through its invert.
 func TestReference(t *testing.T) {
+	for _, name := range []string{"engine", "quadratic"} {
+		t.Run(name, func(t *testing.T) { compareReference(t, readReference(t, name)) })
+	}
+}
+
+func compareReference(t *testing.T, rows []referenceRow) {
 	const tolerance = 1e-7 // relative to max(value, 1 mm)
-	rows := readReference(t)
 	worst := 0.0
 	var run *cascade.Run // carries on from step to step of a model
 	for _, row := range rows {
@@ -64,9 +70,9 @@ type referenceRow struct {
 	fields []string
 }
 
-func readReference(t *testing.T) []referenceRow {
+func readReference(t *testing.T, name string) []referenceRow {
 	t.Helper()
-	f, err := os.Open("../testdata/ref/engine.csv")
+	f, err := os.Open("../testdata/ref/" + name + ".csv")
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -99,6 +105,11 @@ func (r referenceRow) text(column string) string {
 	return r.fields[i]
 }
 
+func (r referenceRow) has(column string) bool {
+	_, ok := r.header[column]
+	return ok
+}
+
 func (r referenceRow) num(column string) float64 { return r.parse(column, r.text(column)) }
 
 func (r referenceRow) parse(column, text string) float64 {
@@ -123,6 +134,11 @@ func (r referenceRow) drains(prefix string) (d []cascade.Outlet) {
 	rates, inverts, ceilings := r.list(prefix+"_rates_per_day"), r.list(prefix+"_inverts_mm"), r.list(prefix+"_ceilings_mm_per_day")
 	for i := range rates {
 		d = append(d, cascade.Outlet{Rate: rates[i], Invert: inverts[i], Ceiling: ceilings[i]})
+	}
+	if squares := prefix + "_squares_per_mm_day"; r.has(squares) {
+		for i, s := range r.list(squares) {
+			d[i].Square = s
+		}
 	}
 	return d
 }
