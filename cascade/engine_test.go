@@ -771,9 +771,20 @@ func busy() (cascade.Model, []float64) {
 	return m, depths
 }
 
-// TestAllocations: none per step, with events in most of them.
+// TestAllocations: none per step, with events in most of them; nor with a square.
 func TestAllocations(t *testing.T) {
-	m, depths := busy()
+	t.Run("linear", func(t *testing.T) {
+		m, depths := busy()
+		allocations(t, m, depths)
+	})
+	t.Run("square", func(t *testing.T) {
+		m, depths := busy()
+		m.Cover.Drains[0].Square = 0.05
+		allocations(t, m, depths)
+	})
+}
+
+func allocations(t *testing.T, m cascade.Model, depths []float64) {
 	r := newRun(t, m, 0, 0)
 	s1, s2 := make([]float64, len(depths)), make([]float64, len(depths))
 	replay := func() {

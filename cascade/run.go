@@ -264,7 +264,7 @@ func (r *Run) walk(t *table, rate float64) error {
 		}
 		leaves := r.coverLeaves(&p, &bent, way1, rate)
 		if p.square1 > 0 {
-			if math.IsInf(leaves, 1) && bent.rests() {
+			if bent.rests() {
 				r.u1, speed = min(bent.u, p.width1), 0
 			} else if s := bent.part(); s < h {
 				h, event = s, partEnds
