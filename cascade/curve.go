@@ -57,7 +57,7 @@ func (c *curve) rests() bool {
 // farther the store is from rest, the shorter they are, and the faster it comes nearer.
 func (c *curve) part() float64 { return longest / (c.w + c.g) }
 
-const longest = 0.75
+const longest = 0.75 // part, times w + g
 
 // rise returns u1(t) - u within a part.
 func (c *curve) rise(t float64) float64 {
