@@ -30,7 +30,7 @@ func Check(ctx context.Context, s *Study) (*result.Check, error) {
 		o := result.CheckOption{Name: w.option.Name, Rates: w.rates(), Drains: []result.CheckDrain{}}
 		for _, d := range w.drains {
 			cd := result.CheckDrain{
-				Measure: d.measure, Layer: d.layer, RatePerDay: d.rate, InvertM: d.invert,
+				Measure: d.measure, Layer: d.layer, Law: d.law(), RatePerDay: d.rate, InvertM: d.invert,
 				CeilingMMPerDay: finite(d.ceiling), From: d.from,
 			}
 			if d.rate > 0 {

@@ -420,7 +420,8 @@ type CheckOption struct {
 type CheckDrain struct {
 	Measure         string   `json:"measure"`
 	Layer           string   `json:"layer"`
-	RatePerDay      float64  `json:"rate_per_day"`
+	Law             string   `json:"law"`
+	RatePerDay      float64  `json:"rate_per_day"` // of a quadratic law that of its linear part
 	HalfLifeDays    *float64 `json:"half_life_days,omitempty"`
 	InvertM         float64  `json:"invert_m"`
 	CeilingMMPerDay *float64 `json:"ceiling_mm_per_day,omitempty"`
