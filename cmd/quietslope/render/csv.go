@@ -17,7 +17,7 @@ var csvHead = []string{"climate", "condition", "option", "band", "quantity", "va
 // JSON. Numbers are the very text of the JSON, and nothing is left out but lists without entries.
 //
 // The quantity is the path in the JSON, its keys joined by dots, from the option or the band down where a row belongs to
-// one. Entries of a list are counted from 1; those with a key of their own go by it. An interval stands in the row of its
+// one. Entries of a list are counted from 1; those with a key of their own, and states, go by it. An interval stands in the row of its
 // figure: KEY_ci of KEY, ci of the figure before it. Texts stand in the last column, true and false as yes and no. A
 // warning is a row warning.CODE, with warning.CODE.severity below it, a caution a row caution.
 func CSV(w io.Writer, v any) error {
@@ -203,6 +203,8 @@ func (t *tabler) entry(of owner, path, key string, number int, n node) {
 	case key == "cautions" && path == "":
 		text, _ := n.scalar.(string)
 		t.row(of, "caution", "", [2]string{}, text)
+	case key == "states" && n.word("state") != "":
+		t.object(of, join(join(path, key), n.word("state")), n, "state")
 	case n.word("key") != "":
 		t.object(of, join(join(path, key), n.word("key")), n, "key")
 	default:
