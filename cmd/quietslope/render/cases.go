@@ -68,8 +68,11 @@ func (v *view) oneCase(i int) {
 	}
 	v.change(c)
 	if i > 0 {
+		v.moneyOfCase(c)
 		return
 	}
+	v.money(c)
+	v.states(c)
 	v.months(c)
 	v.levels(c)
 	v.drains(c)
@@ -123,9 +126,9 @@ func (v *view) deciderOf(c *result.Case, o *result.Option, band int, by *measure
 	case "events":
 		return v.eventsOf(c, o, band)
 	case "annual_probability":
-		return percent(f.AnnualProbability), "(" + percentRange(f.AnnualProbability, f.AnnualProbabilityCI) + ")"
+		return by.told(f.AnnualProbability, &f.AnnualProbabilityCI)
 	case "days":
-		return ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
+		return by.told(f.DaysPerYear, f.DaysPerYearCI)
 	}
-	return ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad)
+	return by.told(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI)
 }

@@ -64,6 +64,23 @@ func (m *measure) inWords(figure string) string {
 	return figure + " " + m.unit
 }
 
+// told is a figure by the measure and its range, as far as they can be told.
+func (m *measure) told(value float64, ci *result.Interval) (figure, limits string) {
+	least := leastDays
+	switch m.key {
+	case "annual_probability":
+		if ci == nil {
+			return percent(value), ""
+		}
+		return percent(value), "(" + percentRange(value, *ci) + ")"
+	case "events":
+		least = leastEvents
+	case "load":
+		least = leastLoad
+	}
+	return ranged(value, ci, least)
+}
+
 // measureOf finds a measure by its key; the first for a key that is not known.
 func measureOf(key string) *measure {
 	for i := range measures {

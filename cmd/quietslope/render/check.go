@@ -87,15 +87,19 @@ func checkOptions(p *Page, c *result.Check, ns *notes) {
 			p.item(below, "", "no trench or bored drains")
 		}
 		for _, d := range o.Drains {
-			text := fmt.Sprintf("%s, acting above %s m over the base of %s: rate %s /d", words(d.Measure), centimetres(d.InvertM), layerName(d.Layer), typed(d.RatePerDay, 4))
-			if d.HalfLifeDays != nil {
+			law, what := "rate", "rate"
+			if d.Law == quadratic {
+				law, what = "quadratic law, its linear part", "outflow"
+			}
+			text := fmt.Sprintf("%s, acting above %s m over the base of %s: %s %s /d", words(d.Measure), centimetres(d.InvertM), layerName(d.Layer), law, typed(d.RatePerDay, 4))
+			if d.HalfLifeDays != nil && d.Law != quadratic { // which falls faster the higher it stands
 				text += fmt.Sprintf(" (what stands above halves in %s d)", significant(*d.HalfLifeDays, 2))
 			}
 			if d.CeilingMMPerDay != nil {
 				text += fmt.Sprintf(", at most %s mm/d", typed(*d.CeilingMMPerDay, 6))
 			}
 			if d.From != "" {
-				text += "; the rate is " + known.instead(i, d.From)
+				text += "; the " + what + " is " + known.instead(i, d.From)
 			}
 			p.item(below, "", text)
 		}

@@ -50,7 +50,7 @@ func (v *view) exceedance(c *result.Case, band int) {
 		events.add(v.eventsOf(c, o, band))
 		lasting.add(ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays))
 		load.add(ranged(f.LoadMDaysPerYear, f.LoadMDaysPerYearCI, leastLoad))
-		with.add(strconv.Itoa(int(math.Round(f.AnnualProbability*float64(T)))), "("+percentRange(f.AnnualProbability, f.AnnualProbabilityCI)+"%)")
+		with.add(yearsWith(f, T), "("+percentRange(f.AnnualProbability, f.AnnualProbabilityCI)+"%)")
 	}
 	cells := sideBySide(events, lasting, load, with)
 	for i, o := range options {
@@ -69,6 +69,9 @@ func (v *view) exceedance(c *result.Case, band int) {
 		v.para("%s", text)
 	}
 	v.toldApart(c, band)
+	if text := v.means(c); text != "" && band == max(0, v.deciding()) {
+		v.para("%s", text)
+	}
 	if base := baselineOf(c); v.indexOf(c) == 0 && len(base.Bands[band].Spells) > 0 {
 		v.spells(base, base.Bands[band].Spells)
 	}
@@ -129,6 +132,15 @@ func highest(spells []result.Spell, n int) []result.Spell {
 		all = append(all, spells[i])
 	}
 	return all
+}
+
+// yearsWith is the number of the years in which a band is passed, which for a mean over the ages of drains need not be whole.
+func yearsWith(f *result.BandFigure, years int) string {
+	with := f.AnnualProbability * float64(years)
+	if whole := math.Round(with); math.Abs(with-whole) < 1e-6 {
+		return strconv.Itoa(int(whole))
+	}
+	return rounded(with, -1, -1)
 }
 
 // percentRange prints a range of shares as percentages, without their sign.

@@ -247,3 +247,99 @@ func againstOther() *result.Comparison {
 	}
 	return c
 }
+
+// priced is the demo with a target, with costs and losses, with drains that age, and with a second case.
+func priced() *result.Comparison {
+	c := fixture(demoOptions, threeBands)
+	neglected := fixture(demoOptions, threeBands).Cases[0]
+	neglected.Condition = "neglected"
+	c.Cases = append(c.Cases, neglected)
+	c.Settings.DesignLife = 50
+	c.Settings.Target = &result.Target{Measure: "days", Value: 2}
+	c.Settings.Money = &result.Money{Currency: "EUR", HorizonYears: 50, DiscountRate: 0.03, PricesOf: 2026, Contingency: 0.2}
+	for k := range c.Cases {
+		price(&c.Cases[k], k == 0)
+	}
+	c.Warnings = append(c.Warnings, result.Warning{Code: "net_benefit_tie", Severity: result.Warn, Text: "By net benefit the record cannot tell the best two from each other."})
+	return c
+}
+
+// price makes up what the options of the demo cost and what their drains do when they age; the last has no known cost.
+func price(c *result.Case, first bool) {
+	capital := []float64{0, 114000, 57000, 171000, 164640, 45600}
+	meets := []string{"no", "yes", "no", "no", "no", "no", "not_shown"}
+	for i := range c.Options {
+		o := &c.Options[i]
+		strength, band := demoOptions[i].strength, &o.Bands[1]
+		o.Decision.MeetsTarget = meets[i]
+		o.Minimum = i == 5
+		if i > 0 {
+			o.TimeToEffect = &result.TimeToEffect{StoreDays: 310 + 20*float64(i), Days: 310 + 20*float64(i)}
+		}
+		if first && len(o.Drains) > 0 && i != 5 {
+			age(o, i == 4)
+		}
+		if i >= len(capital) {
+			continue
+		}
+		pv := 1.71 * capital[i]
+		loss := 155405 * strength
+		o.Cost = &result.Cost{Capital: capital[i], PresentValue: pv, AnnualEquivalent: pv / 25.73, AnnualLoss: &loss, AnnualLossCI: ci(0.44*loss, 1.66*loss)}
+		on := true
+		o.Decision.OnFrontier = &on
+		if i == 0 {
+			continue
+		}
+		o.Cost.ToldApart = i != 4
+		net := 23.1*(155405-loss) - pv
+		o.Cost.NetBenefit, o.Cost.NetBenefitCI = &net, ci(0.4*net-1000, 1.7*net+1000)
+		if len(o.Drains) > 0 && i != 5 {
+			o.Cost.Metres, o.Cost.Flushes, o.Cost.Renewals = ptr(capital[i]/114), new(9), new(1)
+		}
+		if o.Cost.ToldApart {
+			day := pv / 25.73 / (64.21/5 - band.DaysPerYear)
+			o.Cost.PerDayAvoided, o.Cost.PerDayAvoidedCI = &day, ci(0.65*day, 1.9*day)
+			o.Cost.PerEventAvoided, o.Cost.PerEventAvoidedCI = ptr(110*day), ci(70*day, 210*day)
+			o.Cost.BreakEvenLoss, o.Cost.BenefitCost = ptr(115*day), ptr((net+pv)/pv)
+		}
+	}
+	o := c.Options
+	for to, from := range map[int]int{5: 0, 2: 5, 1: 5} {
+		o[to].Cost.StepFrom = o[from].Name
+	}
+	o[5].Cost.StepBenefitCost, o[1].Cost.StepBenefitCost = ptr(12.34), ptr(0.871)
+	for i, by := range map[int]int{3: 1, 4: 1} {
+		on := false
+		o[i].Decision.OnFrontier, o[i].Decision.DominatedBy = &on, o[by].Name
+	}
+}
+
+// age makes up what an option with drains does in every state of them, flushed or not.
+func age(o *result.Option, neverFlushed bool) {
+	add := func(state string, share, value float64) {
+		s := result.State{State: state, EffectShare: share, Value: value, MeetsTarget: "no"}
+		if value > 0 {
+			s.CI = ci(0.4*value, 1.7*value)
+		}
+		switch {
+		case value < 0.1:
+			s.MeetsTarget = "yes"
+		case value < 0.2:
+			s.MeetsTarget = "not_shown"
+		}
+		o.States = append(o.States, s)
+	}
+	own := o.Decision.Value
+	add("as_new", 1, 0.7*own)
+	if neverFlushed {
+		o.DrainsAs = "mean_over_horizon"
+		add(o.DrainsAs, 0.4, own)
+	} else {
+		o.DrainsAs = "mean_between_flushes"
+		add(o.DrainsAs, 0.83, own)
+		add("before_flush", 0.71, 1.1*own+0.004)
+	}
+	add("never_flushed", 0.06, 0.5*own+0.4)
+	add("half_stopped", 0.25, 0.8*own+0.15)
+	add("all_stopped", 0, 0.85)
+}

@@ -16,6 +16,9 @@ func (v *view) options() {
 		if o.Baseline {
 			text += " (the baseline)"
 		}
+		if o.Minimum {
+			text += " (the minimum)"
+		}
 		if len(o.Measures) > 0 {
 			text += ": " + strings.Join(o.Measures, "; ")
 		}
@@ -23,6 +26,9 @@ func (v *view) options() {
 			text += " [" + noun(refs) + "]"
 		}
 		v.item(lettered, v.letters[o.Name], text)
+	}
+	if text := acting(&v.c.Cases[0]); text != "" {
+		v.para("%s", text)
 	}
 }
 

@@ -3,6 +3,7 @@ package render
 import (
 	"fmt"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -29,6 +30,15 @@ func (v *view) settings() {
 	v.heading("Settings and inputs")
 	v.field("settings", "year starts in %s, events %s d apart, confidence %s, %d resamples of %s-year blocks, seed %d",
 		s.YearStarts, days(s.ApartDays), v.confidence(), s.Resamples, rate(s.BlockYears), s.Seed)
+	if text := v.targetText(); text != "" {
+		v.field("target", "%s", text)
+	}
+	if m := s.Money; m != nil {
+		v.field("money", "%s, prices of %d, over %s at a discount rate of %s, contingency %s", m.Currency, m.PricesOf, plural(m.HorizonYears, "year"), share(m.DiscountRate), share(m.Contingency))
+	}
+	if text := v.drainsText(); text != "" {
+		v.field("drains", "%s", text)
+	}
 	if g := v.givenRates(); g != nil {
 		from := "a stepping scheme"
 		if c := v.c.Conversion; c != nil {
@@ -49,6 +59,36 @@ func (v *view) settings() {
 		}
 		v.field("declared", "%s", strings.Join(parts, "; "))
 	}
+}
+
+// drainsText says by which law the drains of options work and over how many years they age, where that is said nowhere else.
+func (v *view) drainsText() string {
+	if len(v.c.Cases) == 0 {
+		return ""
+	}
+	c := &v.c.Cases[0]
+	var parts []string
+	if options := byQuadraticLaw(c); options != nil {
+		parts = append(parts, "quadratic law for the trenches of "+someByLetter(options)+", linear for all else")
+	}
+	if options := placesOf(c, func(o *result.Option) bool { return o.DrainsAs != "" && o.DrainsAs != "as_new" }); options != nil {
+		of := "the design life"
+		if v.c.Settings.Money != nil {
+			of = "the horizon of the costs"
+		}
+		parts = append(parts, fmt.Sprintf("those of %s age over %s, %s", someByLetter(options), of, plural(v.agingYears(), "year")))
+	}
+	return strings.Join(parts, "; ")
+}
+
+// quadratic is the law of drains whose flow grows with the square of the head.
+const quadratic = "quadratic"
+
+// byQuadraticLaw are the options with such drains.
+func byQuadraticLaw(c *result.Case) []int {
+	return placesOf(c, func(o *result.Option) bool {
+		return slices.ContainsFunc(o.Drains, func(d result.Drain) bool { return d.Law == quadratic })
+	})
 }
 
 // givenRates are the rates of the baseline where they were converted from a stepping scheme, nil elsewhere.

@@ -2,7 +2,6 @@ package render
 
 import (
 	"fmt"
-	"math"
 	"slices"
 	"strings"
 
@@ -31,6 +30,7 @@ func (v *view) inShort() {
 		base := baselineOf(c)
 		v.para("No option's level rises above %s in %s, so this record cannot compare them on it. The highest deep level of %s is %s m, the band begins at %s m. Check the band, or decide on a lower one.",
 			name, plural(T, "year"), v.letters[base.Name], centimetres(base.Level.MaxM), metres(v.c.Bands[band].LevelM))
+		v.statesShort(c, band, by)
 		v.otherCases(band, by)
 		v.para("%s.", v.notes.headline())
 		return
@@ -45,8 +45,8 @@ func (v *view) inShort() {
 			v.para("With %s, the baseline, the deep level does not rise above %s in %s.", letter(i), name, plural(T, "year"))
 		case o.Baseline:
 			days, limits := ranged(f.DaysPerYear, f.DaysPerYearCI, leastDays)
-			v.para("With %s, the baseline, the deep level rises above %s in %.0f of %s, on %s days a year.", letter(i), name,
-				math.Round(f.AnnualProbability*float64(T)), plural(T, "year"), strings.TrimSpace(days+" "+limits))
+			v.para("With %s, the baseline, the deep level rises above %s in %s of %s, on %s days a year.", letter(i), name,
+				yearsWith(f, T), plural(T, "year"), strings.TrimSpace(days+" "+limits))
 		case notPassed(f):
 			none = append(none, i)
 		}
@@ -69,6 +69,9 @@ func (v *view) inShort() {
 		}
 		v.para("%s", text+v.neighbours(c))
 	}
+	v.targetShort(c)
+	v.moneyShort(c)
+	v.statesShort(c, band, by)
 	v.otherCases(band, by)
 	if len(v.notes.list) > 0 {
 		v.para("%s. What is weak about these figures stands there.", v.notes.headline())

@@ -1,6 +1,7 @@
 package render
 
 import (
+	"fmt"
 	"math"
 	"slices"
 	"strconv"
@@ -115,7 +116,11 @@ func (v *view) drains(c *result.Case) {
 	}
 	v.section(c, "Drains over the counted years")
 	v.rows(t.dropEmpty(), options)
-	v.para("Runs: share of steps that end with water above the invert, which is given above the base of the drain's layer. Flows are spread over the plan area.")
+	text := "Runs: share of steps that end with water above the invert, which is given above the base of the drain's layer. Flows are spread over the plan area."
+	if of := byQuadraticLaw(c); of != nil {
+		text += fmt.Sprintf(" The trenches of %s follow the quadratic law; its linear part has the rate given.", someByLetter(of))
+	}
+	v.para("%s", text)
 }
 
 // balance writes the water balance, one line per option.

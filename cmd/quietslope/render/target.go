@@ -1,0 +1,197 @@
+package render
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"quietslope/scenario/result"
+)
+
+// Answers to whether an option meets the target, as the results have them.
+const (
+	targetMet      = "yes"
+	targetMissed   = "no"
+	targetNotShown = "not_shown" // the figure meets it, the end of its range does not
+)
+
+// targetText says what an option must keep to; "" where the study sets no target.
+func (v *view) targetText() string {
+	t := v.c.Settings.Target
+	if t == nil {
+		return ""
+	}
+	above := "above " + inQuotes(v.c.Settings.DecideOn)
+	most := typed(t.Value, 6)
+	switch t.Measure {
+	case "annual_probability":
+		text := fmt.Sprintf("%s in at most %s of the years counted", above, share(t.Value))
+		if t.Value > 0 && t.Value <= 0.5 {
+			text += ", one in " + typed(1/t.Value, 4)
+		}
+		return text
+	case "events":
+		return fmt.Sprintf("at most %s events a year %s", most, above)
+	case "days":
+		return fmt.Sprintf("at most %s days a year %s", most, above)
+	}
+	return fmt.Sprintf("at most %s m·d a year %s", most, above)
+}
+
+// meeting are the options of a case whose answer about the target is the given one.
+func meeting(c *result.Case, answer string) []int {
+	var options []int
+	for i := range c.Options {
+		if d := c.Options[i].Decision; d != nil && d.MeetsTarget == answer {
+			options = append(options, i)
+		}
+	}
+	return options
+}
+
+// targetShort says which options meet the target, and which of them is the cheapest.
+func (v *view) targetShort(c *result.Case) {
+	target := v.targetText()
+	if target == "" {
+		return
+	}
+	met, missed, notShown := meeting(c, targetMet), meeting(c, targetMissed), meeting(c, targetNotShown)
+	var parts []string
+	if len(met) > 0 {
+		parts = append(parts, someByLetter(met)+verb(met, " meets", " meet")+" it on this record")
+	} else {
+		parts = append(parts, "no option meets it on this record")
+	}
+	if len(notShown) > 0 {
+		parts = append(parts, fmt.Sprintf("with %s the figure does, but the end of its range does not", someByLetter(notShown)))
+	}
+	if len(met) > 0 && len(missed) > 0 {
+		parts = append(parts, someByLetter(missed)+verb(missed, " misses", " miss")+" it")
+	}
+	v.para("The target is %s: %s.%s", target, strings.Join(parts, "; "), v.cheapest(c, met))
+}
+
+// cheapest names the cheapest of the options that meet the target, and those of them whose cost is not known.
+func (v *view) cheapest(c *result.Case, met []int) string {
+	if v.c.Settings.Money == nil || len(met) == 0 {
+		return ""
+	}
+	var known, unknown []int
+	for _, i := range met {
+		if c.Options[i].Cost == nil {
+			unknown = append(unknown, i)
+		} else {
+			known = append(known, i)
+		}
+	}
+	if known == nil {
+		return " What it costs to meet it is not known."
+	}
+	var costs []float64
+	for _, i := range known {
+		costs = append(costs, c.Options[i].Cost.PresentValue)
+	}
+	var cheapest []int
+	for _, k := range least(costs) {
+		cheapest = append(cheapest, known[k])
+	}
+	text := fmt.Sprintf(" The cheapest of them %s %s, at a present value of %s.", verb(cheapest, "is", "are"), someByLetter(cheapest), v.sumText(costs[least(costs)[0]], nil))
+	if unknown != nil {
+		text += fmt.Sprintf(" Of %s the cost is not known.", someByLetter(unknown))
+	}
+	return text
+}
+
+// verb picks the form of a word for one option or several.
+func verb(options []int, one, several string) string {
+	if len(options) == 1 {
+		return one
+	}
+	return several
+}
+
+// deciders are the options whose figures matter most: those that meet the target, or else those with the least figure.
+func deciders(c *result.Case, band int, by *measure) []int {
+	if met := meeting(c, targetMet); met != nil {
+		return met
+	}
+	return least(figuresBy(c, band, by))
+}
+
+// together are options of which the same is said.
+type together struct {
+	text    string
+	options []int
+}
+
+// alikeBy puts options together by what text says of each, "" for nothing, in the order of the first of each.
+func alikeBy(c *result.Case, text func(*result.Option) string) []together {
+	var all []together
+	for i := range c.Options {
+		of := text(&c.Options[i])
+		if of == "" {
+			continue
+		}
+		k := slices.IndexFunc(all, func(t together) bool { return t.text == of })
+		if k < 0 {
+			k = len(all)
+			all = append(all, together{text: of})
+		}
+		all[k].options = append(all[k].options, i)
+	}
+	return all
+}
+
+// acting says how long it takes until the options act; "" where that is not known of any.
+func acting(c *result.Case) string {
+	all := alikeBy(c, func(o *result.Option) string {
+		if o.TimeToEffect == nil {
+			return ""
+		}
+		return duration(o.TimeToEffect.Days)
+	})
+	if all == nil {
+		return ""
+	}
+	slices.SortStableFunc(all, func(a, b together) int {
+		x, y := c.Options[a.options[0]].TimeToEffect.Days, c.Options[b.options[0]].TimeToEffect.Days
+		switch {
+		case x < y:
+			return -1
+		case x > y:
+			return 1
+		}
+		return 0
+	})
+	var parts []string
+	for _, t := range all {
+		parts = append(parts, t.text+" with "+someByLetter(t.options))
+	}
+	text := "Time until nine tenths of an option's effect on the deep level have come about: " + andWords(parts) + "."
+	var clay []int
+	for i := range c.Options {
+		if t := c.Options[i].TimeToEffect; t != nil && t.ClayDays != nil && *t.ClayDays > t.StoreDays {
+			clay = append(clay, i)
+		}
+	}
+	if clay != nil {
+		text += fmt.Sprintf(" With %s the clay between the trenches sets it.", someByLetter(clay))
+	}
+	return text
+}
+
+// duration prints a time until something has come about, rounded up: days, months below two years, or years.
+func duration(d float64) string {
+	const perYear = 365.25
+	up := func(x float64) int { return int(math.Ceil(x - 1e-9)) }
+	switch {
+	case d < 45:
+		return plural(max(1, up(d)), "day")
+	case d < 2*perYear:
+		return plural(up(12*d/perYear), "month")
+	case d < 1e6*perYear:
+		return plural(up(d/perYear), "year")
+	}
+	return "more than a million years"
+}
