@@ -8,7 +8,7 @@ var Cautions = []string{
 	"These figures compare options on one record. They are no stability analysis, no forecast of movement and no warning system: nobody's safety may rest on them alone.",
 	"Each layer has a single level. Left out: flow along and across the slope, pressure in the clay that lags its fissures, water held up above the table, artesian water, frost, snow (it counts as rain on the day it falls), earthquake, loading, cutting and erosion of the toe.",
 	"Level and movement do not go one to one: movement may start, go on or stop at other levels than the bands, and it changes the ground and its fissures.",
-	"Works act as built, or as a condition says, from the first day to the last: none ages, clogs, shears or is repaired on the way. Look at the figures without them too. Digging and boring load, vibrate and open the slope while the works are built.",
+	"Works act from the first day to the last, as built or as a condition says. Drains age only where a decline is given, and then every year counts as the mean over their ages; none shears or is repaired on the way. Look at the figures with drains stopped too. Digging and boring load, vibrate and open the slope while the works are built.",
 	"A record that is replayed says nothing of rarer winters or of a climate that changes.",
 	"After the works go on measuring deep and shallow levels, drain flow, movement and rain, and inspect the outlets; act when they leave what was expected.",
 	"Design, acceptance of risk and public safety rest with licensed engineers and the owner under the codes that apply locally, which may require drains to be considered failed.",

@@ -85,7 +85,7 @@ func (d *decoder) measures(s *Study, o *Option, b *blockValue) {
 		v := b.get(key)
 		m := Measure{Key: key, Place: v.place}
 		switch {
-		case v.block == nil:
+		case v.block == nil, key == "cost":
 			continue
 		case key == "trench_drains":
 			m.Trench = d.trench(&g, v.block)
