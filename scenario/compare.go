@@ -543,19 +543,27 @@ func rank(s *Study, options []optionFigures) {
 
 // head is what every result begins with.
 func (p *prepared) head(command string) result.Head {
-	return result.Head{
+	h := newHead(p.study, command)
+	h.Inputs = append(h.Inputs, result.Input{Role: "weather", File: filepath.Base(p.study.Weather.File), SHA256: p.record.SHA256})
+	return h
+}
+
+// newHead is the head of a result that rests on a study alone, or on none, which is nil.
+func newHead(s *Study, command string) result.Head {
+	h := result.Head{
 		ResultsVersion: result.Version,
-		Study:          p.study.Title,
 		Tool:           result.Tool{Name: "quietslope", Version: Version},
 		Command:        command,
-		// Base names only: the same study gives the same bytes from whatever folder it is run.
-		Inputs: []result.Input{
-			{Role: "study", File: filepath.Base(p.study.File), SHA256: p.study.SHA256},
-			{Role: "weather", File: filepath.Base(p.study.Weather.File), SHA256: p.record.SHA256},
-		},
-		Warnings: []result.Warning{},
-		Cautions: Cautions,
+		Inputs:         []result.Input{},
+		Warnings:       []result.Warning{},
+		Cautions:       Cautions,
 	}
+	if s != nil {
+		h.Study = s.Title
+		// Base names only: the same study gives the same bytes from whatever folder it is run.
+		h.Inputs = append(h.Inputs, result.Input{Role: "study", File: filepath.Base(s.File), SHA256: s.SHA256})
+	}
+	return h
 }
 
 func (p *prepared) settings() result.Settings {

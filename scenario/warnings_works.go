@@ -147,12 +147,17 @@ func (p *prepared) designWarnings(ws *warnings, w *works) {
 		if ratio := t.Spacing / t.Depth; !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio) {
 			ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times. Check spacing and depth.", short(math.Round(ratio*10)/10))
 		}
-		if k, n := l.Above, l.Porosity; n >= mostTightPorosity && k < wideConductivity || n < leastWidePorosity && k > tightConductivity {
-			ws.add(at(warn("conductivity_and_porosity")), "A conductivity of %s m/d hardly goes with a drainable porosity of %s %%: pores that drain freely carry water well, and tight ones do neither. One of the two is likely to be wrong, and the rate goes with their ratio.", short(k), short(100*n))
-		}
+		poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
 		if s := p.study.Slope; s != nil && t.Depth < s.Depth-tie && !slices.ContainsFunc(*ws, func(w result.Warning) bool { return w.Code == "trench_above_slip" }) {
 			ws.add(note("trench_above_slip"), "Trenches end above the slip surface, %s m down. In the model they act on it only by what no longer percolates; whether the water at the slip surface follows must be shown by readings there.", short(s.Depth))
 		}
+	}
+}
+
+// poresWarning holds a conductivity, m/d, and a drainable porosity against each other.
+func poresWarning(ws *warnings, w result.Warning, k, n float64) {
+	if n >= mostTightPorosity && k < wideConductivity || n < leastWidePorosity && k > tightConductivity {
+		ws.add(w, "A conductivity of %s m/d hardly goes with a drainable porosity of %s %%: pores that drain freely carry water well, and tight ones do neither. One of the two is likely to be wrong, and the rate goes with their ratio.", short(k), short(100*n))
 	}
 }
 

@@ -71,26 +71,29 @@ func isHelp(word string) bool { return word == "-h" || word == "--help" || word 
 
 // What a command takes as its argument, as its ArgsUsage says it.
 const (
-	studyArgument  = "STUDY.yaml"
-	folderArgument = "DIR"
+	studyArgument      = "STUDY.yaml"
+	maybeStudyArgument = "[STUDY.yaml]"
+	folderArgument     = "DIR"
 )
 
-// oneArgument demands the single argument of a command.
+// oneArgument demands the single argument of a command, but for a study that the command can do without.
 func oneArgument(command *cli.Command, arguments []string) error {
 	what, such := "study file", "study.yaml"
 	switch command.ArgsUsage {
-	case studyArgument:
+	case studyArgument, maybeStudyArgument:
 	case folderArgument:
 		what, such = "folder", "my-slope"
 	default: // one of some words
 		what, such = "shell", shells[0]
 	}
 	switch {
+	case len(arguments) == 0 && command.ArgsUsage == maybeStudyArgument:
+		return nil
 	case len(arguments) == 0:
 		return usagef(command.Name, "name the %s, as in: quietslope %s %s", what, command.Name, such)
 	case len(arguments) > 1 && strings.TrimLeft(arguments[1], "–—") != arguments[1]:
 		return usagef(command.Name, "an option begins with two hyphens, not with a dash; write --%s", fault.Name(strings.TrimLeft(arguments[1], "–—-")))
-	case len(arguments) > 1 && command.ArgsUsage == studyArgument && slices.ContainsFunc(arguments, isTable):
+	case len(arguments) > 1 && what == "study file" && slices.ContainsFunc(arguments, isTable):
 		return usagef(command.Name, "one study file is enough, got %q and %q; the study names its weather, as weather.file", arguments[0], arguments[1])
 	case len(arguments) > 1:
 		return usagef(command.Name, "one %s at a time, got %q and %q", what, arguments[0], arguments[1])

@@ -189,7 +189,7 @@ func propose(app *cli.App, words []string) proposal {
 		return proposal{kind: wordsKind, words: optionWords(command, given)}
 	case len(arguments) > 0, command.ArgsUsage == "":
 		return proposal{}
-	case command.ArgsUsage == studyArgument:
+	case command.ArgsUsage == studyArgument, command.ArgsUsage == maybeStudyArgument:
 		return proposal{kind: studiesKind}
 	case command.ArgsUsage == folderArgument:
 		return proposal{kind: foldersKind}

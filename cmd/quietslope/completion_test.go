@@ -89,6 +89,9 @@ func TestPropose(t *testing.T) {
 		{"compare|--|-", "studies", "", ""},
 		{"compare|--|s.yaml|-", "", "", ""},
 		{"levels|s.yaml|--from|", "words", "", ""},
+		{"drains|", "studies", "", ""},
+		{"drains|--spacing|", "words", "", ""},
+		{"drains|s.yaml|--depth|1m|--d", "words", "", "--option --spacing --thickness --conductivity --conductivity-below --porosity --radius --width --wet --equivalent-depth --working-head --efficiency --recharge --consolidation --fall --format --out --help"},
 		{"levels|s.yaml|--condition|", "words", "", "as built it's worn $5 (half)"},
 		{"levels|s.yaml|--climate=", "words", "--climate=", "as recorded"},
 		{"levels|--option|", "words", "", ""}, // no study yet
@@ -119,6 +122,9 @@ func TestPropose(t *testing.T) {
 	if d := cmp.Diff(hardNames, names("levels", "s.yaml", "--option", "")); d != "" {
 		t.Error(d)
 	}
+	if d := cmp.Diff(hardNames, names("drains", "s.yaml", "--option", "")); d != "" {
+		t.Error(d)
+	}
 	if d := cmp.Diff(hardNames, names("compare", "s.yaml", "--against", "")); d != "" {
 		t.Error(d)
 	}
@@ -132,7 +138,7 @@ func TestOptionsComplete(t *testing.T) {
 	for _, c := range newApp(io.Discard, io.Discard).Commands {
 		for _, f := range c.Flags {
 			value, does := usageOf(f)
-			if !slices.Contains([]string{"", "FILE", "FORMAT", "NAME", "TIME"}, value) || does == "" || takesValue(f) != (value != "") {
+			if !slices.Contains([]string{"", "FILE", "FORMAT", "KEY", "NAME", "RANGE", "TIME", "VALUE"}, value) || does == "" || takesValue(f) != (value != "") {
 				t.Errorf("%s --%s: %q: %q", c.Name, f.Names()[0], value, does)
 			}
 		}

@@ -56,8 +56,8 @@ func formatNames() []string {
 	return names
 }
 
-// The usage of an option is "VALUE: what it does", with further lines below it; that of one without a value, what it
-// does. VALUE is FILE, FORMAT, NAME or TIME: shells complete by it.
+// The usage of an option is "WORD: what it does", with further lines below it; that of one without a value, what it does.
+// WORD stands for the value and is FILE, FORMAT, KEY, NAME, RANGE, TIME or VALUE: shells complete by it.
 
 // usageOf parts the usage of an option.
 func usageOf(flag cli.Flag) (value, does string) {
@@ -144,16 +144,19 @@ func loadStudy(ctx context.Context, path string, o *output) (*scenario.Study, er
 }
 
 // answer is what a command does that finds a result from a study: it reads the study, finds the result, and writes it in
-// the format asked for.
+// the format asked for. The study is nil where the command line names none, which arrange lets pass for those commands
+// only that can do without.
 func answer[R any](c *cli.Context, find func(context.Context, *scenario.Study) (*R, error), lay func(*R) *render.Page) error {
 	ctx := c.Context
 	o, err := outputFrom(c)
 	if err != nil {
 		return err
 	}
-	s, err := loadStudy(ctx, c.Args().First(), o)
-	if err != nil {
-		return err
+	var s *scenario.Study
+	if c.Args().Present() {
+		if s, err = loadStudy(ctx, c.Args().First(), o); err != nil {
+			return err
+		}
 	}
 	found, err := await(ctx, func() (*R, error) { return find(ctx, s) })
 	if err != nil {

@@ -79,10 +79,15 @@ func commandHelp(app *cli.App, c *cli.Command) string {
 		b.WriteString("\nOptions:\n")
 	}
 	for _, f := range c.Flags {
+		const width = 20
 		value, does := usageOf(f)
-		lead := "--" + f.Names()[0] + " " + value
+		lead := strings.TrimRight("--"+f.Names()[0]+" "+value, " ")
+		if len(lead) > width {
+			fmt.Fprintf(&b, "  %s\n", lead)
+			lead = ""
+		}
 		for _, line := range strings.Split(does, "\n") {
-			fmt.Fprintf(&b, "  %-22s%s\n", lead, line)
+			fmt.Fprintf(&b, "  %-*s  %s\n", width, lead, line)
 			lead = ""
 		}
 	}

@@ -61,7 +61,7 @@ func newApp(stdout, stderr io.Writer) *cli.App {
 		DisableSliceFlagSeparator: true, // an option's name may hold a comma
 		OnUsageError:              onUsage,
 		ExitErrHandler:            func(*cli.Context, error) {}, // run returns the status
-		Commands:                  []*cli.Command{newCommand(), schemaCommand(), checkCommand(), compareCommand(), sizeCommand(), levelsCommand(), completionCommand()},
+		Commands:                  []*cli.Command{newCommand(), schemaCommand(), checkCommand(), drainsCommand(), compareCommand(), sizeCommand(), levelsCommand(), completionCommand()},
 	}
 	app.CustomAppHelpTemplate = appHelp(app)
 	for _, c := range app.Commands {

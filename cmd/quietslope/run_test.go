@@ -139,6 +139,7 @@ func TestHelp(t *testing.T) {
 		{"help-study.golden", [][]string{{"help", "study"}, {"h", "study"}, {"help", "study", "--help"}}},
 		{"help-new.golden", [][]string{{"help", "new"}, {"new", "d", "--force", "--help"}}},
 		{"help-completion.golden", [][]string{{"help", "completion"}, {"completion", "-h", "bash"}}},
+		{"help-drains.golden", [][]string{{"help", "drains"}, {"drains", "-h"}, {"drains", "--spacing", "8m", "--help"}}},
 		{"help-levels.golden", [][]string{{"help", "levels"}, {"levels", "--help", "--", "x"}}},
 	} {
 		for _, args := range tt.ways {

@@ -461,3 +461,68 @@ type YearRain struct {
 	RainMM     float64 `json:"rain_mm"`
 	ValidShare float64 `json:"valid_share"`
 }
+
+// Drains is the result of drains: parallel drains worked out by formulas that a hand can follow, at one spacing or several.
+type Drains struct {
+	Head
+	Option      string         `json:"option,omitempty"` // of the study, or the name of a list of options
+	DrainAnswer                // at the first spacing
+	Layout      DrainLayout    `json:"layout"`
+	Spacings    []DrainSpacing `json:"spacings"`
+}
+
+// DrainAnswer is what is asked of a spacing first.
+type DrainAnswer struct {
+	EquivalentDepthM         float64  `json:"equivalent_depth_m"` // in force
+	ReactionFactorPerDay     float64  `json:"reaction_factor_per_day"`
+	ReservoirCoefficientDays float64  `json:"reservoir_coefficient_days"`
+	HalfLifeDays             float64  `json:"half_life_days"`
+	SteadyHeadM              *float64 `json:"steady_head_m,omitempty"`       // under the recharge, by Hooghoudt's equation
+	TimeToEffectDays         *float64 `json:"time_to_effect_days,omitempty"` // left out where nothing changes: for the baseline
+}
+
+// DrainLayout is what the figures were worked out from. Heads are heights of the water above the drains, midway.
+type DrainLayout struct {
+	DepthM                   float64  `json:"depth_m"`                  // of the drains below ground
+	ThicknessM               *float64 `json:"thickness_m,omitempty"`    // from the ground to the impermeable base; left out where only an equivalent depth is known
+	BelowDrainsM             *float64 `json:"below_drains_m,omitempty"` // of the layer
+	ConductivityMPerDay      float64  `json:"conductivity_m_per_day"`
+	ConductivityBelowMPerDay float64  `json:"conductivity_below_m_per_day"`
+	Porosity                 float64  `json:"porosity"`
+	PorosityGiven            *float64 `json:"porosity_given,omitempty"` // before it was converted from a stepping scheme
+	RadiusM                  *float64 `json:"radius_m,omitempty"`       // left out for drains on the base
+	WidthM                   *float64 `json:"width_m,omitempty"`        // of the trench that the radius stands for
+	WetM                     *float64 `json:"wet_m,omitempty"`
+	EquivalentDepth          string   `json:"equivalent_depth"` // computed or given
+	WorkingHeadM             float64  `json:"working_head_m"`
+	Efficiency               float64  `json:"efficiency"`
+	Law                      string   `json:"law,omitempty"` // of the option: linear or quadratic
+	RechargeMMPerDay         *float64 `json:"recharge_mm_per_day,omitempty"`
+	ConsolidationM2PerYear   *float64 `json:"consolidation_m2_per_year,omitempty"`
+	FallFromM                *float64 `json:"fall_from_m,omitempty"`
+	FallToM                  *float64 `json:"fall_to_m,omitempty"`
+	NotOfOption              []string `json:"not_of_option,omitempty"` // what the command line gives in place of the option
+}
+
+// DrainSpacing are the figures of one spacing.
+type DrainSpacing struct {
+	SpacingM float64 `json:"spacing_m"`
+	Option   string  `json:"option,omitempty"` // that has this spacing
+	DrainAnswer
+	ComputedDepthM    *float64       `json:"computed_depth_m,omitempty"` // equivalent depth of van der Molen & Wesseling; left out for drains on the base
+	MoodyDepthM       *float64       `json:"moody_depth_m,omitempty"`    // the same of Moody
+	FallsByHalfDays   float64        `json:"falls_by_half_days"`         // a water table without recharge, by Glover and Dumm
+	FallDays          *float64       `json:"fall_days,omitempty"`        // the same between the heads of the layout
+	Outflows          []DrainOutflow `json:"outflows"`
+	SteadyHeadLinearM *float64       `json:"steady_head_linear_m,omitempty"` // under the recharge, by the linear law
+	StoreDays         *float64       `json:"store_days,omitempty"`           // time to effect of the stores alone
+	ClayDays          *float64       `json:"clay_days,omitempty"`            // and of the clay, where a coefficient of consolidation is known
+	Metres            *float64       `json:"metres,omitempty"`               // of drain on the plan area
+}
+
+// DrainOutflow is the outflow at one head by both laws.
+type DrainOutflow struct {
+	HeadM             float64 `json:"head_m"`
+	LinearMMPerDay    float64 `json:"linear_mm_per_day"`
+	HooghoudtMMPerDay float64 `json:"hooghoudt_mm_per_day"`
+}

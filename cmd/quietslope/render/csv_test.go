@@ -129,7 +129,7 @@ func csvAsJSON(t *testing.T, found any) [][]string {
 func TestCSV(t *testing.T) {
 	hostile := fixture([]strengths{{`comma, "quoted"; semicolon`, []string{"a\nb"}, 1}, {"'single'", nil, 0.5}, {" – ", nil, 0.2}}, []string{"a,b", `"c"`})
 	for _, found := range []any{
-		fixture(demoOptions, threeBands), fixture(demoOptions[:1], threeBands), hostile, always(), never(), severalCases(), checkFixture(),
+		fixture(demoOptions, threeBands), fixture(demoOptions[:1], threeBands), hostile, always(), never(), severalCases(), checkFixture(), drainsFixture(),
 	} {
 		csvAsJSON(t, found)
 	}
