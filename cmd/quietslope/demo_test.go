@@ -134,11 +134,8 @@ func TestDemoLevels(t *testing.T) {
 	if len(lines) != 1+14610 || !strings.HasPrefix(lines[0], "time,rain_mm,as it stands/recharge_mm,") || !strings.HasPrefix(lines[len(lines)-1], "2023-12-31,") {
 		t.Fatalf("%d lines, first %q, last %q\n%s", len(lines), lines[0], lines[len(lines)-1], stderr)
 	}
-	columns := strings.Count(lines[0], ",")
-	for _, l := range lines {
-		if strings.Count(l, ",") != columns {
-			t.Fatalf("%q has not %d columns", l, columns+1)
-		}
+	if _, err := csv.NewReader(strings.NewReader(stdout)).ReadAll(); err != nil { // of lines with other columns too
+		t.Error(err)
 	}
 }
 
