@@ -6,6 +6,7 @@ import (
 	"math"
 	"regexp"
 	"slices"
+	"strconv"
 	"strings"
 	"time"
 	"unicode"
@@ -71,10 +72,11 @@ func (v *value) or(instead float64) float64 {
 type decoder struct {
 	*problems
 	places map[string]Place
-	// What is said once, though it holds for several bands or options.
-	misordered, noConductivity, noMoney bool
+	// What is said once, though it holds for several bands or options; of money also what need not be said.
+	misordered, noConductivity, noMoney, noPlanArea bool
 
-	costs []ownCost // of the options so far
+	costs []optionCost // of the options of the file so far
+	named []string     // the options of the file
 }
 
 // readBlock reads the keys of a block. A nil node stands for a block that is left out and whose keys all have
@@ -283,9 +285,12 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 				v.text, v.word = n.text, true
 				return v
 			}
+			if hint := cmp.Or(noBlank(n.text), s.hinted(n.text)); hint != "" {
+				return bad("%s", hint)
+			}
 			return bad("%s is neither %s nor a block such as %s", quoted(n.text), fault.Words(s.words, "nor"), blockForm(s))
 		case n.is == textNode:
-			if hint := noBlank(n.text); hint != "" {
+			if hint := cmp.Or(noBlank(n.text), s.hinted(n.text)); hint != "" {
 				return bad("%s", hint)
 			}
 			return bad("a block of keys such as %s is wanted here, not the text %s", blockForm(s), quoted(n.text))
@@ -319,7 +324,10 @@ func (d *decoder) readValue(n *node, s *shape, key string) *value {
 		}
 		return bad("one value is wanted here, not a block of keys")
 	case listNode:
-		if strings.HasPrefix(key, "options[") {
+		switch {
+		case strings.Contains(key, "].cost.") || strings.Contains(key, ".decline."):
+			return bad("one value is wanted here; a list may stand only for a number of the measure itself, not in its decline or in a cost; write an option for each value")
+		case strings.HasPrefix(key, "options["):
 			return bad("one value is wanted here; only a number of a measure may be a list, which makes an option of each value")
 		}
 		return bad("one value is wanted here, not a list")
@@ -389,6 +397,11 @@ func (d *decoder) readTexts(n *node, s *shape, v *value) *value {
 		return v
 	}
 	d.places[v.place.Key] = v.place
+	if len(n.items) == 0 && s.form == formOneOrMore {
+		d.add(v.place, "the list is empty; at least one text is needed")
+		v.bad = true
+		return v
+	}
 	if len(n.items) > s.most {
 		d.add(v.place, "the list has %d items; at most %d are read", len(n.items), s.most)
 		v.bad = true
@@ -437,7 +450,10 @@ func blockForm(s *shape) string {
 			keys = append(keys, f.name+": …")
 		}
 	}
-	if len(keys) == 0 {
+	switch {
+	case len(keys) == 0 && len(s.choice) > 0:
+		return "{" + strings.Join(s.choice, ": …}, {") + ": …}"
+	case len(keys) == 0:
 		for _, f := range s.fields[:min(2, len(s.fields))] {
 			keys = append(keys, f.name+": …")
 		}
@@ -495,6 +511,9 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		v.num, v.text = float64(month), month.String()
 	case formNumber:
 		v.num, err = quantity.ParseNumber(n.text)
+		if hint := notThousands(n.text); s.sum && err == nil && hint != "" {
+			return bad("%s", hint)
+		}
 	case formWhole:
 		var whole int64
 		whole, err = quantity.ParseWhole(n.text)
@@ -516,6 +535,9 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		}
 	}
 	if err != nil {
+		if hint := s.hinted(n.text); hint != "" {
+			return bad("%s", hint)
+		}
 		if len(s.words) > 0 && !strings.ContainsFunc(n.text, unicode.IsDigit) {
 			return bad("%v, or %s", err, fault.Words(s.words, "or"))
 		}
@@ -539,14 +561,22 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 		years := v.num / 365.25
 		if math.Abs(years-math.Round(years)) > 1e-9 || !s.limits.hold(math.Round(years)) {
 			meant := ""
-			if up := math.Ceil(years); s.limits.hold(up) {
+			if up := math.Ceil(years); years > 0 && s.limits.hold(up) {
 				meant = fmt.Sprintf("; write %s y", quantity.FormatNumber(up))
 			}
-			return bad("%s is not a whole number of years from 0 y to %s y%s", quoted(n.text), quantity.FormatNumber(s.limits.hi), meant)
+			return bad("%s is not a whole number of years %s%s", quoted(n.text), s.rangeWords(), meant)
 		}
 		v.num = math.Round(years)
 	}
 	return v
+}
+
+// hinted is what the shape has to say of a text that cannot be read, "" for nothing.
+func (s *shape) hinted(text string) string {
+	if s.hint == nil {
+		return ""
+	}
+	return s.hint(text)
 }
 
 // shareAndWord is a share with words after it, such as "55 % lost".
@@ -563,6 +593,8 @@ func (l limits) hold(x float64) bool {
 func (l limits) words(s *shape) string {
 	write := func(x float64) string {
 		switch {
+		case s.sum && x >= 1e6:
+			return strings.Replace(strconv.FormatFloat(x, 'g', -1, 64), "e+", "e", 1)
 		case s.form != formQuantity:
 			return quantity.FormatNumber(x)
 		case s.kind == quantity.Duration && x >= 365.25:
@@ -570,17 +602,17 @@ func (l limits) words(s *shape) string {
 		}
 		return quantity.Format(x, s.kind)
 	}
-	lo, hi := "at least ", "at most "
-	if l.loOpen {
-		lo = "above "
-	}
+	hi := "at most "
 	if l.hiOpen {
 		hi = "below "
 	}
-	if !l.loOpen && !l.hiOpen {
+	switch {
+	case !l.loOpen && l.hiOpen:
+		return "from " + write(l.lo) + " to below " + write(l.hi)
+	case !l.loOpen:
 		return "from " + write(l.lo) + " to " + write(l.hi)
 	}
-	return lo + write(l.lo) + " and " + hi + write(l.hi)
+	return "above " + write(l.lo) + " and " + hi + write(l.hi)
 }
 
 // meantWord lists the words of a shape, or gives the one that was meant.

@@ -50,7 +50,7 @@ func (d *decoder) bands(s *Study, list *value) {
 		}{{"loss_per_event", &band.LossPerEvent}, {"loss_per_day", &band.LossPerDay}} {
 			v := b.get(loss.key)
 			*loss.of = v.num
-			d.needMoney(s, v, "a loss")
+			d.needMoney(v, "a loss")
 		}
 		for _, key := range datums {
 			if v := b.get(key); v.given {

@@ -1,6 +1,7 @@
 package scenario
 
 import (
+	"cmp"
 	"math"
 	"strconv"
 	"strings"
@@ -11,6 +12,11 @@ import (
 func (d *decoder) options(s *Study, list *value) {
 	seen := map[string]Place{}
 	baseline, minimum := -1, -1
+	for _, item := range list.items {
+		if b := item.block; b != nil {
+			d.named = append(d.named, cmp.Or(b.made.list, b.get("name").text))
+		}
+	}
 	for i, item := range list.items {
 		b := item.block
 		o := Option{Name: b.get("name").text, Place: item.place}
@@ -264,6 +270,9 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 	if !radius.given && !equivalent.given && under > tie {
 		radius.shown = quantity.Format(usualRadius, quantity.Length)
 	}
+	if !below.given && under > tie && !math.IsNaN(conductivity.num) {
+		below.shown = quantity.Format(conductivity.num, quantity.Conductivity)
+	}
 	switch {
 	case t.Quadratic && head.given:
 		d.add(head.place, "the quadratic law follows the height of the water itself and has no working_head; delete it, or write law: linear")
@@ -273,7 +282,7 @@ func (d *decoder) trench(g *Ground, b *blockValue) *TrenchDrains {
 		head.shown = metres(t.Head)
 	}
 	if v := b.get("ceiling"); t.Quadratic && v.given && !v.word {
-		d.add(v.place, "the quadratic law is replayed without a ceiling; delete it, or write law: linear")
+		d.add(v.place, "the quadratic law is replayed without a ceiling; write ceiling: none, or law: linear")
 	}
 	return t
 }
@@ -294,9 +303,9 @@ func (d *decoder) decline(v *value) *Decline {
 		decline.Every = years(every)
 	}
 	switch {
-	case every.given && !restored.given:
+	case every.given && !every.bad && !restored.given:
 		d.add(every.place, "a flush seldom makes drains as new; say what it restores, such as restored_to: 95 %%")
-	case restored.given && !every.given:
+	case restored.given && !restored.bad && !every.given:
 		d.add(restored.place, "without flushing nothing is restored; give flushed_every, such as 5 y, or delete the key")
 	}
 	return decline

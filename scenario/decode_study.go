@@ -249,7 +249,7 @@ func (d *decoder) target(s *Study, v *value) {
 	switch {
 	case s.Count.Target == nil && b.empty:
 		d.add(v.place, "the target is empty; give one of %s, such as {days: 2}", fault.Words(targetShape.choice, "or"))
-	case s.Count.Target != nil && s.Count.DecideOn < 0 && len(s.Bands) > 1 && !d.places["count.decide_on"].given():
+	case s.Count.Target != nil && s.Count.DecideOn < 0 && len(s.Bands) > 1 && len(s.Options) == 1 && !d.places["count.decide_on"].given():
 		d.add(v.place, "several bands are given, so say which of them the target is for: give decide_on")
 	}
 }
@@ -260,7 +260,7 @@ func (p Place) given() bool { return p.Line > 0 }
 // money reads how costs and losses are added up.
 func (d *decoder) money(s *Study, v *value) {
 	b := v.block
-	if b == nil {
+	if d.noMoney = v.given; b == nil { // refused, where it is given, and that is enough
 		return
 	}
 	s.Money = &Money{

@@ -21,6 +21,7 @@ type sketch struct {
 	values map[string]float64 // of the ground and the site, by path, in base units
 	pet    bool
 	scheme bool // rates are to be converted
+	money  bool
 }
 
 // narrower are ranges within those of the table, in base units, in which the keys of a study go together. The base of the
@@ -46,6 +47,8 @@ var narrower = map[string]limits{
 	"site.ground_level":               atLeast(0, 500),
 	"trench_drains.depth":             atLeast(1, 4),
 	"trench_drains.equivalent_depth":  atLeast(0, 0.9),
+	"trench_drains.spacing":           atLeast(2, maxSpacing),
+	"trench_drains.drain_radius":      atLeast(0.01, 0.9),
 	"bored_drains.level":              atLeast(0, 9),
 }
 
@@ -159,11 +162,14 @@ func (k *sketch) scalar(f *field, path string) *node {
 		return word(month)
 	case formNumber:
 		l := rangeOf(path, s)
-		return word(k.number(l.lo, l.hi, func(text string) bool { v, err := quantity.ParseNumber(text); return err == nil && l.hold(v) }))
+		return word(k.number(l.lo, l.hi, func(text string) bool {
+			v, err := quantity.ParseNumber(text)
+			return err == nil && l.hold(v) && !(s.sum && notThousands(text) != "")
+		}))
 	case formWhole:
 		return word(strconv.Itoa(rapid.IntRange(int(s.limits.lo), int(s.limits.hi)).Draw(k.t, "whole")))
 	case formYears:
-		years := 4 * rapid.IntRange(0, int(s.limits.hi)/4).Draw(k.t, "years")
+		years := 4 * rapid.IntRange(int(math.Ceil(s.limits.lo/4)), int(s.limits.hi)/4).Draw(k.t, "years")
 		return word(rapid.SampledFrom([]string{fmt.Sprint(years, " y"), fmt.Sprint(years*1461/4, " d"), fmt.Sprint(years, "y")}).Draw(k.t, "years"))
 	case formQuantity:
 		text := k.quantity(s.kind, rangeOf(path, s))
@@ -183,16 +189,27 @@ func (k *sketch) name() string {
 // block draws a block: the keys that it needs, and of the others those that the coin or always chooses.
 func (k *sketch) block(s *shape, path string, always ...string) *node {
 	n := &node{is: blockNode}
+	if len(s.choice) > 0 {
+		always = []string{rapid.SampledFrom(s.choice).Draw(k.t, "choice")}
+	}
 	for i := range s.fields {
 		f := &s.fields[i]
 		at := join(path, f.name)
+		if len(s.choice) > 0 && !slices.Contains(always, f.name) {
+			continue
+		}
 		if f.later || f.need == "" && !slices.Contains(always, f.name) && !k.coin(f.name) || !k.allowed(at) {
 			continue
 		}
 		n.entries = append(n.entries, entry{key: f.name, value: k.value(f, at)})
 	}
-	if len(n.entries) == 0 {
+	if len(n.entries) == 0 && len(s.choice) == 0 {
 		n.entries = append(n.entries, entry{key: s.fields[0].name, value: k.value(&s.fields[0], join(path, s.fields[0].name))})
+	}
+	for _, e := range n.entries {
+		for _, key := range fieldOf(s.fields, e.key).with {
+			k.plant(n, key, func() *node { f := fieldOf(s.fields, key); return k.value(f, join(path, key)) })
+		}
 	}
 	// Keys may stand in any order.
 	n.entries = rapid.Permutation(n.entries).Draw(k.t, "order")
@@ -210,6 +227,8 @@ func (k *sketch) allowed(path string) bool {
 		return !k.scheme
 	case "ground.rates_from":
 		return k.scheme
+	case "money":
+		return k.money
 	}
 	return true
 }
@@ -240,10 +259,10 @@ func (k *sketch) value(f *field, path string) *node {
 // study draws a whole study.
 func (k *sketch) study() *node {
 	k.values = map[string]float64{}
-	k.pet, k.scheme = k.coin("pet"), k.coin("scheme")
+	k.pet, k.scheme, k.money = k.coin("pet"), k.coin("scheme"), k.coin("money")
 	k.names = rapid.Permutation([]string{"as it stands", "trenches", "012", "true", "yes", "0+400", "1e3", "NO", "Böschung", "x: y", "#1", "a, b", "null", "~", "0x1F", "it's",
 		"12.50", ".5", "on", "two words", "1_000", "{x}", "0", "rain, mm", "|", "日本"}).Draw(k.t, "names")
-	root := k.block(&studyShape, "", "site", "count")
+	root := k.block(&studyShape, "", "site", "count", "money")
 	if e := root.entry("ground"); e != nil && k.scheme {
 		k.plant(e.value, "rates_from", func() *node {
 			f := fieldOf(groundShape.fields, "rates_from")
@@ -319,6 +338,11 @@ func (k *sketch) bands(root *node) *node {
 		if k.coin("until") {
 			b.entries = append(b.entries, entry{key: "until", value: word(write(way, level-1))})
 		}
+		for _, loss := range []string{"loss_per_event", "loss_per_day"} {
+			if k.money && k.coin(loss) {
+				b.entries = append(b.entries, entry{key: loss, value: k.scalar(fieldOf(bandFields, loss), "bands[]."+loss)})
+			}
+		}
 		list.items = append(list.items, b)
 	}
 	return list
@@ -329,12 +353,15 @@ func (k *sketch) options(root *node) *node {
 	list := &node{is: listNode}
 	baseline := rapid.IntRange(-1, 2).Draw(k.t, "baseline")
 	like := map[string][]*node{} // options by measure, written out
+	var costs []*drawnCost       // of options with a cost of their own
+	minimum := rapid.IntRange(-1, 3).Draw(k.t, "minimum")
 	for i := range rapid.IntRange(1, 4).Draw(k.t, "options") {
 		o := &node{is: blockNode, entries: []entry{{key: "name", value: word(k.name())}}}
-		listed := i == 0 || i == baseline // no list in what is or may be the baseline
+		listed := i == 0 || i == baseline || i == minimum // no list in what is or may be the baseline, or the minimum
+		drains := map[string]*drawnDrains{}
 		for j := range optionFields {
 			f := &optionFields[j]
-			if f.shape.form != formBlock || f.later || k.coin(f.name) {
+			if f.shape.form != formBlock || f.later || f.name == "cost" || k.coin(f.name) {
 				continue
 			}
 			if f.name == "cut_off_drain" && root.entry("ground").value.entry("deep").value.entry("lateral_inflow") == nil {
@@ -351,6 +378,17 @@ func (k *sketch) options(root *node) *node {
 				listed = k.list(f, m)
 			}
 			o.entries = append(o.entries, entry{key: f.name, value: m})
+			if f.name == "trench_drains" || f.name == "bored_drains" {
+				drains[f.name] = k.drainsOf(root, f.name, m, like[f.name])
+			}
+		}
+		if k.money && k.coin("cost") {
+			if c := k.cost(o.textOf("name"), drains, &costs); c != nil {
+				o.entries = append(o.entries, entry{key: "cost", value: c})
+			}
+		}
+		if i == minimum {
+			o.entries = append(o.entries, entry{key: "minimum", value: word("true")})
 		}
 		if i == baseline {
 			o.entries = append(o.entries, entry{key: "baseline", value: word("true")})
@@ -362,12 +400,116 @@ func (k *sketch) options(root *node) *node {
 	return list
 }
 
+// drawnDrains is what a cost may count in the drains of an option.
+type drawnDrains struct{ metres, flushed bool }
+
+// drainsOf looks up what is known of drains, in their own keys and in those that they take over from one of the options
+// above.
+func (k *sketch) drainsOf(root *node, measure string, m *node, above []*node) *drawnDrains {
+	e := func(key string) *node {
+		if own := m.entry(key); own != nil {
+			return own.value
+		}
+		for _, o := range above {
+			if named := m.entry(likeField.name); named != nil && o.textOf("name") == named.value.text {
+				if taken := o.entry(measure).value.entry(key); taken != nil {
+					return taken.value
+				}
+			}
+		}
+		return nil
+	}
+	d := &drawnDrains{metres: e("spacing") != nil && root.entry("site").value.entry("plan_area") != nil}
+	if measure == "bored_drains" {
+		d.metres = e("number") != nil && e("length") != nil
+	}
+	if decline := e("decline"); decline != nil {
+		d.flushed = decline.entry("flushed_every") != nil
+	}
+	return d
+}
+
+// drawnCost is a cost that others may take, with the drains that its metres and flushes are for.
+type drawnCost struct {
+	name, drains       string
+	perMetre, perFlush bool
+}
+
+// cost draws what an option costs: sums of its own, those of an option above with some of its own over them, or those of
+// several; nil where nothing fits.
+func (k *sketch) cost(name string, drains map[string]*drawnDrains, above *[]*drawnCost) *node {
+	var fit []*drawnCost // what this option can take
+	for _, c := range *above {
+		d := drains[c.drains]
+		if (!c.perMetre || d != nil && d.metres) && (!c.perFlush || d != nil && d.flushed) {
+			fit = append(fit, c)
+		}
+	}
+	m := &node{is: blockNode}
+	add := func(key string) {
+		m.entries = append(m.entries, entry{key: key, value: k.scalar(fieldOf(costShape.fields, key), "options[].cost."+key)})
+	}
+	like := &node{is: listNode}
+	for _, c := range fit {
+		if k.coin("like") {
+			like.items = append(like.items, word(c.name))
+		}
+	}
+	switch len(like.items) {
+	case 0:
+		of := "" // the only drains of the option
+		for _, key := range []string{"trench_drains", "bored_drains"} {
+			if drains[key] != nil {
+				of = map[bool]string{true: key, false: "both"}[of == ""]
+			}
+		}
+		c := &drawnCost{name: name}
+		only := drains[of]
+		if only != nil {
+			c.drains = of
+		}
+		for _, key := range []string{"capital", "per_year"} {
+			if k.coin(key) {
+				add(key)
+			}
+		}
+		if only != nil && only.metres && k.coin("per_metre") {
+			add("per_metre")
+			c.perMetre = true
+		}
+		if only != nil && only.flushed && k.coin("per_flush") {
+			add("per_flush")
+			c.perFlush = true
+		}
+		if (m.entry("capital") != nil || m.entry("per_metre") != nil) && k.coin("life") {
+			add("life")
+		}
+		if len(m.entries) == 0 {
+			return nil
+		}
+		*above = append(*above, c)
+	case 1:
+		for _, key := range []string{"capital", "per_year", "life"} {
+			if k.coin(key) {
+				add(key)
+			}
+		}
+		m.entries = append(m.entries, entry{key: likeField.name, value: like})
+		if k.coin("not a list") {
+			m.entries[len(m.entries)-1].value = like.items[0]
+		}
+	default:
+		m.entries = append(m.entries, entry{key: likeField.name, value: like})
+	}
+	return m
+}
+
 // measure draws a measure. It is the option's own if it is not taken from another.
 func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool) {
 	path := "options[]." + f.name
 	draw := func(key string) *node {
 		inner := fieldOf(f.shape.fields, key)
-		return k.scalar(inner, join(path, key))
+		return k.value(inner, join(path, key))
 	}
 	m = &node{is: blockNode}
 	add := func(key string) { m.entries = append(m.entries, entry{key: key, value: draw(key)}) }
@@ -390,9 +532,8 @@ func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool
 		case inner.name == "working_head": // half of depth, below
 		case slices.Contains(f.shape.choice, inner.name):
 		case choice == "rate" && slices.Contains(withSpacing, inner.name):
-		case choice == "spacing" && (inner.name == "equivalent_depth"):
-			add(inner.name)
-		case source >= 0 && slices.Contains(withSpacing, inner.name): // the other may have a rate
+		case inner.name == "drain_radius" && m.entry("equivalent_depth") != nil, inner.name == "equivalent_depth" && m.entry("drain_radius") != nil:
+		case source >= 0 && slices.Contains(withSpacing, inner.name) && above[source].entry(f.name).value.entry("rate") != nil:
 		case source >= 0 && inner.name == "depth": // the other may have a working head
 		case f.name == "set" && strings.HasPrefix(inner.name, "soil.") && root.entry("ground").value.entry("soil") == nil:
 		case f.name == "set" && inner.name == "cover.percolation_ceiling" && k.scheme:
@@ -403,7 +544,15 @@ func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool
 			m.entry("pet_factor").value = word("1")
 		}
 	}
-	if choice == "spacing" && k.coin("working_head") {
+	if quadratic := m.textOf("law") == "quadratic"; quadratic { // it has no ceiling, and none that is taken over
+		m.entries = slices.DeleteFunc(m.entries, func(e entry) bool { return e.key == "ceiling" })
+		if source >= 0 || k.coin("no ceiling") {
+			m.entries = append(m.entries, entry{key: "ceiling", value: word("none")})
+		}
+	} else if source >= 0 && above[source].entry(f.name).value.textOf("law") == "quadratic" && m.textOf("law") == "" {
+		m.entries = slices.DeleteFunc(m.entries, func(e entry) bool { return e.key == "ceiling" })
+	}
+	if choice == "spacing" && m.textOf("law") != "quadratic" && k.coin("working_head") {
 		depth, err := quantity.Parse(m.textOf("depth"), quantity.Length)
 		if err != nil {
 			k.t.Fatal(err)
@@ -413,7 +562,7 @@ func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool
 	if source >= 0 {
 		m.entries = append(m.entries, entry{key: likeField.name, value: word(above[source].textOf("name"))})
 		for _, e := range above[source].entry(f.name).value.entries { // a list is given anew
-			if e.value.is == listNode {
+			if e.value.is == listNode && !replaced(f.name, e.key, m) {
 				k.plant(m, e.key, func() *node { return draw(e.key) })
 			}
 		}
@@ -428,7 +577,7 @@ func (k *sketch) measure(root *node, f *field, above []*node) (m *node, own bool
 func (k *sketch) list(f *field, m *node) bool {
 	var spots []int
 	for i, e := range m.entries {
-		if inner := fieldOf(f.shape.fields, e.key); inner.listable() && e.key != "working_head" && !(e.key == "depth" && m.entry("working_head") != nil) && !(e.key == "pet_factor" && !k.pet) {
+		if inner := fieldOf(f.shape.fields, e.key); inner.listable() && e.key != "working_head" && !(e.key == "depth" && m.entry("working_head") != nil) && !(e.key == "pet_factor" && !k.pet) && !(e.key == "ceiling" && m.textOf("law") == "quadratic") {
 			spots = append(spots, i)
 		}
 	}
@@ -520,6 +669,11 @@ func (s *site) single() bool {
 	return f != formBlock && f != formList && f != formTexts
 }
 
+// listable says whether a list may stand for the key, each of whose values makes an option.
+func (s *site) listable() bool {
+	return s.field.listable() && listPath(strings.TrimSuffix(s.path, "."+s.field.name))
+}
+
 func (s *site) unit() string { return s.field.shape.kind.Unit() }
 
 // faults are the ways to spoil the form of a study. Each says which keys it can be done to.
@@ -529,7 +683,7 @@ var faults = []struct {
 	do   func(t *rapid.T, s *site)
 }{
 	{"unknown key", func(s *site) bool { return true }, func(t *rapid.T, s *site) {
-		key := rapid.SampledFrom([]string{"thicknes", "Study", "x", "money", "cost", "consolidation"}).Draw(t, "key")
+		key := rapid.SampledFrom([]string{"thicknes", "Study", "x", "climates", "snow", "fit"}).Draw(t, "key")
 		s.block.entries = append(s.block.entries, entry{key: key, value: word("1 m")})
 	}},
 	{"missing key", func(s *site) bool { return s.field.need != "" && !s.taken() }, func(t *rapid.T, s *site) { s.drop(s.field.name) }},
@@ -539,6 +693,9 @@ var faults = []struct {
 		key := rapid.SampledFrom(others).Draw(t, "other")
 		s.block.entries = append(s.block.entries, entry{key: key, value: word(fmt.Sprint(fieldOf(s.shape.fields, key).eg))})
 	}},
+	{"key without another that it needs", func(s *site) bool { return len(s.field.with) > 0 }, func(t *rapid.T, s *site) {
+		s.drop(rapid.SampledFrom(s.field.with).Draw(t, "other"))
+	}},
 	{"excluded key", func(s *site) bool { return len(s.field.not) > 0 }, func(t *rapid.T, s *site) {
 		key := rapid.SampledFrom(s.field.not).Draw(t, "other")
 		s.drop(key)
@@ -546,7 +703,7 @@ var faults = []struct {
 		s.block.entries = append(s.block.entries, entry{key: key, value: word(fmt.Sprint(f.example()))})
 	}},
 	{"wrong word", func(s *site) bool { return len(s.field.shape.words) > 0 }, func(t *rapid.T, s *site) {
-		s.setText(rapid.SampledFrom([]string{"maybe", "None", "steadily", "quadratic", "", "yes or no"}).Draw(t, "word"))
+		s.setText(rapid.SampledFrom([]string{"maybe", "None", "steadily", "cubic", "", "yes or no"}).Draw(t, "word"))
 	}},
 	{"no unit", (*site).hasUnit, func(t *rapid.T, s *site) { s.setText(rapid.SampledFrom([]string{"12", "1", "1.0"}).Draw(t, "number")) }},
 	{"wrong unit", (*site).hasUnit, func(t *rapid.T, s *site) {
@@ -592,7 +749,7 @@ var faults = []struct {
 		s.set(&node{is: blockNode, entries: []entry{{key: "value", value: s.value()}}})
 	}},
 	{"list for one value", func(s *site) bool {
-		return s.single() && (!s.field.listable() || !strings.HasPrefix(s.path, "options[]."))
+		return s.single() && s.field.shape.form != formOneOrMore && !s.listable()
 	}, func(t *rapid.T, s *site) {
 		s.set(&node{is: listNode, items: []*node{s.value()}})
 	}},
@@ -608,7 +765,7 @@ var faults = []struct {
 	{"block in a list", func(s *site) bool { return s.value().is == listNode && s.field.shape.form != formList }, func(t *rapid.T, s *site) {
 		s.value().items = append(s.value().items, &node{is: blockNode, entries: []entry{{key: "value", value: word("12 m")}}})
 	}},
-	{"wrong value in a list", func(s *site) bool { return s.field.listable() && strings.HasPrefix(s.path, "options[].") }, func(t *rapid.T, s *site) {
+	{"wrong value in a list", (*site).listable, func(t *rapid.T, s *site) {
 		if s.value().is != listNode {
 			s.set(&node{is: listNode, items: []*node{s.value()}})
 		}
@@ -618,7 +775,7 @@ var faults = []struct {
 		again := rawText + s.value().items[0].text
 		s.value().items = []*node{word(again), word(again)}
 	}},
-	{"long list", func(s *site) bool { return s.field.listable() && strings.HasPrefix(s.path, "options[].") }, func(t *rapid.T, s *site) {
+	{"long list", (*site).listable, func(t *rapid.T, s *site) {
 		list := &node{is: listNode}
 		for i := range mostValues + 1 {
 			text := quantity.FormatNumber(1 + float64(i)/1000)

@@ -190,15 +190,26 @@ func (x *expander) merged(o *writtenOption, measure string, own *node, named *en
 }
 
 // replaced reports whether a key of a measure that is taken over has no place beside what the option gives: a rate stands
-// instead of a spacing with all that belongs to it, and the other way round.
+// instead of a spacing with all that belongs to it, and the other way round; an equivalent_depth instead of the drain_radius
+// from which it would be computed; and the quadratic law has no working_head.
 func replaced(measure, key string, own *node) bool {
 	if measure != "trench_drains" {
 		return false
 	}
-	if key == "rate" {
-		return own.entry("spacing") != nil
+	if own.entry("rate") != nil && slices.Contains(withSpacing, key) {
+		return true
 	}
-	return own.entry("rate") != nil && slices.Contains(withSpacing, key)
+	switch key {
+	case "rate":
+		return own.entry("spacing") != nil
+	case "equivalent_depth":
+		return own.entry("drain_radius") != nil
+	case "drain_radius":
+		return own.entry("equivalent_depth") != nil
+	case "working_head":
+		return own.textOf("law") == "quadratic"
+	}
+	return false
 }
 
 // withSpacing are the keys of trench_drains that have a meaning beside a spacing only, and the spacing.
@@ -301,8 +312,10 @@ func (x *expander) perValue(item *node) []*node {
 	case n > mostValues:
 		return refuse(at, "the list has %d values; at most %d make an option each", n, mostValues)
 	}
-	if mark := item.entry("baseline"); mark != nil && item.textOf("baseline") == "true" && len(first.value.items) > 1 {
-		return refuse(x.at(mark.line, mark.col, mark.key), "the list of %s makes several options, and only one can be the baseline; mark another one", first.key)
+	for _, only := range []string{"baseline", "minimum"} {
+		if mark := item.entry(only); mark != nil && item.textOf(only) == "true" && len(first.value.items) > 1 {
+			return refuse(x.at(mark.line, mark.col, mark.key), "the list of %s makes several options, and only one can be the %s; mark another one", first.key, only)
+		}
 	}
 	if e := item.entry("name"); e != nil && e.value != nil && e.value.is == textNode && checkName(e.value.text) != "" {
 		return []*node{with(item, spots[0], first.value.items[0], e.value.text)} // so that the name is refused as it is written

@@ -42,7 +42,7 @@ func keyDocs(docs []KeyDoc, fields []field, path string) []KeyDoc {
 func docOf(f *field, path string) KeyDoc {
 	s := &f.shape
 	doc := KeyDoc{
-		Path: join(path, f.name), Says: f.says, Form: s.form.name(s.kind), Words: s.shownWords(), Range: s.rangeWords(),
+		Path: join(path, f.name), Says: f.says, Form: s.formName(), Words: s.shownWords(), Range: s.rangeWords(),
 		Required: f.need != "", Default: f.def, Absent: f.absent, List: listPath(path) && f.listable(),
 	}
 	switch s.form {
@@ -115,6 +115,14 @@ func laterKeys(keys []string, fields []field, path string) []string {
 		keys = laterKeys(keys, f.shape.fields, inside(key, &f.shape))
 	}
 	return keys
+}
+
+// formName is the form in words.
+func (s *shape) formName() string {
+	if s.sum {
+		return "sum of money"
+	}
+	return s.form.name(s.kind)
 }
 
 // name is the form in words. The kind is that of a quantity.

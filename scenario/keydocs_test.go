@@ -62,6 +62,12 @@ func TestKeysSamples(t *testing.T) {
 		{Path: "ground.warm_up", Form: "whole number of years", Words: []string{"auto"}, Range: "from 0 y to 1000 y", Absent: "by default auto, or 0 y where start gives levels"},
 		{Path: "options[].trench_drains.depth", Form: "length", Units: quantity.Length.Units(), Range: "above 0 m and at most 500 m", Required: true, List: true},
 		{Path: "options[].set.cover.seepage", Form: "rate", Units: quantity.Rate.Units(), Range: "from 0 /d to 1000000 /d", Absent: "by default as in ground", List: true},
+		{Path: "bands[].loss_per_event", Form: "sum of money", Range: "from 0 to 1e13", Default: "0"},
+		{Path: "count.target.return_period", Form: "time", Units: quantity.Duration.Units(), Range: "from 1 y to 1000 y", Absent: oneTarget},
+		{Path: "money.discount_rate", Form: "share", Units: quantity.Share.Units(), Range: "from 0 % to below 100 %", Required: true},
+		{Path: "options[].trench_drains.decline", Form: "block", Words: []string{"none"}, Default: "none"},
+		{Path: "options[].bored_drains.decline.half_life", Form: "time", Units: quantity.Duration.Units(), Range: "above 0 d and at most 1000 y", Required: true},
+		{Path: "options[].cost.like", Form: "text or list of texts", Absent: "may be left out"},
 		{Path: "declared.perched_water", Form: "word", Words: []string{"yes", "no", "unknown"}, Default: "unknown"},
 	} {
 		got := all[want.Path]
@@ -102,7 +108,7 @@ func TestKeysAreThoseRead(t *testing.T) {
 
 func TestLaterKeys(t *testing.T) {
 	later := LaterKeys()
-	for _, want := range []string{"weather.gaps as {from: …}", "ground.deep.consolidation", "money", "options[].trench_drains.law as quadratic", "options[].cost"} {
+	for _, want := range []string{"weather.gaps as {from: …}", "weather.snow", "ground.ensemble", "climates", "fit"} {
 		if !slices.Contains(later, want) {
 			t.Errorf("%s is missing from %q", want, later)
 		}

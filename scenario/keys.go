@@ -42,6 +42,9 @@ type shape struct {
 	cell   bool          // a text that comes to stand in a cell of a table, where no formula may begin
 	bare   string        // of a quantity: the key beside which it is a bare number, for the decoder to tell apart
 	meant  [][2]string   // other words that a person may write, and which of the shape's words is meant
+	sum    bool          // of a number: a sum of money, in the currency of the study
+
+	hint func(text string) string // what to say of a text that cannot be read as this, "" for nothing better than usual
 }
 
 // limits is the range of a number.
@@ -60,6 +63,7 @@ type field struct {
 	absent string   // for the reference: what holds when it is left out, where need and def do not say it
 	eg     string   // for the schema: a value as it would be typed; "" where the default or the shape has one
 	not    []string // keys of the block that have no place beside it
+	with   []string // for the schema: keys of the block that are needed beside it
 	quiet  bool     // says nothing when it is left out, and is not listed then
 	later  bool     // refused: not supported yet
 }
@@ -95,6 +99,11 @@ func amount(kind quantity.Kind, l limits, words ...string) shape {
 	return shape{form: formQuantity, kind: kind, limits: l, words: words}
 }
 
+// years is a time that is usually given in years. Never is what to say of a word that stands for no end of it.
+func years(l limits, never string) shape {
+	return shape{form: formQuantity, kind: quantity.Duration, limits: l, hint: func(text string) string { return yearsMeant(text, never) }}
+}
+
 func block(fields ...field) shape { return shape{form: formBlock, fields: fields} }
 
 func oneOf(words ...string) shape { return shape{form: formWord, words: words} }
@@ -116,7 +125,7 @@ var (
 	ceilingShape   = amount(quantity.Flux, above(0, maxFlux), "none")
 	fullAtShape    = amount(quantity.Length, above(0, maxLevel), "none")
 	angleShape     = amount(quantity.Angle, limits{lo: 0, hi: 90, loOpen: true, hiOpen: true})
-	moneyShape     = shape{form: formNumber, limits: atLeast(0, maxMoney)}
+	moneyShape     = shape{form: formNumber, limits: atLeast(0, maxMoney), sum: true, hint: sumMeant}
 	answerShape    = shape{form: formWord, words: []string{"yes", "no", "unknown", "true", "false"}}
 )
 
@@ -340,7 +349,7 @@ var countShape = block(
 )
 
 // targetShape has a key for each figure that a target can be set on.
-var targetShape = shape{form: formBlock, choice: []string{"load", "days", "events", "annual_probability", "return_period"}, fields: []field{
+var targetShape = shape{form: formBlock, hint: targetMeant, choice: []string{"load", "days", "events", "annual_probability", "return_period"}, fields: []field{
 	{name: "load", says: "most load, m·d a year", absent: oneTarget,
 		shape: shape{form: formNumber, limits: atLeast(0, 1e6)}, quiet: true, eg: "0.5"},
 	{name: "days", says: "most days a year", absent: oneTarget,
@@ -348,9 +357,9 @@ var targetShape = shape{form: formBlock, choice: []string{"load", "days", "event
 	{name: "events", says: "most events a year", absent: oneTarget,
 		shape: shape{form: formNumber, limits: atLeast(0, 366)}, quiet: true, eg: "0.1"},
 	{name: "annual_probability", says: "largest share of years with a passage", absent: oneTarget,
-		shape: shareShape, quiet: true, eg: "5 %"},
+		shape: shape{form: formQuantity, kind: quantity.Share, limits: atLeast(0, 1), hint: probabilityMeant}, quiet: true, eg: "5 %"},
 	{name: "return_period", says: "one in so many years has a passage, at most: the inverse of annual_probability, as counted", absent: oneTarget,
-		shape: amount(quantity.Duration, atLeast(365.25, 365250)), quiet: true, eg: "20 y"},
+		shape: shape{form: formQuantity, kind: quantity.Duration, limits: atLeast(365.25, 365250), hint: returnMeant}, quiet: true, eg: "20 y"},
 }}
 
 // oneTarget is what holds of a target that does not give one of its figures.
@@ -364,36 +373,36 @@ var moneyBlock = block(
 	field{name: "discount_rate", says: "yearly rate at which later sums count less; real, so without inflation",
 		shape: amount(quantity.Share, limits{lo: 0, hi: 1, hiOpen: true}), need: "the yearly rate at which later sums count less, such as", eg: "3 %"},
 	field{name: "prices_of", says: "year whose prices all sums are in",
-		shape: shape{form: formWhole, limits: atLeast(1900, 2200)}, need: "the year whose prices all sums are in, such as", eg: "2026"},
+		shape: shape{form: formWhole, limits: atLeast(1900, 2200), hint: yearMeant}, need: "the year whose prices all sums are in, such as", eg: "2026"},
 	field{name: "contingency", says: "share added to every capital sum for what is not foreseen",
-		shape: shareShape, def: "0 %", eg: "20 %"},
+		shape: shape{form: formQuantity, kind: quantity.Share, limits: atLeast(0, 1), hint: contingencyMeant}, def: "0 %", eg: "20 %"},
 )
 
-var costShape = block(
-	field{name: "capital", says: "paid at the start, and again whenever life is over",
+var costShape = shape{form: formBlock, filled: true, hint: costMeant, fields: []field{
+	{name: "capital", says: "paid at the start, and again whenever life is over",
 		shape: moneyShape, def: "0", quiet: true, eg: "210000"},
-	field{name: "per_metre", says: "the same for each metre: plan area divided by spacing for trenches, number times length for bores",
+	{name: "per_metre", says: "paid like capital, for each metre: plan area divided by spacing, or number of bores times length",
 		shape: moneyShape, def: "0", quiet: true, eg: "95"},
-	field{name: "per_year", says: "upkeep, inspection and readings, each year",
+	{name: "per_year", says: "upkeep, inspection and readings, each year",
 		shape: moneyShape, def: "0", quiet: true, eg: "600"},
-	field{name: "per_flush", says: "paid whenever decline.flushed_every has passed",
+	{name: "per_flush", says: "paid whenever decline.flushed_every has passed",
 		shape: moneyShape, def: "0", quiet: true, eg: "4000"},
-	field{name: "life", says: "time after which capital and metres are paid again", absent: "by default never renewed",
-		shape: amount(quantity.Duration, atLeast(365.25, 365250)), def: "", quiet: true, eg: "30 y"},
-	field{name: "like", says: "name of an option above whose cost is taken, or of several whose costs are added up", absent: "may be left out",
+	{name: "life", says: "time after which capital and metres are paid again", absent: "by default never renewed",
+		shape: years(atLeast(365.25, 365250), "works that are never renewed have no life; delete the key"), quiet: true, eg: "30 y"},
+	{name: "like", says: "name of an option above whose cost is taken, or of several whose costs are added up", absent: "may be left out",
 		shape: shape{form: formOneOrMore, most: mostCosts}, quiet: true, eg: "name of the other option"},
-)
+}}
 
 // declineField says how drains clog.
-var declineField = field{name: "decline", says: "how the drains clog, and what flushing restores", absent: "by default they never clog",
-	quiet: true, shape: block(
-		field{name: "half_life", says: "time after which half of the rate is left, without flushing",
-			shape: amount(quantity.Duration, above(0, 365250)), need: "the time after which half of the rate is left, such as", eg: "12 y"},
-		field{name: "flushed_every", says: "time between flushes", absent: "by default never flushed",
-			shape: amount(quantity.Duration, atLeast(30, 365250)), quiet: true, eg: "5 y"},
-		field{name: "restored_to", says: "share of the rate as new that a flush restores", absent: "required with flushed_every",
-			shape: someShareShape, quiet: true, eg: "95 %"},
-	)}
+var declineField = field{name: "decline", says: "how the drains clog, and what flushing restores", def: "none",
+	shape: shape{form: formBlock, words: []string{"none"}, hint: declineMeant, fields: []field{
+		{name: "half_life", says: "time after which half of the rate is left, without flushing",
+			shape: years(above(0, 365250), "drains that never clog have no decline; write decline: none"), need: "the time after which half of the rate is left, such as", eg: "12 y"},
+		{name: "flushed_every", says: "time between flushes", absent: "by default never flushed; required with restored_to",
+			shape: years(atLeast(30, 365250), "drains that are never flushed have neither this key nor restored_to; delete both"), quiet: true, eg: "5 y", with: []string{"restored_to"}},
+		{name: "restored_to", says: "share of the rate as new that a flush restores", absent: "required with flushed_every",
+			shape: someShareShape, quiet: true, eg: "95 %", with: []string{"flushed_every"}},
+	}}}
 
 var optionFields = []field{
 	{name: "name", says: "what the option is called in every result",
@@ -445,13 +454,13 @@ var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fi
 		shape: amount(quantity.Length, above(0, maxSpacing)), quiet: true, eg: "12 m"},
 	{name: "conductivity", says: "hydraulic conductivity of the cover, of what lies above the trenches' level; only with spacing", absent: "by default ground.cover.conductivity",
 		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.02 m/d"},
-	{name: "conductivity_below", says: "the same of what lies below the trenches' level; only with spacing", absent: "by default as conductivity",
+	{name: "conductivity_below", says: "hydraulic conductivity of what lies below the trenches' level; only with spacing", absent: "by default as conductivity; unused on the contact",
 		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.005 m/d"},
 	{name: "drain_radius", says: "radius of a drain that takes in as much: wetted perimeter divided by π; only with spacing", absent: "by default 0.1 m; unused on the contact",
-		shape: amount(quantity.Length, above(0, 10)), quiet: true, eg: "0.2 m"},
+		shape: amount(quantity.Length, above(0, 10)), quiet: true, eg: "0.2 m", not: []string{"equivalent_depth"}},
 	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; it grows with the spacing; only with spacing", absent: "by default computed from spacing, drain_radius and the cover below the trenches",
 		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true, eg: "0.80 m"},
-	{name: "working_head", says: "height midway of the water above the trenches that the linear rate is worked out for; only with spacing", absent: "by default half of depth",
+	{name: "working_head", says: "height midway of the water above the trenches, for the rate of the linear law; only with spacing", absent: "by default half of depth",
 		shape: amount(quantity.Length, above(0, maxThickness)), quiet: true, eg: "1.5 m"},
 	{name: "law", says: "how the outflow grows with the height of the water above the trenches; only with spacing",
 		shape: shape{form: formWord, words: []string{"linear", "quadratic"}}, def: "linear", eg: "quadratic"},

@@ -176,11 +176,11 @@ func TestWorks(t *testing.T) {
 	inf, nan := math.Inf(1), math.NaN()
 	s := ground(
 		Option{Name: "by spacing", Measures: []Measure{
-			{Key: "trench_drains", Trench: &TrenchDrains{Depth: 3, Spacing: 10, Conductivity: 0.02, Equivalent: 0.85, Efficiency: 0.8, Ceiling: inf}},
+			{Key: "trench_drains", Trench: &TrenchDrains{Depth: 3, Spacing: 10, Conductivity: 0.02, Equivalent: 0.85, Head: 1.5, Efficiency: 0.8, Ceiling: inf}},
 			{Key: "surface_water", Cut: &SurfaceWater{KeptOut: 0.1}},
 		}},
 		Option{Name: "on the contact, the cover's conductivity, another porosity", Measures: []Measure{
-			{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 10, Equivalent: nan, Efficiency: 1, Ceiling: 3}},
+			{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 10, Equivalent: nan, Head: 2, Efficiency: 1, Ceiling: 3}},
 			{Key: "set", Set: []Assignment{{Key: "cover.drainable_porosity", Value: 0.03}, {Key: "deep.drainable_porosity", Value: 0.02}}},
 			{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: 2.5, Efficiency: 0.5, Ceiling: inf}},
 		}},

@@ -35,10 +35,11 @@ func Schema() []byte {
 const (
 	schemaSays = "One study: the weather record, the slope as calibrated, its critical levels, and the options to compare. " +
 		"Every quantity is written with its unit, such as 12 m, 0.011 /d or 8 %; a share may also be a bare number from 0 to below 1. " +
-		"In a measure of an option one number may be a list, which makes an option of each value, and like takes the same measure of an option above. " +
+		"In a measure of an option one number may be a list, which makes an option of each value, and like takes the same measure of an option above; " +
+		"in a cost it takes that of an option above, or adds up those of several. " +
 		"What a schema cannot see is said by: quietslope check STUDY.yaml"
-	schemaCannot = "Not seen here: the limits of a quantity other than its sign, and 100 % of a share; how a number is spelt before it is read (010, 1. and .5 are refused); " +
-		"what one key says of another (decide_on names a band, a band by elevation needs site.ground_level, a soil needs columns.pet); that names differ; that bands rise and until lies below; " +
+	schemaCannot = "Not seen here: the limits of a quantity other than its sign, and 100 % of a share; how a number is spelt before it is read (010, 1. and .5 are refused, and a sum such as 210.000); " +
+		"what one key says of another (decide_on names a band, a band by elevation needs site.ground_level, a soil needs columns.pet, costs and losses need money, a cost per metre needs what the metres are worked out from); what one value rules out elsewhere in its block (law: quadratic leaves no working_head and no ceiling, a like of several costs no sum beside it); that names differ; that bands rise and until lies below; " +
 		"levels and depths against the thickness of their layer; more than one list in an option; the options that like names; time formats, units of columns and files; " +
 		"answers that rule the method out; duplicate keys, and the parts of YAML that a study does not use."
 )
@@ -64,7 +65,7 @@ func (b *schemaBuilder) ref(name string, def object) object {
 
 // block is the schema of a block of keys, or of each block of a list.
 func (b *schemaBuilder) block(s *shape, path string) object {
-	var keys, excluded object
+	var keys, excluded, dependent object
 	var required []string
 	var conditions []object
 	like := false
@@ -79,6 +80,9 @@ func (b *schemaBuilder) block(s *shape, path string) object {
 		}
 		if never := s.excluded(f); never != nil {
 			excluded = append(excluded, member{f.name, object{{"properties", never}}})
+		}
+		if len(f.with) > 0 {
+			dependent = append(dependent, member{f.name, f.with})
 		}
 		if f.shape.bare != "" {
 			conditions = append(conditions, object{
@@ -101,13 +105,16 @@ func (b *schemaBuilder) block(s *shape, path string) object {
 		needs = append(needs, member{"anyOf", each})
 	}
 	out := object{{"type", "object"}, {"properties", keys}, {"additionalProperties", false}}
-	if like { // what is needed may come from the other option
+	if like && needs != nil { // what is needed may come from the other option
 		conditions = append(conditions, object{{"if", object{{"required", []string{likeField.name}}}}, {"else", needs}})
 	} else {
 		out = append(out, needs...)
 	}
 	if s.filled {
 		out = append(out, member{"minProperties", 1})
+	}
+	if len(dependent) > 0 {
+		out = append(out, member{"dependentRequired", dependent})
 	}
 	if len(excluded) > 0 {
 		out = append(out, member{"dependentSchemas", excluded})
@@ -188,7 +195,7 @@ func (b *schemaBuilder) values(f *field, path string) []object {
 		values = append(values, object{{"type", "array"}, {"items", b.text(&textShape)}, {"maxItems", s.most}})
 	case formOneOrMore:
 		text := b.text(&filledShape)
-		values = append(values, text, object{{"type", "array"}, {"items", text}, {"minItems", 1}, {"maxItems", s.most}})
+		values = append(values, text, object{{"type", "array"}, {"items", text}, {"minItems", 1}, {"maxItems", s.most}, {"uniqueItems", true}})
 	case formMonth:
 		values = append(values, object{{"type", "string"}, {"pattern", "^(" + anyCase(words[len(s.words):]...) + ")$"}})
 	case formNumber:

@@ -171,7 +171,7 @@ func TestParseStudy(t *testing.T) {
 			{Name: "watch", GivenAs: "level", Level: 3.6, Until: 3.6, Place: Place{22, 26, "bands[0].level"}},
 			{Name: "onset", GivenAs: "level", Level: 4.2, Until: 3.9, Place: Place{23, 26, "bands[1].level"}},
 		},
-		Count: Count{Apart: 10, Confidence: 0.9, Resamples: 2000, Seed: 1, MeanBlock: 2, DecideOn: 1, DecideBy: "load"},
+		Count: Count{Apart: 10, Confidence: 0.9, Resamples: 2000, Seed: 1, MeanBlock: 2, DecideOn: 1, DecideBy: "load", DesignLife: 50},
 		Site:  Site{PlanArea: 12000, GroundLevel: 418},
 	}
 	equalNaN := cmp.Comparer(func(a, b float64) bool { return a == b || math.IsNaN(a) && math.IsNaN(b) })
@@ -182,7 +182,7 @@ func TestParseStudy(t *testing.T) {
 		{Name: "as it stands", Baseline: true, Place: Place{27, 11, "options[0].name"}},
 		{Name: "trenches", Place: Place{28, 11, "options[1].name"}, Measures: []Measure{{
 			Key: "trench_drains", Place: Place{29, 5, "options[1].trench_drains"},
-			Trench: &TrenchDrains{Depth: 3, Spacing: 12, Conductivity: 0.02, Equivalent: 0.85, Efficiency: 1, Ceiling: inf},
+			Trench: &TrenchDrains{Depth: 3, Spacing: 12, Conductivity: 0.02, Radius: 0.1, Equivalent: 0.85, Head: 1.5, Efficiency: 1, Ceiling: inf},
 		}}},
 		{Name: "bored drains", Place: Place{34, 11, "options[2].name"}, Measures: []Measure{{
 			Key: "bored_drains", Place: Place{35, 5, "options[2].bored_drains"},
@@ -193,7 +193,7 @@ func TestParseStudy(t *testing.T) {
 			Set: []Assignment{{Key: "cover.seepage", Value: 0.02, Text: "0.02 /d", Place: Place{37, 26, "options[3].set.cover.seepage"}}},
 		}}},
 	}
-	if diff := cmp.Diff(options, s.Options, equalNaN); diff != "" {
+	if diff := cmp.Diff(options, s.Options, equalNaN, cmpopts.IgnoreUnexported(Option{})); diff != "" {
 		t.Errorf("(-want +got):\n%s", diff)
 	}
 }
@@ -278,7 +278,7 @@ func TestAssign(t *testing.T) {
 			"soil.available_water": &g.Soil.Available, "soil.readily_available": &g.Soil.Readily, "soil.crop_factor": &g.Soil.CropFactor,
 			"cover.drainable_porosity": &g.CoverPorosity, "cover.seepage": &g.CoverSeepage, "cover.percolation": &g.Percolation,
 			"cover.percolation_ceiling": &g.PercolationCap, "cover.conductivity": &g.CoverConductivity, "cover.full_at": &g.CoverFullAt,
-			"deep.drainable_porosity": &g.DeepPorosity, "deep.seepage": &g.DeepSeepage, "deep.lateral_inflow": &g.Lateral, "deep.full_at": &g.DeepFullAt,
+			"deep.consolidation": &g.Consolidation, "deep.drainable_porosity": &g.DeepPorosity, "deep.seepage": &g.DeepSeepage, "deep.lateral_inflow": &g.Lateral, "deep.full_at": &g.DeepFullAt,
 		}
 	}
 	if n := len(places(&Ground{Soil: &Soil{}})); n != len(settable) {
@@ -319,29 +319,41 @@ func TestEveryNumberArrives(t *testing.T) {
 		Ground: Ground{
 			Infiltration: 0.85, InfiltrationLimit: 20,
 			CoverThickness: 4, CoverPorosity: 0.06, CoverSeepage: 0.011, Percolation: 0, PercolationCap: 2.4, CoverConductivity: 0.0864, CoverFullAt: inf,
-			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, Lateral: 0.05, DeepFullAt: 8.5, SchemeStep: 1,
+			DeepThickness: 9, DeepPorosity: 0.014, DeepSeepage: 0.007, Lateral: 0.05, DeepFullAt: 8.5, Consolidation: 3.15576, SchemeStep: 1,
 			WarmUpYears: 12, CalibratedTo: nan,
 		},
 		Bands: []Band{
 			{Name: "012", GivenAs: "below_ground", Level: 3.6, Until: 3.6},
-			{Name: "yes", GivenAs: "elevation", Level: 4.2, Until: 3.9},
+			{Name: "yes", GivenAs: "elevation", Level: 4.2, Until: 3.9, LossPerEvent: 2.4e6, LossPerDay: 1800.5},
 		},
-		Count: Count{Apart: 0, YearStarts: 10, Confidence: 0.95, Resamples: 10000, Seed: 42, MeanBlock: 3, DecideOn: 1, DecideBy: "annual_probability"},
+		Count: Count{Apart: 0, YearStarts: 10, Confidence: 0.95, Resamples: 10000, Seed: 42, MeanBlock: 3, DecideOn: 1, DecideBy: "annual_probability",
+			Target: &Target{Measure: "annual_probability", Most: 0.05, GivenAs: "return_period", Text: "7305 d"}, DesignLife: 25},
+		Money: &Money{Currency: "kr.", Horizon: 40, Rate: 0.025, PricesOf: 2026, Contingency: 0.2},
 		Options: []Option{
 			{Name: "true"},
 			{Name: "with rate", Baseline: true, Measures: []Measure{
-				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Rate: 0.05, Equivalent: nan, Efficiency: 0.8, Ceiling: 12}},
-			}},
+				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Rate: 0.05, Radius: 0.1, Equivalent: nan, Head: 2, Efficiency: 0.8, Ceiling: 12,
+					Decline: &Decline{HalfLife: 12, Every: inf, Restored: 1}}},
+			}, Costs: []Cost{{Capital: 38000, PerYear: 1500, Life: inf, Drains: "trench_drains"}}},
+			{Name: "bores", Measures: []Measure{
+				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95}}},
+			}, Costs: []Cost{{PerMetre: 95.5, PerFlush: 4000, Life: 30, Drains: "bored_drains"}}},
 			{Name: "on the contact, and more", Measures: []Measure{
 				{Key: "set", Set: []Assignment{
 					{Key: "cover.conductivity", Value: 0.1, Text: "0.1 m/d"},
 					{Key: "surface.infiltration", Value: 0.8, Text: "80 %"},
 					{Key: "cover.percolation_ceiling", Value: inf, Text: "none"},
 				}},
-				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 12, Equivalent: nan, Efficiency: 1, Ceiling: inf}},
-				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40}},
+				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 12, Radius: 0.1, Equivalent: nan, Head: 2, Efficiency: 1, Ceiling: inf}},
+				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95}}},
 				{Key: "surface_water", Cut: &SurfaceWater{KeptOut: 0.1}},
+			}, Costs: []Cost{
+				{Capital: 38000, PerYear: 1500, Life: inf, Drains: "trench_drains"},
+				{PerMetre: 95.5, PerFlush: 4000, Life: 30, Drains: "bored_drains"},
 			}},
+			{Name: "by the square", Minimum: true, Measures: []Measure{{Key: "trench_drains", Trench: &TrenchDrains{
+				Depth: 3, Spacing: 12.192, Conductivity: 0.0432, Below: 0.00864, Radius: 0.15, Equivalent: nan, Head: 1.5, Quadratic: true, Efficiency: 1, Ceiling: inf,
+			}}}},
 		},
 		Site: Site{PlanArea: 12000, GroundLevel: 418},
 		Declared: Declared{
@@ -351,7 +363,7 @@ func TestEveryNumberArrives(t *testing.T) {
 	}
 	opts := cmp.Options{
 		cmpopts.EquateNaNs(), cmpopts.EquateApprox(1e-12, 0), cmpopts.EquateEmpty(),
-		cmpopts.IgnoreTypes(Place{}), cmpopts.IgnoreUnexported(Study{}), cmpopts.IgnoreFields(Study{}, "Understood", "SHA256"),
+		cmpopts.IgnoreTypes(Place{}), cmpopts.IgnoreUnexported(Study{}, Option{}), cmpopts.IgnoreFields(Study{}, "Understood", "SHA256"),
 	}
 	if d := cmp.Diff(want, s, opts); d != "" {
 		t.Errorf("(-want +got):\n%s", d)
@@ -494,11 +506,7 @@ func TestKeysNowRefused(t *testing.T) {
 	}
 	walk(studyShape.fields, "")
 	want := strings.Fields(`
-		weather.columns.temperature weather.pet_from weather.snow
-		ground.deep.consolidation ground.ensemble
-		bands.loss_per_event bands.loss_per_day count.target count.design_life money climates
-		options.minimum options.trench_drains.conductivity_below options.trench_drains.drain_radius options.trench_drains.decline
-		options.bored_drains.decline options.cost readings fit`)
+weather.columns.temperature weather.pet_from weather.snow ground.ensemble climates readings fit`)
 	if diff := cmp.Diff(want, got); diff != "" {
 		t.Errorf("(-want +got):\n%s", diff)
 	}
@@ -610,7 +618,9 @@ func invariant(s *Study) error {
 	for i := range s.Options {
 		for _, m := range s.Options[i].Measures {
 			switch {
-			case m.Trench != nil && !(m.Trench.Depth > 0 && m.Trench.Rate+m.Trench.Spacing > 0 && m.Trench.Efficiency > 0),
+			case m.Trench != nil && !(m.Trench.Depth > 0 && m.Trench.Rate+m.Trench.Spacing > 0 && m.Trench.Efficiency > 0 && m.Trench.Head > 0 && m.Trench.Radius > 0),
+				m.Trench != nil && m.Trench.Quadratic && (m.Trench.Rate > 0 || !math.IsInf(m.Trench.Ceiling, 1)),
+				m.decline() != nil && !(m.decline().HalfLife > 0 && m.decline().Every > 0 && m.decline().Restored > 0 && m.decline().Restored <= 1),
 				m.Bored != nil && !(m.Bored.Rate > 0 && m.Bored.Level >= 0 && m.Bored.Efficiency > 0),
 				m.Cut != nil && !(m.Cut.KeptOut >= 0 && m.Cut.KeptOut <= 1),
 				m.Vegetation != nil && !(m.Vegetation.PETFactor >= 0 && m.Vegetation.Interception >= 0 && m.Vegetation.Interception <= 1),
@@ -618,9 +628,23 @@ func invariant(s *Study) error {
 				return fmt.Errorf("measure %+v", m)
 			}
 		}
+		for _, c := range s.Options[i].Costs {
+			m := s.Options[i].drains(c.Drains)
+			switch {
+			case s.Money == nil, !(c.Capital >= 0 && c.PerMetre >= 0 && c.PerYear >= 0 && c.PerFlush >= 0 && c.Life >= 1),
+				c.PerMetre > 0 && !(s.metres(m) > 0), c.PerFlush > 0 && (m == nil || m.decline() == nil || math.IsInf(m.decline().Every, 1)):
+				return fmt.Errorf("cost %+v of %s", c, s.Options[i].Name)
+			}
+		}
 		if w := newWorks(s, &s.Options[i], &asBuilt, asNew); w.ground.CoverPorosity > 1 || w.ground.DeepPorosity > 1 {
 			return fmt.Errorf("porosities of %s: %v and %v", s.Options[i].Name, w.ground.CoverPorosity, w.ground.DeepPorosity)
 		}
+	}
+	if m := s.Money; m != nil && !(m.Horizon >= 1 && m.Rate >= 0 && m.Rate < 1 && m.Contingency >= 0 && m.PricesOf > 0 && m.Currency != "") {
+		return fmt.Errorf("money %+v", m)
+	}
+	if t := s.Count.Target; t != nil && !(t.Most >= 0 && measureNamed(t.Measure).name == t.Measure) {
+		return fmt.Errorf("target %+v", t)
 	}
 	switch g := &s.Ground; {
 	case len(g.notConverted()) > 0:
