@@ -395,7 +395,7 @@ func TestEqualOptionsShareARank(t *testing.T) {
 	for _, o := range compare(t, s).Cases[0].Options {
 		ranks[o.Name] = o.Decision.Rank
 	}
-	if r := ranks["lined channels"]; ranks["the same by another way"] != r || ranks["the same again"] != r || ranks["bored drains"] != r+3 {
+	if r := ranks["lined channels"]; ranks["the same by another way"] != r || ranks["the same again"] != r || ranks["trenches, spacing 24 m"] != r+3 {
 		t.Errorf("ranks %v", ranks)
 	}
 }

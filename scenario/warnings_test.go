@@ -323,10 +323,13 @@ func TestCountWarnings(t *testing.T) {
 // TestNeighboursInOrder: two options that differ from the baseline but not from each other.
 func TestNeighboursInOrder(t *testing.T) {
 	s := load(t, "../testdata/demo/study.yaml")
+	twin := s.Options[1]
+	twin.Name = "the same again"
+	s.Options = append(s.Options, twin)
 	c := compare(t, s)
 	for code, want := range map[string]string{
-		"equal_every_year":     "trenches 8 m apart = trenches 12 m apart",
-		"order_not_told_apart": "trenches 12 m apart / 24 m with channels",
+		"equal_every_year":     "trenches, spacing 8 m = the same again",
+		"order_not_told_apart": "trenches, spacing 12 m / 24 m with channels",
 	} {
 		i := slices.IndexFunc(c.Warnings, func(w result.Warning) bool { return w.Code == code })
 		if i < 0 || !strings.Contains(c.Warnings[i].Text, want) {
