@@ -117,7 +117,8 @@ Rules of the format:
   - A text stands on one line. Put it between quotes when it holds a colon and a blank or begins
     with a sign such as & * ! | > % @ [ { or #.
   - Every quantity has its unit: 12 m, 0.011 /d, 8 %. A decimal point is a full stop, thousands are
-    not marked, and 2.4e6 is read. Only where the list says number is there no unit.
+    not marked, and 2.4e6 is read. Only where the list says number is there no unit. A sum of money
+    is a number too; its currency stands once, in money.
   - A share may also be a bare 0 or a number between 0 and 1: 0.85 is 85 %. A bare 1 is refused.
   - A name has 1 to 60 characters, no blank at either end, does not begin with = + - or @, and
     differs from the others of its list in more than case. "as recorded" and "as built" are taken.
@@ -125,6 +126,9 @@ Rules of the format:
     "trenches, spacing 8 m" and "trenches, spacing 12 m". An option has one list at most.
   - like: NAME in a measure takes the same measure of an option above, where it is written out. No
     other key is required then; those given beside it override, and a list there is given anew.
+  - like: NAME in a cost takes the sums of an option above that gives its own; those given beside it
+    override. like: [NAME, NAME] adds up several costs, each with its own life; metres and flushes
+    are those of the option that takes them. An option of a list has the cost of the list.
   - Conditions say what is left of the works: drains: 45 % leaves 45 % of the rate of every drain.
     The ground as calibrated stays as it is, and all is replayed as built too.
   - Levels: level is above the base of the key's own layer, depth and below_ground are below ground,
@@ -339,27 +343,51 @@ prepared_by: A. N. Engineer
 `},
 	{"bands", "One band of each kind; with this ground, slope and site they begin at 3.6, 4.2, 5.0 and 5.4 m", `bands:
   - {name: watch, level: 3.6 m}
-  - {name: movement onset, elevation: 409.2 m, until: 408.9 m}
+  - {name: movement onset, elevation: 409.2 m, until: 408.9 m, loss_per_day: 1800}
   - {name: fast movement, below_ground: 8.0 m}
-  - {name: failure, factor_of_safety: 1.0, until: 1.02}
+  - {name: failure, factor_of_safety: 1.0, until: 1.02, loss_per_event: 2.4e6}
 `},
-	{"count", "Example", `count: {apart: 10 d, year_starts: October, decide_on: movement onset, decide_by: load}
+	{"count", "With a target: at most 2 days a year above movement onset", `count:
+  apart: 10 d
+  year_starts: October
+  decide_on: movement onset
+  decide_by: load
+  target: {days: 2}
+`},
+	{"money", "Example", `money: {currency: EUR, horizon: 50 y, discount_rate: 3 %, prices_of: 2026, contingency: 20 %}
 `},
 	{"options", "The ground as it is, to compare with", `options:
   - name: as it stands
 `},
-	{"options[].trench_drains", "By spacing, and by rates that were worked out elsewhere, each of which makes an option", `  - name: trenches 12 m apart
-    trench_drains: {spacing: 12 m, depth: 3.0 m, equivalent_depth: 0.80 m, efficiency: 80 %}
+	{"options[].trench_drains", "By spacing, with flushing; the same if they never clog; by rates, each of which makes an option", `  - name: trenches 12 m apart
+    trench_drains:
+      spacing: 12 m
+      depth: 3.0 m
+      drain_radius: 0.2 m
+      law: quadratic
+      efficiency: 80 %
+      decline: {half_life: 12 y, flushed_every: 5 y, restored_to: 95 %}
+    cost: {per_metre: 95, per_year: 600, per_flush: 4000, life: 30 y}
+
+  - name: the same if they never clog
+    trench_drains: {like: trenches 12 m apart, decline: none}
 
   - name: trenches at given rates
     trench_drains: {rate: [0.01 /d, 0.02 /d], depth: 3.0 m}
 `},
 	{"options[].bored_drains", "Example", `  - name: bored drains
     bored_drains: {rate: 0.005 /d, level: 3.0 m, number: 12, length: 45 m}
+    cost: {capital: 20000, per_metre: 210, per_year: 2500, life: 20 y}
 `},
-	{"options[].surface_water", "Measures combine; these trenches differ from those above in two keys", `  - name: trenches 24 m apart with channels
-    trench_drains: {like: trenches 12 m apart, spacing: 24 m, equivalent_depth: 0.89 m}
+	{"options[].surface_water", "The least that has to be done, and with it trenches that differ from those above in one key", `  - name: lined channels
+    minimum: true
     surface_water: {kept_out: 10 %}
+    cost: {capital: 38000, per_year: 1500, life: 25 y}
+
+  - name: trenches 24 m apart with channels
+    trench_drains: {like: trenches 12 m apart, spacing: 24 m}
+    surface_water: {like: lined channels}
+    cost: {like: [trenches 12 m apart, lined channels]}
 `},
 	{"options[].vegetation", "Example", `  - name: planting
     vegetation: {pet_factor: 1.10, interception: 4 %}
@@ -369,6 +397,10 @@ prepared_by: A. N. Engineer
 `},
 	{"options[].set", "Example", `  - name: seepage from a trial
     set: {cover.seepage: 0.02 /d}
+`},
+	{"options[].cost", "The sums of another option but for the price of a metre", `  - name: trenches 8 m apart
+    trench_drains: {like: trenches 12 m apart, spacing: 8 m}
+    cost: {like: trenches 12 m apart, per_metre: 90}
 `},
 	{"conditions", "Example", `conditions:
   - {name: neglected, drains: 45 %, surface_water: 60 %}
