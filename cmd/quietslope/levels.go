@@ -18,7 +18,8 @@ func levelsCommand() *cli.Command {
 		Description: `What it does:
   Replays the options and writes one line per step of the record: time, rain_mm, and for every
   option OPTION/recharge_mm, OPTION/cover_m and OPTION/deep_m. Levels are those at the end of the
-  step, above the base of their layer, at full precision. The warm-up is left out.
+  step, above the base of their layer, at full precision. The warm-up is left out. Drains that
+  decline stand as new; the figures of compare are means over their ages.
 
 What it needs:
   A study file (YAML) and the weather record that it names.
