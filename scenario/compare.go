@@ -207,7 +207,7 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 			if err := p.states(ctx, options, resamples); err != nil {
 				return nil, err
 			}
-			if err := p.lawWarnings(ctx, &laws, options, resamples); err != nil {
+			if err := p.lawWarnings(ctx, &laws, options); err != nil {
 				return nil, err
 			}
 		}
@@ -220,7 +220,7 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 	}
 	ws := warnings(p.studyWarnings(all[:n]))
 	for i := range all[:n] {
-		p.actionWarnings(&ws, &all[i])
+		p.actionWarnings(&ws, &all[i], &all[p.baseline])
 	}
 	ws = append(ws, laws...)
 	p.targetWarnings(&ws, all[:n])

@@ -33,22 +33,24 @@ const (
 
 // Plausible ranges. A number outside them is worth a second look, no more.
 const (
-	leastConductivity = 1e-11 * 86400 // m/d, of any soil: judgement
-	mostConductivity  = 1e-3 * 86400
-	leastInfiltration = 0.05  // share of the rain: judgement
-	leastWater        = 5.0   // mm, of a soil: judgement
-	mostWater         = 500.0 // the same
-	leastArea         = 100.0 // m2 of a slope in plan: judgement
-	leastPorosity     = 0.002 // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
-	mostPorosity      = 0.30  // the same
-	mostClayPorosity  = 0.10  // of a clay: judgement, after the same
-	leastRate         = 1e-4  // 1/d, of a store or a drain: judgement
-	mostRate          = 5.0   // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
-	mostTrenchDepth   = 6.0   // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
-	mostBoreLength    = 100.0 // m: judgement
-	mostBoredShare    = 0.90  // efficiency of bored drains in clay: judgement
-	mostKeptOut       = 0.50  // of the infiltration over the whole plan area: judgement
-	mostIntercepted   = 0.90  // of the lateral inflow: judgement
+	leastConductivity  = 1e-11 * 86400 // m/d, of any soil: judgement
+	mostConductivity   = 1e-3 * 86400
+	leastInfiltration  = 0.05   // share of the rain: judgement
+	leastWater         = 5.0    // mm, of a soil: judgement
+	mostWater          = 500.0  // the same
+	leastArea          = 100.0  // m2 of a slope in plan: judgement
+	leastPorosity      = 0.002  // drainable: judgement, after the specific yields of Johnson 1967, USGS WSP 1662-D
+	mostPorosity       = 0.30   // the same
+	mostClayPorosity   = 0.10   // of a clay: judgement, after the same
+	leastRate          = 1e-4   // 1/d, of a store or a drain: judgement
+	mostRate           = 5.0    // 1/d, closely drained sandy land (Smedema & Rycroft 1983, from memory)
+	leastConsolidation = 0.1    // m2/y, of clays: from memory
+	mostConsolidation  = 1000.0 // the same, fissured
+	mostTrenchDepth    = 6.0    // m, usual for counterfort drains (Price & Fitch 2017, 20th NZGS Symposium)
+	mostBoreLength     = 100.0  // m: judgement
+	mostBoredShare     = 0.90   // efficiency of bored drains in clay: judgement
+	mostKeptOut        = 0.50   // of the infiltration over the whole plan area: judgement
+	mostIntercepted    = 0.90   // of the lateral inflow: judgement
 )
 
 // warnings collects warnings in the order in which they are raised.
@@ -95,6 +97,8 @@ func (p *prepared) studyWarnings(options []optionFigures) []result.Warning {
 		p.designWarnings(&ws, w)
 		p.effectWarnings(&ws, w)
 	}
+	p.stoppedWarnings(&ws)
+	p.reachWarnings(&ws)
 	p.moneyWarnings(&ws)
 	return ws
 }
@@ -237,6 +241,7 @@ func (p *prepared) groundWarnings(g *Ground, option string) warnings {
 		{"cover.seepage", g.CoverSeepage, leastRate, mostRate, "/d", 1},
 		{"cover.percolation", g.Percolation, leastRate, mostRate, "/d", 1},
 		{"deep.seepage", g.DeepSeepage, leastRate, mostRate, "/d", 1},
+		{"deep.consolidation", g.Consolidation, leastConsolidation, mostConsolidation, "m2/y", 1},
 	} {
 		if q.value != 0 && !(q.value >= q.least && q.value <= q.most) {
 			ws.add(at(warn("implausible_ground")), "%s is %s %s; usual are %s to %s %s. Check the unit and the source.",

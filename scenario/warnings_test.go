@@ -3,6 +3,7 @@ package scenario
 import (
 	"math"
 	"os"
+	"path/filepath"
 	"regexp"
 	"slices"
 	"strings"
@@ -26,9 +27,10 @@ func codes(ws []result.Warning) []string {
 }
 
 // quiet is a prepared study that raises no warning of its own: everything declared, a long record with hours, a soil, a
-// band with an arrest level within the readings.
+// band with an arrest level within the readings, a deep layer that answers within a year.
 func quiet() *prepared {
 	s := ground(Option{Name: "works"})
+	s.Ground.DeepSeepage = 0.0125
 	for _, key := range DeclaredKeys {
 		s.Declared[key] = "no"
 	}
@@ -51,6 +53,9 @@ func quiet() *prepared {
 	return p
 }
 
+// upkept is a decline that nobody warns of.
+var upkept = &Decline{HalfLife: 10, Every: 5, Restored: 0.9}
+
 func (p *prepared) rework() {
 	p.works = nil
 	for i := range p.study.Options {
@@ -65,10 +70,10 @@ func TestStudyWarnings(t *testing.T) {
 	}
 	inf, nan := math.Inf(1), math.NaN()
 	trench := func(depth, rate float64) []Measure {
-		return []Measure{{Key: "trench_drains", Trench: &TrenchDrains{Depth: depth, Rate: rate, Equivalent: nan, Efficiency: 1, Ceiling: inf}}}
+		return []Measure{{Key: "trench_drains", Trench: &TrenchDrains{Depth: depth, Rate: rate, Equivalent: nan, Efficiency: 1, Ceiling: inf, Decline: upkept}}}
 	}
 	bored := func(level, efficiency, length float64) []Measure {
-		return []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: level, Efficiency: efficiency, Length: length, Ceiling: inf}}}
+		return []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: level, Efficiency: efficiency, Length: length, Ceiling: inf, Decline: upkept}}}
 	}
 	declare := func(key, answer string) func(*prepared) {
 		return func(p *prepared) { p.study.Declared[key] = answer }
@@ -164,7 +169,7 @@ func TestStudyWarnings(t *testing.T) {
 		{"hectares taken for square metres", func(p *prepared) { p.study.Site.PlanArea = 1.2 }, []string{"implausible_area"}},
 		{"porosity set", measured(Measure{Set: []Assignment{{Key: "cover.drainable_porosity", Value: 0.31}}}), []string{"implausible_ground"}},
 		{"a rate per hour taken for one per day", func(p *prepared) { p.study.Ground.CoverSeepage = 5.01 }, []string{"implausible_ground"}},
-		{"no percolation", func(p *prepared) { p.study.Ground.Percolation = 0 }, nil},
+		{"no percolation", func(p *prepared) { p.study.Ground.CoverSeepage, p.study.Ground.Percolation = 0.0155, 0 }, nil},
 		{"warm-up again", func(p *prepared) { p.replayer.warm = warmUp{years: 4, repeats: true} }, []string{"warm_up_repeats_record"}},
 
 		// The baseline's levels rise evenly from 0 to the top in 100 steps.
@@ -187,7 +192,9 @@ func TestStudyWarnings(t *testing.T) {
 			p.study.Options[1].Measures = trench(4, 0.05)
 			p.study.Options[1].Measures[0].Trench.Conductivity = 100
 		}, []string{"implausible_ground"}},
+		{"bore of 100 m", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.9, 100) }, nil},
 		{"long bore", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.9, 100.5) }, []string{"bore_long"}},
+		{"efficient bore", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.9, 0) }, nil},
 		{"efficient bore", func(p *prepared) { p.study.Options[1].Measures = bored(2, 0.91, 0) }, []string{"bored_drains_efficient"}},
 	} {
 		t.Run(tt.name, func(t *testing.T) {
@@ -216,7 +223,7 @@ func TestDrainsReplayed(t *testing.T) {
 	} {
 		t.Run(tt.name, func(t *testing.T) {
 			p := quiet()
-			p.study.Options[1].Measures = []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: tt.level, Efficiency: 0.9, Ceiling: math.Inf(1)}}}
+			p.study.Options[1].Measures = []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: tt.level, Efficiency: 0.9, Ceiling: math.Inf(1), Decline: upkept}}}
 			p.rework()
 			options := make([]optionFigures, 2)
 			options[1].Drains = []result.Drain{{RunningShare: tt.running}}
@@ -360,9 +367,18 @@ func TestGuideKnowsWarnings(t *testing.T) {
 		}
 		return string(text)
 	}
-	source, guide := read("warnings.go"), read("../DEVELOPERS.md")
+	files, err := filepath.Glob("*.go")
+	if err != nil {
+		t.Fatal(err)
+	}
+	source, guide := "", read("../DEVELOPERS.md")
+	for _, file := range files {
+		if text := read(file); !strings.HasSuffix(file, "_test.go") && strings.Contains(text, "ws.add(") {
+			source += text
+		}
+	}
 	found := regexp.MustCompile(`(?:warn|note|at)\("([a-z_]+)"\)|Code = "([a-z_]+)"|"([a-z_]+)", result\.(?:Warn|Note)`).FindAllStringSubmatch(source, -1)
-	if len(found) < 25 {
+	if len(found) < 60 {
 		t.Fatalf("only %d codes found in the source", len(found))
 	}
 	for _, m := range found {

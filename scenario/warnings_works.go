@@ -9,7 +9,6 @@ import (
 	"strings"
 
 	"quietslope/scenario/fault"
-	"quietslope/scenario/quantity"
 	"quietslope/scenario/result"
 	"quietslope/stats"
 )
@@ -20,8 +19,10 @@ const (
 	roughEquivalent   = 0.15 // share by which a given equivalent depth may differ from the computed one: judgement
 	leastSpacingRatio = 1.0  // of trench depth; usual are 2 to 6 (Hutchinson 1977 and CIRIA C591, from memory)
 	mostSpacingRatio  = 10.0 // the same
-	// Ground with wide cracks drains 10 to 20 % of its volume and carries more than 10 m/d; without them it drains 1 to 3 % and
-	// carries 0.01 to 0.1 m/d (FAO Irrigation and Drainage Paper 62, 2007, annex 1). The limits are ten times beyond.
+	leastRadiiApart   = 10.0 // radii between drains below which they are no lines in the ground: judgement, after how the formula behaves
+	// Clay without wide cracks drains 1 to 3 % of its volume and carries 0.01 to 0.1 m/d (FAO Irrigation and Drainage Paper 62,
+	// 2007, annex 1). What drains 10 % and more, silt and fine sand (Johnson 1967, USGS WSP 1662-D) or clay with wide cracks,
+	// carries 0.09 m/d and more (loess and very fine sand, Terzaghi & Peck 1967). The limits are about ten times beyond.
 	wideConductivity  = 0.01 // m/d below which a porosity of mostTightPorosity and more is odd
 	tightConductivity = 1.0  // m/d above which a porosity below leastWidePorosity is odd
 	leastWidePorosity = 0.03
@@ -33,7 +34,8 @@ const (
 	lawMoves          = 0.05   // of an option's figure that the law may move unsaid: judgement
 	lawMatters        = 0.001  // of the baseline's figure: the same
 	headFar           = 2.0    // times by which the height over the drains may differ from the working head: judgement
-	longHorizon       = 20.0   // y after which drains are renewed in practice: judgement, after published lives of drains
+	longHorizon       = 20.0   // y; few drains have been watched for longer (17 y, Price & Fitch 2017; 20 y, TRL CR61)
+	muchLowered       = 1.0    // m of the mean deep level from which wells and foundations nearby may feel it: judgement
 )
 
 // drainWarnings hold each drain of an option against the levels without works and, where the option was replayed, against
@@ -87,15 +89,19 @@ func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 				at.Code = "trench_deep"
 				ws.add(at, "Trenches %.1f m deep are beyond common practice (about %.0f m). Check that they can be built on moving ground.", m.Trench.Depth, mostTrenchDepth)
 			}
-			if k := m.Trench.Conductivity; k != 0 && !(k >= leastConductivity && k <= mostConductivity) {
-				at.Code = "implausible_ground"
-				ws.add(at, "The trench's conductivity is %s m/d; usual are %s to %s m/d. Check the unit and the source.", short(k), short(leastConductivity), short(mostConductivity))
+			for _, q := range []struct {
+				key   string
+				value float64
+			}{{"conductivity", m.Trench.Conductivity}, {"conductivity_below", m.Trench.Below}} {
+				if q.value != 0 && !(q.value >= leastConductivity && q.value <= mostConductivity) {
+					at.Code = "implausible_ground"
+					ws.add(at, "The trench's %s is %s m/d; usual are %s to %s m/d. Check the unit and the source.", q.key, short(q.value), short(leastConductivity), short(mostConductivity))
+				}
 			}
 		case m.Bored != nil:
-			if l := m.Bored.Length; l > mostStraightBore && l <= mostBoreLength {
-				at.Code, at.Severity = "bore_may_miss", result.Note
-				ws.add(at, "Bores of %.0f m deviate and can miss the water or lose their fall. Allow for it in their number and efficiency, and survey them.", l)
-				at.Severity = result.Warn
+			if l := m.Bored.Length; l > mostStraightBore && l <= mostBoreLength && m.Bored.Efficiency == 1 {
+				at.Code = "bore_may_miss"
+				ws.add(at, "Bores of more than %.0f m deviate and can miss the water or lose their fall, and an efficiency of 100 %% allows for none of that. Take a lower one, and have the bores surveyed.", mostStraightBore)
 			}
 			if m.Bored.Length > mostBoreLength {
 				at.Code = "bore_long"
@@ -103,7 +109,7 @@ func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 			}
 			if m.Bored.Efficiency > mostBoredShare {
 				at.Code = "bored_drains_efficient"
-				ws.add(at, "Bored drains are taken as %.0f %% efficient. In clay they often reach less water than planned; see what a lower efficiency does.", 100*m.Bored.Efficiency)
+				ws.add(at, "Bored drains are taken as %s %% efficient. In clay they often reach less water than planned; see what a lower efficiency does.", short(100*m.Bored.Efficiency))
 			}
 		case m.Cut != nil && m.Cut.KeptOut > mostKeptOut:
 			at.Code = "much_kept_out"
@@ -132,26 +138,43 @@ func (p *prepared) designWarnings(ws *warnings, w *works) {
 		if m.Bored != nil && m.Bored.Decline != nil && m.Bored.Decline.Every > mostUnflushed {
 			ws.add(at(warn("bored_drains_unflushed")), "The bored drains go without flushing for more than %.0f years. Without upkeep such drains last 15 to 20 years at most; plan flushing, and pay for it.", mostUnflushed)
 		}
-		t := m.Trench
-		if t == nil || t.Spacing == 0 {
+		if m.Trench == nil {
 			continue
 		}
-		l := t.layout(&w.ground)
-		switch computed := t.equivalentDepth(&w.ground); {
-		case math.IsNaN(t.Equivalent):
-		case w.option.varied == "trench_drains.spacing" && computed > 0:
-			ws.add(at(note("equivalent_depth_fixed")), "One equivalent_depth, %s m, serves all spacings of the list, though it grows with the spacing: here %s m are computed. Leave the key out.", short(t.Equivalent), short(math.Round(computed*1000)/1000))
-		case math.Abs(t.Equivalent-computed) > roughEquivalent*computed:
-			ws.add(at(note("equivalent_depth_differs")), "equivalent_depth is %s m; for a drain of %s m radius %s m are computed. Check for which spacing and radius it was worked out, or leave the key out.", short(t.Equivalent), short(t.Radius), short(math.Round(computed*1000)/1000))
+		if s := p.study.Slope; s != nil && m.Trench.Depth < s.Depth-tie {
+			ws.add(at(warn("trench_above_slip")), "The trenches end above the slip surface, which is %s m down, and the model takes it that its water follows that of the cover. Where it lies in a permeable zone of its own, trenches that do not reach that may do little (Ostuni and others 2026). Readings at the slip surface must show that it follows.", short(s.Depth))
 		}
-		if ratio := t.Spacing / t.Depth; !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio) {
-			ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times. Check spacing and depth.", short(math.Round(ratio*10)/10))
-		}
-		poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
-		if s := p.study.Slope; s != nil && t.Depth < s.Depth-tie && !slices.ContainsFunc(*ws, func(w result.Warning) bool { return w.Code == "trench_above_slip" }) {
-			ws.add(note("trench_above_slip"), "Trenches end above the slip surface, %s m down. In the model they act on it only by what no longer percolates; whether the water at the slip surface follows must be shown by readings there.", short(s.Depth))
+		if m.Trench.Spacing > 0 {
+			layoutWarnings(ws, at, w, m.Trench)
 		}
 	}
+}
+
+// layoutWarnings hold the numbers against each other that the rate of parallel trenches is worked out from.
+func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *works, t *TrenchDrains) {
+	l := t.layout(&w.ground)
+	under, computed := w.ground.CoverThickness-t.Depth, t.equivalentDepth(&w.ground)
+	given := !math.IsNaN(t.Equivalent)
+	found := short(math.Round(1000*computed) / 1000)
+	const check = "Check for which spacing and radius it was worked out, or leave the key out."
+	switch {
+	case given && computed > 0 && w.option.varied == "trench_drains.spacing":
+		ws.add(at(note("equivalent_depth_fixed")), "One equivalent_depth, %s m, serves all spacings of the list, though it grows with the spacing. Leave the key out, and it is computed for each.", short(t.Equivalent))
+	case given && t.Equivalent > (1+roughEquivalent)*computed:
+		ws.add(at(warn("equivalent_depth_differs")), "equivalent_depth is %s m, and for a drain of %s m radius only %s m are computed: the rate may be too high. "+check, short(t.Equivalent), short(t.Radius), found)
+	case given && t.Equivalent < (1-roughEquivalent)*computed:
+		ws.add(at(note("equivalent_depth_differs")), "equivalent_depth is %s m; for a drain of %s m radius %s m are computed. "+check, short(t.Equivalent), short(t.Radius), found)
+	case !given && under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadiiApart*t.Radius):
+		ws.add(at(warn("formula_range")), "Drains of %s m radius are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller drain_radius, or equivalent_depth itself.", short(t.Radius))
+	}
+	const usual = "times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth."
+	switch ratio := t.Spacing / t.Depth; {
+	case ratio < leastSpacingRatio:
+		ws.add(at(note("spacing_unusual")), "The trenches are less than %s "+usual, short(leastSpacingRatio))
+	case ratio > mostSpacingRatio:
+		ws.add(at(note("spacing_unusual")), "The trenches are more than %s "+usual, short(mostSpacingRatio))
+	}
+	poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
 }
 
 // poresWarning holds a conductivity, m/d, and a drainable porosity against each other.
@@ -167,23 +190,25 @@ func (p *prepared) effectWarnings(ws *warnings, w *works) {
 	if t == nil || t.Days <= slowEffect {
 		return
 	}
-	slow := warn("slow_to_act")
-	slow.Option = w.option.Name
-	by := "the two stores"
-	if t.ClayDays != nil && *t.ClayDays > t.StoreDays {
-		by = "the clay between the trenches"
+	at := func(code string) result.Warning {
+		found := warn(code)
+		found.Option = w.option.Name
+		return found
 	}
-	ws.add(slow, "It takes %s until nine tenths of the effect are there, by %s. Losses until then are not counted as avoided; keep what protects people today in force.", yearsText(t.Days), by)
+	because := ""
+	if t.ClayDays != nil && *t.ClayDays > t.StoreDays {
+		because = ", since the clay between the trenches is slow"
+	}
+	ws.add(at("slow_to_act"), "It takes more than %s until nine tenths of the effect on the deep level are there%s, and all figures are those of works that act in full. Losses until then are not counted as avoided. Keep in force what protects people today.",
+		fault.Count(int(yearsOf(t.Days)), "year"), because)
 	s := p.study.Slope
-	if s == nil {
+	if s == nil || !w.option.drained() {
 		return
 	}
 	g := &p.study.Ground
 	top := yearlyHighest(p.base.deep, &p.counted)
 	if fs := s.FactorOfSafety(max(0, top-(g.CoverThickness+g.DeepThickness-s.Depth))); fs < leastMargin {
-		risk := warn("movement_before_effect")
-		risk.Option = w.option.Name
-		ws.add(risk, "In a usual year the baseline's highest level leaves a factor of safety of %.2f. Movement may shear drains before they act; build where movement is least, or draw the water down by pumping first.", fs)
+		ws.add(at("movement_before_effect"), "In a usual year the baseline's highest level leaves a factor of safety of %.2f, less than %s. Movement may shear the drains before they act: build where movement is least, or draw the water down by pumping first.", fs, short(leastMargin))
 	}
 }
 
@@ -201,15 +226,6 @@ func yearlyHighest(levels []float64, c *period) float64 {
 	return total(top) / float64(c.years)
 }
 
-// yearsText is a time of more than some months, in words.
-func yearsText(days float64) string {
-	years := yearsOf(days)
-	if years < 2 {
-		return fmt.Sprintf("%.0f months", math.Ceil(12*years))
-	}
-	return fmt.Sprintf("%.0f years", math.Ceil(years))
-}
-
 // moneyWarnings say what is missing in the costs and losses.
 func (p *prepared) moneyWarnings(ws *warnings) {
 	s := p.study
@@ -219,97 +235,107 @@ func (p *prepared) moneyWarnings(ws *warnings) {
 	if s.Money.Contingency == 0 {
 		ws.add(warn("no_contingency"), "No contingency is added to the capital sums. Before ground and tenders are known works cost more than planned; give money.contingency.")
 	}
-	var without, idle, kept []string
-	costed := false
+	costed := slices.ContainsFunc(s.Options, func(o Option) bool { return o.Costs != nil })
+	if !costed {
+		ws.add(note("cost_not_given"), "money is given, and no option has a cost. Give the options a cost to have them compared by it.")
+		return
+	}
 	for i := range s.Options {
 		o := &s.Options[i]
-		costed = costed || o.Costs != nil
+		at := func(w result.Warning) result.Warning {
+			w.Option = o.Name
+			return w
+		}
 		if o.Costs == nil {
 			if !o.Baseline {
-				without = append(without, o.Name)
+				ws.add(at(note("cost_not_given")), "The option has no cost, and so is left out of all that money can say. Give it a cost.")
 			}
 			continue
 		}
-		upkeep, renewed := 0.0, true
+		upkeep, kept := 0.0, false
 		for _, c := range o.Costs {
 			upkeep += c.PerYear + c.PerFlush
 			if c.Capital+c.PerMetre > 0 && c.Drains != "" && c.Life >= float64(s.Money.Horizon) {
-				renewed = false
+				kept = true
 			}
 		}
 		if o.drained() && upkeep == 0 {
-			idle = append(idle, o.Name)
+			ws.add(at(warn("upkeep_left_out")), "The drains cost nothing after they are built. Inspection, flushing and readings cost something every year; give per_year or per_flush.")
 		}
-		if !renewed && float64(s.Money.Horizon) > longHorizon {
-			kept = append(kept, o.Name)
+		if kept && float64(s.Money.Horizon) > longHorizon {
+			ws.add(at(warn("never_renewed")), "The drains are not renewed in the %d years that money counts. Few drains have been watched for more than %.0f years; give a cost.life, and see what renewing them changes.", s.Money.Horizon, longHorizon)
 		}
 	}
-	if len(idle) > 0 {
-		ws.add(warn("upkeep_left_out"), "Drains without any cost of upkeep: %s. Inspection, flushing and readings cost something every year; give per_year or per_flush.", firstOf(idle, "; ", 8))
-	}
-	if len(kept) > 0 {
-		ws.add(warn("never_renewed"), "Drains that are not renewed within %d years: %s. Few drains last so long; give cost.life.", s.Money.Horizon, firstOf(kept, "; ", 8))
-	}
-	if costed && len(without) > 0 {
-		ws.add(note("cost_not_given"), "Without a cost, and so left out of what money can say: %s.", firstOf(without, "; ", 8))
-	}
-	if costed && s.lossBands() == nil {
+	if s.lossBands() == nil {
 		ws.add(note("losses_not_given"), "No band has a loss, so that no benefit can be set against the costs. Give loss_per_event or loss_per_day, or read the break-even loss.")
-	}
-	if !costed {
-		ws.add(note("cost_not_given"), "money is given, and no option has a cost. Give the options a cost to have them compared by it.")
 	}
 }
 
-// actionWarnings are what the replays of the first case say of how drains act: too little, at their ceiling, or far from the
-// height that the linear law was worked out for.
-func (p *prepared) actionWarnings(ws *warnings, f *optionFigures) {
-	w := f.trace.works
-	for i, d := range w.drains {
-		at := warn("")
-		at.Option = f.Name
+// actionWarnings are what the replays of the first case say of how works act: too little, at their ceiling, or on neighbours
+// too.
+func (p *prepared) actionWarnings(ws *warnings, f, base *optionFigures) {
+	at := func(w result.Warning) result.Warning {
+		w.Option = f.Name
+		return w
+	}
+	for i, d := range f.trace.works.drains {
 		r := &f.Drains[i]
-		if d.layer == inCover && r.RunningShare > 0 {
-			if taken, sinks := f.WaterBalance.Cover.DrainsMM, f.WaterBalance.Cover.PercolationMM; taken < leastTaken*sinks {
-				at.Code = "trench_takes_little"
-				ws.add(at, "The trenches take %s of what percolates into the deep layer. They will hardly be felt there; set them closer or deeper, or look at other works.", percent(taken/sinks))
-			}
+		if taken, sinks := f.WaterBalance.Cover.DrainsMM, f.WaterBalance.Cover.PercolationMM; d.layer == inCover && r.RunningShare > 0 && taken < leastTaken*sinks {
+			ws.add(at(warn("trench_takes_little")), "The trenches take less than %s %% of what percolates into the deep layer. They will hardly be felt there; set them closer or deeper, or look at other works.", short(100*leastTaken))
 		}
 		if r.CeilingDaysPerYear != nil && *r.CeilingDaysPerYear > 0 {
-			at.Code = "drain_at_ceiling"
-			ws.add(at, "The %s carry all that they can on %s a year, when it matters most. Water backs up behind them then; see whether a larger outlet is worth its cost.", measureWords(d.measure), daysText(*r.CeilingDaysPerYear))
+			ws.add(at(warn("drain_at_ceiling")), "The %s carry all that they can on %s d a year, when it matters most. Water backs up behind them then; see whether a larger outlet is worth its cost.", measureWords(d.measure), short(math.Round(10**r.CeilingDaysPerYear)/10))
+		}
+	}
+	if near := p.study.Declared["wells_or_buildings_nearby"]; near != "no" && base.Level.MeanM-f.Level.MeanM > muchLowered {
+		ws.add(at(note("mean_level_much_lowered")), "The mean deep level falls by more than %s m, which wells, springs and foundations within some 50 m may feel. Look for them, and what consents are needed.", short(muchLowered))
+	}
+}
+
+// stoppedWarnings say where nobody sees what is left with the drains stopped, since there is no figure that decides.
+func (p *prepared) stoppedWarnings(ws *warnings) {
+	if p.study.Count.DecideOn >= 0 {
+		return
+	}
+	for i := range p.study.Options {
+		if o := &p.study.Options[i]; o.drained() {
+			w := warn("stopped_drains_not_shown")
+			w.Option = o.Name
+			ws.add(w, "What is left with the drains stopped is not shown, since no band decides. Design codes ask that failed drains be considered; give count.decide_on.")
 		}
 	}
 }
 
 // lawWarnings replay with the quadratic law what was replayed with the linear one far from the height that this was worked
-// out for, with the drains as new, and say by how much the deciding figure moves.
-func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []optionFigures, r *stats.Resamples) error {
+// out for, with the drains as new, and say by how much the deciding figure moves. The options for which the linear law lets out
+// too much share one text, and so do those for which it lets out too little.
+func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []optionFigures) error {
 	on := p.study.Count.DecideOn
 	if on < 0 {
 		return nil
 	}
+	m := measureNamed(p.study.Count.DecideBy)
 	type job struct {
-		option                *Option
-		head, linear, squared float64
+		option          *Option
+		high            bool    // the water stands higher than the rate was worked out for
+		linear, squared float64 // the deciding figure
 	}
 	var jobs []job
 	for i := range options {
-		f := &options[i]
-		o := &p.study.Options[i]
-		m := o.drains("trench_drains")
-		if m == nil || m.Trench.Spacing == 0 || m.Trench.Quadratic || !math.IsInf(m.Trench.Ceiling, 1) {
+		f, o := &options[i], &p.study.Options[i]
+		trench := o.drains("trench_drains")
+		if trench == nil || trench.Trench.Spacing == 0 || trench.Trench.Quadratic || !math.IsInf(trench.Trench.Ceiling, 1) {
 			continue
 		}
-		k := slices.IndexFunc(f.Drains, func(d result.Drain) bool { return d.Measure == m.Key })
-		if f.Drains[k].MeanHeadM == nil {
+		k := slices.IndexFunc(f.Drains, func(d result.Drain) bool { return d.Measure == trench.Key })
+		if f.Drains[k].MeanHeadM == nil { // they never run
 			continue
 		}
 		head := math.Pi * math.Pi / 8 * *f.Drains[k].MeanHeadM // midway, where the mean is that of half a sine
-		if head*headFar >= m.Trench.Head && head <= headFar*m.Trench.Head {
+		if head*headFar >= trench.Trench.Head && head <= headFar*trench.Trench.Head {
 			continue
 		}
-		j := job{option: o, head: head, linear: f.Decision.Value}
+		j := job{option: o, high: head > trench.Trench.Head, linear: f.Decision.Value}
 		for _, s := range f.States {
 			if s.State == stateNew {
 				j.linear = s.Value
@@ -318,48 +344,73 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 		jobs = append(jobs, j)
 	}
 	err := each(len(jobs), func(k int) error {
-		o := *jobs[k].option
-		o.Measures = slices.Clone(o.Measures)
-		m := o.drains("trench_drains")
-		trench := *m.Trench
-		trench.Quadratic, m.Trench = true, &trench
-		f, err := p.replayed(ctx, newWorks(p.study, &o, &asBuilt, asNew))
+		f, err := p.replayed(ctx, newWorks(p.study, byQuadraticLaw(jobs[k].option), &asBuilt, asNew))
 		if err == nil {
-			jobs[k].squared, _ = measureNamed(p.study.Count.DecideBy).figure(&f.Bands[on])
+			jobs[k].squared, _ = m.figure(&f.Bands[on])
 		}
 		return err
 	})
 	if err != nil {
 		return err
 	}
-	most := options[p.baseline].Decision.Value
-	for _, j := range jobs {
-		if moved := math.Abs(j.squared - j.linear); moved <= lawMoves*max(j.squared, j.linear) || moved <= lawMatters*most {
-			continue
+	most, _ := m.figure(&options[p.baseline].Bands[on])
+	jobs = slices.DeleteFunc(jobs, func(j job) bool {
+		moved := math.Abs(j.squared - j.linear)
+		return moved <= lawMoves*max(j.squared, j.linear) || moved <= lawMatters*most
+	})
+	for _, high := range []bool{false, true} {
+		far, too := "less than half", "much"
+		if high {
+			far, too = "more than twice", "little"
 		}
-		at := warn("linear_law_far")
-		at.Option = j.option.Name
-		too := "too much"
-		if j.head > j.option.drains("trench_drains").Trench.Head {
-			too = "too little"
+		var moved []string
+		for _, j := range jobs {
+			if j.high == high {
+				moved = append(moved, fmt.Sprintf("%s %s, not %s", quoted(j.option.Name), figureText(m.name, j.squared), figureText(m.name, j.linear)))
+			}
 		}
-		ws.add(at, "While the trenches run the water stands %.2f m above them midway, and their linear rate was worked out for %s m: it lets out %s. By the quadratic law, which follows the height, the %s of the trenches as new is %s a year, not %s. Set working_head to what is usual here, or law: quadratic.",
-			j.head, short(j.option.drains("trench_drains").Trench.Head), too, measureTitle(p.study.Count.DecideBy), figureText(p.study.Count.DecideBy, j.squared), figureText(p.study.Count.DecideBy, j.linear))
+		for _, j := range jobs {
+			if j.high != high {
+				continue
+			}
+			at := warn("linear_law_far")
+			at.Option, at.Band = j.option.Name, p.study.Bands[on].Name
+			ws.add(at, "While the trenches run the water midway stands at %s of their working_head, so that their linear rate lets out too %s. By the quadratic law, which follows the height, and with the drains as new the %s would be: %s. Set working_head to the usual height, or law: quadratic.",
+				far, too, measureTitle(m.name), firstOf(moved, "; ", mostPairs))
+		}
 	}
 	return nil
 }
 
-// figureText is a figure of a measure for people.
+// byQuadraticLaw is an option with trenches, given by a spacing, that follow the quadratic law.
+func byQuadraticLaw(o *Option) *Option {
+	other := *o
+	other.Measures = slices.Clone(o.Measures)
+	m := other.drains("trench_drains")
+	trench := *m.Trench
+	trench.Quadratic, m.Trench = true, &trench
+	return &other
+}
+
+// figureText is a yearly figure of a measure for people.
 func figureText(measure string, value float64) string {
+	digits := 2
+	if value >= 1 {
+		digits = max(0, 2-int(math.Log10(value)))
+	}
+	figure := strconv.FormatFloat(value, 'f', digits, 64)
+	if value < 1 {
+		figure = strconv.FormatFloat(value, 'g', 2, 64)
+	}
 	switch measure {
 	case "load":
-		return strconv.FormatFloat(value, 'f', 2, 64) + " m·d"
+		return figure + " m·d a year"
 	case "days":
-		return strconv.FormatFloat(value, 'f', 1, 64) + " d"
+		return figure + " d a year"
 	case "annual_probability":
-		return percent(value)
+		return short(math.Round(1000*value)/10) + " %"
 	}
-	return strconv.FormatFloat(value, 'f', 2, 64)
+	return figure + " a year"
 }
 
 // worthWarnings say where the record cannot tell which option is worth most.
@@ -403,17 +454,45 @@ func (p *prepared) worthWarnings(ws *warnings, options []optionFigures, r *stats
 	}
 	d := r.Compare(worth(best), worth(next), p.study.Count.Confidence)
 	more := options[best].Cost.PresentValue - options[next].Cost.PresentValue
-	if d.DifferenceCI != nil && -d.DifferenceCI[1] > more {
+	least := -d.Difference // that the best avoids more than the next, as sure as the ranges are
+	if d.DifferenceCI != nil {
+		least = -d.DifferenceCI[1]
+	}
+	if stats.Less(more, least) {
 		return
 	}
 	ws.add(warn("net_benefit_tie"), "By net benefit the record cannot tell %s from %s, the two that are worth most. Choose between them on other grounds.", quoted(options[best].Name), quoted(options[next].Name))
 }
 
-// percent is a share for people.
-func percent(share float64) string { return quantity.FormatNumber(math.Round(1000*share)/10) + " %" }
-
-// daysText is a number of days a year for people.
-func daysText(days float64) string { return quantity.FormatNumber(math.Round(10*days)/10) + " d" }
+// reachWarnings say where the record is too short to show that anything meets the target: where even no event in all its years
+// has a range that ends above it. Loads and days have none then.
+func (p *prepared) reachWarnings(ws *warnings) {
+	t := p.study.Count.Target
+	if t == nil {
+		return
+	}
+	n, confidence := p.counted.years, p.study.Count.Confidence
+	var most, needed float64
+	switch t.Measure {
+	case "events":
+		_, most = stats.PoissonInterval(0, float64(n), confidence)
+		needed = most * float64(n) / t.Most
+	case "annual_probability":
+		_, most = stats.BinomialInterval(0, n, confidence)
+		needed = math.Log1p(-most) * float64(n) / math.Log1p(-t.Most)
+	}
+	if !stats.Less(t.Most, most) {
+		return
+	}
+	w := note("target_cannot_be_shown")
+	w.Band = p.study.Bands[p.study.Count.DecideOn].Name
+	years := "No record is long enough for a target of none"
+	if t.Most > 0 {
+		years = fmt.Sprintf("That takes %.0f years", math.Ceil(needed*(1-1e-9)))
+	}
+	ws.add(w, "In %s the record cannot show at %s %% that anything meets the target, even without a single event. %s; read whether the figure itself meets it, or set a target by days or load.",
+		fault.Count(n, "year"), short(100*confidence), years)
+}
 
 // targetWarnings say how far meeting the target hangs on upkeep.
 func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
@@ -437,7 +516,7 @@ func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
 		switch {
 		case len(f.States) == 0 || meets[stateNew] == "no":
 		case aged:
-			ws.add(at, "The target is met with the drains as new, and missed %s. Size them for the state that they will be in.", fault.Words(missed, "and"))
+			ws.add(at, "The target is met with the drains as new only: it is missed %s. Size them for the state that they will be in.", fault.Words(missed, "and"))
 		case len(missed) > 0:
 			at.Code, at.Severity = "target_needs_drains", result.Note
 			ws.add(at, "The target is missed %s. Say who keeps the drains running, and what is done if nobody does.", fault.Words(missed, "and"))
