@@ -43,11 +43,12 @@ func quiet() *prepared {
 	}
 	p := &prepared{
 		study: s, record: r, replayer: &replayer{},
-		counted: period{years: shortRecordYears, to: 100},
+		counted: period{years: shortRecordYears, to: 100, calendar: stats.Calendar{Year: make([]int32, 100)}},
 		base:    &trace{cover: make([]float64, 100), deep: make([]float64, 100)},
 	}
 	for i := range 100 {
 		p.base.cover[i], p.base.deep[i] = 4*float64(i)/99, 9*float64(i)/99
+		p.counted.calendar.Year[i] = int32(i % shortRecordYears)
 	}
 	p.rework()
 	return p

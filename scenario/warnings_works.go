@@ -358,6 +358,7 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 		moved := math.Abs(j.squared - j.linear)
 		return moved <= lawMoves*max(j.squared, j.linear) || moved <= lawMatters*most
 	})
+	yearly := figureOf[m.name]
 	for _, high := range []bool{false, true} {
 		far, too := "less than half", "much"
 		if high {
@@ -366,7 +367,7 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 		var moved []string
 		for _, j := range jobs {
 			if j.high == high {
-				moved = append(moved, fmt.Sprintf("%s %s, not %s", quoted(j.option.Name), figureText(m.name, j.squared), figureText(m.name, j.linear)))
+				moved = append(moved, fmt.Sprintf("%s %s, not %s", quoted(j.option.Name), yearly.text(j.squared), yearly.text(j.linear)))
 			}
 		}
 		for _, j := range jobs {
@@ -375,8 +376,8 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 			}
 			at := warn("linear_law_far")
 			at.Option, at.Band = j.option.Name, p.study.Bands[on].Name
-			ws.add(at, "While the trenches run the water midway stands at %s of their working_head, so that their linear rate lets out too %s. By the quadratic law, which follows the height, and with the drains as new the %s would be: %s. Set working_head to the usual height, or law: quadratic.",
-				far, too, measureTitle(m.name), firstOf(moved, "; ", mostPairs))
+			ws.add(at, "While the trenches run the water midway stands at %s of their working_head, so that their linear rate lets out too %s. By the quadratic law, which follows the height, and with the drains as new the %s would be%s: %s. Set working_head to the usual height, or law: quadratic.",
+				far, too, measureTitle(m.name), yearly.unit, firstOf(moved, "; ", mostPairs))
 		}
 	}
 	return nil
@@ -392,25 +393,24 @@ func byQuadraticLaw(o *Option) *Option {
 	return &other
 }
 
-// figureText is a yearly figure of a measure for people.
-func figureText(measure string, value float64) string {
-	digits := 2
-	if value >= 1 {
-		digits = max(0, 2-int(math.Log10(value)))
+// figureWriter writes the figures of a measure for people, in a unit that is said once.
+type figureWriter struct {
+	unit  string
+	scale float64
+}
+
+// figureOf has the measures of count.decide_by.
+var figureOf = map[string]figureWriter{
+	"load": {", in m·d a year", 1}, "days": {", in d a year", 1}, "events": {", per year", 1}, "annual_probability": {", in %", 100},
+}
+
+// text is a figure to about three digits.
+func (f figureWriter) text(figure float64) string {
+	figure *= f.scale
+	if figure < 1 {
+		return strconv.FormatFloat(figure, 'g', 2, 64)
 	}
-	figure := strconv.FormatFloat(value, 'f', digits, 64)
-	if value < 1 {
-		figure = strconv.FormatFloat(value, 'g', 2, 64)
-	}
-	switch measure {
-	case "load":
-		return figure + " m·d a year"
-	case "days":
-		return figure + " d a year"
-	case "annual_probability":
-		return short(math.Round(1000*value)/10) + " %"
-	}
-	return figure + " a year"
+	return strconv.FormatFloat(figure, 'f', max(0, 2-int(math.Log10(figure))), 64)
 }
 
 // worthWarnings say where the record cannot tell which option is worth most.
@@ -454,9 +454,12 @@ func (p *prepared) worthWarnings(ws *warnings, options []optionFigures, r *stats
 	}
 	d := r.Compare(worth(best), worth(next), p.study.Count.Confidence)
 	more := options[best].Cost.PresentValue - options[next].Cost.PresentValue
-	least := -d.Difference // that the best avoids more than the next, as sure as the ranges are
-	if d.DifferenceCI != nil {
+	least := 0.0 // that the best avoids more than the next, as sure as the ranges are; where they are alike in every year just that
+	switch {
+	case d.DifferenceCI != nil:
 		least = -d.DifferenceCI[1]
+	case d.YearsEqual < p.counted.years: // a single year has no range
+		least = math.Inf(-1)
 	}
 	if stats.Less(more, least) {
 		return
@@ -505,29 +508,33 @@ func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
 		at := warn("target_only_as_new")
 		at.Option, at.Band = f.Name, p.study.Bands[p.study.Count.DecideOn].Name
 		meets := map[string]string{}
-		var missed []string
 		for _, s := range f.States {
 			meets[s.State] = s.MeetsTarget
-			if s.MeetsTarget == "no" {
-				missed = append(missed, stateWords[s.State])
-			}
 		}
-		aged := slices.ContainsFunc([]string{stateMean, stateHorizon, stateBefore}, func(s string) bool { return meets[s] == "no" })
-		switch {
-		case len(f.States) == 0 || meets[stateNew] == "no":
-		case aged:
-			ws.add(at, "The target is met with the drains as new only: it is missed %s. Size them for the state that they will be in.", fault.Words(missed, "and"))
-		case len(missed) > 0:
+		missed := func(states ...string) (words []string) {
+			for _, s := range states {
+				if meets[s] == "no" {
+					words = append(words, stateWords[s])
+				}
+			}
+			return words
+		}
+		if len(f.States) == 0 || meets[stateNew] == "no" {
+			continue
+		}
+		if aged := missed(stateMean, stateHorizon, stateBefore); len(aged) > 0 { // the mildest says it all
+			ws.add(at, "The target is met with the drains as new, and missed %s. Size them for the state that they will be in.", aged[0])
+		} else if lapsed := missed(stateNever, stateHalf, stateStopped); len(lapsed) > 0 {
 			at.Code, at.Severity = "target_needs_drains", result.Note
-			ws.add(at, "The target is missed %s. Say who keeps the drains running, and what is done if nobody does.", fault.Words(missed, "and"))
+			ws.add(at, "The target is missed %s. Say who keeps the drains running, and what is done if nobody does.", fault.Words(lapsed, "and"))
 		}
 	}
 }
 
 // stateWords say a state in a sentence.
 var stateWords = map[string]string{
-	stateNew: "with the drains as new", stateMean: "in the mean between flushes", stateHorizon: "in the mean over the horizon",
-	stateBefore: "before a flush", stateNever: "if nobody ever flushes them", stateHalf: "with every second drain stopped", stateStopped: "with all drains stopped",
+	stateMean: "in the mean between flushes", stateHorizon: "in the mean over the horizon", stateBefore: "before a flush",
+	stateNever: "if nobody ever flushes them", stateHalf: "with every second drain stopped", stateStopped: "with all drains stopped",
 }
 
 func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }
