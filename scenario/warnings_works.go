@@ -27,7 +27,7 @@ const (
 	tightConductivity = 1.0  // m/d above which a porosity below leastWidePorosity is odd
 	leastWidePorosity = 0.03
 	mostTightPorosity = 0.10
-	mostUnflushed     = 15.0   // y that bored drains go without flushing; published 15 to 20 at most
+	mostUnflushed     = 15.0   // y that bored drains go without flushing; published 15 to 20 at most (European guidance, after Pun & Urciuoli 2008)
 	slowEffect        = 365.25 // d
 	leastMargin       = 1.05   // factor of safety in a usual wet season under which movement may break drains before they act: judgement
 	leastTaken        = 0.1    // of the percolation that a trench takes: judgement
@@ -87,7 +87,7 @@ func (p *prepared) practiceWarnings(ws *warnings, w *works) {
 		case m.Trench != nil:
 			if m.Trench.Depth > mostTrenchDepth {
 				at.Code = "trench_deep"
-				ws.add(at, "Trenches %.1f m deep are beyond common practice (about %.0f m). Check that they can be built on moving ground.", m.Trench.Depth, mostTrenchDepth)
+				ws.add(at, "Trenches %.1f m deep are beyond common practice (about %.0f m; Price & Fitch 2017). Check that they can be built on moving ground.", m.Trench.Depth, mostTrenchDepth)
 			}
 			for _, q := range []struct {
 				key   string
@@ -136,7 +136,7 @@ func (p *prepared) designWarnings(ws *warnings, w *works) {
 			ws.add(at(warn("drains_never_clog")), "The %s are taken as new for ever. Drains clog; give decline with a half_life, such as 10 y and 20 y in turn, and see what is left.", measureWords(m.Key))
 		}
 		if m.Bored != nil && m.Bored.Decline != nil && m.Bored.Decline.Every > mostUnflushed {
-			ws.add(at(warn("bored_drains_unflushed")), "The bored drains go without flushing for more than %.0f years. Without upkeep such drains last 15 to 20 years at most; plan flushing, and pay for it.", mostUnflushed)
+			ws.add(at(warn("bored_drains_unflushed")), "The bored drains go without flushing for more than %.0f years. Without upkeep such drains last 15 to 20 years at most (European guidance); plan flushing, and pay for it.", mostUnflushed)
 		}
 		if m.Trench == nil {
 			continue
@@ -180,7 +180,7 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 // poresWarning holds a conductivity, m/d, and a drainable porosity against each other.
 func poresWarning(ws *warnings, w result.Warning, k, n float64) {
 	if n >= mostTightPorosity && k < wideConductivity || n < leastWidePorosity && k > tightConductivity {
-		ws.add(w, "A conductivity of %s m/d hardly goes with a drainable porosity of %s %%: pores that drain freely carry water well, and tight ones do neither. One of the two is likely to be wrong, and the rate goes with their ratio.", short(k), short(100*n))
+		ws.add(w, "A conductivity of %s m/d hardly goes with a drainable porosity of %s %%: pores that drain freely carry water well, and tight ones do neither (FAO Irrigation and Drainage Paper 62, 2007). One of the two is likely to be wrong, and the rate goes with their ratio.", short(k), short(100*n))
 	}
 }
 
