@@ -177,7 +177,7 @@ func TestDescribeDrains(t *testing.T) {
 func TestWhyDrainIsDry(t *testing.T) {
 	for level, want := range map[float64]string{4: "what else the option does", 9: "they do nothing in this record"} {
 		p := quiet()
-		p.study.Options[1].Measures = []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: level, Efficiency: 0.9, Ceiling: math.Inf(1)}}}
+		p.study.Options[1].Measures = []Measure{{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.01, Level: level, Efficiency: 0.9, Ceiling: math.Inf(1), Decline: upkept}}}
 		p.rework()
 		options := make([]optionFigures, 2)
 		options[1].Drains = []result.Drain{{RunningShare: 0}}

@@ -526,7 +526,7 @@ func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
 			ws.add(at, "The target is met with the drains as new, and missed %s. Size them for the state that they will be in.", aged[0])
 		} else if lapsed := missed(stateNever, stateHalf, stateStopped); len(lapsed) > 0 {
 			at.Code, at.Severity = "target_needs_drains", result.Note
-			ws.add(at, "The target is missed %s. Say who keeps the drains running, and what is done if nobody does.", fault.Words(lapsed, "and"))
+			ws.add(at, "The target is missed %s. Say who keeps them running, and what is done if nobody does.", fault.Words(lapsed, "and"))
 		}
 	}
 }
@@ -534,7 +534,7 @@ func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
 // stateWords say a state in a sentence.
 var stateWords = map[string]string{
 	stateMean: "in the mean between flushes", stateHorizon: "in the mean over the horizon", stateBefore: "before a flush",
-	stateNever: "if nobody ever flushes them", stateHalf: "with every second drain stopped", stateStopped: "with all drains stopped",
+	stateNever: "if nobody ever flushes the drains", stateHalf: "with every second drain stopped", stateStopped: "with all drains stopped",
 }
 
 func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }
