@@ -26,11 +26,11 @@ func (h *hand) warnings(s *Study, rows []handRow, found *result.Drains) []result
 	}
 	l := &found.Layout
 	t := *rows[0].trench
-	t.Conductivity = l.ConductivityMPerDay
-	p.practiceWarnings(&ws, &works{option: &Option{Name: found.Option, Measures: []Measure{{Trench: &t}}}})
-	if k := l.ConductivityBelowMPerDay; k != l.ConductivityMPerDay && !(k >= leastConductivity && k <= mostConductivity) {
-		ws.add(at(warn("implausible_ground")), "The conductivity below the drains is %s m/d; usual are %s to %s m/d. Check the unit and the source.", short(k), short(leastConductivity), short(mostConductivity))
+	t.Conductivity, t.Below = l.ConductivityMPerDay, 0
+	if k := l.ConductivityBelowMPerDay; k != l.ConductivityMPerDay {
+		t.Below = k
 	}
+	p.practiceWarnings(&ws, &works{option: &Option{Name: found.Option, Measures: []Measure{{Trench: &t}}}})
 	if n := l.Porosity; !(n >= leastPorosity && n <= mostPorosity) {
 		ws.add(at(warn("implausible_ground")), "The drainable porosity is %s %%; usual are %s to %s %%. Check the unit and the source: it is the share that drains, less than all pores.", short(100*n), short(100*leastPorosity), short(100*mostPorosity))
 	}

@@ -19,7 +19,6 @@ const (
 	roughEquivalent   = 0.15 // share by which a given equivalent depth may differ from the computed one: judgement
 	leastSpacingRatio = 1.0  // of trench depth; usual are 2 to 6 (Hutchinson 1977 and CIRIA C591, from memory)
 	mostSpacingRatio  = 10.0 // the same
-	leastRadiiApart   = 10.0 // radii between drains below which they are no lines in the ground: judgement, after how the formula behaves
 	// Clay without wide cracks drains 1 to 3 % of its volume and carries 0.01 to 0.1 m/d (FAO Irrigation and Drainage Paper 62,
 	// 2007, annex 1). What drains 10 % and more, silt and fine sand (Johnson 1967, USGS WSP 1662-D) or clay with wide cracks,
 	// carries 0.09 m/d and more (loess and very fine sand, Terzaghi & Peck 1967). The limits are about ten times beyond.
@@ -164,7 +163,7 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 		ws.add(at(warn("equivalent_depth_differs")), "equivalent_depth is %s m, and for a drain of %s m radius only %s m are computed: the rate may be too high. "+check, short(t.Equivalent), short(t.Radius), found)
 	case given && t.Equivalent < (1-roughEquivalent)*computed:
 		ws.add(at(note("equivalent_depth_differs")), "equivalent_depth is %s m; for a drain of %s m radius %s m are computed. "+check, short(t.Equivalent), short(t.Radius), found)
-	case !given && under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadiiApart*t.Radius):
+	case !given && under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadii*t.Radius):
 		ws.add(at(warn("formula_range")), "Drains of %s m radius are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller drain_radius, or equivalent_depth itself.", short(t.Radius))
 	}
 	const usual = "times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth."
