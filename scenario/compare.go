@@ -58,6 +58,11 @@ func prepare(ctx context.Context, s *Study, besides ...*works) (*prepared, error
 	all := besides
 	for _, c := range p.cases {
 		all = append(all, c.works...)
+		for _, row := range c.rows { // the drains of some are slower
+			for _, aged := range row {
+				all = append(all, aged.works)
+			}
+		}
 	}
 	warm, err := newWarmUp(s, record, all)
 	if err != nil {

@@ -99,13 +99,10 @@ func (p *prepared) costs(options []optionFigures, r *stats.Resamples) {
 	p.frontier(options, r)
 }
 
-// benefitFactor turns an avoided yearly loss into a present value: that of a year before the works act does not count.
+// benefitFactor turns an avoided yearly loss into a present value: that of a year before the works act does not count, and
+// nothing does where they never come to act.
 func (p *prepared) benefitFactor(f *optionFigures) float64 {
-	start := 0.0
-	if t := f.TimeToEffect; t != nil {
-		start = yearsOf(t.Days)
-	}
-	return money.BenefitFactor(p.study.Money.Rate, p.study.Money.Horizon, start)
+	return money.BenefitFactor(p.study.Money.Rate, p.study.Money.Horizon, yearsOf(f.trace.works.acting()))
 }
 
 // benefit is the present value of the losses that an option avoids.
@@ -116,8 +113,12 @@ func (p *prepared) benefit(f, base *optionFigures) float64 {
 	return p.benefitFactor(f) * (stats.Mean(base.losses) - stats.Mean(f.losses))
 }
 
-// worth holds what an option avoids against what it costs more than the baseline. A ratio to what is avoided has a meaning
-// only where the record shows that something is.
+// worth holds what an option avoids against what it costs more than the baseline. A ratio has a meaning only where it costs
+// more, and where the record tells it apart from the baseline. A cost per day or event avoided, which divides by a
+// difference of its own, also asks that the interval of that difference excludes zero.
+//
+// The break-even loss is what an event of the deciding band would have to cost for the avoided ones alone to pay for the
+// works. Losses that the study gives are left out of it.
 func (p *prepared) worth(f, base *optionFigures, r *stats.Resamples) {
 	confidence, c := p.study.Count.Confidence, f.Cost
 	more := c.PresentValue - base.Cost.PresentValue
@@ -141,21 +142,18 @@ func (p *prepared) worth(f, base *optionFigures, r *stats.Resamples) {
 		return
 	}
 	c.ToldApart = p.toldApart(f, base, r)
-	if !c.ToldApart || more <= 0 {
+	if !c.ToldApart || !stats.Less(base.Cost.PresentValue, c.PresentValue) {
 		return
 	}
 	yearly := c.AnnualEquivalent - base.Cost.AnnualEquivalent
 	per := func(measure string) (avoided float64, each *float64, ci *result.Interval) {
 		m := measureNamed(measure)
 		d := r.Compare(m.byYear(&f.passed[on]), m.byYear(&base.passed[on]), confidence)
-		if avoided = -d.Difference; avoided <= 0 {
+		if d.DifferenceCI == nil || d.DifferenceCI[1] >= 0 {
 			return 0, nil, nil
 		}
-		one := yearly / avoided
-		if d.DifferenceCI != nil && d.DifferenceCI[1] < 0 {
-			ci = &result.Interval{yearly / -d.DifferenceCI[0], yearly / -d.DifferenceCI[1]}
-		}
-		return avoided, &one, ci
+		one := yearly / -d.Difference
+		return -d.Difference, &one, &result.Interval{yearly / -d.DifferenceCI[0], yearly / -d.DifferenceCI[1]}
 	}
 	_, c.PerDayAvoided, c.PerDayAvoidedCI = per("days")
 	var events float64

@@ -15,8 +15,26 @@ const effective = 0.9
 // timeToEffect is the time until nine tenths of what an option does to the deep level have come about, with its drains
 // running as new: in the deep store alone for what acts there only, in both stores for anything else; and for the clay
 // between trenches, drained to them alone, by consolidation. An option that does nothing has none, and nor has the baseline,
-// which is there already.
+// which is there already, or one that never gets there: a store that nothing drains only fills up.
 func (w *works) timeToEffect() *result.TimeToEffect {
+	t := w.response()
+	if t == nil || math.IsInf(t.Days, 1) {
+		return nil
+	}
+	return t
+}
+
+// acting is the time, d, from which on what an option avoids counts: 0 for the baseline and an option that does nothing, +Inf
+// for one that never gets there.
+func (w *works) acting() float64 {
+	if t := w.response(); t != nil {
+		return t.Days
+	}
+	return 0
+}
+
+// response is timeToEffect with times that may be +Inf.
+func (w *works) response() *result.TimeToEffect {
 	if w.option.Baseline || len(w.option.Measures) == 0 {
 		return nil
 	}
@@ -40,9 +58,6 @@ func (w *works) timeToEffect() *result.TimeToEffect {
 				t.ClayDays, t.Days = &days, max(t.Days, days)
 			}
 		}
-	}
-	if math.IsInf(t.Days, 1) { // nothing drains a store: it never gets there
-		return nil
 	}
 	return t
 }

@@ -27,19 +27,19 @@ func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted)
 }
 
 // mean is the weighted mean of the figures of several replays of an option, which is not what a replay with mean drains
-// would give. The rates and drains are those of the drains as new in this condition; the flows are means, but for the peak, which is the
-// largest, since outlets are sized by it. Warnings see the furthest of the replays. Single events belong to one replay
-// each, so there is no list of them.
+// would give. The rates and drains are those of the drains as new in this condition. All else is a mean, the highest level
+// too, but for the peak flow of a drain, which is the largest, since outlets are sized by it. Warnings see the furthest of
+// the replays. Single events belong to one replay each, so there is no list of them.
 func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) optionFigures {
 	if len(parts) == 1 {
 		return parts[0]
 	}
 	of := func(figure func(*optionFigures) float64) float64 {
-		sum := 0.0
+		var figures [][]float64
 		for i := range parts {
-			sum += weights[i] * figure(&parts[i])
+			figures = append(figures, []float64{figure(&parts[i])})
 		}
-		return sum
+		return stats.AverageSeries(figures, weights)[0]
 	}
 	f := parts[0]
 	f.Drains = nil
@@ -212,7 +212,7 @@ func (p *prepared) meanShare(row []weighted) float64 {
 }
 
 // met says whether a band's figures meet the target: yes, no, or not_shown where the figure does and the end of its range
-// does not. A figure without a range is zero in every year, and meets it.
+// does not. A figure without a range is zero in every year, and meets it, or that of a single year, which shows nothing.
 func (t *Target) met(b *result.BandFigure) string {
 	if t == nil {
 		return ""
@@ -221,7 +221,7 @@ func (t *Target) met(b *result.BandFigure) string {
 	switch {
 	case stats.Less(t.Most, value):
 		return "no"
-	case ci != nil && stats.Less(t.Most, ci[1]):
+	case ci == nil && value > 0, ci != nil && stats.Less(t.Most, ci[1]):
 		return "not_shown"
 	}
 	return "yes"
