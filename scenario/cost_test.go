@@ -564,3 +564,121 @@ func TestCostWithoutADecision(t *testing.T) {
 		t.Errorf("%+v, %+v", o.Decision, k)
 	}
 }
+
+// pricedStudy is a study text with options after the first; ten years without interest or contingency.
+func pricedStudy(t *testing.T, options string) string {
+	base := baseStudy(t)
+	base = base[:strings.Index(base, "  - name: trenches")]
+	return base + options + `
+money: {currency: EUR, horizon: 10 y, discount_rate: 0 %, prices_of: 2026, contingency: 0 %}
+site: {plan_area: 12000 m2}
+declared:
+  existing_slip_surface: yes
+`
+}
+
+const someWorks = `
+  - name: trenches
+    trench_drains: {spacing: [10 m, 20 m], depth: 3 m, conductivity: 0.02 m/d, decline: {half_life: 12 y, flushed_every: 3 y, restored_to: 95 %}}
+    cost: {per_metre: 10, per_year: 100, per_flush: 50, life: 4 y}
+  - name: bores
+    bored_drains: {rate: 0.005 /d, level: 3 m, number: 12, length: 50 m, decline: {half_life: 10 y, flushed_every: 4 y, restored_to: 90 %}}
+    cost: {capital: 1000, per_metre: 20, per_flush: 30, life: 5 y}
+  - name: channels
+    surface_water: {kept_out: 10 %}
+    cost: {capital: 500, per_year: 10, life: 6 y}
+`
+
+// TestCostLike: what is taken over is priced by the metres, the flushes and the lives of the option that takes it.
+func TestCostLike(t *testing.T) {
+	s, err := Parse("study.yaml", []byte(pricedStudy(t, someWorks+`
+  - name: closer and cheaper
+    trench_drains: {like: trenches, spacing: 8 m}
+    cost: {like: trenches, per_metre: 5}
+  - name: everything
+    trench_drains: {like: trenches, spacing: 16 m}
+    bored_drains: {like: bores}
+    surface_water: {like: channels}
+    cost: {like: [trenches, bores, channels]}
+  - name: flushed less
+    trench_drains: {like: trenches, spacing: 10 m, decline: {half_life: 12 y, flushed_every: 5 y, restored_to: 95 %}}
+    cost: {like: trenches}
+  - name: fewer bores
+    bored_drains: {like: bores, number: 3}
+    cost: {like: [bores]}
+  - name: lasting
+    trench_drains: {like: trenches, spacing: 10 m}
+    cost: {like: trenches, life: 20 y, per_flush: 0, capital: 7}
+  - name: trenches priced after the channels
+    trench_drains: {like: trenches, spacing: 10 m}
+    cost: {like: channels, per_metre: 5}
+  - name: bores and channels
+    bored_drains: {like: bores}
+    surface_water: {like: channels}
+    cost: {like: [channels, bores]}
+`)))
+	if err != nil {
+		t.Fatal(err)
+	}
+	for name, w := range map[string]struct {
+		capital, pv, metres float64
+		flushes, renewals   int
+	}{
+		// 12000 m2 / 10 m = 1200 m at 10: 12000 now and after 4 and 8 years; 10 years at 100; flushes after 3, 6 and 9 years.
+		"trenches, spacing 10 m": {12000, 3*12000 + 1000 + 3*50, 1200, 3, 2},
+		"trenches, spacing 20 m": {6000, 3*6000 + 1000 + 3*50, 600, 3, 2},
+		// 1000 + 12·50 m·20 = 13000, again after 5 years and not after 10; flushes after 4 and 8 years.
+		"bores":              {13000, 2*13000 + 2*30, 600, 2, 1},
+		"channels":           {500, 2*500 + 100, 0, 0, 1},
+		"closer and cheaper": {1500 * 5, 3*7500 + 1000 + 3*50, 1500, 3, 2},
+		// Each part with its own life: 750 m of trench at 10, the bores and the channels as they are.
+		"everything":   {7500 + 13000 + 500, 3*7500 + 1000 + 3*50 + 2*13000 + 2*30 + 2*500 + 100, 750 + 600, 5, 4},
+		"flushed less": {12000, 3*12000 + 1000 + 50, 1200, 1, 2},
+		"fewer bores":  {1000 + 3*50*20, 2*4000 + 2*30, 150, 2, 1},
+		"lasting":      {7 + 12000, 12007 + 1000, 1200, 3, 0},
+		// 500 + 1200·5, again after 6 years.
+		"trenches priced after the channels": {6500, 2*6500 + 100, 1200, 3, 1},
+		"bores and channels":                 {13500, 2*13000 + 2*30 + 2*500 + 100, 600, 2, 2},
+	} {
+		i := slices.IndexFunc(s.Options, func(o Option) bool { return o.Name == name })
+		if i < 0 {
+			t.Fatalf("no option %s", name)
+		}
+		c := s.cost(&s.Options[i])
+		metres, flushes, renewals := 0.0, 0, 0
+		if c.Metres != nil {
+			metres = *c.Metres
+		}
+		if c.Flushes != nil {
+			flushes = *c.Flushes
+		}
+		if c.Renewals != nil {
+			renewals = *c.Renewals
+		}
+		if !agrees(c.Capital, w.capital) || !agrees(c.PresentValue, w.pv) || !agrees(c.AnnualEquivalent, w.pv/10) || !agrees(metres, w.metres) || flushes != w.flushes || renewals != w.renewals {
+			t.Errorf("%s: capital %v, present value %v, a year %v, %v m, %d flushes, %d renewals, want %+v", name, c.Capital, c.PresentValue, c.AnnualEquivalent, metres, flushes, renewals, w)
+		}
+	}
+	if c := s.cost(&s.Options[0]); c == nil || c.PresentValue != 0 {
+		t.Errorf("the baseline costs %+v, want nothing", c)
+	}
+}
+
+// TestCostLikeRefused: what cannot be priced by the option that takes it.
+func TestCostLikeRefused(t *testing.T) {
+	for option, want := range map[string]string{
+		"bored_drains: {like: bores}\n    cost: {like: trenches}":                                                  "per metre of trench_drains, and this option has none",
+		"trench_drains: {rate: 0.02 /d, depth: 3 m}\n    cost: {like: trenches}":                                   "given by a rate",
+		"trench_drains: {spacing: 9 m, depth: 3 m, conductivity: 0.02 m/d}\n    cost: {like: trenches}":            "never flushed",
+		"bored_drains: {rate: 0.005 /d, level: 3 m}\n    cost: {like: [channels, bores]}":                          "number times their length",
+		"surface_water: {like: channels}\n    cost: {like: [channels, nobody]}":                                    "no option above is named \"nobody\"",
+		"surface_water: {like: channels}\n    cost: {like: [channels, bores], capital: 5}":                         "beside a like of several names",
+		"trench_drains: {like: trenches, spacing: 9 m}\n    bored_drains: {like: bores}\n    cost: {per_metre: 3}": "does not say of which",
+		"trench_drains: {like: trenches, spacing: 9 m}\n    surface_water: {like: channels}\n    cost: {like: it}": "this is the option itself",
+	} {
+		_, err := Parse("study.yaml", []byte(pricedStudy(t, someWorks+"  - name: it\n    "+option+"\n")))
+		if err == nil || !strings.Contains(err.Error(), want) {
+			t.Errorf("%s\n    got %v, want %q", option, err, want)
+		}
+	}
+}
