@@ -2,7 +2,10 @@ package scenario
 
 import (
 	"context"
+	"errors"
+	"fmt"
 
+	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
 	"quietslope/stats"
 )
@@ -153,12 +156,14 @@ func (p *prepared) states(ctx context.Context, options []optionFigures, r *stats
 	}
 	found := make([]result.State, len(jobs))
 	err := each(len(jobs), func(k int) error {
-		f, err := p.replayed(ctx, jobs[k].works)
-		if err == nil {
-			p.judge(&f, &f, r)
-			found[k] = stateOf(&f, jobs[k].works.state.name, jobs[k].works.effectShare())
+		w := jobs[k].works
+		f, err := p.replayed(ctx, w)
+		if err != nil {
+			return p.inState(err, w)
 		}
-		return err
+		p.judge(&f, &f, r)
+		found[k] = stateOf(&f, w.state.name, w.effectShare())
+		return nil
 	})
 	if err != nil {
 		return err
@@ -182,6 +187,19 @@ func (p *prepared) states(ctx context.Context, options []optionFigures, r *stats
 		}
 	}
 	return nil
+}
+
+// inState says of a fault that it comes from a state of the drains that the study does not name.
+func (p *prepared) inState(err error, w *works) error {
+	var fe *fault.Error
+	if !errors.As(err, &fe) {
+		return err
+	}
+	text := fe.Text
+	if wrong := w.model.Check(); wrong != nil {
+		text = fmt.Sprintf("%v; give ground.cover.full_at and ground.deep.full_at as levels, over which a full store can run", wrong)
+	}
+	return p.study.Fault(w.option.Place, "the results show this option %s too, and then %s", stateWords[w.state.name], text)
 }
 
 func stateOf(f *optionFigures, name string, share float64) result.State {
