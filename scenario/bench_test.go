@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"context"
 	"fmt"
+	"math"
 	"math/rand/v2"
 	"os"
 	"path/filepath"
@@ -39,6 +40,40 @@ func BenchmarkCompare(b *testing.B) {
 			}
 			if c.Record.Rows != rows || len(c.Cases[0].Options) != 8 {
 				b.Fatalf("%d rows, %d options", c.Record.Rows, len(c.Cases[0].Options))
+			}
+		}
+	})
+}
+
+// BenchmarkCompareDeclining compares eight options with drains that clog over forty years of hours: each is replayed at four
+// ages and in five states, besides a baseline. BenchmarkCompare replays each option once.
+func BenchmarkCompareDeclining(b *testing.B) {
+	const rows = 350640
+	path := filepath.Join(b.TempDir(), "hourly.csv")
+	writeHourly(b, path, rows)
+	inf := math.Inf(1)
+	decline := &Decline{HalfLife: 10, Every: 5, Restored: 0.9}
+	var options []Option
+	for i := range 8 {
+		m := Measure{Key: "trench_drains", Trench: &TrenchDrains{Depth: 3, Spacing: 6 + 2*float64(i), Conductivity: 0.05, Radius: 0.1,
+			Equivalent: math.NaN(), Head: 1.5, Quadratic: i >= 6, Efficiency: 1, Ceiling: inf, Decline: decline}}
+		options = append(options, Option{Name: fmt.Sprintf("trenches %d", i), Measures: []Measure{m}, Costs: []Cost{{Capital: 100 * float64(8-i), Life: 20}}})
+	}
+	s := ground(options...)
+	s.Ground.Soil = nil
+	s.Bands[0].LossPerEvent = 100
+	s.Money = &Money{Horizon: 50, Rate: 0.03}
+	s.Count.Resamples, s.Count.DesignLife = 2000, 50
+	s.Weather = WeatherSpec{File: "hourly.csv", Path: path, Time: "time", Format: "YYYY-MM-DD hh:mm", Rain: WeatherColumn{"rain_mm", "mm"}}
+	b.Run("rows=350640/options=9", func(b *testing.B) {
+		b.ReportAllocs()
+		for b.Loop() {
+			c, err := Compare(context.Background(), s, CompareQuery{})
+			if err != nil {
+				b.Fatal(err)
+			}
+			if got := len(c.Cases[0].Options[8].States); got != 6 {
+				b.Fatalf("%d states", got)
 			}
 		}
 	})

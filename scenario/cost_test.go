@@ -1,17 +1,21 @@
 package scenario
 
 import (
+	"bytes"
 	"context"
+	"encoding/json"
 	"fmt"
 	"math"
 	"os"
 	"path/filepath"
+	"runtime"
 	"slices"
 	"strings"
 	"testing"
 	"time"
 
 	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
 	"pgregory.net/rapid"
 
 	"quietslope/scenario/result"
@@ -680,5 +684,83 @@ func TestCostLikeRefused(t *testing.T) {
 		if err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%s\n    got %v, want %q", option, err, want)
 		}
+	}
+}
+
+// TestSameBytesOfMoney: costs, ages and states of drains are the same on any number of processors.
+func TestSameBytesOfMoney(t *testing.T) {
+	defer runtime.GOMAXPROCS(runtime.GOMAXPROCS(0))
+	for name, s := range map[string]*Study{"owner's table": ownersStudy(t), "declining": decliningStudy(t)} {
+		var want []byte
+		for _, n := range []int{1, 8} {
+			runtime.GOMAXPROCS(n)
+			got, err := json.Marshal(compare(t, s))
+			if err != nil {
+				t.Fatal(err)
+			}
+			if want == nil {
+				want = got
+			} else if !bytes.Equal(got, want) {
+				t.Errorf("%s: GOMAXPROCS=%d changes the result", name, n)
+			}
+		}
+	}
+}
+
+// TestOrderOfCosts: what an option costs, avoids and is worth does not hang on where it stands in the study. Of equal ones the
+// first is named.
+func TestOrderOfCosts(t *testing.T) {
+	for name, s := range map[string]*Study{"owner's table": ownersStudy(t), "declining": decliningStudy(t)} {
+		if name == "declining" {
+			for i := range s.Options {
+				s.Options[i].Costs = []Cost{{Capital: float64(100 * (i * 7 % 11)), Life: 20}}
+			}
+		}
+		before := compare(t, s)
+		slices.Reverse(s.Options) // the baseline is marked
+		after := compare(t, s)
+		named := cmp.Options{cmpopts.IgnoreFields(result.Decision{}, "DominatedBy"), cmpopts.IgnoreFields(result.Cost{}, "StepFrom")}
+		for k := range before.Cases {
+			slices.Reverse(after.Cases[k].Options)
+			for i := range before.Cases[k].Options {
+				a, b := &before.Cases[k].Options[i], &after.Cases[k].Options[i]
+				if strings.Contains(a.Name, "channels") && a.Cost.StepFrom != b.Cost.StepFrom { // twins, of which the first has the ratio
+					ratio := *b.Cost
+					ratio.StepBenefitCost = a.Cost.StepBenefitCost
+					b.Cost = &ratio
+				}
+				if d := cmp.Diff(a, b, named); d != "" {
+					t.Errorf("%s, %s (-before +after):\n%s", name, a.Name, d)
+				}
+			}
+		}
+	}
+}
+
+// TestMet: the figure, the end of its range, and a single year, which has no range and shows nothing.
+func TestMet(t *testing.T) {
+	for _, tt := range []struct {
+		value, upper float64 // NaN for no range
+		most         float64
+		want         string
+	}{
+		{3, 4, 2, "no"}, {2, 4, 2, "not_shown"}, {1, 2, 2, "yes"}, {2 * (1 + 1e-12), 2 * (1 + 1e-12), 2, "yes"},
+		{0, math.NaN(), 0, "yes"}, {1, math.NaN(), 2, "not_shown"}, {3, math.NaN(), 2, "no"},
+	} {
+		b := &result.BandFigure{DaysPerYear: tt.value}
+		if !math.IsNaN(tt.upper) {
+			b.DaysPerYearCI = &result.Interval{0, tt.upper}
+		}
+		if got := (&Target{Measure: "days", Most: tt.most}).met(b); got != tt.want {
+			t.Errorf("%v up to %v against %v: %s, want %s", tt.value, tt.upper, tt.most, got, tt.want)
+		}
+	}
+	// None in six years, and yet up to half an event a year at 90 %.
+	b := &result.BandFigure{EventsPerYearCI: result.Interval{0, 0.5}}
+	if got := (&Target{Measure: "events", Most: 0.1}).met(b); got != "not_shown" {
+		t.Errorf("no event in six years: %s", got)
+	}
+	if got := (*Target)(nil).met(b); got != "" {
+		t.Errorf("without a target: %s", got)
 	}
 }
