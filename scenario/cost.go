@@ -56,7 +56,9 @@ func (s *Study) cost(o *Option) *result.Cost {
 	for _, plan := range s.plans(o) {
 		c.Capital += plan.Capital
 		c.PresentValue += plan.PresentValue(s.Money.Rate, horizon)
-		renewals += plan.Renewals(horizon)
+		if plan.Capital > 0 { // else there is nothing to renew
+			renewals += plan.Renewals(horizon)
+		}
 	}
 	c.AnnualEquivalent = c.PresentValue * money.Recovery(s.Money.Rate, horizon)
 	flushes, flushed := 0, false

@@ -610,6 +610,9 @@ func TestCostLike(t *testing.T) {
   - name: fewer bores
     bored_drains: {like: bores, number: 3}
     cost: {like: [bores]}
+  - name: upkeep alone
+    surface_water: {like: channels}
+    cost: {like: channels, capital: 0}
   - name: lasting
     trench_drains: {like: trenches, spacing: 10 m}
     cost: {like: trenches, life: 20 y, per_flush: 0, capital: 7}
@@ -642,6 +645,7 @@ func TestCostLike(t *testing.T) {
 		"lasting":      {7 + 12000, 12007 + 1000, 1200, 3, 0},
 		// 500 + 1200·5, again after 6 years.
 		"trenches priced after the channels": {6500, 2*6500 + 100, 1200, 3, 1},
+		"upkeep alone":                       {0, 100, 0, 0, 0}, // nothing that could be renewed
 		"bores and channels":                 {13500, 2*13000 + 2*30 + 2*500 + 100, 600, 2, 2},
 	} {
 		i := slices.IndexFunc(s.Options, func(o Option) bool { return o.Name == name })

@@ -78,7 +78,9 @@ func (s *Study) ownStates(o *Option) (name string, states []aged) {
 }
 
 // furtherStates are the states that the results show besides an option's own: what its drains are before a flush and when
-// nobody flushes them, and with every second and all of them stopped. An option without drains has none.
+// nobody flushes them, and with every second and all of them stopped. An option without drains has none. Beside drains that
+// are flushed, those that never are stand at the end of the horizon before a flush. Every second one of drains whose rate is
+// given carries half; what drains carry at most stays as it is.
 func (s *Study) furtherStates(o *Option) []state {
 	if !o.drained() {
 		return nil
