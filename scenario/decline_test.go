@@ -386,6 +386,12 @@ func TestStatesAreStudies(t *testing.T) {
 			}
 		})),
 		stateHalf: compare(t, changed(s, func(_ string, m *Measure) {
+			switch {
+			case m.Trench != nil:
+				m.Trench.Ceiling /= 2
+			case m.Bored != nil:
+				m.Bored.Ceiling /= 2
+			}
 			if m.Trench != nil && m.Trench.Spacing > 0 {
 				m.Trench.Spacing *= 2
 			} else {

@@ -447,6 +447,7 @@ func TestWorthWarnings(t *testing.T) {
 			}
 			for i := range options {
 				f := &options[i]
+				f.trace.works = p.works[i]
 				if tt.loss {
 					f.losses = nil
 				} else if i > 0 {

@@ -152,6 +152,9 @@ func storage(level, porosity float64) float64 { return 1000 * porosity * level }
 // addDrain makes a drain one of the outlets of its store, at the rate that its state and the condition leave of it.
 func (w *works) addDrain(m Measure, d drainage, c *Condition) {
 	d.measure, d.place = m.Key, m.Place
+	if w.state.everySecond {
+		d.ceiling /= 2 // which is that of all drains together
+	}
 	if !d.respaced {
 		d.share = w.state.left(m.decline())
 		d.rate, d.square, d.worked = d.share*d.rate, d.share*d.square, d.share*d.worked

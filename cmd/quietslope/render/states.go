@@ -123,7 +123,7 @@ func (v *view) statesMeant(options []*result.Option) string {
 		text += fmt.Sprintf(" Never flushed: as clogged as they are after %s.", plural(v.agingYears(), "year"))
 	}
 	if has("half_stopped") {
-		text += " Every second stopped: trenches are worked out anew at twice the spacing, which leaves about a quarter of their rate; of drains given by a rate, half of it is left."
+		text += " Every second stopped: trenches are worked out anew at twice the spacing, which leaves about a quarter of their rate; of drains given by a rate, and of any ceiling, half is left."
 	}
 	return text
 }
