@@ -209,7 +209,7 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 		rank(s, options)
 		p.costs(options, resamples)
 		if k == 0 {
-			if err := p.states(ctx, options, resamples); err != nil {
+			if err := p.states(ctx, options, &asBuilt, resamples); err != nil {
 				return nil, err
 			}
 			if err := p.lawWarnings(ctx, &laws, options); err != nil {

@@ -155,15 +155,15 @@ func (r *handReader) fall(text string) (from, to float64) {
 	if text == "" {
 		return math.NaN(), math.NaN()
 	}
-	to, from, err := quantity.ParseRange(text, quantity.Length)
+	heads, err := quantity.ParseRange(text, quantity.Length)
 	l := above(0, maxThickness)
 	switch {
 	case err != nil:
 		r.add("--fall", "%v", err)
-	case !l.hold(to) || !l.hold(from):
+	case !l.hold(heads.Lo) || !l.hold(heads.Hi):
 		r.add("--fall", "%s is out of range; write heads %s", quoted(text), l.words(&shape{form: formQuantity, kind: quantity.Length}))
 	}
-	return from, to
+	return heads.Hi, heads.Lo
 }
 
 // variedSpacing is the key of a list of spacings.

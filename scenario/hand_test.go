@@ -88,7 +88,7 @@ func TestHandQuery(t *testing.T) {
 		{func(q *HandQuery) { q.Fall = "1 .. 3.5 m" }, nil, []string{"--fall: 3.5 m is more than the depth of the drains"}},
 		{func(q *HandQuery) { q.Fall = "1.0 m .. 0.4 m" }, nil, []string{`--fall: "1.0 m .. 0.4 m" does not rise; write the smaller value first`}},
 		{func(q *HandQuery) { q.Fall = "1 m to 0.4 m" }, nil, []string{`--fall: "1 m to 0.4 m" is not a range; write two values of a length`}},
-		{func(q *HandQuery) { q.Fall = "0.4 .. 1" }, nil, []string{`--fall: "1" has no unit`}},
+		{func(q *HandQuery) { q.Fall = "0.4 .. 1" }, nil, []string{`--fall: "0.4 .. 1" has no unit; write 0.4 .. 1 m`}},
 		{func(q *HandQuery) { q.Fall = "0 m .. 1 m" }, nil, []string{`--fall: "0 m .. 1 m" is out of range; write heads above 0 m`}},
 		{func(q *HandQuery) { q.Radius, q.Width, q.Wet = "0.1 m", "0.6 m", "0 m" }, nil, []string{"--radius: it is worked out from --width and --wet"}},
 		{func(q *HandQuery) { q.Width = "0.6 m" }, nil, []string{"--wet: beside --width"}},

@@ -134,8 +134,9 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 	return f
 }
 
-// states replays every drained option with its drains in every further state, and shows the deciding figure in each.
-func (p *prepared) states(ctx context.Context, options []optionFigures, r *stats.Resamples) error {
+// states replays every drained option of the first case, which is in a condition, with its drains in every further state, and
+// shows the deciding figure in each.
+func (p *prepared) states(ctx context.Context, options []optionFigures, c *Condition, r *stats.Resamples) error {
 	on := p.study.Count.DecideOn
 	if on < 0 {
 		return nil
@@ -149,7 +150,7 @@ func (p *prepared) states(ctx context.Context, options []optionFigures, r *stats
 		for _, in := range p.study.furtherStates(&p.study.Options[i]) {
 			w := p.works[i]
 			if in.name != stateNew {
-				w = newWorks(p.study, w.option, &asBuilt, in)
+				w = newWorks(p.study, w.option, c, in)
 			}
 			jobs = append(jobs, job{i, w})
 		}

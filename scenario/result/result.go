@@ -332,34 +332,53 @@ type Decision struct {
 	DominatedBy string `json:"dominated_by,omitempty"` // such an option
 }
 
-// Size is the result of size: one number of an option over a range, and the value that just meets the target.
+// Size is the result of size: one number of an option over a range, and the value that just meets the target. Values are in
+// Unit; of a share they are 0 to 1.
 type Size struct {
 	Head
 	Settings  Settings `json:"settings"`
+	Record    Record   `json:"record"`
 	Option    string   `json:"option"`
 	Condition string   `json:"condition"`
-	Vary      string   `json:"vary"`
-	Unit      string   `json:"unit"` // of the values; share for shares, blank for plain numbers
-	DecideOn  string   `json:"decide_on"`
-	Measure   string   `json:"measure"` // of the figures
-	Target    *Target  `json:"target,omitempty"`
+	// What the option does and the state of its drains, as in Option, with the answer; without one with the safe end of the
+	// range.
+	Measures []string `json:"measures"`
+	DrainsAs string   `json:"drains_as,omitempty"`
+	Vary     string   `json:"vary"`
+	Unit     string   `json:"unit"`  // of the values; share for shares, blank for plain numbers
+	Safer    string   `json:"safer"` // lower or higher: the values with which the works do more
+	DecideOn string   `json:"decide_on"`
+	Measure  string   `json:"measure"` // of the figures
+	Target   *Target  `json:"target,omitempty"`
 	// Answer is the last value, counted from the safe end, before the first whose figure misses the target. Shown is the
-	// same for the end of the figure's range.
+	// same for the end of the figure's range. Beyond is the value nearest to the answer that was looked at and misses.
 	Answer     *SizePoint  `json:"answer,omitempty"`
 	Shown      *SizePoint  `json:"shown,omitempty"`
-	MeetsAgain []float64   `json:"meets_again,omitempty"` // values of the curve beyond the first miss that meet the target
-	Reason     string      `json:"reason,omitempty"`      // why there is no answer, or why it is an end of the range
+	Beyond     *SizePoint  `json:"beyond,omitempty"`
+	MeetsAgain []string    `json:"meets_again,omitempty"` // values of the curve beyond the first miss that meet the target
+	Reason     string      `json:"reason,omitempty"`      // why there is no answer, or what is to be known of it
+	States     []State     `json:"states,omitempty"`      // of the option's drains with the answer
 	Curve      []SizePoint `json:"curve"`                 // in order of value
 }
 
 // SizePoint is the option with one value of the number.
 type SizePoint struct {
 	Value        float64   `json:"value"`
+	Text         string    `json:"text"` // the value as it is written in a study
 	Figure       float64   `json:"figure"`
 	CI           *Interval `json:"ci,omitempty"`
 	Meets        string    `json:"meets,omitempty"` // the target: yes, no, not_shown
 	Metres       *float64  `json:"metres,omitempty"`
 	PresentValue *float64  `json:"present_value,omitempty"`
+	Step         *SizeStep `json:"step,omitempty"` // of the curve only; left out at its unsafe end
+}
+
+// SizeStep is what a value of the curve has over the next one that is less safe.
+type SizeStep struct {
+	Less             float64  `json:"less"`                          // of the figure; below zero where it has more
+	LessPer100Metres *float64 `json:"less_per_100_metres,omitempty"` // of drain that it has more
+	// Present value that it costs more, for each unit of the figure less; left out where it costs or brings no more.
+	CostPerLess *float64 `json:"cost_per_less,omitempty"`
 }
 
 // Check is the result of check.
