@@ -696,6 +696,11 @@ func (z *sizing) answerWarnings(ws *warnings, found *result.Size) {
 		w.Option = found.Option
 		ws.add(w, "The equivalent_depth given, %s m, serves every value, though it changes with spacing and depth. Leave it out to have it computed for each.", short(t.Trench.Equivalent))
 	}
+	if first, last := found.Curve[0].PresentValue, found.Curve[len(found.Curve)-1].PresentValue; first != nil && *first == *last && *first != 0 {
+		w := note("cost_not_sized")
+		w.Option = found.Option
+		ws.add(w, "The cost of the option is the same at every value, since no part of it goes with %s. Give it anew for the answer.", z.key)
+	}
 	safe := z.fromSafe(found.Curve)[0]
 	switch {
 	case found.Answer == nil || found.Answer.Meets != "not_shown":

@@ -649,6 +649,44 @@ func TestSizeFixedDepth(t *testing.T) {
 	}
 }
 
+// TestSizeCost: a cost that does not go with the number is said to be that of the study.
+func TestSizeCost(t *testing.T) {
+	s := parsed(t, demoText(t))
+	for key, of := range map[string]struct {
+		option, between string
+		same            bool
+	}{
+		"trench_drains.spacing":               {"trenches", "10 m .. 12 m", false},
+		"surface_water.kept_out":              {"lined channels", "0 .. 30 %", true},
+		"trench_drains.depth":                 {"shallow trenches", "1 m .. 3 m", true},
+		"trench_drains.decline.flushed_every": {"shallow trenches", "2 y .. 6 y", false},
+	} {
+		found := size(t, s, of.option, key, of.between)
+		if said := slices.ContainsFunc(found.Warnings, func(w result.Warning) bool { return w.Code == "cost_not_sized" }); said != of.same {
+			t.Errorf("%s: %v", key, said)
+		}
+	}
+	found := size(t, s, "trenches", "trench_drains.spacing", "10 m .. 20 m")
+	for i, p := range found.Curve {
+		if i == len(found.Curve)-1 {
+			if p.Step != nil {
+				t.Errorf("the end of the curve has the step %+v", p.Step)
+			}
+			continue
+		}
+		// By hand, from the row and the next one.
+		next := found.Curve[i+1]
+		less, more := next.Figure-p.Figure, *p.PresentValue-*next.PresentValue
+		if step := p.Step; math.Abs(step.Less-less) > 1e-12 || math.Abs(*step.LessPer100Metres-100*less/(*p.Metres-*next.Metres)) > 1e-9 ||
+			(step.CostPerLess == nil) != (less <= 0) || less > 0 && math.Abs(*step.CostPerLess/(more/less)-1) > 1e-12 {
+			t.Errorf("%s: %+v", p.Text, step)
+		}
+		if math.Abs(*p.Metres*p.Value-12000) > 1e-6 {
+			t.Errorf("%s: %g m of drain on 12000 m2", p.Text, *p.Metres)
+		}
+	}
+}
+
 // TestSizeRefuses holds what a person reads who asks for what cannot be sized.
 func TestSizeRefuses(t *testing.T) {
 	s := everyNumber(t)

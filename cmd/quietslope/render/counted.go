@@ -18,11 +18,7 @@ func (v *view) counted() {
 	case v.deciding() < 0: // not listed above
 		v.cases()
 	}
-	events := "one event is a run of steps above a band's level"
-	if s.ApartDays > 0 {
-		events += fmt.Sprintf("; runs %s d or less apart are one event", days(s.ApartDays))
-	}
-	v.field("events", "%s. Load is the height above the level times the days spent there; peak is the greatest height above it; longest is the days above in the longest event, pauses not counted.", events)
+	v.field("events", "%s. %s; peak is the greatest height above it; longest is the days above in the longest event, pauses not counted.", eventsText(s), loadText)
 	v.field("ranges", "%s", v.rangesText())
 	if v.reference != v.baseline {
 		v.field("changes", "measured against %s, %s. The years and the start are still those of the baseline, %s.", v.reference, v.c.Settings.Against, v.baseline)
@@ -31,6 +27,17 @@ func (v *view) counted() {
 		v.field("notes", "%s.", v.notes.headline())
 	}
 }
+
+// eventsText says what one event is.
+func eventsText(s *result.Settings) string {
+	text := "one event is a run of steps above a band's level"
+	if s.ApartDays > 0 {
+		text += fmt.Sprintf("; runs %s d or less apart are one event", days(s.ApartDays))
+	}
+	return text
+}
+
+const loadText = "Load is the height above the level times the days spent there"
 
 // yearsText says which years were counted.
 func yearsText(r *result.Record, starts string) string {

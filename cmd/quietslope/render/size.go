@@ -1,8 +1,328 @@
 package render
 
-import "quietslope/scenario/result"
+import (
+	"cmp"
+	"fmt"
+	"slices"
+	"strconv"
+	"strings"
 
-// Size lays out what size found.
+	"quietslope/scenario/result"
+)
+
+// Size lays out the result of size.
 func Size(s *result.Size) *Page {
-	return &Page{}
+	// What is said of the record and the settings is said as for a comparison, here one without options.
+	ws := slices.Clone(s.Warnings)
+	for i := range ws {
+		ws[i].Option, ws[i].Band = "", "" // there is but one of either
+	}
+	c := &result.Comparison{Head: s.Head, Settings: s.Settings, Record: s.Record}
+	v := &sizeView{&view{c: c, notes: newNotes(ws), letters: map[string]string{}}, s, measureOf(s.Measure)}
+	opening(&v.Page, &s.Head)
+	v.inShort()
+	v.sized()
+	v.curve()
+	v.stopped()
+	v.heading("What was counted")
+	v.field("years", "%s", yearsText(&s.Record, s.Settings.YearStarts))
+	recordFields(&v.Page, &s.Record)
+	switch s.Measure {
+	case "load":
+		v.field("load", "%s.", loadText)
+	case "events":
+		v.field("events", "%s.", eventsText(&s.Settings))
+	}
+	v.field("ranges", "%s", v.rangesText())
+	if len(v.notes.list) > 0 {
+		v.heading("Notes")
+		v.notes.write(&v.Page, nil, nil)
+	}
+	v.settings()
+	cautions(&v.Page, s.Cautions)
+	return &v.Page
+}
+
+// sizeView lays out one sizing.
+type sizeView struct {
+	*view
+	s  *result.Size
+	by *measure
+}
+
+// figure is a figure and its range.
+func (v *sizeView) figure(x float64, ci *result.Interval) string {
+	value, limits := v.by.told(x, ci)
+	return strings.TrimSpace(value + " " + limits)
+}
+
+// point says what the option comes to with a value.
+func (v *sizeView) point(p *result.SizePoint) string {
+	text := v.by.inWords(v.figure(p.Figure, p.CI))
+	if p.Metres != nil {
+		text += fmt.Sprintf(", %s m of drain", wholeMetres(*p.Metres))
+	}
+	if p.PresentValue != nil {
+		text += ", a present value of " + v.sumText(*p.PresentValue, nil)
+	}
+	return text
+}
+
+func wholeMetres(x float64) string { return strconv.FormatFloat(x, 'f', 0, 64) }
+
+// inShort says in a few lines what the curve says.
+func (v *sizeView) inShort() {
+	s := v.s
+	v.heading("In short")
+	widest := "largest"
+	if s.Safer == "higher" {
+		widest = "smallest"
+	}
+	fromSafe := slices.Clone(s.Curve)
+	if s.Safer == "higher" {
+		slices.Reverse(fromSafe)
+	}
+	switch a := s.Answer; {
+	case s.Target == nil:
+		v.para("%s", s.Reason)
+	case a == nil:
+		safe := &fromSafe[0]
+		v.para("The target is %s. %s With %s it is still %s.", v.targetText(), s.Reason, safe.Text, v.point(safe))
+	default:
+		v.para("The target is %s. The %s %s of %s that meets it is %s: %s.", v.targetText(), widest, s.Vary, inQuotes(s.Option), a.Text, v.point(a))
+		v.margin(widest, fromSafe)
+		if s.Reason != "" {
+			v.para("%s", s.Reason)
+		}
+		v.stoppedShort()
+	}
+	if len(s.MeetsAgain) > 0 && s.Answer != nil {
+		v.para("The curve does not fall all the way: less safe values meet the target again, and are not chosen.")
+	}
+	if len(v.notes.list) > 0 {
+		v.para("%s, numbered under Notes. What is weak about these figures stands there.", v.notes.count())
+	}
+}
+
+// margin says how far the range of the answer goes, and what the next value has.
+func (v *sizeView) margin(widest string, fromSafe []result.SizePoint) {
+	a, shown := v.s.Answer, v.s.Shown
+	var text string
+	switch {
+	case a.Meets == targetMet:
+		text = "The end of its range meets the target too."
+	case shown == nil:
+		text = "The end of its range does not meet the target, and nor does that of any value looked at."
+	default:
+		text = fmt.Sprintf("The end of its range does not meet the target; the %s value whose range does is %s: %s.", widest, shown.Text, v.point(shown))
+	}
+	if v.s.Beyond == nil {
+		v.para("%s", text)
+		return
+	}
+	next := &fromSafe[slices.IndexFunc(fromSafe, func(p result.SizePoint) bool { return v.lessSafe(p.Value, a.Value) })]
+	v.para("%s The answer is worked out to 0.5 %% and lies just at the target, without a margin; the next value of the curve, %s, has %s and misses it.",
+		text, next.Text, v.by.inWords(v.figure(next.Figure, next.CI)))
+}
+
+// lessSafe reports whether the works do less with one value than with another.
+func (v *sizeView) lessSafe(value, than float64) bool {
+	if v.s.Safer == "higher" {
+		return value < than
+	}
+	return value > than
+}
+
+// stoppedShort says what the answer comes to when drains stop.
+func (v *sizeView) stoppedShort() {
+	o := &result.Option{States: v.s.States}
+	half, all := stateOf(o, "half_stopped"), stateOf(o, "all_stopped")
+	if half == nil || all == nil {
+		return
+	}
+	told := func(s *result.State) string {
+		value, _ := v.by.told(s.Value, s.CI)
+		return value
+	}
+	text := fmt.Sprintf("With every second drain stopped it is %s, with all stopped %s", told(half), v.by.inWords(told(all)))
+	switch {
+	case half.MeetsTarget == targetMissed && all.MeetsTarget == targetMissed:
+		text += "; both miss the target"
+	case all.MeetsTarget == targetMissed:
+		text += ", which misses the target"
+	}
+	v.para("%s.", text)
+}
+
+// sized says what was varied.
+func (v *sizeView) sized() {
+	s := v.s
+	v.heading("What was sized")
+	text := s.Option
+	if len(s.Measures) > 0 {
+		with := "with " + s.Curve[0].Text
+		if s.Safer == "higher" {
+			with = "with " + s.Curve[len(s.Curve)-1].Text
+		}
+		if s.Answer != nil {
+			with = "with " + s.Answer.Text
+		}
+		text += ": " + strings.Join(s.Measures, "; ") + " (" + with + ")"
+	}
+	v.field("option", "%s", text)
+	v.field("number", "%s from %s to %s; the works do more with %s values", s.Vary, s.Curve[0].Text, s.Curve[len(s.Curve)-1].Text, s.Safer)
+	if s.DrainsAs != "" {
+		v.field("drains", "%s", ownState(&result.Option{DrainsAs: s.DrainsAs}))
+	}
+	v.field("case", "weather as recorded, works %s", s.Condition)
+}
+
+// curve writes what the option comes to with each value, and what the answer does among them.
+func (v *sizeView) curve() {
+	s := v.s
+	points := slices.Clone(s.Curve)
+	for _, p := range []*result.SizePoint{s.Answer, s.Shown} {
+		if p != nil && !slices.ContainsFunc(points, func(q result.SizePoint) bool { return q.Text == p.Text }) {
+			points = append(points, *p)
+		}
+	}
+	slices.SortStableFunc(points, func(a, b result.SizePoint) int { return cmp.Compare(a.Value, b.Value) })
+
+	var costs sums
+	for _, p := range points {
+		costs.see(p.PresentValue, nil)
+	}
+	u := inUnit(float64(costs), 100)
+	currency := ""
+	if m := s.Settings.Money; m != nil {
+		currency = u.name + m.Currency
+	}
+	sum := func(x *float64, by float64) string {
+		if x == nil {
+			return ""
+		}
+		value, _ := u.sum(*x/by, nil)
+		return value
+	}
+	var values, metres, cost, figures, per, each column
+	var meets, marks []string
+	unit := ""
+	for i := range points {
+		p := &points[i]
+		number, of, _ := strings.Cut(p.Text, " ")
+		unit = of
+		values.add(number, "")
+		long, less, worth := "", "", ""
+		if p.Metres != nil {
+			long = wholeMetres(*p.Metres)
+		}
+		if p.Step != nil {
+			if x := p.Step.LessPer100Metres; x != nil {
+				less = significant(v.by.scale**x, 2)
+			}
+			worth = sum(p.Step.CostPerLess, v.by.scale)
+		}
+		metres.add(long, "")
+		cost.add(sum(p.PresentValue, 1), "")
+		figures.add(v.by.told(p.Figure, p.CI))
+		per.add(less, "")
+		each.add(worth, "")
+		meets, marks = append(meets, words(p.Meets)), append(marks, v.mark(p))
+	}
+	const perLength = "100 m"
+	one := oneLess[s.Measure]
+	figure, time := v.headOfFigure()
+	t := table{
+		first: words(s.Vary[strings.LastIndexByte(s.Vary, '.')+1:]),
+		head: [][]string{
+			{"drain", "present value", figure, "meets", perLength, one, ""},
+			{"m", currency, time, "target", "take off", "costs", ""},
+		},
+		left: []bool{true, true, true, true, true, true, true},
+		rows: sideBySide(metres, cost, figures, per, each),
+	}
+	for i, row := range t.rows {
+		t.rows[i] = append(slices.Insert(row, 3, meets[i]), marks[i])
+	}
+	if unit != "" {
+		t.first += ", " + unit
+	}
+	for _, number := range values.cells() {
+		t.labels = append(t.labels, label{name: number})
+	}
+	t = t.columns(func(c int) bool { // without those that are empty, and without costs and metres that stay the same
+		same := !slices.ContainsFunc(t.rows, func(r []string) bool { return r[c] != t.rows[0][c] })
+		return t.head[0][c] == "meets" && t.rows[0][c] != "" || t.head[0][c] == figure || !same
+	})
+	v.heading("%s above %s by %s", upperFirst(v.by.name), s.DecideOn, s.Vary)
+	v.table(t)
+
+	text := "In brackets are ranges at " + v.confidence() + "."
+	if slices.Contains(t.head[0], perLength) {
+		text += " 100 m take off: what 100 m of drain more take off the figure, in the step from the next row that is less safe to this one."
+	}
+	if slices.Contains(t.head[0], one) {
+		text += fmt.Sprintf(" %s costs: the present value of that step, in %s, for each such unit of the figure.", upperFirst(one), currency)
+	}
+	if slices.Contains(t.head[0], perLength) || slices.Contains(t.head[0], one) {
+		text += " Steps follow the figures alone, whose ranges are wider."
+	}
+	if currency != "" && slices.Contains(t.head[0], "present value") {
+		text += fmt.Sprintf(" Prices of %d.", s.Settings.Money.PricesOf)
+	}
+	v.para("%s", text)
+}
+
+// oneLess names one unit less of a figure.
+var oneLess = map[string]string{"load": "1 m·d less", "days": "1 day less", "events": "1 event less", "annual_probability": "1 % less"}
+
+// headOfFigure are the two lines of the head of a column of figures.
+func (v *sizeView) headOfFigure() (first, second string) {
+	if at := strings.LastIndex(v.by.unit, " per "); at > 0 {
+		return v.by.unit[:at], v.by.unit[at+1:]
+	}
+	return "share", "of years"
+}
+
+// mark says what a value is among those of the curve.
+func (v *sizeView) mark(p *result.SizePoint) string {
+	switch s := v.s; {
+	case s.Answer != nil && p.Text == s.Answer.Text:
+		return "answer"
+	case s.Shown != nil && p.Text == s.Shown.Text:
+		return "its range too"
+	}
+	return ""
+}
+
+// stopped writes what becomes of the figure when the drains age or stop.
+func (v *sizeView) stopped() {
+	s := v.s
+	if len(s.States) == 0 || s.Answer == nil {
+		return
+	}
+	v.heading("With %s, if drains age or stop", s.Answer.Text)
+	figure, time := v.headOfFigure()
+	t := table{first: "drains", head: [][]string{{"share", figure, "meets"}, {"left", time, "target"}}, left: []bool{false, true, true}}
+	var figures column
+	var shares, meets []string
+	o := &result.Option{States: s.States}
+	for _, known := range drainStates {
+		state := stateOf(o, known.key)
+		if state == nil {
+			continue
+		}
+		name := known.own
+		if known.key == s.DrainsAs {
+			name += " (all figures above)"
+		}
+		t.labels = append(t.labels, label{name: name})
+		figures.add(v.by.told(state.Value, state.CI))
+		shares, meets = append(shares, percent(state.EffectShare)), append(meets, words(state.MeetsTarget))
+	}
+	for i, cell := range figures.cells() {
+		t.rows = append(t.rows, []string{shares[i], cell, meets[i]})
+	}
+	v.table(t.dropEmpty())
+	v.para("Share left: of what the drains do as new.%s", v.statesMeant([]*result.Option{o}))
 }
