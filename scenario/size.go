@@ -189,6 +189,9 @@ func (s *Study) optionToVary(name, key string) (int, error) {
 		case o.varied == key:
 			return i, nil
 		default:
+			if _, err := s.numberOf(i, key); err != nil {
+				return 0, err
+			}
 			return 0, &fault.Error{Key: "--option", Text: fmt.Sprintf("%q is a list over %s; to size another number name one of its options, such as %q", name, o.varied, o.Name)}
 		}
 	}

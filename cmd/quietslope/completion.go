@@ -176,13 +176,13 @@ func propose(app *cli.App, words []string) proposal {
 
 	switch before, _, joined := strings.Cut(current, "="); {
 	case open != nil:
-		return values(open, arguments, given)
+		return values(command, open, arguments, given)
 	case !argumentsOnly && joined && strings.HasPrefix(before, "--"):
 		flag := flagOf(command, strings.TrimPrefix(before, "--"))
 		if flag == nil {
 			return proposal{}
 		}
-		p := values(flag, arguments, given)
+		p := values(command, flag, arguments, given)
 		p.before = before + "="
 		return p
 	case !argumentsOnly && (strings.HasPrefix(current, "-") || len(arguments) > 0 || command.ArgsUsage == ""):
@@ -227,8 +227,8 @@ func optionWords(command *cli.Command, given map[string][]string) []word {
 	return append(words, word{"--help", "what the command does, what it needs, examples"})
 }
 
-// values proposes values of an option, as the first word of its usage says what they are.
-func values(flag cli.Flag, arguments []string, given map[string][]string) proposal {
+// values proposes values of an option of a command, as the first word of its usage says what they are.
+func values(command *cli.Command, flag cli.Flag, arguments []string, given map[string][]string) proposal {
 	p := proposal{kind: wordsKind}
 	switch value, _ := usageOf(flag); {
 	case value == "FILE":
@@ -237,15 +237,15 @@ func values(flag cli.Flag, arguments []string, given map[string][]string) propos
 		for _, f := range formats {
 			p.words = append(p.words, word{f.name, f.says})
 		}
-	case value == "NAME" && len(arguments) == 1:
-		p.words = namesFor(flag.Names()[0], arguments[0], given)
+	case (value == "NAME" || value == "KEY") && len(arguments) == 1:
+		p.words = namesFor(command.Name, flag.Names()[0], arguments[0], given)
 	}
 	return p
 }
 
-// namesFor lists the names of a study that an option takes, but for those given already. A study that is not a plain
-// file is not opened, since a pipe is read only once.
-func namesFor(option, path string, given map[string][]string) []word {
+// namesFor lists the names and keys of a study that an option of a command takes, but for those given already. A study that
+// is not a plain file is not opened, since a pipe is read only once.
+func namesFor(command, option, path string, given map[string][]string) []word {
 	if rest, ok := strings.CutPrefix(path, "~/"); ok {
 		home, err := os.UserHomeDir()
 		if err != nil {
@@ -263,7 +263,13 @@ func namesFor(option, path string, given map[string][]string) []word {
 	}
 	var names []string
 	switch option {
+	case flagVary:
+		names = s.SizeKeys(strings.Join(given[flagOption], ""))
 	case flagOption, flagAgainst:
+		if command == sizeName {
+			names = s.SizeOptions()
+			break
+		}
 		for i := range s.Options {
 			names = append(names, s.Options[i].Name)
 		}

@@ -94,6 +94,9 @@ func TestPropose(t *testing.T) {
 		{"drains|s.yaml|--depth|1m|--d", "words", "", "--option --spacing --thickness --conductivity --conductivity-below --porosity --radius --width --wet --equivalent-depth --working-head --efficiency --recharge --consolidation --fall --format --out --help"},
 		{"levels|s.yaml|--condition|", "words", "", "as built it's worn $5 (half)"},
 		{"levels|s.yaml|--climate=", "words", "--climate=", "as recorded"},
+		{"size|s.yaml|--vary|", "words", "", ""}, // no option has a number
+		{"size|s.yaml|--between|", "words", "", ""},
+		{"size|s.yaml|--condition=", "words", "--condition=", "as built it's worn $5 (half)"},
 		{"levels|--option|", "words", "", ""}, // no study yet
 		{"levels|none.yaml|--option|", "words", "", ""},
 		{"levels|.|--option|", "words", "", ""},
@@ -127,6 +130,26 @@ func TestPropose(t *testing.T) {
 	}
 	if d := cmp.Diff(hardNames, names("compare", "s.yaml", "--against", "")); d != "" {
 		t.Error(d)
+	}
+	listed := strings.Replace(smallStudy, "rate: 0.02 /d,", "spacing: [8 m, 12 m], conductivity: 0.02 m/d,", 1) + "  - name: channels\n    surface_water: {kept_out: 10 %}\n"
+	if err := os.WriteFile("l.yaml", []byte(listed), 0o666); err != nil {
+		t.Fatal(err)
+	}
+	for _, tt := range []struct{ line, want string }{
+		{"size|l.yaml|--option|", "as it stands|trenches|trenches, spacing 8 m|trenches, spacing 12 m|channels"},
+		{"levels|l.yaml|--option|", "as it stands|trenches, spacing 8 m|trenches, spacing 12 m|channels"},
+		{"size|l.yaml|--option|channels|--vary|", "surface_water.kept_out"},
+		{"size|l.yaml|--option=trenches|--vary=", "trench_drains.depth|trench_drains.spacing|trench_drains.conductivity|trench_drains.conductivity_below|" +
+			"trench_drains.drain_radius|trench_drains.equivalent_depth|trench_drains.working_head|trench_drains.efficiency|trench_drains.ceiling"},
+		{"size|l.yaml|--option|as it stands|--vary|", ""},
+		{"size|l.yaml|--between|", ""},
+	} {
+		if got := strings.Join(names(strings.Split(tt.line, "|")...), "|"); got != tt.want {
+			t.Errorf("%s: %s, want %s", tt.line, got, tt.want)
+		}
+	}
+	if got := names("size", "l.yaml", "--vary", ""); len(got) != 10 {
+		t.Errorf("numbers of all options: %q", got)
 	}
 	if d := cmp.Diff(hardNames[2:], names("levels", "--option", hardNames[1], "s.yaml", "--option="+hardNames[0], "--option", "")); d != "" {
 		t.Error(d)

@@ -21,6 +21,9 @@ import (
 
 const demoStudy = "../../testdata/demo/study.yaml"
 
+// sizing is the sizing of the demo, without a format.
+var sizing = []string{"size", demoStudy, "--option", "trenches", "--vary", "trench_drains.spacing", "--between", "4 m .. 40 m"}
+
 // TestDemo holds all that the commands say of the demo.
 func TestDemo(t *testing.T) {
 	for _, tt := range []struct {
@@ -32,6 +35,9 @@ func TestDemo(t *testing.T) {
 		{"demo-compare-markdown.golden", []string{"compare", demoStudy, "--format", "markdown"}},
 		{"demo-compare-json.golden", []string{"compare", demoStudy, "--format", "json"}},
 		{"demo-check-json.golden", []string{"check", demoStudy, "--format", "json"}},
+		{"demo-size.golden", sizing},
+		{"demo-size-markdown.golden", append(slices.Clip(sizing), "--format", "markdown")},
+		{"demo-size-json.golden", append(slices.Clip(sizing), "--format", "json")},
 	} {
 		t.Run(tt.golden, func(t *testing.T) {
 			code, stdout, stderr := program(t.Context(), tt.args...)
@@ -74,8 +80,12 @@ func sixDigits(text string) string {
 // TestDemoJSON: the JSON has no key that the result package does not know, no null, and every list and interval that
 // must be there.
 func TestDemoJSON(t *testing.T) {
-	for command, into := range map[string]any{"compare": &result.Comparison{}, "check": &result.Check{}} {
-		_, stdout, _ := program(t.Context(), command, demoStudy, "--format", "json")
+	for command, into := range map[string]any{"compare": &result.Comparison{}, "check": &result.Check{}, "size": &result.Size{}} {
+		args := []string{command, demoStudy}
+		if command == "size" {
+			args = sizing
+		}
+		_, stdout, _ := program(t.Context(), append(slices.Clip(args), "--format", "json")...)
 		d := json.NewDecoder(strings.NewReader(stdout))
 		d.DisallowUnknownFields()
 		if err := d.Decode(into); err != nil {
@@ -102,9 +112,10 @@ func TestDemoJSON(t *testing.T) {
 
 // TestDemoCSV: the CSV has the numbers of the JSON, each by its text.
 func TestDemoCSV(t *testing.T) {
-	for _, command := range []string{"compare", "check"} {
-		_, asJSON, _ := program(t.Context(), command, demoStudy, "--format", "json")
-		code, stdout, stderr := program(t.Context(), command, demoStudy, "--format", "csv")
+	for _, args := range [][]string{{"compare", demoStudy}, {"check", demoStudy}, sizing} {
+		command := args[0]
+		_, asJSON, _ := program(t.Context(), append(slices.Clip(args), "--format", "json")...)
+		code, stdout, stderr := program(t.Context(), append(slices.Clip(args), "--format", "csv")...)
 		if code != 0 || stderr != "" {
 			t.Fatalf("status %d\n%s", code, stderr)
 		}

@@ -140,6 +140,7 @@ func TestHelp(t *testing.T) {
 		{"help-new.golden", [][]string{{"help", "new"}, {"new", "d", "--force", "--help"}}},
 		{"help-completion.golden", [][]string{{"help", "completion"}, {"completion", "-h", "bash"}}},
 		{"help-drains.golden", [][]string{{"help", "drains"}, {"drains", "-h"}, {"drains", "--spacing", "8m", "--help"}}},
+		{"help-size.golden", [][]string{{"help", "size"}, {"size", "-h"}, {"size", "study.yaml", "--vary", "x", "--help"}}},
 		{"help-levels.golden", [][]string{{"help", "levels"}, {"levels", "--help", "--", "x"}}},
 	} {
 		for _, args := range tt.ways {

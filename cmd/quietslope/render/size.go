@@ -236,7 +236,7 @@ func (v *sizeView) curve() {
 		first: words(s.Vary[strings.LastIndexByte(s.Vary, '.')+1:]),
 		head: [][]string{
 			{"drain", "present value", figure, "meets", perLength, one, ""},
-			{"m", currency, time, "target", "take off", "costs", ""},
+			{"m", currency, time, "target", "take off", "costs", "remark"},
 		},
 		left: []bool{true, true, true, true, true, true, true},
 		rows: sideBySide(metres, cost, figures, per, each),
