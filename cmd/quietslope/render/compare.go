@@ -1,6 +1,6 @@
 // Package render turns results into what people and programs read: text for a terminal, markdown for a report, JSON, CSV.
 //
-// Comparison and Check lay out what people read as a Page, once, and give no figure more digits than its range supports.
+// Comparison, Size and Check lay out what people read as a Page, once, and give no figure more digits than its range supports.
 // JSON and CSV take any result, and round nothing. The package reads no files and knows no flags.
 package render
 

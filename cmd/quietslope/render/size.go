@@ -87,7 +87,7 @@ func (v *sizeView) inShort() {
 		v.para("%s", s.Reason)
 	case a == nil:
 		safe := &fromSafe[0]
-		v.para("The target is %s. %s With %s it is still %s.", v.targetText(), s.Reason, safe.Text, v.point(safe))
+		v.para("The target is %s. %s With %s it is %s.", v.targetText(), s.Reason, safe.Text, v.point(safe))
 	default:
 		v.para("The target is %s. The %s %s of %s that meets it is %s: %s.", v.targetText(), widest, s.Vary, inQuotes(s.Option), a.Text, v.point(a))
 		v.margin(widest, fromSafe)
@@ -218,7 +218,7 @@ func (v *sizeView) curve() {
 		}
 		if p.Step != nil {
 			if x := p.Step.LessPer100Metres; x != nil {
-				less = significant(v.by.scale**x, 2)
+				less, _ = ranged(v.by.scale**x, nil, leastSum)
 			}
 			worth = sum(p.Step.CostPerLess, v.by.scale)
 		}
@@ -235,14 +235,17 @@ func (v *sizeView) curve() {
 	t := table{
 		first: words(s.Vary[strings.LastIndexByte(s.Vary, '.')+1:]),
 		head: [][]string{
-			{"drain", "present value", figure, "meets", perLength, one, ""},
-			{"m", currency, time, "target", "take off", "costs", "remark"},
+			{"drain", "present", figure, "meets", perLength, one, ""},
+			{"m", "value", time, "target", "take off", "costs", "remark"},
 		},
 		left: []bool{true, true, true, true, true, true, true},
 		rows: sideBySide(metres, cost, figures, per, each),
 	}
 	for i, row := range t.rows {
 		t.rows[i] = append(slices.Insert(row, 3, meets[i]), marks[i])
+	}
+	if len(t.first) > widestNumber { // which the heading names in full
+		t.first = "value"
 	}
 	if unit != "" {
 		t.first += ", " + unit
@@ -254,6 +257,11 @@ func (v *sizeView) curve() {
 		same := !slices.ContainsFunc(t.rows, func(r []string) bool { return r[c] != t.rows[0][c] })
 		return t.head[0][c] == "meets" && t.rows[0][c] != "" || t.head[0][c] == figure || !same
 	})
+	for _, name := range []string{one, perLength} { // numbers give way to nothing
+		if t.width() > pageWidth {
+			t = t.columns(func(c int) bool { return t.head[0][c] != name })
+		}
+	}
 	v.heading("%s above %s by %s", upperFirst(v.by.name), s.DecideOn, s.Vary)
 	v.table(t)
 
@@ -262,16 +270,19 @@ func (v *sizeView) curve() {
 		text += " 100 m take off: what 100 m of drain more take off the figure, in the step from the next row that is less safe to this one."
 	}
 	if slices.Contains(t.head[0], one) {
-		text += fmt.Sprintf(" %s costs: the present value of that step, in %s, for each such unit of the figure.", upperFirst(one), currency)
+		text += fmt.Sprintf(" %s costs: the present value of that step for each such unit of the figure.", upperFirst(one))
 	}
 	if slices.Contains(t.head[0], perLength) || slices.Contains(t.head[0], one) {
 		text += " Steps follow the figures alone, whose ranges are wider."
 	}
-	if currency != "" && slices.Contains(t.head[0], "present value") {
-		text += fmt.Sprintf(" Prices of %d.", s.Settings.Money.PricesOf)
+	if currency != "" && slices.Contains(t.head[0], "present") {
+		text += fmt.Sprintf(" Sums are in %s at prices of %d.", currency, s.Settings.Money.PricesOf)
 	}
 	v.para("%s", text)
 }
+
+// widestNumber is the width of what a number is called, beyond which the head of its column is "value".
+const widestNumber = 12
 
 // oneLess names one unit less of a figure.
 var oneLess = map[string]string{"load": "1 m·d less", "days": "1 day less", "events": "1 event less", "annual_probability": "1 % less"}
