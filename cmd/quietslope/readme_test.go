@@ -38,7 +38,7 @@ func TestReadmeOutput(t *testing.T) {
 		t.Fatal(stderr)
 	}
 	for _, line := range codeBlocks(readme(t), "sh") {
-		code, more, stderr := program(t.Context(), readBash(strings.TrimSuffix(line, "\n"), "").words...)
+		code, more, stderr := program(t.Context(), readBash(strings.Replace(strings.TrimSuffix(line, "\n"), "testdata/demo/study.yaml", demoStudy, 1), "").words...)
 		if code != 0 {
 			t.Errorf("%s%s", line, stderr)
 		}
