@@ -189,15 +189,10 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 	c := &result.Comparison{
 		Head:     p.head("compare"),
 		Declared: map[string]string(s.Declared),
-		Defaults: []result.KeyValue{},
+		Defaults: s.defaults(),
 		Settings: p.settings(),
 		Bands:    p.bands(),
 		Record:   p.recordFound(),
-	}
-	for _, e := range s.Understood {
-		if e.Default {
-			c.Defaults = append(c.Defaults, result.KeyValue{Key: e.Key, Value: e.Value})
-		}
 	}
 	if against != p.baseline {
 		c.Settings.Against = s.Options[against].Name
@@ -238,6 +233,17 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 	c.Conversion = conversion
 	c.Warnings = append(ws, p.ofCases(raised)...)
 	return c, nil
+}
+
+// defaults are the keys that the study did not give and that stand at their default.
+func (s *Study) defaults() []result.KeyValue {
+	defaults := []result.KeyValue{}
+	for _, e := range s.Understood {
+		if e.Default {
+			defaults = append(defaults, result.KeyValue{Key: e.Key, Value: e.Value})
+		}
+	}
+	return defaults
 }
 
 func optionNames(s *Study) []string {

@@ -93,6 +93,7 @@ func Size(ctx context.Context, s *Study, q SizeQuery) (*result.Size, error) {
 	}
 	p := z.prepared
 	found := &result.Size{
+		Declared: map[string]string(s.Declared), Defaults: s.defaults(),
 		Head: p.head("size"), Settings: p.settings(), Record: p.recordFound(),
 		Option: z.called(), Condition: z.condition.Name, Vary: z.key, Unit: z.baseUnit(), Safer: "lower",
 		DecideOn: s.Bands[s.Count.DecideOn].Name, Measure: z.measure.name, Curve: curve,

@@ -336,10 +336,12 @@ type Decision struct {
 // Unit; of a share they are 0 to 1.
 type Size struct {
 	Head
-	Settings  Settings `json:"settings"`
-	Record    Record   `json:"record"`
-	Option    string   `json:"option"`
-	Condition string   `json:"condition"`
+	Declared  map[string]string `json:"declared"`
+	Defaults  []KeyValue        `json:"defaults"`
+	Settings  Settings          `json:"settings"`
+	Record    Record            `json:"record"`
+	Option    string            `json:"option"`
+	Condition string            `json:"condition"`
 	// What the option does and the state of its drains, as in Option, with the answer; without one with the safe end of the
 	// range.
 	Measures []string `json:"measures"`
