@@ -234,6 +234,7 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 				}
 				return &result.Interval{lo, hi}
 			}
+			asNew := compare(t, changed(s, func(string, *Measure) {}))
 			fractions := 0
 			for j := range c.Cases {
 				for i := range c.Cases[j].Options {
@@ -257,7 +258,7 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 						drain := func(k int) *result.Drain { return &of(k).Drains[d] }
 						w.RunningShare = mean(func(k int) float64 { return drain(k).RunningShare })
 						w.MeanMMPerDay = mean(func(k int) float64 { return drain(k).MeanMMPerDay })
-						w.PeakMMPerDay = max(drain(0).PeakMMPerDay, drain(1).PeakMMPerDay, drain(2).PeakMMPerDay, drain(3).PeakMMPerDay)
+						w.PeakMMPerDay = max(asNew.Cases[j].Options[i].Drains[d].PeakMMPerDay, drain(0).PeakMMPerDay, drain(1).PeakMMPerDay, drain(2).PeakMMPerDay, drain(3).PeakMMPerDay)
 						head := mean(func(k int) float64 {
 							if h := drain(k).MeanHeadM; h != nil {
 								return drain(k).RunningShare * *h

@@ -23,6 +23,18 @@ func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted)
 		parts, weights = append(parts, f), append(weights, w.weight)
 	}
 	f := p.mean(asNew, parts, weights)
+	if len(row) > 1 { // outlets are sized by what drains carry as new
+		fresh, err := p.replayed(ctx, asNew)
+		if err != nil {
+			return optionFigures{}, err
+		}
+		for i := range f.Drains {
+			d := &fresh.Drains[i]
+			if d.PeakMMPerDay > f.Drains[i].PeakMMPerDay {
+				f.Drains[i].PeakMMPerDay, f.Drains[i].PeakLPerS = d.PeakMMPerDay, d.PeakLPerS
+			}
+		}
+	}
 	if o := asNew.option; o.drained() {
 		f.DrainsAs, _ = p.study.ownStates(o)
 	}
@@ -31,7 +43,7 @@ func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted)
 
 // mean is the weighted mean of the figures of several replays of an option, which is not what a replay with mean drains
 // would give. The rates and drains are those of the drains as new in this condition. All else is a mean, the highest level
-// too, but for the peak flow of a drain, which is the largest, since outlets are sized by it. Warnings see the furthest of
+// too, but for the peak flow of a drain, which is the largest. Warnings see the furthest of
 // the replays. Single events belong to one replay each, so there is no list of them.
 func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) optionFigures {
 	if len(parts) == 1 {

@@ -67,10 +67,10 @@ func (p *prepared) drainWarnings(ws *warnings, w *works, replayed []result.Drain
 			ws.add(at, "The %s lie at %.2f m, at or above the baseline's %s level on %.0f %% of the steps. They act on the highest levels only; make sure that this is meant.",
 				measureWords(d.measure), d.invert, d.layer, math.Floor(100*share))
 		}
-		if !plausibleRate(d.rate) {
+		if !plausibleRate(d.worked) {
 			at.Code = "implausible_drain_rate"
 			ws.add(at, "The %s drain at %s /d; usual are %s to %s /d. Check conductivity, spacing and their units.",
-				measureWords(d.measure), short(d.rate), short(leastRate), short(mostRate))
+				measureWords(d.measure), short(d.worked), short(leastRate), short(mostRate))
 		}
 	}
 }

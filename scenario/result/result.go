@@ -220,7 +220,7 @@ type Drain struct {
 	RunningShare    float64  `json:"running_share"`         // of the counted steps that end with water above the invert
 	MeanHeadM       *float64 `json:"mean_head_m,omitempty"` // mean height of the level above the invert on those steps; left out where there are none
 	MeanMMPerDay    float64  `json:"mean_mm_per_day"`
-	PeakMMPerDay    float64  `json:"peak_mm_per_day"` // largest flow at the end of a counted step
+	PeakMMPerDay    float64  `json:"peak_mm_per_day"` // largest flow at the end of a counted step, as new or at any age
 	PeakLPerS       *float64 `json:"peak_l_per_s,omitempty"`
 	// Time a year at whose ends the drain carries all that it can; left out without a ceiling.
 	CeilingDaysPerYear *float64 `json:"ceiling_days_per_year,omitempty"`

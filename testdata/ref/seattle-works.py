@@ -823,10 +823,11 @@ APART = 1e-7  # m; no level of any replay may be closer to a band, or a count co
 
 def in_use(study, option, layer):
     """Of the steps counted, the share that ends with water above the drain's level, a mean over its ages, and the largest flow at
-    the end of one at any of them, mm/d."""
+    the end of one at any of them or as new, mm/d."""
     g, (listed, own) = study.ground, states(option, study.horizon)
     share = peak = 0.0
-    for left in dict(listed)[own]:
+    fresh = listed[0][1][0]
+    for left in dict(listed)[own] + [fresh[:4] + (0.0,)]:
         levels = replay(study, option, left, study.conditions[0])[0][study.calendar.counted, layer]
         out = [option.trench, option.bored][layer].outlet(g, left[layer], left[3])
         s = levels * 1000 * g[("n1", "n2")[layer]]
@@ -1045,7 +1046,7 @@ def main():
     scan(bare, {o.name: o for o in bare.options}["quadratic on the contact"], spacings, "load", 15.0, sizes)
     for name, about in (
             ("drains", ["Drains as new of testdata/seattle/works.yaml and works-bare.yaml: q = rate*u + square*u^2, mm/d, u mm above the invert.", IMPLICIT,
-                        "running_share: of the counted steps that end with water above the drain, a mean over its ages; peak: the largest flow at such an end.",
+                        "running_share: of the counted steps that end with water above the drain, a mean over its ages; peak: the largest flow at such an end, at any age or as new.",
                         "Units: m, 1/d, 1/(mm d), mm/d."]),
             ("states", ["Figures of the deciding band of testdata/seattle/works.yaml and works-bare.yaml with the drains in each state, works as built, per year:",
                         IMPLICIT,
