@@ -52,6 +52,12 @@ func (r *rangeReader) parse(text string) (Range, error) {
 		if _, err := r.between(text, first, last); err == nil {
 			return Range{}, fmt.Errorf("%s is not a range; write %s .. %s", quote(text), first, last)
 		}
+		if r.unit == "" {
+			continue
+		}
+		if _, err := r.between(text, first, last+" "+r.unit); err == nil {
+			return Range{}, fmt.Errorf("%s is not a range; write %s .. %s %s", quote(text), first, last, r.unit)
+		}
 	}
 	return Range{}, fmt.Errorf("%s is not a range; write %s", quote(text), r.wanted)
 }

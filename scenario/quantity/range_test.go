@@ -52,6 +52,8 @@ func TestParseRangeErrors(t *testing.T) {
 		{"4 m ..", Length, `"4 m .." is not a range; write two values of a length, such as 1 .. 4 m`},
 		{"4 .. 8 .. 12 m", Length, `"4 .. 8 .. 12 m" is not a range; write two values of a length, such as 1 .. 4 m`},
 		{"4 m to 40 m", Length, `"4 m to 40 m" is not a range; write 4 m .. 40 m`},
+		{"4-40", Length, `"4-40" is not a range; write 4 .. 40 m`},
+		{"4 to 40", Share, `"4 to 40" is not a range; write 4 .. 40 %`},
 		{"4-40 m", Length, `"4-40 m" is not a range; write 4 .. 40 m`},
 		{"4 m – 40 m", Length, `"4 m – 40 m" is not a range; write 4 m .. 40 m`},
 		{"4 m...40 m", Length, `"4 m...40 m" is not a range; write 4 m .. 40 m`},
