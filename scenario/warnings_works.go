@@ -262,7 +262,7 @@ func (p *prepared) moneyWarnings(ws *warnings) {
 			ws.add(at(warn("upkeep_left_out")), "The drains cost nothing after they are built. Inspection, flushing and readings cost something every year; give per_year or per_flush.")
 		}
 		if kept && float64(s.Money.Horizon) > longHorizon {
-			ws.add(at(warn("never_renewed")), "The drains are not renewed in the %d years that money counts. Few drains have been watched for more than %.0f years; give a cost.life, and see what renewing them changes.", s.Money.Horizon, longHorizon)
+			ws.add(at(warn("never_renewed")), "The drains are not renewed in the %d years that money counts. Few drains have been watched for more than %.0f years; give a cost.life of fewer years, and see what renewing them changes.", s.Money.Horizon, longHorizon)
 		}
 	}
 	if s.lossBands() == nil {

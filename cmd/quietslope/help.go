@@ -232,7 +232,7 @@ func writeUnits(b *strings.Builder, docs []scenario.KeyDoc) {
 	for _, k := range docs {
 		if len(k.Units) > 0 && !seen[k.Form] {
 			seen[k.Form] = true
-			fmt.Fprintf(b, "  %-16s%s\n", k.Form, strings.Join(k.Units, "  "))
+			fmt.Fprintf(b, "  %-14s  %s\n", k.Form, strings.Join(k.Units, "  "))
 		}
 	}
 }
