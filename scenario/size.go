@@ -656,7 +656,7 @@ func (z *sizing) describe(ctx context.Context, found *result.Size) error {
 	f := &options[0]
 	found.Measures, found.DrainsAs = f.Measures, f.DrainsAs
 	if found.Answer != nil {
-		found.States = f.States
+		found.States, found.TimeToEffect = f.States, f.trace.works.timeToEffect()
 	}
 
 	whole := z.prepared

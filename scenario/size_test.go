@@ -205,6 +205,9 @@ func TestSizeStates(t *testing.T) {
 	if d := cmp.Diff(want.States, found.States); d != "" {
 		t.Error(d)
 	}
+	if d := cmp.Diff(want.TimeToEffect, found.TimeToEffect); d != "" || found.TimeToEffect == nil {
+		t.Errorf("time to effect: %s", d)
+	}
 	if found.DrainsAs != stateMean || len(found.States) != 6 || found.States[1].Value != found.Answer.Figure {
 		t.Errorf("drains %s, states %+v", found.DrainsAs, found.States)
 	}

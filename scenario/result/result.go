@@ -354,13 +354,15 @@ type Size struct {
 	Target   *Target  `json:"target,omitempty"`
 	// Answer is the last value, counted from the safe end, before the first whose figure misses the target. Shown is the
 	// same for the end of the figure's range. Beyond is the value nearest to the answer that was looked at and misses.
-	Answer     *SizePoint  `json:"answer,omitempty"`
-	Shown      *SizePoint  `json:"shown,omitempty"`
-	Beyond     *SizePoint  `json:"beyond,omitempty"`
-	MeetsAgain []string    `json:"meets_again,omitempty"` // values of the curve beyond the first miss that meet the target
-	Reason     string      `json:"reason,omitempty"`      // why there is no answer, or what is to be known of it
-	States     []State     `json:"states,omitempty"`      // of the option's drains with the answer
-	Curve      []SizePoint `json:"curve"`                 // in order of value
+	Answer     *SizePoint `json:"answer,omitempty"`
+	Shown      *SizePoint `json:"shown,omitempty"`
+	Beyond     *SizePoint `json:"beyond,omitempty"`
+	MeetsAgain []string   `json:"meets_again,omitempty"` // values of the curve beyond the first miss that meet the target
+	Reason     string     `json:"reason,omitempty"`      // why there is no answer, or what is to be known of it
+	States     []State    `json:"states,omitempty"`      // of the option's drains with the answer
+	// TimeToEffect is that of the option with the answer, as in Option.
+	TimeToEffect *TimeToEffect `json:"time_to_effect,omitempty"`
+	Curve        []SizePoint   `json:"curve"` // in order of value
 }
 
 // SizePoint is the option with one value of the number.

@@ -34,10 +34,11 @@ func inUnit(largest, least float64) unit {
 // leastSum is the power of ten of a unit below which sums are not told.
 const leastSum = -3
 
-// sum prints a sum in a unit, with three significant digits, and its range in brackets.
+// sum prints a sum in a unit, with three significant digits, and its range in brackets where it has one: what is not avoided
+// within the years that money counts does not vary with the record.
 func (u unit) sum(x float64, ci *result.Interval) (value, limits string) {
 	x /= u.size
-	if ci == nil {
+	if ci == nil || math.Abs(ci[1]-ci[0]) <= 1e-9*u.size*math.Abs(x) {
 		return rounded(x, max(exponent(x)-(most-1), leastSum), leastSum), ""
 	}
 	return ranged(x, scaled(ci, 1/u.size), leastSum)
@@ -201,8 +202,11 @@ func (v *view) worth(c *result.Case, options []*result.Option) {
 			text += fmt.Sprintf(" Not told apart: by %s this record does not tell the two apart, so there is no ratio.", by.name)
 		}
 	}
+	if slices.ContainsFunc(options, func(o *result.Option) bool { return strings.Contains(v.remark(o), tooLate) }) {
+		text += fmt.Sprintf(" Acts too late: not within %s, so that none of the losses avoided count.", plural(m.HorizonYears, "year"))
+	}
 	if slices.ContainsFunc(options, func(o *result.Option) bool { return o.Decision != nil && o.Decision.DominatedBy != "" }) {
-		text += " Dominated: the other costs no more and does no worse, and is better in one of the two."
+		text += fmt.Sprintf(" Dominated: the other costs no more and does no worse by %s, and is better in one of the two; how soon they act is not weighed.", by.name)
 	}
 	if text != "" {
 		v.para("%s", strings.TrimSpace(text))
@@ -292,6 +296,9 @@ func doesNothing(o *result.Option) bool {
 	return len(o.Measures) == 0 && (o.Cost == nil || o.Cost.PresentValue == 0)
 }
 
+// tooLate is remarked of an option whose effect comes after the years that money counts.
+const tooLate = "acts too late"
+
 // remark says what an option is among the others.
 func (v *view) remark(o *result.Option) string {
 	var parts []string
@@ -303,6 +310,9 @@ func (v *view) remark(o *result.Option) string {
 	}
 	if o.Minimum {
 		parts = append(parts, "the minimum")
+	}
+	if t := o.TimeToEffect; t != nil && o.Cost.AnnualLoss != nil && t.Days >= 365.25*float64(v.c.Settings.Money.HorizonYears) {
+		parts = append(parts, tooLate)
 	}
 	if o.Decision != nil && o.Decision.DominatedBy != "" {
 		parts = append(parts, "dominated by "+v.letters[o.Decision.DominatedBy])
@@ -430,7 +440,11 @@ func (v *view) moneyShort(c *result.Case) {
 		}
 		text = fmt.Sprintf("%s costs %s a year in losses.", who, v.sumText(*loss, base.Cost.AnnualLossCI))
 		if !doesNothing(base) {
-			text = fmt.Sprintf("%s losses cost %s a year.", who, v.sumText(*loss, base.Cost.AnnualLossCI))
+			text = fmt.Sprintf("%s losses cost %s a year", who, v.sumText(*loss, base.Cost.AnnualLossCI))
+			if own := base.Cost.AnnualEquivalent; own > 0 {
+				text += fmt.Sprintf(", beside its own cost of %s a year", v.sumText(own, nil))
+			}
+			text += "."
 		}
 	}
 	if best := v.bestNet(c); best != "" {

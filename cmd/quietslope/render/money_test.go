@@ -251,9 +251,12 @@ func TestTargetText(t *testing.T) {
 		{result.Target{Measure: "days", Value: 2}, `at most 2 days a year above "movement onset"`},
 		{result.Target{Measure: "load", Value: 0.5}, `at most 0.5 m·d a year above "movement onset"`},
 		{result.Target{Measure: "events", Value: 0.1}, `at most 0.1 events a year above "movement onset"`},
-		{result.Target{Measure: "annual_probability", Value: 0.05}, `above "movement onset" in at most 5 % of the years counted, one in 20`},
-		{result.Target{Measure: "annual_probability", Value: 0.9}, `above "movement onset" in at most 90 % of the years counted`},
-		{result.Target{Measure: "annual_probability", Value: 0}, `above "movement onset" in at most 0 % of the years counted`},
+		{result.Target{Measure: "annual_probability", Value: 0.05}, `at most 5 % of the years counted, one in 20, above "movement onset"`},
+		{result.Target{Measure: "annual_probability", Value: 0.9}, `at most 90 % of the years counted above "movement onset"`},
+		{result.Target{Measure: "annual_probability", Value: 0}, `at most 0 % of the years counted above "movement onset"`},
+		{result.Target{Measure: "days", Value: 1}, `at most 1 day a year above "movement onset"`},
+		{result.Target{Measure: "events", Value: 1}, `at most 1 event a year above "movement onset"`},
+		{result.Target{Measure: "load", Value: 1}, `at most 1 m·d a year above "movement onset"`},
 	} {
 		v := &view{c: &result.Comparison{Settings: result.Settings{DecideOn: "movement onset", Target: &tt.of}}}
 		if got := v.targetText(); got != tt.want {
@@ -336,5 +339,30 @@ func TestStatesCSV(t *testing.T) {
 	}
 	if strings.Contains(b.String(), "states.1") || strings.Contains(b.String(), "_ci,") {
 		t.Error("a state by its number, or a range apart from its figure")
+	}
+}
+
+// TestSlowToAct: an option that meets the target and is noted to act late has its time beside the answer, and one that acts
+// after the years that money counts is marked; its net benefit is its cost, whatever the record.
+func TestSlowToAct(t *testing.T) {
+	c := priced()
+	if text := onOneLine(t, c); strings.Contains(text, "Until nine tenths of the effect are there") || strings.Contains(text, "cts too late") {
+		t.Error("options that act soon are said to be slow")
+	}
+	o := &c.Cases[0].Options[1]
+	o.TimeToEffect.Days = 76 * 365.25
+	o.Cost.NetBenefit, o.Cost.NetBenefitCI = new(-195000.0), &result.Interval{-195000, -195000}
+	c.Warnings = append(c.Warnings, result.Warning{Code: slowToAct, Severity: result.Warn, Option: o.Name, Text: "It takes long."})
+	text := onOneLine(t, c)
+	for _, want := range []string{
+		"Until nine tenths of the effect are there, it takes 76 years with B; the figures are those after it.",
+		"Acts too late: not within 50 years, so that none of the losses avoided count.", "yes acts too late",
+	} {
+		if !strings.Contains(text, want) {
+			t.Errorf("%q is missing in\n%s", want, written(t, Comparison(c)))
+		}
+	}
+	if strings.Contains(text, "no spread") {
+		t.Error("a sum without a range is said to have one")
 	}
 }

@@ -5,6 +5,7 @@ import (
 	"slices"
 	"strings"
 	"unicode"
+	"unicode/utf8"
 
 	"github.com/clipperhouse/displaywidth"
 )
@@ -185,7 +186,7 @@ func clean(text string) string {
 }
 
 // column joins figures and their ranges into cells: the figures with their decimal points below each other, the
-// ranges in a column of their own.
+// ranges in a column of their own. Words, where no figure stands among them, begin below each other.
 type column struct{ values, ranges []string }
 
 func (c *column) add(value, ranged string) {
@@ -215,9 +216,17 @@ func (c *column) cells() []string {
 		a, b := split(v)
 		whole, part = max(whole, displaywidth.String(a)), max(part, displaywidth.String(b))
 	}
+	words := !slices.ContainsFunc(c.values, func(v string) bool {
+		first, _ := utf8.DecodeRuneInString(v)
+		return v != "" && !unicode.IsLetter(first)
+	})
 	cells := make([]string, len(c.values))
 	for i, v := range c.values {
 		a, b := split(v)
+		if words {
+			cells[i] = strings.TrimRight(pad(v, whole+part)+" "+c.ranges[i], " ")
+			continue
+		}
 		cells[i] = strings.TrimRight(strings.Repeat(" ", whole-displaywidth.String(a))+a+pad(b, part)+" "+c.ranges[i], " ")
 	}
 	return cells

@@ -50,15 +50,34 @@ type sizeView struct {
 	by *measure
 }
 
-// figure is a figure and its range.
-func (v *sizeView) figure(x float64, ci *result.Interval) string {
-	value, limits := v.by.told(x, ci)
+// told is a figure and its range. One that misses the target by less than the digits kept gets as many more as show it.
+func (v *sizeView) told(x float64, ci *result.Interval, meets string) (value, limits string) {
+	value, limits = v.by.told(x, ci)
+	if meets != targetMissed || v.s.Target == nil || x <= v.s.Target.Value {
+		return value, limits
+	}
+	number, sign := value, ""
+	if v.by.scale == 100 {
+		number, sign = strings.TrimSuffix(value, " %"), " %"
+	}
+	for digits := 2; digits <= 6; digits++ {
+		if y, err := strconv.ParseFloat(number, 64); err != nil || y > v.by.scale*v.s.Target.Value {
+			break
+		}
+		number = significant(v.by.scale*x, digits)
+	}
+	return number + sign, limits
+}
+
+// figure is what told says, in one.
+func (v *sizeView) figure(x float64, ci *result.Interval, meets string) string {
+	value, limits := v.told(x, ci, meets)
 	return strings.TrimSpace(value + " " + limits)
 }
 
 // point says what the option comes to with a value.
 func (v *sizeView) point(p *result.SizePoint) string {
-	text := v.by.inWords(v.figure(p.Figure, p.CI))
+	text := v.by.inWords(v.figure(p.Figure, p.CI, p.Meets))
 	if p.Metres != nil {
 		text += fmt.Sprintf(", %s m of drain", wholeMetres(*p.Metres))
 	}
@@ -95,6 +114,9 @@ func (v *sizeView) inShort() {
 			v.para("%s", s.Reason)
 		}
 		v.stoppedShort()
+		if t := s.TimeToEffect; t != nil && slices.ContainsFunc(s.Warnings, func(w result.Warning) bool { return w.Code == slowToAct }) {
+			v.para("Until nine tenths of the effect are there, it takes %s; all figures are those after it.", duration(t.Days))
+		}
 	}
 	if len(s.MeetsAgain) > 0 && s.Answer != nil {
 		v.para("The curve does not fall all the way: less safe values meet the target again, and are not chosen.")
@@ -122,7 +144,7 @@ func (v *sizeView) margin(widest string, fromSafe []result.SizePoint) {
 	}
 	next := &fromSafe[slices.IndexFunc(fromSafe, func(p result.SizePoint) bool { return v.lessSafe(p.Value, a.Value) })]
 	v.para("%s The answer is worked out to 0.5 %% and lies just at the target, without a margin; the next value of the curve, %s, has %s and misses it.",
-		text, next.Text, v.by.inWords(v.figure(next.Figure, next.CI)))
+		text, next.Text, v.by.inWords(v.figure(next.Figure, next.CI, next.Meets)))
 }
 
 // lessSafe reports whether the works do less with one value than with another.
@@ -141,7 +163,7 @@ func (v *sizeView) stoppedShort() {
 		return
 	}
 	told := func(s *result.State) string {
-		value, _ := v.by.told(s.Value, s.CI)
+		value, _ := v.told(s.Value, s.CI, s.MeetsTarget)
 		return value
 	}
 	text := fmt.Sprintf("With every second drain stopped it is %s, with all stopped %s", told(half), v.by.inWords(told(all)))
@@ -224,7 +246,7 @@ func (v *sizeView) curve() {
 		}
 		metres.add(long, "")
 		cost.add(sum(p.PresentValue, 1), "")
-		figures.add(v.by.told(p.Figure, p.CI))
+		figures.add(v.told(p.Figure, p.CI, p.Meets))
 		per.add(less, "")
 		each.add(worth, "")
 		meets, marks = append(meets, words(p.Meets)), append(marks, v.mark(p))
@@ -267,7 +289,7 @@ func (v *sizeView) curve() {
 
 	text := "In brackets are ranges at " + v.confidence() + "."
 	if slices.Contains(t.head[0], perLength) {
-		text += " 100 m take off: what 100 m of drain more take off the figure, in the step from the next row that is less safe to this one."
+		text += " 100 m take off: what 100 m of drain more take off the figure, in the step from the next less safe value of the curve to this one."
 	}
 	if slices.Contains(t.head[0], one) {
 		text += fmt.Sprintf(" %s costs: the present value of that step for each such unit of the figure.", upperFirst(one))
@@ -328,7 +350,7 @@ func (v *sizeView) stopped() {
 			name += " (all figures above)"
 		}
 		t.labels = append(t.labels, label{name: name})
-		figures.add(v.by.told(state.Value, state.CI))
+		figures.add(v.told(state.Value, state.CI, state.MeetsTarget))
 		shares, meets = append(shares, percent(state.EffectShare)), append(meets, words(state.MeetsTarget))
 	}
 	for i, cell := range figures.cells() {

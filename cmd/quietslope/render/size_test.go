@@ -165,3 +165,40 @@ func TestSize(t *testing.T) {
 		})
 	}
 }
+
+// TestSizeSlow: the time until the answer acts stands with it where it is noted to be long.
+func TestSizeSlow(t *testing.T) {
+	s := edges()["size"]
+	s.TimeToEffect = &result.TimeToEffect{StoreDays: 300, Days: 147.2 * 365.25}
+	const said = "it takes 148 years; all figures are those after it."
+	if text := strings.Join(strings.Fields(written(t, Size(s))), " "); strings.Contains(text, said) {
+		t.Error("what is not noted is said")
+	}
+	s.Warnings = append(s.Warnings, result.Warning{Code: slowToAct, Severity: result.Warn, Text: "It takes long."})
+	if text := strings.Join(strings.Fields(written(t, Size(s))), " "); !strings.Contains(text, said) {
+		t.Errorf("nothing is said of the time:\n%s", written(t, Size(s)))
+	}
+}
+
+// TestSizeAtTarget: no figure that misses the target is rounded to it.
+func TestSizeAtTarget(t *testing.T) {
+	for _, tt := range []struct {
+		measure      string
+		target, x    float64
+		ci           result.Interval
+		meets, wants string
+	}{
+		{"days", 3, 3.0239, result.Interval{0, 8.9}, targetMissed, "3.02"},
+		{"days", 3, 2.9761, result.Interval{0, 8.9}, targetNotShown, "3"},
+		{"days", 3, 4.2, result.Interval{0, 12}, targetMissed, "4"},
+		{"events", 0.2, 0.2004, result.Interval{0.1, 0.4}, targetMissed, "0.2004"},
+		{"annual_probability", 0.05, 0.0513, result.Interval{0.01, 0.2}, targetMissed, "5.1 %"},
+		{"annual_probability", 0.05, 0.0588, result.Interval{0.01, 0.2}, targetMissed, "6 %"},
+	} {
+		s := &result.Size{Target: &result.Target{Measure: tt.measure, Value: tt.target}}
+		v := &sizeView{&view{c: &result.Comparison{}}, s, measureOf(tt.measure)}
+		if got, _ := v.told(tt.x, &tt.ci, tt.meets); got != tt.wants {
+			t.Errorf("%s %v against %v: %q, want %q", tt.measure, tt.x, tt.target, got, tt.wants)
+		}
+	}
+}

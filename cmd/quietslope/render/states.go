@@ -82,7 +82,13 @@ func (v *view) states(c *result.Case) {
 	t.rows = sideBySide(cols...)
 	v.rows(t.dropEmpty(), options)
 
-	text := upperFirst(by.name) + " in " + by.unit + "."
+	text := upperFirst(by.unit) + "."
+	switch by.key {
+	case "load":
+		text = "Load in " + by.unit + "."
+	case "annual_probability":
+		text = "Share of years."
+	}
 	if target := v.targetText(); target != "" {
 		text += fmt.Sprintf(" *: meets the target, %s; (*): the figure does, the end of its range does not.", target)
 	}

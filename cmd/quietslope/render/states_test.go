@@ -73,7 +73,7 @@ func TestStatesSome(t *testing.T) {
 // TestStatesTable: whatever ranks the options is in the table, and the marks say who meets the target.
 func TestStatesTable(t *testing.T) {
 	for key, want := range map[string]string{
-		"load": "Load in m·d per year. *: meets", "days": "Days in days per year.", "events": "Events in events per year.", "annual_probability": "Share of years in % of years.",
+		"load": "Load in m·d per year. *: meets", "days": "Days per year. *: meets", "events": "Events per year. *: meets", "annual_probability": "Share of years. *: meets",
 	} {
 		c := priced()
 		c.Settings.DecideBy = key

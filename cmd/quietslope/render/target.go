@@ -23,20 +23,23 @@ func (v *view) targetText() string {
 		return ""
 	}
 	above := "above " + inQuotes(v.c.Settings.DecideOn)
-	most := typed(t.Value, 6)
+	what := "m·d"
 	switch t.Measure {
 	case "annual_probability":
-		text := fmt.Sprintf("%s in at most %s of the years counted", above, share(t.Value))
+		text := fmt.Sprintf("at most %s of the years counted", share(t.Value))
 		if t.Value > 0 && t.Value <= 0.5 {
-			text += ", one in " + typed(1/t.Value, 4)
+			text += ", one in " + typed(1/t.Value, 4) + ","
 		}
-		return text
+		return text + " " + above
 	case "events":
-		return fmt.Sprintf("at most %s events a year %s", most, above)
+		what = "events"
 	case "days":
-		return fmt.Sprintf("at most %s days a year %s", most, above)
+		what = "days"
 	}
-	return fmt.Sprintf("at most %s m·d a year %s", most, above)
+	if t.Value == 1 {
+		what = strings.TrimSuffix(what, "s")
+	}
+	return fmt.Sprintf("at most %s %s a year %s", typed(t.Value, 6), what, above)
 }
 
 // meeting are the options of a case whose answer about the target is the given one.
@@ -69,7 +72,21 @@ func (v *view) targetShort(c *result.Case) {
 	if len(met) > 0 && len(missed) > 0 {
 		parts = append(parts, someByLetter(missed)+verb(missed, " misses", " miss")+" it")
 	}
-	v.para("The target is %s: %s.%s", target, strings.Join(parts, "; "), v.cheapest(c, met))
+	v.para("The target is %s: %s.%s%s", target, strings.Join(parts, "; "), v.cheapest(c, met), v.slow(c, append(met, notShown...)))
+}
+
+// slowToAct is the code of the warning that an option takes long to act.
+const slowToAct = "slow_to_act"
+
+// slow says how long it takes until those of the options act of which it is noted that they are slow; "" for none.
+func (v *view) slow(c *result.Case, options []int) string {
+	parts := actingAfter(c, func(i int) bool {
+		return slices.Contains(options, i) && v.notes.has(slowToAct, c, c.Options[i].Name, "")
+	})
+	if parts == nil {
+		return ""
+	}
+	return " Until nine tenths of the effect are there, it takes " + andWords(parts) + "; the figures are those after it."
 }
 
 // cheapest names the cheapest of the options that meet the target, and those of them whose cost is not known.
@@ -143,16 +160,19 @@ func alikeBy(c *result.Case, text func(*result.Option) string) []together {
 	return all
 }
 
-// acting says how long it takes until the options act; "" where that is not known of any.
-func acting(c *result.Case) string {
-	all := alikeBy(c, func(o *result.Option) string {
+// actingAfter says how long it takes until each of the options for which keep holds acts, as far as that is known; the
+// soonest first.
+func actingAfter(c *result.Case, keep func(option int) bool) []string {
+	var all []together
+	for _, t := range alikeBy(c, func(o *result.Option) string {
 		if o.TimeToEffect == nil {
 			return ""
 		}
 		return duration(o.TimeToEffect.Days)
-	})
-	if all == nil {
-		return ""
+	}) {
+		if t.options = slices.DeleteFunc(t.options, func(i int) bool { return !keep(i) }); len(t.options) > 0 {
+			all = append(all, t)
+		}
 	}
 	slices.SortStableFunc(all, func(a, b together) int {
 		x, y := c.Options[a.options[0]].TimeToEffect.Days, c.Options[b.options[0]].TimeToEffect.Days
@@ -167,6 +187,15 @@ func acting(c *result.Case) string {
 	var parts []string
 	for _, t := range all {
 		parts = append(parts, t.text+" with "+someByLetter(t.options))
+	}
+	return parts
+}
+
+// acting says how long it takes until the options act; "" where that is not known of any.
+func acting(c *result.Case) string {
+	parts := actingAfter(c, func(int) bool { return true })
+	if parts == nil {
+		return ""
 	}
 	text := "Time until nine tenths of an option's effect on the deep level have come about: " + andWords(parts) + "."
 	var clay []int

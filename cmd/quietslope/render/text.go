@@ -249,7 +249,8 @@ func (b table) width() int {
 	return all
 }
 
-// lines are the lines of the head, with what columns have in common where these begin.
+// lines are the lines of the head, with what columns have in common where these begin. Of a table that was cut a part may
+// have nothing to say in the upper ones.
 func (b table) lines() [][]string {
 	if b.groups == nil {
 		return b.head
@@ -260,7 +261,11 @@ func (b table) lines() [][]string {
 			once[c] = g
 		}
 	}
-	return append([][]string{once}, b.head...)
+	lines := append([][]string{once}, b.head...)
+	for len(lines) > 1 && b.caption == "" && !slices.ContainsFunc(lines[0], func(cell string) bool { return strings.TrimSpace(cell) != "" }) {
+		lines = lines[1:]
+	}
+	return lines
 }
 
 func (b table) widestLabel() int {
