@@ -7,6 +7,7 @@ import (
 	"strconv"
 	"strings"
 
+	"quietslope/scenario"
 	"quietslope/scenario/result"
 )
 
@@ -108,7 +109,11 @@ func (v *sizeView) inShort() {
 		safe := &fromSafe[0]
 		v.para("The target is %s. %s With %s it is %s.", v.targetText(), s.Reason, safe.Text, v.point(safe))
 	default:
-		v.para("The target is %s. The %s %s of %s that meets it is %s: %s.", v.targetText(), widest, s.Vary, inQuotes(s.Option), a.Text, v.point(a))
+		the := "The"
+		if s.Condition != scenario.AsBuilt {
+			the = fmt.Sprintf("In the condition %s the", inQuotes(s.Condition))
+		}
+		v.para("The target is %s. %s %s %s of %s that meets it is %s: %s.", v.targetText(), the, widest, s.Vary, inQuotes(s.Option), a.Text, v.point(a))
 		v.margin(widest, fromSafe)
 		if s.Reason != "" {
 			v.para("%s", s.Reason)
@@ -172,6 +177,8 @@ func (v *sizeView) stoppedShort() {
 		text += "; both miss the target"
 	case all.MeetsTarget == targetMissed:
 		text += ", which misses the target"
+	case all.MeetsTarget == targetMet || all.MeetsTarget == targetNotShown:
+		text += ": even then the figure meets the target, so that the target asks nothing of these drains"
 	}
 	v.para("%s.", text)
 }

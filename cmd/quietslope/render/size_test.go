@@ -202,3 +202,20 @@ func TestSizeAtTarget(t *testing.T) {
 		}
 	}
 }
+
+// TestSizeShort: what the answer is for, and whether the target asks anything of the drains, stands in short.
+func TestSizeShort(t *testing.T) {
+	short := func(s *result.Size) string { return strings.Join(strings.Fields(written(t, Size(s))), " ") }
+	s := edges()["size"]
+	const needless = "even then the figure meets the target, so that the target asks nothing of these drains."
+	if text := short(s); !strings.Contains(text, "The largest trench_drains.spacing") || strings.Contains(text, needless) {
+		t.Errorf("%s", text)
+	}
+	s.Condition = "neglected"
+	for i := range s.States {
+		s.States[i].Value, s.States[i].CI, s.States[i].MeetsTarget = 0, nil, targetMet
+	}
+	if text := short(s); !strings.Contains(text, `In the condition "neglected" the largest trench_drains.spacing`) || !strings.Contains(text, needless) {
+		t.Errorf("%s", text)
+	}
+}
