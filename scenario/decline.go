@@ -37,14 +37,18 @@ type aged struct {
 const ages = 4
 
 // declineOver is the share of a drain's rate that is left after a part of its time: between two flushes, or, for drains that are
-// never flushed, of the horizon (y).
+// never flushed, of the horizon (y) or of their life, if that is over before.
 func declineOver(part float64, horizon int) func(*Decline) float64 {
 	return func(d *Decline) float64 {
 		switch {
 		case d == nil:
 			return 1
 		case math.IsInf(d.Every, 1):
-			return math.Exp2(-part * float64(horizon) / d.HalfLife)
+			years := float64(horizon)
+			if d.Renewed > 0 {
+				years = min(years, d.Renewed)
+			}
+			return math.Exp2(-part * years / d.HalfLife)
 		}
 		return d.Restored * math.Exp2(-part*d.Every/d.HalfLife)
 	}
@@ -59,7 +63,8 @@ func (s *Study) horizon() int {
 }
 
 // ownStates are the states whose weighted mean an option's figures are, and what that mean is called: as new for drains that
-// do not clog; the mean between two flushes, or over the horizon for drains that are never flushed.
+// do not clog; the mean between two flushes, or over the horizon for drains that are never flushed, which are new again
+// whenever they are renewed.
 func (s *Study) ownStates(o *Option) (name string, states []aged) {
 	declines, flushed := o.declines()
 	if !declines {
@@ -79,7 +84,8 @@ func (s *Study) ownStates(o *Option) (name string, states []aged) {
 
 // furtherStates are the states that the results show besides an option's own: what its drains are before a flush and when
 // nobody flushes them, and with every second and all of them stopped. An option without drains has none. Beside drains that
-// are flushed, those that never are stand at the end of the horizon before a flush. Every second one of drains whose rate is
+// are flushed, those that never are stand at the end of their life or of the horizon before a flush. Drains that nobody
+// flushes are not renewed either. Every second one of drains whose rate is
 // given carries half; what drains carry at most stays as it is.
 func (s *Study) furtherStates(o *Option) []state {
 	if !o.drained() {

@@ -49,12 +49,18 @@ func TestMeanMultiplier(t *testing.T) {
 		{Decline{HalfLife: 12, Every: math.Inf(1), Restored: 1}, 50},
 		{Decline{HalfLife: 20, Every: math.Inf(1), Restored: 1}, 100},
 		{Decline{HalfLife: 1000, Every: 1, Restored: 0.5}, 1},
+		{Decline{HalfLife: 10, Every: math.Inf(1), Restored: 1, Renewed: 20}, 50},
+		{Decline{HalfLife: 10, Every: math.Inf(1), Restored: 1, Renewed: 60}, 50},
+		{Decline{HalfLife: 10, Every: 4, Restored: 0.9, Renewed: 3}, 50},
 	} {
 		s := ground(Option{Name: "works", Measures: []Measure{{Bored: &BoredDrains{Decline: &tt.d}}}})
 		s.Count.DesignLife = tt.horizon
 		m, name := tt.d.Every, stateMean
 		if math.IsInf(m, 1) {
 			m, name = float64(tt.horizon), stateHorizon
+			if tt.d.Renewed > 0 {
+				m = min(m, tt.d.Renewed)
+			}
 		}
 		a := m * math.Ln2 / tt.d.HalfLife
 		want := tt.d.Restored * -math.Expm1(-a) / a // all digits of 1 - 2^(-m/t½)
@@ -511,5 +517,34 @@ func TestStateThatCannotBe(t *testing.T) {
 	_, err := Compare(context.Background(), s, CompareQuery{})
 	if err == nil || !strings.Contains(err.Error(), "the results show this option with all drains stopped too, and then the cover has no steady state") {
 		t.Errorf("got %v", err)
+	}
+}
+
+// TestRenewedDrains: drains that nobody flushes age until the life of their cost is over. The cost of another part of the
+// option, one without capital and one without a life renew nothing; nobody renews drains that nobody flushes in the state of
+// that name.
+func TestRenewedDrains(t *testing.T) {
+	const clogs = "bored_drains: {rate: 0.005 /d, level: 3.0 m, decline: {half_life: 10 y}}"
+	s := parseBase(t, strings.Join([]string{
+		"-study: Test bank",
+		"+study: Test bank",
+		"+money: {currency: EUR, horizon: 50 y, discount_rate: 3 %, prices_of: 2026}",
+		"-  - name: trial",
+		"+  - {name: renewed, " + clogs + ", cost: {capital: 1000, life: 20 y}}",
+		"+  - {name: upkeep only, " + clogs + ", cost: {per_year: 1000}}",
+		"+  - {name: for ever, " + clogs + ", cost: {capital: 1000}}",
+		"+  - {name: channels, surface_water: {kept_out: 10 %}, cost: {capital: 1000, life: 5 y}}",
+		"+  - {name: both, " + clogs + ", surface_water: {kept_out: 10 %}, cost: {like: [channels, renewed]}}",
+		"+  - name: trial\n",
+	}, "\n"))
+	option := func(name string) *Option { return &s.Options[indexOfName(optionNames(s), name)] }
+	for name, want := range map[string]float64{"renewed": 20, "upkeep only": 0, "for ever": 0, "both": 20} {
+		if got := option(name).drains("bored_drains").decline().Renewed; got != want {
+			t.Errorf("%s: renewed after %v y, want %v", name, got, want)
+		}
+	}
+	further := s.furtherStates(option("renewed"))
+	if got := further[1].left(option("renewed").Measures[0].decline()); further[1].name != stateNever || got != math.Exp2(-5) {
+		t.Errorf("%s leaves %v, want %v", further[1].name, got, math.Exp2(-5))
 	}
 }

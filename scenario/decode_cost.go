@@ -96,6 +96,21 @@ func (d *decoder) costBlock(s *Study, o *Option, here *optionCost, v *value) {
 	for i := range o.Costs {
 		d.checkCost(s, o, &o.Costs[i], b, v.place)
 	}
+	o.renewDrains()
+}
+
+// renewDrains tells the drains of an option that clog when they are paid for anew: by the cost of their measure, or by the
+// only cost of the option.
+func (o *Option) renewDrains() {
+	for i := range o.Measures {
+		m := &o.Measures[i]
+		decline := m.decline()
+		for _, c := range o.Costs {
+			if decline != nil && (c.Drains == m.Key || len(o.Costs) == 1) && c.Capital+c.PerMetre > 0 && !math.IsInf(c.Life, 1) {
+				decline.Renewed = c.Life
+			}
+		}
+	}
 }
 
 // takenCosts puts together the costs that an option takes from others; false where one of them cannot be had.

@@ -203,6 +203,7 @@ type Decline struct {
 	HalfLife float64 // y
 	Every    float64 // time between flushes, y; +Inf for never
 	Restored float64 // share of the rate as new
+	Renewed  float64 // y after which the drains are paid for again and are new, by the life of their cost; 0 for never
 }
 
 // BoredDrains act on the deep layer.

@@ -336,7 +336,7 @@ func TestEveryNumberArrives(t *testing.T) {
 					Decline: &Decline{HalfLife: 12, Every: inf, Restored: 1}}},
 			}, Costs: []Cost{{Capital: 38000, PerYear: 1500, Life: inf, Drains: "trench_drains"}}},
 			{Name: "bores", Measures: []Measure{
-				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95}}},
+				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95, Renewed: 30}}},
 			}, Costs: []Cost{{PerMetre: 95.5, PerFlush: 4000, Life: 30, Drains: "bored_drains"}}},
 			{Name: "on the contact, and more", Measures: []Measure{
 				{Key: "set", Set: []Assignment{
@@ -345,7 +345,7 @@ func TestEveryNumberArrives(t *testing.T) {
 					{Key: "cover.percolation_ceiling", Value: inf, Text: "none"},
 				}},
 				{Key: "trench_drains", Trench: &TrenchDrains{Depth: 4, Spacing: 12, Radius: 0.1, Equivalent: nan, Head: 2, Efficiency: 1, Ceiling: inf}},
-				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95}}},
+				{Key: "bored_drains", Bored: &BoredDrains{Rate: 0.0048, Level: 3, Efficiency: 1, Ceiling: inf, Number: 14, Length: 40, Decline: &Decline{HalfLife: 15, Every: 5, Restored: 0.95, Renewed: 30}}},
 				{Key: "surface_water", Cut: &SurfaceWater{KeptOut: 0.1}},
 			}, Costs: []Cost{
 				{Capital: 38000, PerYear: 1500, Life: inf, Drains: "trench_drains"},

@@ -284,6 +284,7 @@ class Trench:
     def __init__(self, depth, spacing=None, above=None, below=None, radius=0.1, head=None, law="linear", efficiency=1.0, rate=None, decline=None):
         self.depth, self.spacing, self.above, self.below, self.radius = depth, spacing, above, below if below is not None else above, radius
         self.head, self.law, self.efficiency, self.rate, self.decline = depth / 2 if head is None else head, law, efficiency, rate, decline
+        self.renewed = INF  # or not within the horizon
 
     def outlet(self, g, share=1.0, stretch=1.0):
         """share multiplies the outflow, stretch the spacing; a rate without a spacing goes with 1/stretch."""
@@ -316,8 +317,8 @@ class Trench:
 class Bored:
     """Drains of the deep layer; of every second that is stopped both the rate and the ceiling (mm/d) are halved."""
 
-    def __init__(self, rate, level, efficiency=1.0, ceiling=INF, metres=0.0, decline=None):
-        self.rate, self.level, self.efficiency, self.ceiling, self.metres, self.decline = rate, level, efficiency, ceiling, metres, decline
+    def __init__(self, rate, level, efficiency=1.0, ceiling=INF, metres=0.0, decline=None, renewed=INF):
+        self.rate, self.level, self.efficiency, self.ceiling, self.metres, self.decline, self.renewed = rate, level, efficiency, ceiling, metres, decline, renewed
 
     def outlet(self, g, share=1.0, stretch=1.0):
         return Outlet(self.rate * self.efficiency * share / stretch, 1000 * g["n2"] * self.level, self.ceiling / stretch)
@@ -347,12 +348,13 @@ class Option:
 
 
 def share_at(drain, horizon, x):
-    """Share of the outflow as new at the age x, 0 to 1, of the interval between flushes, or of the horizon where none is flushed."""
+    """Share of the outflow as new at the age x, 0 to 1, of the interval between flushes, or of the horizon where none is flushed, or of
+    the life after which the drain is paid for anew if that is shorter."""
     if not drain.decline:
         return 1.0
     half, every, restored = drain.decline
     if every is None:
-        return 2.0 ** (-x * horizon / half)
+        return 2.0 ** (-x * min(horizon, drain.renewed) / half)
     return restored * 2.0 ** (-x * every / half)
 
 
@@ -758,7 +760,7 @@ def studies():
         return Trench(2.4, 12.0, 0.09, 0.04, radius=0.3, law=law, efficiency=0.9)
 
     def bored(rate=0.03):
-        return Bored(rate, 2.4, 0.8, 0.15, 10 * 42.0, (20.0, None, None))
+        return Bored(rate, 2.4, 0.8, 0.15, 10 * 42.0, (20.0, None, None), renewed=25.0)
 
     def rhythm():
         return Bored(0.015, 1.8, 1.0, INF, 6 * 50.0, (6.0, 7.0, 1.0))

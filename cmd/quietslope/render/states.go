@@ -126,7 +126,7 @@ func (v *view) statesMeant(options []*result.Option) string {
 	}
 	text := ""
 	if has("never_flushed") {
-		text += fmt.Sprintf(" Never flushed: as clogged as they are after %s.", plural(v.agingYears(), "year"))
+		text += fmt.Sprintf(" Never flushed: as clogged as they are after %s without flushing or renewal.", plural(v.agingYears(), "year"))
 	}
 	if has("half_stopped") {
 		text += " Every second stopped: trenches are worked out anew at twice the spacing, which leaves about a quarter of their rate; of drains given by a rate, and of any ceiling, half is left."
@@ -141,7 +141,7 @@ func (v *view) means(c *result.Case) string {
 		case "mean_between_flushes":
 			return "between two flushes"
 		case "mean_over_horizon":
-			return fmt.Sprintf("over %s without a flush", plural(v.agingYears(), "year"))
+			return fmt.Sprintf("over %s without a flush, or over their life if they are renewed before", plural(v.agingYears(), "year"))
 		}
 		return ""
 	})
