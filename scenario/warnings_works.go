@@ -67,7 +67,7 @@ func (p *prepared) drainWarnings(ws *warnings, w *works, replayed []result.Drain
 			ws.add(at, "The %s lie at %.2f m, at or above the baseline's %s level on %.0f %% of the steps. They act on the highest levels only; make sure that this is meant.",
 				measureWords(d.measure), d.invert, d.layer, math.Floor(100*share))
 		}
-		if !plausibleRate(d.worked) {
+		if !plausibleRate(d.worked) { // of the quadratic law not its linear part, which is nothing on the contact
 			at.Code = "implausible_drain_rate"
 			ws.add(at, "The %s drain at %s /d; usual are %s to %s /d. Check conductivity, spacing and their units.",
 				measureWords(d.measure), short(d.worked), short(leastRate), short(mostRate))
@@ -198,8 +198,12 @@ func (p *prepared) effectWarnings(ws *warnings, w *works) {
 	if t.ClayDays != nil && *t.ClayDays > t.StoreDays {
 		because = ", since the clay between the trenches is slow"
 	}
+	longer := "a million years" // as good as never
+	if years := yearsOf(t.Days); years < 1e6 {
+		longer = fault.Count(int(years), "year")
+	}
 	ws.add(at("slow_to_act"), "It takes more than %s until nine tenths of the effect on the deep level are there%s, and all figures are those of works that act in full. Losses until then are not counted as avoided. Keep in force what protects people today.",
-		fault.Count(int(yearsOf(t.Days)), "year"), because)
+		longer, because)
 	s := p.study.Slope
 	if s == nil || !w.option.drained() {
 		return

@@ -105,6 +105,8 @@ func TestWorksWarnings(t *testing.T) {
 		{"thin drains", trenches(func(d *TrenchDrains) { d.Radius = 1 / math.Pi }), nil},
 		{"thick against the ground below", trenches(func(d *TrenchDrains) { d.Radius = 1.001 / math.Pi }), []string{"formula_range"}},
 		{"on the contact", trenches(func(d *TrenchDrains) { d.Depth, d.Radius = 4, 1 }), nil},
+		{"on the contact, by the quadratic law", trenches(func(d *TrenchDrains) { d.Depth, d.Quadratic = 4, true }), nil},
+		{"very fast, by the quadratic law", trenches(func(d *TrenchDrains) { d.Depth, d.Quadratic, d.Spacing, d.Conductivity = 4, true, 4, 4 }), []string{"implausible_drain_rate"}},
 		{"ten radii apart", func(p *prepared) {
 			p.study.Ground.CoverThickness = 6
 			trenches(func(d *TrenchDrains) { d.Depth, d.Spacing, d.Radius, d.Conductivity = 4, 5, 0.5, 0.01 })(p)
@@ -178,6 +180,30 @@ func TestWorksWarnings(t *testing.T) {
 				t.Errorf("got %q, want %q", got, tt.want)
 			}
 		})
+	}
+}
+
+// TestSlowToActText: a time of any length is told in whole years, rounded down.
+func TestSlowToActText(t *testing.T) {
+	for _, tt := range []struct {
+		days float64
+		want string
+	}{
+		{366, "more than 1 year until"},
+		{3.5 * 365.25, "more than 3 years until"},
+		{999999.5 * 365.25, "more than 999999 years until"},
+		{1e6 * 365.25, "more than a million years until"},
+		{1e300, "more than a million years until"},
+	} {
+		p := quiet()
+		p.study.Ground.DeepSeepage = math.Ln10 / tt.days
+		p.study.Options[1].Measures = []Measure{{Key: "cut_off_drain", CutOff: &CutOffDrain{Intercepted: 0.5}}}
+		p.rework()
+		ws := warnings{}
+		p.effectWarnings(&ws, p.works[1])
+		if len(ws) != 1 || !strings.Contains(ws[0].Text, tt.want) {
+			t.Errorf("%g d: %v, want %q", tt.days, ws, tt.want)
+		}
 	}
 }
 
