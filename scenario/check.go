@@ -33,7 +33,7 @@ func Check(ctx context.Context, s *Study) (*result.Check, error) {
 				Measure: d.measure, Layer: d.layer, Law: d.law(), RatePerDay: d.rate, InvertM: d.invert,
 				CeilingMMPerDay: finite(d.ceiling), From: d.from,
 			}
-			if d.rate > 0 {
+			if d.rate > 0 && d.square == 0 { // the quadratic law has none: it falls faster the higher it stands
 				half := math.Ln2 / d.rate
 				cd.HalfLifeDays = &half
 			}

@@ -233,6 +233,12 @@ func TestCheckFinds(t *testing.T) {
 	}
 	for _, o := range c.Options {
 		for _, d := range o.Drains {
+			if d.Law == "quadratic" {
+				if d.HalfLifeDays != nil {
+					t.Errorf("%s: a half-life by the quadratic law", o.Name)
+				}
+				continue
+			}
 			if d.HalfLifeDays == nil || math.Abs(*d.HalfLifeDays*d.RatePerDay-math.Ln2) > 1e-12 {
 				t.Errorf("%s: half-life %v", o.Name, d.HalfLifeDays)
 			}

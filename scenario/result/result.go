@@ -444,8 +444,8 @@ type CheckDrain struct {
 	Measure         string   `json:"measure"`
 	Layer           string   `json:"layer"`
 	Law             string   `json:"law"`
-	RatePerDay      float64  `json:"rate_per_day"` // of a quadratic law that of its linear part
-	HalfLifeDays    *float64 `json:"half_life_days,omitempty"`
+	RatePerDay      float64  `json:"rate_per_day"`             // of a quadratic law that of its linear part
+	HalfLifeDays    *float64 `json:"half_life_days,omitempty"` // of the water above the invert; of a linear law only
 	InvertM         float64  `json:"invert_m"`
 	CeilingMMPerDay *float64 `json:"ceiling_mm_per_day,omitempty"`
 	From            string   `json:"from"` // how the rate came about, in words

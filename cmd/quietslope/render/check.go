@@ -92,7 +92,7 @@ func checkOptions(p *Page, c *result.Check, ns *notes) {
 				law, what = "quadratic law, its linear part", "outflow"
 			}
 			text := fmt.Sprintf("%s, acting above %s m over the base of %s: %s %s /d", words(d.Measure), centimetres(d.InvertM), layerName(d.Layer), law, typed(d.RatePerDay, 4))
-			if d.HalfLifeDays != nil && d.Law != quadratic { // which falls faster the higher it stands
+			if d.HalfLifeDays != nil {
 				text += fmt.Sprintf(" (what stands above halves in %s d)", significant(*d.HalfLifeDays, 2))
 			}
 			if d.CeilingMMPerDay != nil {

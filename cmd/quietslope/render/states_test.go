@@ -137,6 +137,7 @@ func TestQuadratic(t *testing.T) {
 		}
 	}
 	k := checkFixture()
+	k.Options[1].Drains[0].HalfLifeDays = nil
 	k.Options[1].Drains[0].Law, k.Options[1].Drains[0].From = "quadratic", "Hooghoudt's equation, (8·K·d·h + 4·K·h²)/L²"
 	want := "quadratic law, its linear part 0.01371 /d; the outflow is Hooghoudt's equation, (8·K·d·h + 4·K·h²)/L²"
 	if text := strings.Join(strings.Fields(written(t, Check(k))), " "); !strings.Contains(text, want) {
