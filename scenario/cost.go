@@ -214,3 +214,17 @@ func (p *prepared) frontier(options []optionFigures, r *stats.Resamples) {
 		}
 	}
 }
+
+// lossBands are the bands as losses see them; nil where none has a loss.
+func (s *Study) lossBands() []stats.LossBand {
+	var bands []stats.LossBand
+	any := false
+	for _, b := range s.Bands {
+		bands = append(bands, stats.LossBand{Level: b.Level, PerEvent: b.LossPerEvent, PerDay: b.LossPerDay})
+		any = any || b.LossPerEvent > 0 || b.LossPerDay > 0
+	}
+	if !any {
+		return nil
+	}
+	return bands
+}

@@ -76,3 +76,6 @@ func (o *Option) actsDeepOnly() bool {
 	}
 	return true
 }
+
+// yearsOf is a time in days as years.
+func yearsOf(days float64) float64 { return days / 365.25 }

@@ -578,3 +578,5 @@ func measureTitle(name string) string {
 	}
 	return name
 }
+
+func measureWords(key string) string { return strings.ReplaceAll(key, "_", " ") }

@@ -536,7 +536,9 @@ func TestLinearLawFar(t *testing.T) {
 			t.Errorf("%+v differs from %s", w, text)
 		}
 		i := slices.IndexFunc(s.Options, func(o Option) bool { return o.Name == w.Option })
-		by := func(c *result.Comparison) string { return figureOf["load"].text(c.Cases[0].Options[i].Decision.Value) }
+		by := func(c *result.Comparison) string {
+			return measureNamed("load").text(c.Cases[0].Options[i].Decision.Value)
+		}
 		if moved := fmt.Sprintf("%q %s, not %s", w.Option, by(want), by(c)); !strings.Contains(w.Text, moved) {
 			t.Errorf("%s does not say %s", w.Text, moved)
 		}

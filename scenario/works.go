@@ -368,3 +368,11 @@ func finite(x float64) *float64 {
 	}
 	return &x
 }
+
+// law names how a drain's outflow grows with the height of the water above it.
+func (d *drainage) law() string {
+	if d.square > 0 {
+		return "quadratic"
+	}
+	return "linear"
+}
