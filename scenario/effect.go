@@ -49,15 +49,23 @@ func (w *works) response() *result.TimeToEffect {
 	if w.option.actsDeepOnly() {
 		cover = math.Inf(1)
 	}
+	spacing := 0.0
+	for _, m := range w.option.Measures {
+		if m.Trench != nil {
+			spacing = m.Trench.Spacing
+		}
+	}
+	return responseOf(cover, deep, spacing, w.ground.Consolidation)
+}
+
+// responseOf is the time until nine tenths of a change have come about: of two stores with these total rates, 1/d, and of clay
+// between trenches at a spacing, m, with a coefficient of consolidation, m2/y, unless one of these two is 0, for none.
+func responseOf(cover, deep, spacing, consolidation float64) *result.TimeToEffect {
 	t := &result.TimeToEffect{StoreDays: cascade.ResponseTime(cover, deep, effective)}
 	t.Days = t.StoreDays
-	if c := w.ground.Consolidation; c > 0 {
-		for _, m := range w.option.Measures {
-			if m.Trench != nil && m.Trench.Spacing > 0 {
-				days := drain.ConsolidationTime(m.Trench.Spacing, c/365.25)
-				t.ClayDays, t.Days = &days, max(t.Days, days)
-			}
-		}
+	if spacing > 0 && consolidation > 0 {
+		days := drain.ConsolidationTime(spacing, consolidation/365.25)
+		t.ClayDays, t.Days = &days, max(t.Days, days)
 	}
 	return t
 }

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 
-	"quietslope/cascade"
 	"quietslope/cascade/drain"
 	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
@@ -257,7 +256,7 @@ func (h *hand) figures(s *Study, row *handRow) (*result.DrainSpacing, error) {
 // linearFlow is the flow, mm/d, at a rate, 1/d, while the water stands head, m, above the drains midway: rate times the
 // water stored, the mean height of the water being 8/pi^2 of the head, as in package drain.
 func linearFlow(rate, porosity, head float64) float64 {
-	return rate * 1000 * porosity * 8 / (math.Pi * math.Pi) * head
+	return rate * 1000 * porosity / drain.Midway * head
 }
 
 // effect is the time to nine tenths of a change: of an option's deep level; of the drained ground alone for a query without
@@ -266,13 +265,7 @@ func (r *handRow) effect(rate float64) *result.TimeToEffect {
 	if r.works != nil {
 		return r.works.timeToEffect()
 	}
-	t := &result.TimeToEffect{StoreDays: cascade.ResponseTime(math.Inf(1), rate, effective)}
-	t.Days = t.StoreDays
-	if c := r.ground.Consolidation; c > 0 {
-		days := drain.ConsolidationTime(r.trench.Spacing, c/365.25)
-		t.ClayDays, t.Days = &days, max(t.Days, days)
-	}
-	return t
+	return responseOf(math.Inf(1), rate, r.trench.Spacing, r.ground.Consolidation)
 }
 
 // layout says what the figures were worked out from.

@@ -6,6 +6,7 @@ import (
 	"math"
 	"slices"
 
+	"quietslope/cascade/drain"
 	"quietslope/scenario/fault"
 	"quietslope/scenario/result"
 )
@@ -286,7 +287,7 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 		if f.Drains[k].MeanHeadM == nil { // they never run
 			continue
 		}
-		head := math.Pi * math.Pi / 8 * *f.Drains[k].MeanHeadM // midway, where the mean is that of half a sine
+		head := drain.Midway * *f.Drains[k].MeanHeadM
 		if head*headFar >= trench.Trench.Head && head <= headFar*trench.Trench.Head {
 			continue
 		}

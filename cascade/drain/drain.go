@@ -29,6 +29,10 @@ package drain
 
 import "math"
 
+// Midway is the height of the water table midway between drains over its mean height, as both laws of a store take it: over
+// that of the linear reservoir at rest, R/(mu*a). See [StepHead], which has the sources.
+const Midway = math.Pi * math.Pi / 8
+
 // Layout is a set of parallel drains at one level in a layer above an impermeable base.
 type Layout struct {
 	Spacing    float64 // between neighbouring drains, m, above 0
@@ -87,17 +91,15 @@ func (l Layout) ReactionFactor(head float64) float64 {
 //
 //	h = pi^2/8*y    y = u/(1000*mu), the mean height of the water table above the drains, m
 //
-// so that
+// with [Midway], so that
 //
 //	rate   = pi^2*Kb*d/(mu*L^2)               the reaction factor for h = 0
 //	square = pi^4*Ka/(16*1000*mu^2*L^2)
 //
-// pi^2/8 is the height midway over the mean height, R/(mu*a), of the linear reservoir at rest: see [StepHead].
-//
 // Sources: those of [Layout.SteadyFlow] and [StepHead]. That the flow follows the height at once, as if the water table
 // were at rest, is the usual assumption of drainage models: common practice, no source.
 func (l Layout) Quadratic() (rate, square float64) {
-	perMM := math.Pi * math.Pi / (8 * 1000 * l.Porosity) // height midway for each mm of water, m/mm
+	perMM := Midway / (1000 * l.Porosity) // height midway for each mm of water, m/mm
 	square = 1000 * 4 * l.Above * perMM * perMM / (l.Spacing * l.Spacing)
 	return l.ReactionFactor(0), square
 }
