@@ -59,30 +59,8 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 	f := parts[0]
 	f.Drains = nil
 	for i := range parts[0].Drains {
-		d := parts[0].Drains[i]
+		d := meanDrain(i, parts, weights, of)
 		d.RatePerDay = asNew.drains[i].rate
-		d.RunningShare = of(func(f *optionFigures) float64 { return f.Drains[i].RunningShare })
-		d.MeanHeadM, d.CeilingDaysPerYear = nil, nil
-		var head, heads, full float64
-		for k, part := range parts {
-			if h := part.Drains[i].MeanHeadM; h != nil { // the drain runs at this age
-				head, heads = head+weights[k]*part.Drains[i].RunningShare**h, heads+weights[k]*part.Drains[i].RunningShare
-			}
-			if days := part.Drains[i].CeilingDaysPerYear; days != nil {
-				full += weights[k] * *days
-				d.CeilingDaysPerYear = &full
-			}
-		}
-		if heads > 0 {
-			head /= heads
-			d.MeanHeadM = &head
-		}
-		d.MeanMMPerDay = of(func(f *optionFigures) float64 { return f.Drains[i].MeanMMPerDay })
-		for _, part := range parts {
-			if other := part.Drains[i]; other.PeakMMPerDay > d.PeakMMPerDay {
-				d.PeakMMPerDay, d.PeakLPerS = other.PeakMMPerDay, other.PeakLPerS
-			}
-		}
 		f.Drains = append(f.Drains, d)
 	}
 	f.Level = result.Level{
@@ -92,33 +70,7 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 		Q95M:  of(func(f *optionFigures) float64 { return f.Level.Q95M }),
 		Q99M:  of(func(f *optionFigures) float64 { return f.Level.Q99M }),
 	}
-	cover := func(figure func(*result.CoverBalance) float64) float64 {
-		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Cover) })
-	}
-	deep := func(figure func(*result.DeepBalance) float64) float64 {
-		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Deep) })
-	}
-	f.WaterBalance = result.Balance{
-		Cover: result.CoverBalance{
-			InMM:            cover(func(b *result.CoverBalance) float64 { return b.InMM }),
-			SeepageMM:       cover(func(b *result.CoverBalance) float64 { return b.SeepageMM }),
-			PercolationMM:   cover(func(b *result.CoverBalance) float64 { return b.PercolationMM }),
-			DrainsMM:        cover(func(b *result.CoverBalance) float64 { return b.DrainsMM }),
-			OverflowMM:      cover(func(b *result.CoverBalance) float64 { return b.OverflowMM }),
-			UnmetMM:         cover(func(b *result.CoverBalance) float64 { return b.UnmetMM }),
-			StorageChangeMM: cover(func(b *result.CoverBalance) float64 { return b.StorageChangeMM }),
-			ErrorMM:         cover(func(b *result.CoverBalance) float64 { return b.ErrorMM }),
-		},
-		Deep: result.DeepBalance{
-			InMM:            deep(func(b *result.DeepBalance) float64 { return b.InMM }),
-			LateralMM:       deep(func(b *result.DeepBalance) float64 { return b.LateralMM }),
-			SeepageMM:       deep(func(b *result.DeepBalance) float64 { return b.SeepageMM }),
-			DrainsMM:        deep(func(b *result.DeepBalance) float64 { return b.DrainsMM }),
-			RefusedMM:       deep(func(b *result.DeepBalance) float64 { return b.RefusedMM }),
-			StorageChangeMM: deep(func(b *result.DeepBalance) float64 { return b.StorageChangeMM }),
-			ErrorMM:         deep(func(b *result.DeepBalance) float64 { return b.ErrorMM }),
-		},
-	}
+	f.WaterBalance = meanBalance(of)
 	f.trace.works = asNew
 	for _, part := range parts[1:] {
 		f.trace.fromDry = max(f.trace.fromDry, part.trace.fromDry)
@@ -144,6 +96,66 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 		f.losses = stats.AverageSeries(losses, weights)
 	}
 	return f
+}
+
+// meanDrain is the mean of what drain i of an option did in several replays, but for its rate; of gives the mean of a figure.
+// The mean head is over the steps on which the drain runs, at whatever age.
+func meanDrain(i int, parts []optionFigures, weights []float64, of func(func(*optionFigures) float64) float64) result.Drain {
+	d := parts[0].Drains[i]
+	d.RunningShare = of(func(f *optionFigures) float64 { return f.Drains[i].RunningShare })
+	d.MeanHeadM, d.CeilingDaysPerYear = nil, nil
+	var head, heads, full float64
+	for k, part := range parts {
+		if h := part.Drains[i].MeanHeadM; h != nil { // the drain runs at this age
+			head, heads = head+weights[k]*part.Drains[i].RunningShare**h, heads+weights[k]*part.Drains[i].RunningShare
+		}
+		if days := part.Drains[i].CeilingDaysPerYear; days != nil {
+			full += weights[k] * *days
+			d.CeilingDaysPerYear = &full
+		}
+	}
+	if heads > 0 {
+		head /= heads
+		d.MeanHeadM = &head
+	}
+	d.MeanMMPerDay = of(func(f *optionFigures) float64 { return f.Drains[i].MeanMMPerDay })
+	for _, part := range parts {
+		if other := part.Drains[i]; other.PeakMMPerDay > d.PeakMMPerDay {
+			d.PeakMMPerDay, d.PeakLPerS = other.PeakMMPerDay, other.PeakLPerS
+		}
+	}
+	return d
+}
+
+// meanBalance is the mean of the water balances of several replays; of gives the mean of a figure.
+func meanBalance(of func(func(*optionFigures) float64) float64) result.Balance {
+	cover := func(figure func(*result.CoverBalance) float64) float64 {
+		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Cover) })
+	}
+	deep := func(figure func(*result.DeepBalance) float64) float64 {
+		return of(func(f *optionFigures) float64 { return figure(&f.WaterBalance.Deep) })
+	}
+	return result.Balance{
+		Cover: result.CoverBalance{
+			InMM:            cover(func(b *result.CoverBalance) float64 { return b.InMM }),
+			SeepageMM:       cover(func(b *result.CoverBalance) float64 { return b.SeepageMM }),
+			PercolationMM:   cover(func(b *result.CoverBalance) float64 { return b.PercolationMM }),
+			DrainsMM:        cover(func(b *result.CoverBalance) float64 { return b.DrainsMM }),
+			OverflowMM:      cover(func(b *result.CoverBalance) float64 { return b.OverflowMM }),
+			UnmetMM:         cover(func(b *result.CoverBalance) float64 { return b.UnmetMM }),
+			StorageChangeMM: cover(func(b *result.CoverBalance) float64 { return b.StorageChangeMM }),
+			ErrorMM:         cover(func(b *result.CoverBalance) float64 { return b.ErrorMM }),
+		},
+		Deep: result.DeepBalance{
+			InMM:            deep(func(b *result.DeepBalance) float64 { return b.InMM }),
+			LateralMM:       deep(func(b *result.DeepBalance) float64 { return b.LateralMM }),
+			SeepageMM:       deep(func(b *result.DeepBalance) float64 { return b.SeepageMM }),
+			DrainsMM:        deep(func(b *result.DeepBalance) float64 { return b.DrainsMM }),
+			RefusedMM:       deep(func(b *result.DeepBalance) float64 { return b.RefusedMM }),
+			StorageChangeMM: deep(func(b *result.DeepBalance) float64 { return b.StorageChangeMM }),
+			ErrorMM:         deep(func(b *result.DeepBalance) float64 { return b.ErrorMM }),
+		},
+	}
 }
 
 // states replays every drained option of the first case, which is in a condition, with its drains in every further state, and
