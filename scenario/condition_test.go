@@ -56,6 +56,20 @@ func TestConditionLeavesShares(t *testing.T) {
 	}
 }
 
+// TestConditionLeavesTheLaw: of both parts of the quadratic law a condition leaves the same, and so of its working rate.
+func TestConditionLeavesTheLaw(t *testing.T) {
+	s := ground(Option{Name: "works", Measures: parallel(func(d *TrenchDrains) { d.Quadratic = true })})
+	built := newWorks(s, &s.Options[1], &asBuilt, asNew).drains[0]
+	w := newWorks(s, &s.Options[1], &Condition{Name: "old", Drains: 0.5, SurfaceWater: 1, Vegetation: 1}, asNew)
+	old, o := w.drains[0], w.model.Cover.Drains[0]
+	if !(built.rate > 0 && built.square > 0 && built.worked > built.rate) {
+		t.Fatalf("%+v", built)
+	}
+	if old.rate != built.rate/2 || old.square != built.square/2 || old.worked != built.worked/2 || o.Rate != old.rate || o.Square != old.square {
+		t.Errorf("%+v and %+v, want half of %+v", old, o, built)
+	}
+}
+
 // TestUptakeByHand: rain, less what plants catch, less what runs off and is kept out, less what they use.
 func TestUptakeByHand(t *testing.T) {
 	r := &weather.Record{First: time.Date(2001, 1, 1, 0, 0, 0, 0, time.UTC), Step: 24 * time.Hour, Rain: []float64{10, 30}, PET: []float64{2, 1}}

@@ -76,6 +76,24 @@ func TestMeanMultiplier(t *testing.T) {
 	}
 }
 
+// TestMeanKeepsTheFurthest: warnings see of several replays what comes nearest to a limit.
+func TestMeanKeepsTheFurthest(t *testing.T) {
+	p := quiet()
+	part := func(of traceSummary) optionFigures {
+		return optionFigures{trace: of, passed: make([]stats.Exceedance, len(p.study.Bands))}
+	}
+	for _, order := range [][2]int{{0, 1}, {1, 0}} {
+		parts := []optionFigures{
+			part(traceSummary{fromDry: 0.1, coverMax: 2, deepMax: 4, refusedShare: 0.3}),
+			part(traceSummary{fromDry: 0.2, coverMax: 1, deepMax: 5, refusedShare: 0.2}),
+		}
+		f := p.mean(p.works[1], []optionFigures{parts[order[0]], parts[order[1]]}, []float64{0.5, 0.5})
+		if want := (traceSummary{works: p.works[1], fromDry: 0.2, coverMax: 2, deepMax: 5, refusedShare: 0.3}); f.trace != want {
+			t.Errorf("got %+v, want %+v", f.trace, want)
+		}
+	}
+}
+
 // decliningStudy has drains of every kind that clog in every way, in the baseline too.
 func decliningStudy(t *testing.T) *Study {
 	inf, nan := math.Inf(1), math.NaN()

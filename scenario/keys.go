@@ -457,7 +457,7 @@ var trenchShape = shape{form: formBlock, choice: []string{"spacing", "rate"}, fi
 	{name: "conductivity_below", says: "hydraulic conductivity of what lies below the trenches' level; only with spacing", absent: "by default as conductivity; unused on the contact",
 		shape: amount(quantity.Conductivity, above(0, maxConductivity)), quiet: true, eg: "0.005 m/d"},
 	{name: "drain_radius", says: "radius of a drain that takes in as much: wetted perimeter divided by π; only with spacing", absent: "by default 0.1 m; unused on the contact",
-		shape: amount(quantity.Length, above(0, 10)), quiet: true, eg: "0.2 m", not: []string{"equivalent_depth"}},
+		shape: amount(quantity.Length, above(0, maxRadius)), quiet: true, eg: "0.2 m", not: []string{"equivalent_depth"}},
 	{name: "equivalent_depth", says: "depth of flow below the trenches, after Hooghoudt; it grows with the spacing; only with spacing", absent: "by default computed from spacing, drain_radius and the cover below the trenches",
 		shape: amount(quantity.Length, atLeast(0, maxThickness)), quiet: true, eg: "0.80 m"},
 	{name: "working_head", says: "height midway of the water above the trenches, for the rate of the linear law; only with spacing", absent: "by default half of depth",
