@@ -128,10 +128,15 @@ func TestHandQuery(t *testing.T) {
 		t.Error(err)
 	}
 	many := bareHand()
+	many.Spacings = nil
 	for i := range mostValues + 5 {
 		many.Spacings = append(many.Spacings, quantity.Format(20+float64(i), quantity.Length))
 	}
 	if _, err := HandCheck(nil, many); err == nil || !strings.Contains(err.Error(), "at most 100 spacings") {
+		t.Error(err)
+	}
+	many.Spacings = many.Spacings[:mostValues]
+	if d, err := HandCheck(nil, many); err != nil || len(d.Spacings) != mostValues {
 		t.Error(err)
 	}
 }
@@ -235,7 +240,10 @@ func TestHandFigures(t *testing.T) {
 			return ""
 		}
 		depth, below := draw("depth", 0.01, 100), draw("under", 1e-6, 100)
+		from := depth * rapid.Float64Range(0.1, 1).Draw(t, "from")
+		to := from * rapid.Float64Range(0.01, 0.99).Draw(t, "to")
 		q := HandQuery{
+			Fall:     maybe(quantity.Format(to, quantity.Length) + " .. " + quantity.Format(from, quantity.Length)),
 			Spacings: []string{log("spacing", 0.01, 1e4, quantity.Length)}, Depth: quantity.Format(depth, quantity.Length),
 			Thickness: maybe(quantity.Format(depth+below, quantity.Length)), Conductivity: log("conductivity", 1e-9, 1e5, quantity.Conductivity),
 			ConductivityBelow: maybe(log("below", 1e-12, 1e5, quantity.Conductivity)), Porosity: log("porosity", 1e-4, 1, quantity.Share),
@@ -264,6 +272,11 @@ func TestHandFigures(t *testing.T) {
 		same("half-life", math.Exp(-f.ReactionFactorPerDay*f.HalfLifeDays), 0.5)
 		same("effect", math.Exp(-f.ReactionFactorPerDay**f.StoreDays), 0.1)
 		same("a fall by half", 1.16*math.Exp(-f.ReactionFactorPerDay*f.FallsByHalfDays), 0.5)
+		if days := f.FallDays; days != nil { // at the mean of the two heads
+			depth := l.ConductivityBelowMPerDay*f.EquivalentDepthM + l.ConductivityMPerDay*(from+to)/4
+			rate := l.Efficiency * math.Pi * math.Pi * depth / (l.Porosity * f.SpacingM * f.SpacingM)
+			same("a fall", rate**days, math.Log(1.16*from/to))
+		}
 		for _, o := range f.Outflows {
 			above, most := o.LinearMMPerDay-o.HooghoudtMMPerDay, 1e-9*o.HooghoudtMMPerDay
 			switch h := l.WorkingHeadM; {
@@ -277,8 +290,8 @@ func TestHandFigures(t *testing.T) {
 			h := *f.SteadyHeadM
 			k, kb := l.ConductivityMPerDay, l.ConductivityBelowMPerDay
 			same("steady flow", 1000*l.Efficiency*(8*kb*f.EquivalentDepthM*h+4*k*h*h)/(f.SpacingM*f.SpacingM), *r)
-			// A store at rest stands at the mean height that goes with the head midway: half of a sine has pi^2/8 of its mean there,
-			// by the linear reservoir at rest (StepHead in package drain).
+			// A store at rest stands at the mean height that goes with the head midway: by the linear reservoir at rest there is pi^2/8
+			// of the mean (StepHead in package drain).
 			same("steady linear head", *f.SteadyHeadLinearM, math.Pi*math.Pi/8**r/(1000*l.Porosity*f.ReactionFactorPerDay))
 		}
 	})

@@ -624,6 +624,20 @@ func TestSizeCondition(t *testing.T) {
 	}
 }
 
+// TestSizeLawOfACondition: the replay by the quadratic law is of works as built, so that in a condition nothing is said of it.
+func TestSizeLawOfACondition(t *testing.T) {
+	s := parsed(t, demoText(t, "law: quadratic", "working_head: 1.2 m", "\nsite:", "\nconditions:\n  - {name: worn, drains: 60 %}\n\nsite:"))
+	for condition, want := range map[string]bool{"": true, "worn": false} {
+		found, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", condition})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := slices.ContainsFunc(found.Warnings, func(w result.Warning) bool { return w.Code == "linear_law_far" }); got != want {
+			t.Errorf("condition %q: %v", condition, found.Warnings)
+		}
+	}
+}
+
 // TestSizeFixedDepth: an equivalent depth that is given does not follow the spacing, which is said; at the answer it is held against the computed one too.
 func TestSizeFixedDepth(t *testing.T) {
 	codes := func(found *result.Size) string {
