@@ -626,7 +626,7 @@ func TestSizeCondition(t *testing.T) {
 
 // TestSizeLawOfACondition: the replay by the quadratic law is of works as built, so that in a condition nothing is said of it.
 func TestSizeLawOfACondition(t *testing.T) {
-	s := parsed(t, demoText(t, "law: quadratic", "working_head: 1.2 m", "\nsite:", "\nconditions:\n  - {name: worn, drains: 60 %}\n\nsite:"))
+	s := parsed(t, demoText(t, "law: quadratic", "working_head: 1.2 m", "\nsite:", "\nconditions:\n  - {name: worn, drains: 99 %}\n\nsite:"))
 	for condition, want := range map[string]bool{"": true, "worn": false} {
 		found, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", condition})
 		if err != nil {

@@ -235,7 +235,7 @@ func (v *view) lossColumns(u unit, c *result.Case) []columnOf {
 // ratio is the benefit-cost ratio of an option, or why it has none.
 func (v *view) ratio(c *result.Case, o *result.Option) string {
 	switch of := o.Cost; {
-	case of == nil || o.Baseline || of.NetBenefit == nil:
+	case of == nil || of.NetBenefit == nil: // the baseline has none
 		return ""
 	case of.BenefitCost != nil:
 		return significant(*of.BenefitCost, 2)

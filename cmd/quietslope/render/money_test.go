@@ -220,6 +220,26 @@ func TestBestNet(t *testing.T) {
 	}
 }
 
+// TestStep: why a step has no ratio, which is that it costs no more, or else that the two are not told apart.
+func TestStep(t *testing.T) {
+	v := &view{letters: map[string]string{"a": "A", "b": "B"}}
+	for _, tt := range []struct {
+		cost  float64 // of B, where A costs 100
+		ratio *float64
+		want  string
+	}{
+		{150, ptr(1.234), "1.2"}, {150, nil, toldNot}, {100, nil, costsNoMore}, {100 * (1 + 1e-12), nil, costsNoMore},
+	} {
+		c := &result.Case{Options: []result.Option{
+			{Name: "a", Cost: &result.Cost{PresentValue: 100}},
+			{Name: "b", Cost: &result.Cost{PresentValue: tt.cost, AnnualLoss: ptr(1.0), StepFrom: "a", StepBenefitCost: tt.ratio}},
+		}}
+		if got, from := v.step(c, &c.Options[1]); got != tt.want || from != "from A" {
+			t.Errorf("%v: %q %q, want %q", tt.cost, got, from, tt.want)
+		}
+	}
+}
+
 func TestSums(t *testing.T) {
 	v := &view{c: &result.Comparison{Settings: result.Settings{Money: &result.Money{Currency: "EUR"}}}}
 	for _, tt := range []struct {

@@ -147,6 +147,29 @@ func points(s *result.Size) []*result.SizePoint {
 	return all
 }
 
+// TestSizeStopped: which of the two stopped states miss the target.
+func TestSizeStopped(t *testing.T) {
+	for _, tt := range []struct{ half, all, want, not string }{
+		{targetMissed, targetMissed, "all stopped 39 days per year; both miss the target.", "which misses"},
+		{targetNotShown, targetMissed, "all stopped 39 days per year, which misses the target.", "both miss"},
+		{targetMet, targetMet, "all stopped 39 days per year: even then the figure meets the target,", "miss the target."},
+	} {
+		s := sizing()
+		for i := range s.States {
+			switch state := &s.States[i]; state.State {
+			case "half_stopped":
+				state.MeetsTarget = tt.half
+			case "all_stopped":
+				state.MeetsTarget = tt.all
+			}
+		}
+		short, _, _ := strings.Cut(strings.Join(strings.Fields(written(t, Size(s))), " "), "What was sized")
+		if !strings.Contains(short, tt.want) || strings.Contains(short, tt.not) {
+			t.Errorf("half %s, all %s: %s", tt.half, tt.all, short)
+		}
+	}
+}
+
 // TestSize holds the pages, as text and as markdown.
 func TestSize(t *testing.T) {
 	for name, s := range edges() {
