@@ -2,8 +2,11 @@ package render
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
 	"strings"
+
+	"quietslope/scenario/result"
 )
 
 // mostListed is how many entries a list in a sentence has before the rest is counted.
@@ -98,4 +101,36 @@ func plural(n int, what string) string {
 		return "1 " + what
 	}
 	return fmt.Sprintf("%d %ss", n, what)
+}
+
+// verb picks the form of a word for one option or several.
+func verb(options []int, one, several string) string {
+	if len(options) == 1 {
+		return one
+	}
+	return several
+}
+
+// together are options of which the same is said.
+type together struct {
+	text    string
+	options []int
+}
+
+// alikeBy puts options together by what text says of each, "" for nothing, in the order of the first of each.
+func alikeBy(c *result.Case, text func(*result.Option) string) []together {
+	var all []together
+	for i := range c.Options {
+		of := text(&c.Options[i])
+		if of == "" {
+			continue
+		}
+		k := slices.IndexFunc(all, func(t together) bool { return t.text == of })
+		if k < 0 {
+			k = len(all)
+			all = append(all, together{text: of})
+		}
+		all[k].options = append(all[k].options, i)
+	}
+	return all
 }

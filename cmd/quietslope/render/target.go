@@ -2,7 +2,6 @@ package render
 
 import (
 	"fmt"
-	"math"
 	"slices"
 	"strings"
 
@@ -120,44 +119,12 @@ func (v *view) cheapest(c *result.Case, met []int) string {
 	return text
 }
 
-// verb picks the form of a word for one option or several.
-func verb(options []int, one, several string) string {
-	if len(options) == 1 {
-		return one
-	}
-	return several
-}
-
 // deciders are the options whose figures matter most: those that meet the target, or else those with the least figure.
 func deciders(c *result.Case, band int, by *measure) []int {
 	if met := meeting(c, targetMet); met != nil {
 		return met
 	}
 	return least(figuresBy(c, band, by))
-}
-
-// together are options of which the same is said.
-type together struct {
-	text    string
-	options []int
-}
-
-// alikeBy puts options together by what text says of each, "" for nothing, in the order of the first of each.
-func alikeBy(c *result.Case, text func(*result.Option) string) []together {
-	var all []together
-	for i := range c.Options {
-		of := text(&c.Options[i])
-		if of == "" {
-			continue
-		}
-		k := slices.IndexFunc(all, func(t together) bool { return t.text == of })
-		if k < 0 {
-			k = len(all)
-			all = append(all, together{text: of})
-		}
-		all[k].options = append(all[k].options, i)
-	}
-	return all
 }
 
 // actingAfter says how long it takes until each of the options for which keep holds acts, as far as that is known; the
@@ -189,38 +156,4 @@ func actingAfter(c *result.Case, keep func(option int) bool) []string {
 		parts = append(parts, t.text+" with "+someByLetter(t.options))
 	}
 	return parts
-}
-
-// acting says how long it takes until the options act; "" where that is not known of any.
-func acting(c *result.Case) string {
-	parts := actingAfter(c, func(int) bool { return true })
-	if parts == nil {
-		return ""
-	}
-	text := "Time until nine tenths of an option's effect on the deep level have come about: " + andWords(parts) + "."
-	var clay []int
-	for i := range c.Options {
-		if t := c.Options[i].TimeToEffect; t != nil && t.ClayDays != nil && *t.ClayDays > t.StoreDays {
-			clay = append(clay, i)
-		}
-	}
-	if clay != nil {
-		text += fmt.Sprintf(" With %s the clay between the trenches sets it.", someByLetter(clay))
-	}
-	return text
-}
-
-// duration prints a time until something has come about, rounded up: days, months below two years, or years.
-func duration(d float64) string {
-	const perYear = 365.25
-	up := func(x float64) int { return int(math.Ceil(x - 1e-9)) }
-	switch {
-	case d < 45:
-		return plural(max(1, up(d)), "day")
-	case d < 2*perYear:
-		return plural(up(12*d/perYear), "month")
-	case d < 1e6*perYear:
-		return plural(up(d/perYear), "year")
-	}
-	return "more than a million years"
 }
