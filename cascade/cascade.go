@@ -1,4 +1,5 @@
-// Package cascade replays two linear stores in series, a permeable cover over a fissured deep layer, exactly.
+// Package cascade replays two stores in series, a permeable cover over a fissured deep layer, exactly: linear ones, but for one
+// drain of the cover that may go with the square of the storage above it.
 //
 // Storages are drainable water in mm, times are days, rates are 1/d, fluxes are mm/d.
 // The package reads no files and knows no words of a study.
@@ -14,7 +15,7 @@
 // reaches its ceiling the equations are linear with constant coefficients, so each step is advanced with the
 // exponential solution, not with a stepping formula: one step gives what any number of shorter ones give.
 //
-// One drain of the cover may carry, beside its linear flow, one with the square of the storage u above its invert,
+// The drain with a square carries, beside its linear flow, one with the square of the storage u above its invert,
 //
 //	q = Rate*u + Square*u^2
 //

@@ -36,8 +36,13 @@ type aged struct {
 // ages is the number of ages at which drains are replayed between two flushes: points of a Gauss-Legendre rule.
 const ages = 4
 
-// declineOver is the share of a drain's rate that is left after a part of its time: between two flushes, or, for drains that are
-// never flushed, of the horizon (y) or of their life, if that is over before.
+// declineOver is the share of a drain's rate that is left after a part, 0 to 1, of its time, which is that between two flushes, m,
+// or, for drains that are never flushed, the horizon or the life after which they are paid for anew, H (all y):
+//
+//	restored*2^(-part*m/half_life)    2^(-part*H/half_life)
+//
+// That drains lose equal shares of their rate in equal times, and that every flush brings them back to the same share, is common
+// practice, no source.
 func declineOver(part float64, horizon int) func(*Decline) float64 {
 	return func(d *Decline) float64 {
 		switch {
