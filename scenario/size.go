@@ -23,7 +23,7 @@ const (
 	scanned     = 25    // values at which the range is looked at, evenly or by equal ratios
 	ratioRange  = 3     // times by which the ends of a range differ from which on it is parted by equal ratios
 	sized       = 0.005 // share of the value to which the answer is worked out
-	sizedOfNone = 1e-3  // share of the range below which a value counts as no smaller: that of a value close to zero
+	sizedOfNone = 1e-9  // share of a range from zero below which a value counts as no smaller: what comes close to zero
 	scanDigits  = 2     // least significant digits of the values of the scan
 	sizeDigits  = 4     // most of any value that is tried, in the unit of the range: a person can write it, and it was replayed
 )
@@ -164,7 +164,7 @@ func (z *sizing) grid() []float64 {
 		for i := 1; i < scanned-1; i++ {
 			part := float64(i) / (scanned - 1)
 			v := z.lo + part*(z.hi-z.lo)
-			if z.lo > 0 && z.hi/z.lo >= ratioRange {
+			if z.byRatio() {
 				v = z.lo * math.Pow(z.hi/z.lo, part)
 			}
 			if v = z.round(v, digits); v > values[len(values)-1] && v < z.hi {
@@ -175,6 +175,9 @@ func (z *sizing) grid() []float64 {
 	}
 	return values
 }
+
+// byRatio tells whether the range is wide enough to be parted by equal ratios.
+func (z *sizing) byRatio() bool { return z.lo > 0 && z.hi/z.lo >= ratioRange }
 
 // at is the point of the curve at a value.
 func (z *sizing) at(ctx context.Context, value float64) (result.SizePoint, error) {
@@ -275,8 +278,16 @@ func (z *sizing) last(ctx context.Context, fromSafe []result.SizePoint, good fun
 		return &fromSafe[len(fromSafe)-1], nil, nil
 	}
 	meets, misses := fromSafe[bad-1], fromSafe[bad]
-	for math.Abs(misses.Value-meets.Value) > sized*max(meets.Value, sizedOfNone*(z.hi-z.lo)) {
-		middle := z.round((meets.Value+misses.Value)/2, sizeDigits)
+	least := 0.0
+	if z.lo <= 0 {
+		least = sizedOfNone * (z.hi - z.lo)
+	}
+	for math.Abs(misses.Value-meets.Value) > sized*max(meets.Value, least) {
+		middle := (meets.Value + misses.Value) / 2
+		if z.byRatio() && max(meets.Value, misses.Value) > 2*min(meets.Value, misses.Value) {
+			middle = math.Sqrt(meets.Value) * math.Sqrt(misses.Value)
+		}
+		middle = z.round(middle, sizeDigits)
 		if middle == meets.Value || middle == misses.Value {
 			break
 		}

@@ -113,6 +113,27 @@ func TestSizeMeetsBruteForce(t *testing.T) {
 	}
 }
 
+// TestSizeWideRange: however wide the range, the answer is worked out to half a per cent of itself.
+func TestSizeWideRange(t *testing.T) {
+	s := parsed(t, demoText(t, "options:\n", "options:\n  - name: drier ground\n    set: {cover.seepage: 0.011 /d}\n"))
+	for _, tt := range []struct{ option, vary, usual, wide string }{
+		{"trenches", "trench_drains.spacing", "8 m .. 20 m", "0.01 m .. 10 km"},
+		{"bored drains", "bored_drains.rate", "0.01 /d .. 1 /d", "1e-9 /d .. 1e6 /d"},
+		{"drier ground", "set.cover.seepage", "0.011 /d .. 0.1 /d", "0 /d .. 1e6 /d"},
+	} {
+		usual, wide := size(t, s, tt.option, tt.vary, tt.usual), size(t, s, tt.option, tt.vary, tt.wide)
+		if usual.Beyond == nil || wide.Beyond == nil {
+			t.Fatalf("%s: no answer within the ranges", tt.vary)
+		}
+		if a, b := usual.Answer.Value, wide.Answer.Value; math.Abs(a-b) > 0.0051*min(a, b) {
+			t.Errorf("%s: %g over %s, %g over %s", tt.vary, a, tt.usual, b, tt.wide)
+		}
+		if a, b := wide.Answer.Value, wide.Beyond.Value; math.Abs(a-b) > 0.0051*min(a, b) {
+			t.Errorf("%s: over %s %g meets the target, and what misses it is %g", tt.vary, tt.wide, a, b)
+		}
+	}
+}
+
 // daysAbove counts the days a year on which the deep level of an option of a study on the same record stands above a level, as
 // the mean over the ages of its drains.
 func (p *prepared) daysAbove(s *Study, option int, level float64) (float64, error) {
