@@ -1,6 +1,7 @@
 package cascade_test
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -743,8 +744,14 @@ func TestRefusedCalls(t *testing.T) {
 		t.Error("slices of different lengths are taken")
 	}
 	r := newRun(t, cascade.Model{Cover: cascade.Store{Capacity: none, Seepage: 1e-9}, Deep: cascade.Store{Capacity: none, Seepage: 1}}, 0, 0)
-	if err := r.Step(2e9, 1); err == nil || !strings.Contains(err.Error(), "passes") {
+	if err := r.Step(2e9, 1); !errors.Is(err, cascade.ErrStorage) {
 		t.Errorf("more than can be stored: %v", err)
+	}
+	for _, start := range [][2]float64{{2e9, 0}, {0, 2e9}} {
+		open := cascade.Model{Cover: cascade.Store{Capacity: none, Seepage: 1e-9}, Deep: cascade.Store{Capacity: none, Seepage: 1}}
+		if _, err := cascade.NewRun(open, start[0], start[1]); !errors.Is(err, cascade.ErrStorage) {
+			t.Errorf("a start with more than can be stored: %v", err)
+		}
 	}
 }
 

@@ -19,6 +19,10 @@ const (
 	block = 128
 )
 
+// ErrStorage is what a replay ends with when a store without a capacity comes to hold more than can be computed with. The
+// model and its input ask for it.
+var ErrStorage = fmt.Errorf("its storage passes %g mm", float64(maxStorage))
+
 // Run is a replay in progress: a model, the storages reached and the water that has passed.
 // It is not safe for concurrent use; any number of Runs may work side by side.
 type Run struct {
@@ -53,6 +57,12 @@ func NewRun(m Model, cover, deep float64) (*Run, error) {
 		cover:   newSegments(m.Cover.Capacity, m.coverOutlets()),
 		deep:    newSegments(m.Deep.Capacity, m.deepOutlets()),
 		lateral: m.Lateral,
+	}
+	if r.cover.open && cover > maxStorage {
+		return nil, fmt.Errorf("cover: %w", ErrStorage)
+	}
+	if r.deep.open && deep > maxStorage {
+		return nil, fmt.Errorf("deep store: %w", ErrStorage)
 	}
 	if !r.cover.within(cover) {
 		return nil, fmt.Errorf("start of the cover %v mm is not between 0 and %v mm", cover, r.cover.base[r.cover.full])
@@ -402,7 +412,7 @@ func (r *Run) enter(way1, way2 int) error {
 		switch {
 		case way1 > 0 && r.u1 == s.width[r.i]:
 			if r.i++; r.i == s.full && s.open {
-				return fmt.Errorf("storage of the cover passes %g mm", float64(maxStorage))
+				return fmt.Errorf("cover: %w", ErrStorage)
 			}
 			r.u1 = 0
 		case way1 < 0 && r.u1 == 0 && r.i > 0:
@@ -416,7 +426,7 @@ func (r *Run) enter(way1, way2 int) error {
 		switch {
 		case way2 > 0 && r.u2 == s.width[r.j]:
 			if r.j++; r.j == s.full && s.open {
-				return fmt.Errorf("storage of the deep store passes %g mm", float64(maxStorage))
+				return fmt.Errorf("deep store: %w", ErrStorage)
 			}
 			r.u2 = 0
 		case way2 < 0 && r.u2 == 0 && r.j > 0:

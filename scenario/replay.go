@@ -2,6 +2,7 @@ package scenario
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"runtime"
@@ -135,9 +136,18 @@ func (p *replayer) begin(ctx context.Context, w *works, counted period) (t *trac
 		err = p.warmUp(ctx, w, scratch, run, dry)
 	}
 	if err != nil {
-		return nil, nil, nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+		return nil, nil, nil, p.failed(w, err)
 	}
 	return t, run, dry, nil
+}
+
+// failed says which option could not be replayed. That its water outgrows what can be computed with is a fault of the study;
+// anything else is one of the program.
+func (p *replayer) failed(w *works, err error) error {
+	if errors.Is(err, cascade.ErrStorage) {
+		return p.study.Fault(w.option.Place, "far more water comes in than leaves: %v; check the rates and lateral_inflow and their units, or give ground.cover.full_at and ground.deep.full_at as levels, over which a full store can run", err)
+	}
+	return fmt.Errorf("option %q: %w", w.option.Name, err)
 }
 
 // warmUp replays the warm-up. The water of a pass is worked out in depths, which hold the longest.
@@ -185,7 +195,7 @@ func (p *replayer) lowestMonth(ctx context.Context, w *works) (time.Month, error
 		return 0, err
 	}
 	if err := p.advance(run, 0, len(t.recharge), t.recharge, nil, t.deep); err != nil {
-		return 0, fmt.Errorf("option %q: %w", w.option.Name, err)
+		return 0, p.failed(w, err)
 	}
 	month := lowestMonth(p.record, t.deep)
 	p.drop(t.recharge, t.cover, t.deep)
@@ -210,7 +220,7 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 			return nil, err
 		}
 		if err := p.advance(run, part.lo, part.hi, t.recharge, t.cover, t.deep); err != nil {
-			return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+			return nil, p.failed(w, err)
 		}
 		*part.end = run.Totals()
 	}
@@ -223,7 +233,7 @@ func (p *replayer) replay(ctx context.Context, w *works, counted period) (*trace
 
 	first := min(counted.from+1, n)
 	if err := p.advance(dry, 0, first, t.recharge, nil, nil); err != nil {
-		return nil, fmt.Errorf("option %q: %w", w.option.Name, err)
+		return nil, p.failed(w, err)
 	}
 	_, fromDry := dry.Storage()
 	t.fromDry = math.Abs(t.deep[first-1]-fromDry) / storage(1, w.ground.DeepPorosity)
