@@ -72,6 +72,7 @@ type field struct {
 // outside of what a slope has.
 const (
 	maxRate          = 1e6   // 1/d; what the engine is tested for
+	maxSquare        = 1e6   // 1/(mm d); the same
 	maxThickness     = 500   // m
 	maxLevel         = 1000  // m
 	maxFlux          = 1e5   // mm/d

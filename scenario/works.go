@@ -46,6 +46,9 @@ func (w *works) check(s *Study) error {
 		}
 	}
 	for _, d := range w.drains {
+		if !(d.square <= maxSquare) {
+			return s.Fault(d.place, "by the quadratic law the drains carry %s mm/d at 1 mm of water stored above them, more than %d mm/d; check spacing, conductivity and drainable_porosity, and their units", short(d.rate+d.square), int(maxSquare))
+		}
 		if !(d.rate <= maxRate) {
 			return s.Fault(d.place, "the drains work out at %s /d, more than %d /d; check spacing, conductivity and drainable_porosity, and their units", short(d.rate), int(maxRate))
 		}
@@ -60,11 +63,13 @@ type drainage struct {
 	layer   string
 	rate    float64 // 1/d, after efficiency; of a quadratic law that of its linear part
 	square  float64 // 1/(mm d), of a quadratic law
-	worked  float64 // 1/d, the rate of the linear law at the working head, by which drains are timed and judged
-	share   float64 // of what the drains do as new that is left
-	invert  float64 // m above the base of its layer
-	ceiling float64 // mm/d; +Inf for none
-	index   int     // among the drains of its store in the model
+	// The outflow follows Hooghoudt's equation, even where rate and square have come to nothing.
+	quadratic bool
+	worked    float64 // 1/d, the rate of the linear law at the working head, by which drains are timed and judged
+	share     float64 // of what the drains do as new that is left
+	invert    float64 // m above the base of its layer
+	ceiling   float64 // mm/d; +Inf for none
+	index     int     // among the drains of its store in the model
 	// It was worked out anew with every second drain stopped, so that its state is in its rate already.
 	respaced bool
 	from     string // how the rate came about
@@ -207,6 +212,7 @@ func trench(t *TrenchDrains, g *Ground, in state) drainage {
 	if t.Quadratic {
 		d.rate, d.square = l.Quadratic()
 		d.rate, d.square = t.Efficiency*d.rate, t.Efficiency*d.square
+		d.quadratic = true
 		d.from = "Hooghoudt's equation, (8·K·d·h + 4·K·h²)/L², with " + with + timesEfficiency(t.Efficiency)
 		return d
 	}
@@ -369,9 +375,10 @@ func finite(x float64) *float64 {
 	return &x
 }
 
-// law names how a drain's outflow grows with the height of the water above it.
+// law names how a drain's outflow grows with the height of the water above it. It is the study's word, which a drain keeps
+// that has stopped.
 func (d *drainage) law() string {
-	if d.square > 0 {
+	if d.quadratic {
 		return "quadratic"
 	}
 	return "linear"
