@@ -105,3 +105,12 @@ func TestUnmet(t *testing.T) {
 		}
 	}
 }
+
+// TestFlowing: a drain that carries next to nothing does not make its column wider than the page.
+func TestFlowing(t *testing.T) {
+	for x, want := range map[float64]string{0: "0", 123.4: "120", 0.2251: "0.23", 0.000034: "0.000034", 0.00001: "0.000010", 0.0000099: "<0.00001", 3e-12: "<0.00001"} {
+		if got := flowing(x); got != want {
+			t.Errorf("%g: %s, want %s", x, got, want)
+		}
+	}
+}

@@ -145,6 +145,10 @@ func depth(mm float64) string {
 	return "<0.1"
 }
 
+// flowing prints a flow of drains to two significant digits. What is less than a hundred-thousandth, in mm/d or L/s, is as good as
+// nothing, and its digits would only take room.
+func flowing(x float64) string { return rounded(x, exponent(x)-1, -5) }
+
 // rate prints a rate: at most three significant digits, no padding.
 func rate(x float64) string { return typed(x, most) }
 

@@ -89,12 +89,12 @@ func (v *view) drains(c *result.Case) {
 				ceiling = rate(*d.CeilingMMPerDay)
 			}
 			if d.PeakLPerS != nil {
-				flow = significant(*d.PeakLPerS, 2)
+				flow = flowing(*d.PeakLPerS)
 			}
 			rates.add(rate(d.RatePerDay), "")
 			ceilings.add(ceiling, "")
-			means.add(significant(d.MeanMMPerDay, 2), "")
-			peaks.add(significant(d.PeakMMPerDay, 2), "")
+			means.add(flowing(d.MeanMMPerDay), "")
+			peaks.add(flowing(d.PeakMMPerDay), "")
 			flows.add(flow, "")
 		}
 	}
