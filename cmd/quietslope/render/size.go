@@ -136,10 +136,14 @@ func (v *sizeView) margin(widest string, fromSafe []result.SizePoint) {
 	a, shown := v.s.Answer, v.s.Shown
 	var text string
 	switch {
+	case a.Meets == targetMet && a.CI == nil && a.Figure == 0: // nothing passed the band in any year
+		text = "No event is left in the record then, which does not mean that none can come; so the figure has no range."
 	case a.Meets == targetMet:
 		text = "The end of its range meets the target too."
 	case shown == nil:
 		text = "The end of its range does not meet the target, and nor does that of any value looked at."
+	case shown.CI == nil && shown.Figure == 0:
+		text = fmt.Sprintf("The end of its range does not meet the target; the %s value looked at that does is %s, with which no event is left in the record.", widest, shown.Text)
 	default:
 		text = fmt.Sprintf("The end of its range does not meet the target; the %s value whose range does is %s: %s.", widest, shown.Text, v.point(shown))
 	}

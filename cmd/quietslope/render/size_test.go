@@ -242,3 +242,18 @@ func TestSizeShort(t *testing.T) {
 		t.Errorf("%s", text)
 	}
 }
+
+// TestSizeWithoutEvents: where no event is left there is no range, and none is said to meet the target.
+func TestSizeWithoutEvents(t *testing.T) {
+	const noRange = "No event is left in the record then, which does not mean that none can come; so the figure has no range."
+	s := sizing()
+	s.Answer.Figure, s.Answer.CI, s.Answer.Meets = 0, nil, targetMet
+	if text := strings.Join(strings.Fields(written(t, Size(s))), " "); !strings.Contains(text, noRange) || strings.Contains(text, "The end of its range") {
+		t.Error(text[:1200])
+	}
+	s = sizing()
+	s.Shown.Figure, s.Shown.CI, s.Shown.Meets = 0, nil, targetMet
+	if text := strings.Join(strings.Fields(written(t, Size(s))), " "); !strings.Contains(text, "the largest value looked at that does is 12.5 m, with which no event is left in the record.") {
+		t.Error(text[:1200])
+	}
+}
