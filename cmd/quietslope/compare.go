@@ -43,8 +43,9 @@ The format csv:
   one it is a count, a ratio or a share from 0 to 1, such as annual_probability; a difference, as in
   change.days_per_year.difference, has the unit before it. Figures are those of the counted years,
   but water_balance is mm over the whole record.
-  Entries of a list are counted from 1: days_by_month.1 is January. Only in keys of the study the
-  first has the number 0: defaults.options[0] is about the option that the text calls A.
+  Entries of a list are counted from 1: days_by_month.1 is January. The states of drains go by their
+  names, such as states.half_stopped.value. Only in keys of the study the first has the number 0:
+  defaults.options[0] is about the option that the text calls A.
   What the text leaves out because too few events stand behind it is there. Look for a row
   warning.few_events with the same option and band before you use a rate.
   For a table, keep the rows of one quantity and one band, such as load_m_days_per_year, and pivot

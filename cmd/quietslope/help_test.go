@@ -22,6 +22,11 @@ func TestStudyHelp(t *testing.T) {
 		}
 	}
 	flat := strings.Join(strings.Fields(text), " ")
+	for _, k := range scenario.Keys() {
+		if units := k.Form + " " + strings.Join(k.Units, " "); len(k.Units) > 0 && !strings.Contains(flat, units) {
+			t.Errorf("the units are not listed as %q", units)
+		}
+	}
 	var paths []string
 	listed := 0
 	for _, s := range sections(scenario.Keys()) {
@@ -124,14 +129,19 @@ func TestStudyHelpFormats(t *testing.T) {
 	}
 }
 
-// TestHelpOfCSV: the quantities that the help of compare and check names are there.
+// TestHelpOfCSV: the quantities that the help of compare, check and size names are there.
 func TestHelpOfCSV(t *testing.T) {
 	for command, quantities := range map[string][]string{
-		"compare": {"load_m_days_per_year", "water_balance.deep.in_mm", "peak_excess_m", "annual_probability", "days_by_month.1", "change.days_per_year.difference", "defaults.options[0]", "warning.few_events"},
+		"compare": {"load_m_days_per_year", "water_balance.deep.in_mm", "peak_excess_m", "annual_probability", "days_by_month.1", "change.days_per_year.difference", "states.half_stopped.value", "defaults.options[0]", "warning.few_events"},
 		"check":   {"audit.years.1"},
+		"size":    {"curve.1", "answer", "unit"},
 	} {
 		_, help, _ := program(t.Context(), "help", command)
-		code, found, stderr := program(t.Context(), command, demoStudy, "--format", "csv")
+		args := []string{command, demoStudy}
+		if command == "size" {
+			args = sizing
+		}
+		code, found, stderr := program(t.Context(), append(slices.Clip(args), "--format", "csv")...)
 		if code != 0 {
 			t.Fatal(stderr)
 		}

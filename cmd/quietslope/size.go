@@ -36,6 +36,11 @@ Examples:
   quietslope size study.yaml --option trenches --vary trench_drains.spacing --between "4 m .. 40 m"
   quietslope size study.yaml --option channels --vary surface_water.kept_out --between "0 .. 40 %"
   quietslope size study.yaml --option bores --vary bored_drains.rate --between "0.001 .. 0.02 /d"
+
+The format csv:
+  A row for every figure and every text, with the columns that "quietslope help compare" explains.
+  curve.1 is the value at the lower end of the range; the rows answer are about the answer. Values
+  are in the unit of the row unit, shares from 0 to 1.
 `,
 		Flags: []cli.Flag{
 			&cli.StringFlag{Name: flagOption, Usage: "NAME: the option. The name of a list of values stands for the options that it\nmakes, where that list is over the same number"},
