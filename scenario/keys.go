@@ -320,9 +320,9 @@ var bandFields = []field{
 		shape: shape{form: formNumber, limits: above(0, maxSafety)}, quiet: true, eg: "1.0"},
 	{name: "until", says: "level, or factor of safety, at which an event ends again, given in the same way as the band", absent: "by default the level at which the band begins",
 		shape: shape{form: formQuantity, kind: quantity.Length, limits: atLeast(-1000, 10000), bare: bySafety}, eg: "3.9 m"},
-	{name: "loss_per_event", says: "what an event costs that reaches this band and no higher one with a loss_per_event; needs money",
+	{name: "loss_per_event", says: "what an event costs that reaches this band and none above with such a loss (0 is none); needs money",
 		shape: moneyShape, def: "0", quiet: true, eg: "250000"},
-	{name: "loss_per_day", says: "what a day costs on which this is the highest band passed that has a loss_per_day; needs money",
+	{name: "loss_per_day", says: "what a day costs on which this is the highest band passed with such a loss (0 is none); needs money",
 		shape: moneyShape, def: "0", quiet: true, eg: "1800"},
 }
 
