@@ -208,7 +208,7 @@ func (p *prepared) frontier(options []optionFigures, r *stats.Resamples) {
 	}
 	differ := func(option, against int) bool { return p.toldApart(known[option], known[against], r) }
 	for _, step := range money.Steps(costs, benefits, among, differ) {
-		if step.Against >= 0 {
+		if step.Against >= 0 && known[step.Option] != base { // leaving things as they are is no step, whatever costs as little
 			c := known[step.Option].Cost
 			c.StepFrom, c.StepBenefitCost = known[step.Against].Name, step.Ratio
 		}

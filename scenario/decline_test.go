@@ -242,6 +242,9 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 				}
 				return sum
 			}
+			most := func(figure func(k int) float64) float64 {
+				return max(figure(0), figure(1), figure(2), figure(3))
+			}
 			series := func(figure func(k int) []float64) []float64 {
 				sum := make([]float64, c.Record.YearsCounted)
 				for k := range weight {
@@ -268,7 +271,7 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 
 					want := *o
 					want.Level = result.Level{
-						MeanM: mean(func(k int) float64 { return of(k).Level.MeanM }), MaxM: mean(func(k int) float64 { return of(k).Level.MaxM }),
+						MeanM: mean(func(k int) float64 { return of(k).Level.MeanM }), MaxM: most(func(k int) float64 { return of(k).Level.MaxM }),
 						Q50M: mean(func(k int) float64 { return of(k).Level.Q50M }), Q95M: mean(func(k int) float64 { return of(k).Level.Q95M }),
 						Q99M: mean(func(k int) float64 { return of(k).Level.Q99M }),
 					}
@@ -309,7 +312,7 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 						w.DaysPerYear = mean(func(k int) float64 { return band(k).DaysPerYear })
 						w.DaysInBandPerYear = mean(func(k int) float64 { return band(k).DaysInBandPerYear })
 						w.AnnualProbability = mean(func(k int) float64 { return band(k).AnnualProbability })
-						w.LongestDays = mean(func(k int) float64 { return band(k).LongestDays })
+						w.LongestDays = most(func(k int) float64 { return band(k).LongestDays })
 						w.LoadMDaysPerYear = mean(func(k int) float64 { return band(k).LoadMDaysPerYear })
 						for m := range w.DaysByMonth {
 							w.DaysByMonth[m] = mean(func(k int) float64 { return band(k).DaysByMonth[m] })
@@ -328,7 +331,14 @@ func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 							return &sum
 						}
 						w.MeanSpanDays = ofEventful(func(b *result.BandFigure) *float64 { return b.MeanSpanDays })
-						w.PeakExcessM = ofEventful(func(b *result.BandFigure) *float64 { return b.PeakExcessM })
+						if peak := most(func(k int) float64 {
+							if x := band(k).PeakExcessM; x != nil {
+								return *x
+							}
+							return 0
+						}); w.PeakExcessM != nil {
+							w.PeakExcessM = &peak
+						}
 						w.MeanExcessM = ofEventful(func(b *result.BandFigure) *float64 { return b.MeanExcessM })
 						lo, hi := stats.PoissonInterval(w.Events, float64(c.Record.YearsCounted), 0.9)
 						w.EventsPerYearCI = result.Interval{lo, hi}

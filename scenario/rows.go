@@ -42,9 +42,9 @@ func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted)
 }
 
 // mean is the weighted mean of the figures of several replays of an option, which is not what a replay with mean drains
-// would give. The rates and drains are those of the drains as new in this condition. All else is a mean, the highest level
-// too, but for the peak flow of a drain, which is the largest. Warnings see the furthest of
-// the replays. Single events belong to one replay each, so there is no list of them.
+// would give. The rates and drains are those of the drains as new in this condition. All else is a mean, but for extremes: the
+// highest level, the longest event, the highest excess and the peak flow of a drain are the largest of the replays. Warnings
+// see the furthest of them. Single events belong to one replay each, so there is no list of them.
 func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) optionFigures {
 	if len(parts) == 1 {
 		return parts[0]
@@ -65,14 +65,14 @@ func (p *prepared) mean(asNew *works, parts []optionFigures, weights []float64) 
 	}
 	f.Level = result.Level{
 		MeanM: of(func(f *optionFigures) float64 { return f.Level.MeanM }),
-		MaxM:  of(func(f *optionFigures) float64 { return f.Level.MaxM }),
 		Q50M:  of(func(f *optionFigures) float64 { return f.Level.Q50M }),
 		Q95M:  of(func(f *optionFigures) float64 { return f.Level.Q95M }),
 		Q99M:  of(func(f *optionFigures) float64 { return f.Level.Q99M }),
 	}
 	f.WaterBalance = meanBalance(of)
 	f.trace.works = asNew
-	for _, part := range parts[1:] {
+	for _, part := range parts {
+		f.Level.MaxM = max(f.Level.MaxM, part.Level.MaxM)
 		f.trace.fromDry = max(f.trace.fromDry, part.trace.fromDry)
 		f.trace.coverMax = max(f.trace.coverMax, part.trace.coverMax)
 		f.trace.deepMax = max(f.trace.deepMax, part.trace.deepMax)

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strconv"
 
 	"quietslope/cascade/drain"
 	"quietslope/scenario/fault"
@@ -164,12 +165,8 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 	case !given && under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadii*t.Radius):
 		ws.add(at(warn("formula_range")), "Drains of %s m radius are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller drain_radius, or equivalent_depth itself.", short(t.Radius))
 	}
-	const usual = "times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth."
-	switch ratio := t.Spacing / t.Depth; {
-	case ratio < leastSpacingRatio:
-		ws.add(at(note("spacing_unusual")), "The trenches are less than %s "+usual, short(leastSpacingRatio))
-	case ratio > mostSpacingRatio:
-		ws.add(at(note("spacing_unusual")), "The trenches are more than %s "+usual, short(mostSpacingRatio))
+	if ratio := t.Spacing / t.Depth; !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio) {
+		ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth.", strconv.FormatFloat(ratio, 'g', 2, 64))
 	}
 	poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
 }

@@ -5,10 +5,10 @@ import "math"
 // Average is the mean of several exceedances of one level in the same years, as of replays of one record with drains
 // of several ages. The weights are shares and sum to 1. It is the mean of the figures: nothing is counted anew.
 //
-// Every figure is the weighted mean, so Count and YearsAbove may have a fraction, AnyByYear is the share of the replays
-// in which the year has a step above, and Longest is a mean with 0 for a replay without a counted event. MeanSpan,
-// PeakExcess and MeanExcess describe counted events, so they are the mean over those replays that have one, whose
-// weights are made to sum to 1 again; they are 0 where none has. MeanExcess is so a mean of means: a replay with many
+// Every figure is the weighted mean, so Count and YearsAbove may have a fraction, and AnyByYear is the share of the replays
+// in which the year has a step above; but Longest and PeakExcess, which are extremes, are the largest of any replay of
+// positive weight. MeanSpan and MeanExcess describe counted events, so they are the mean over those replays that have one,
+// whose weights are made to sum to 1 again; they are 0 where none has. MeanExcess is so a mean of means: a replay with many
 // days above has no more say than its weight.
 //
 // Events is nil: events of different replays are not the events of one series and can be neither matched nor listed.
@@ -27,6 +27,11 @@ func Average(xs []Exceedance, weights []float64) Exceedance {
 			eventful[i] = weights[i]
 		}
 	}
+	for i := range xs {
+		if weights[i] > 0 {
+			m.Longest, m.PeakExcess = max(m.Longest, xs[i].Longest), max(m.PeakExcess, xs[i].PeakExcess)
+		}
+	}
 	one := func(weights []float64, figure func(*Exceedance) float64) float64 {
 		return weighted(len(xs), weights, func(i int) float64 { return figure(&xs[i]) })
 	}
@@ -40,9 +45,7 @@ func Average(xs []Exceedance, weights []float64) Exceedance {
 	m.Count = one(weights, func(x *Exceedance) float64 { return x.Count })
 	m.YearsAbove = one(weights, func(x *Exceedance) float64 { return x.YearsAbove })
 	m.DaysInBand = one(weights, func(x *Exceedance) float64 { return x.DaysInBand })
-	m.Longest = one(weights, func(x *Exceedance) float64 { return x.Longest })
 	m.MeanSpan = one(eventful, func(x *Exceedance) float64 { return x.MeanSpan })
-	m.PeakExcess = one(eventful, func(x *Exceedance) float64 { return x.PeakExcess })
 	m.MeanExcess = one(eventful, func(x *Exceedance) float64 { return x.MeanExcess })
 	m.EventsByYear = series(func(x *Exceedance) []float64 { return x.EventsByYear })
 	m.DaysByYear = series(func(x *Exceedance) []float64 { return x.DaysByYear })

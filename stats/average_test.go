@@ -35,10 +35,10 @@ func TestAverage(t *testing.T) {
 		YearsAbove:   0.5*2 + 0.25,
 		DaysInBand:   (0.5*(2+3) + 0.25*2) / 2,
 		ByMonth:      [12]float64{(0.5*3 + 0.25*2) / 2, 0.5 * 3 / 2},
-		Longest:      0.5*3 + 0.25*2,
+		Longest:      3,
 		// of the first two only, which have two thirds and one third of the weight there is
 		MeanSpan:   (2*3.5 + 2) / 3.0,
-		PeakExcess: (2*3 + 1) / 3.0,
+		PeakExcess: 3,
 		MeanExcess: (2*8/6.0 + 1) / 3,
 	}
 	got := Average(xs, []float64{0.5, 0.25, 0.25})

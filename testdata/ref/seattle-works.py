@@ -896,7 +896,7 @@ def run(study, tables):
             for j, b in enumerate(study.bands):
                 row = {"study": study.name, "condition": condition[0], "option": o.name, "drains_as": own_states[o.name], "band": b[0],
                        "nearest_band_m": f.near(), "events_counted": f.yearly(j, "events").sum(), "days_in_band_per_year": f.yearly(j, "in_band") / n,
-                       "longest_days": f.yearly(j, "longest")}
+                       "longest_days": max(c[j].longest for c in f.counts)}
                 for measure in MEASURES:
                     value, ci = figure(study, f, j, measure)
                     row.update({measure: value, measure + "_lower": ci[0], measure + "_upper": ci[1]})
@@ -1055,7 +1055,7 @@ def main():
                         "load m d, days, events, share of years; their intervals; meets_target of the target's own measure."]),
             ("counts", ["Figures of every band of testdata/seattle/works.yaml and works-bare.yaml, the mean over the ages of drains where they age, per year:",
                         IMPLICIT,
-                        "load m d, days, events, share of years; their intervals and the differences from the baseline; events of all counted years; longest event d."]),
+                        "load m d, days, events, share of years; their intervals and the differences from the baseline; events of all counted years; longest event d, the longest at any age."]),
             ("money", ["Costs and losses of testdata/seattle/works.yaml, EUR of 2026, over 40 years; its targets and times to effect, d, and those of works-bare.yaml.",
                        IMPLICIT, "A blank cell has no value."])):
         save(pd.DataFrame(tables[name]), name, about)

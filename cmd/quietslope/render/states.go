@@ -152,7 +152,7 @@ func (v *view) means(c *result.Case) string {
 	for _, t := range all[1:] {
 		text += fmt.Sprintf(", those of %s %s", someByLetter(t.options), t.text)
 	}
-	return text + ", so that counts need not be whole."
+	return text + ", so that counts need not be whole; longest and peak are the largest of all ages."
 }
 
 // statesShort says what the options that matter most have when their drains age or stop.
