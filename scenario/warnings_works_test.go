@@ -207,7 +207,8 @@ func TestSlowToActText(t *testing.T) {
 	}
 }
 
-// TestOneTextForAll: numbers that a table shows are left out of texts, so that options of one list share a note.
+// TestOneTextForAll: numbers that a table shows are left out of texts, so that options of one list share a note. No table shows
+// how many times as far apart as deep trenches are.
 func TestOneTextForAll(t *testing.T) {
 	p := quiet()
 	p.study.Ground.DeepSeepage = 0.005
@@ -232,7 +233,7 @@ func TestOneTextForAll(t *testing.T) {
 		t.Errorf("got %q, want %q", got, want)
 	}
 	for code, of := range texts {
-		if len(of) != 1 {
+		if len(of) != 1 && code != "spacing_unusual" {
 			t.Errorf("%s is said in %d ways", code, len(of))
 		}
 	}
