@@ -282,3 +282,25 @@ func TestEdgeNextToRest(t *testing.T) {
 		near(t, "deep store", s2, w2, tight(w2))
 	}
 }
+
+// TestCoverEmptiesBesideDeepStore: the deep store has no outlet, so that it rises ever more slowly until the cover is empty and
+// comes to rest at that very moment, for which the search for its turning point has no sign to go by. It is full before that.
+func TestCoverEmptiesBesideDeepStore(t *testing.T) {
+	inf := math.Inf(1)
+	m := cascade.Model{
+		Cover:       cascade.Store{Capacity: inf, Seepage: 100, Drains: []cascade.Outlet{{Square: math.Pow(10, -3.75), Ceiling: inf}}},
+		Percolation: cascade.Outlet{Rate: math.Pow(10, -0.3838005065917969), Ceiling: inf},
+		Deep:        cascade.Store{Capacity: 1.49298095703125},
+	}
+	r, err := cascade.NewRun(m, 0.10762005250554706, 1.4927424814154757)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := r.Step(-0.14664266720580843, 1.0/24); err != nil {
+		t.Fatal(err)
+	}
+	sums := r.Totals()
+	if e := sums.Deep.Error(); math.Abs(e) > 1e-15 || !(sums.Deep.Refused > 1e-6) {
+		t.Errorf("the balance is off by %v mm, refused %v", e, sums.Deep.Refused)
+	}
+}

@@ -86,6 +86,9 @@ func (p *pair) crossing(u1, u2, a, target, h float64) float64 {
 func crossing(gap func(t float64) (f, df float64), atStart, h float64) float64 {
 	before, after := 0.0, h
 	atEnd, _ := gap(h)
+	if atEnd == 0 { // the way there has no sign to go by
+		return h
+	}
 	t := h * (atStart / (atStart - atEnd)) // on the chord
 	stride := h
 	for range 200 {
