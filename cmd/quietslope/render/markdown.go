@@ -170,8 +170,9 @@ func escape(text string) string {
 			markup = true
 		case '_': // inside a word it is none
 			markup = !alphanumeric(before) || !alphanumeric(next)
-		case '<': // before a blank or a digit it begins no tag
-			markup = latin(next) || next == '/' || next == '!' || next == '?'
+		case '<': // before a blank or a digit it begins no tag, but before a digit it may begin an address as in <1@a>
+			inside, _, closed := strings.Cut(text[i+1:], ">")
+			markup = latin(next) || next == '/' || next == '!' || next == '?' || closed && strings.Contains(inside, "@")
 		case '&':
 			markup = latin(next) || next == '#'
 		case '#': // at the beginning and at the end of a heading
