@@ -66,6 +66,9 @@ const trenchSpacings = "spacing: [8 m, 12 m, 16 m, 24 m]"
 // the target, to half a per cent, and at one per cent wider the target is missed. The scan replays studies that are written
 // out, and counts the days itself.
 func TestSizeMeetsBruteForce(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes long")
+	}
 	found := size(t, parsed(t, demoText(t)), "trenches", "trench_drains.spacing", "4 m .. 40 m")
 	if found.Answer == nil || found.Beyond == nil {
 		t.Fatalf("no answer: %s", found.Reason)
@@ -115,6 +118,9 @@ func TestSizeMeetsBruteForce(t *testing.T) {
 
 // TestSizeWideRange: however wide the range, the answer is worked out to half a per cent of itself.
 func TestSizeWideRange(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes long")
+	}
 	s := parsed(t, demoText(t, "options:\n", "options:\n  - name: drier ground\n    set: {cover.seepage: 0.011 /d}\n"))
 	for _, tt := range []struct{ option, vary, usual, wide string }{
 		{"trenches", "trench_drains.spacing", "8 m .. 20 m", "0.01 m .. 10 km"},
@@ -155,6 +161,9 @@ func (p *prepared) daysAbove(s *Study, option int, level float64) (float64, erro
 
 // TestSizeMeetsCompare: every figure of a curve is that of compare, to the last bit, where the study has that value.
 func TestSizeMeetsCompare(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes long")
+	}
 	for _, tt := range []struct {
 		option, vary, between string
 		at                    []string // the two ends of the range are among them
@@ -353,6 +362,9 @@ func TestSizeGrid(t *testing.T) {
 
 // TestSizeEnds: what is said where the range holds no answer, or where it is an end.
 func TestSizeEnds(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes long")
+	}
 	const vary = "trench_drains.spacing"
 	for _, tt := range []struct {
 		what, between         string

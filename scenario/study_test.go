@@ -451,6 +451,9 @@ func TestNoPermission(t *testing.T) {
 
 // TestLargeStudies checks that time and message stay small whatever fills the file.
 func TestLargeStudies(t *testing.T) {
+	if testing.Short() {
+		t.Skip("takes long")
+	}
 	fill := func(s string) string { return strings.Repeat(s, (MaxStudyBytes-2000)/len(s)) }
 	var nested, unique strings.Builder
 	for i := 0; nested.Len() < MaxStudyBytes-3000; i++ {
