@@ -90,8 +90,8 @@ func (s *Study) ownStates(o *Option) (name string, states []aged) {
 // furtherStates are the states that the results show besides an option's own: what its drains are before a flush and when
 // nobody flushes them, and with every second and all of them stopped. An option without drains has none. Beside drains that
 // are flushed, those that never are stand at the end of their life or of the horizon before a flush. Drains that nobody
-// flushes are not renewed either. Every second one of drains whose rate is
-// given carries half; what drains carry at most stays as it is.
+// flushes are not renewed either. Every second one of drains whose rate is given carries half, and half of what they carry
+// at most; ageing leaves that as it is.
 func (s *Study) furtherStates(o *Option) []state {
 	if !o.drained() {
 		return nil

@@ -229,7 +229,7 @@ type Drain struct {
 // Level sums up the end-of-step deep levels of the counted years.
 type Level struct {
 	MeanM float64 `json:"mean_m"`
-	MaxM  float64 `json:"max_m"`
+	MaxM  float64 `json:"max_m"` // of drains that age the largest at any age, where all else is a mean
 	Q50M  float64 `json:"q50_m"`
 	Q95M  float64 `json:"q95_m"`
 	Q99M  float64 `json:"q99_m"`

@@ -106,7 +106,11 @@ func (v *view) ownStates(c *result.Case) string {
 	}) {
 		parts = append(parts, someByLetter(t.options)+verb(t.options, " stands", " stand")+" with "+t.text)
 	}
-	return " In all other tables " + andWords(parts) + "."
+	text := " In all other tables " + andWords(parts)
+	if v.means(c) != "" {
+		text += "; but what is longest, highest or a peak is the largest of all ages, and the rate of a drain that as new"
+	}
+	return text + "."
 }
 
 // ownState says which state of its drains an option's figures are for.
