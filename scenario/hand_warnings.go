@@ -60,7 +60,7 @@ func (h *hand) warnings(s *Study, rows []handRow, found *result.Drains) []result
 		{note("spacing_unusual"), func(r *handRow, _ *result.DrainSpacing) bool {
 			ratio := r.trench.Spacing / r.trench.Depth
 			return !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio)
-		}, "At a spacing of %s the drains are less than " + short(leastSpacingRatio) + " or more than " + short(mostSpacingRatio) + " times as far apart as they are deep; usual for trenches on slopes are 2 to 6 times. Check spacing and depth."},
+		}, "At a spacing of %s the drains are less than " + short(leastSpacingRatio) + " or more than " + short(mostSpacingRatio) + " times as far apart as they are deep; usual for trenches on slopes are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth."},
 		{warn("formula_range"), func(r *handRow, _ *result.DrainSpacing) bool {
 			return !given && !r.onBase() && (r.trench.Spacing < leastRadii*r.trench.Radius || r.under() < math.Pi*r.trench.Radius)
 		}, "At a spacing of %s the drains are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller radius, or the equivalent depth itself."},

@@ -166,7 +166,11 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 		ws.add(at(warn("formula_range")), "Drains of %s m radius are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller drain_radius, or equivalent_depth itself.", short(t.Radius))
 	}
 	if ratio := t.Spacing / t.Depth; !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio) {
-		ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth.", strconv.FormatFloat(ratio, 'g', 2, 64))
+		digits := 0 // two significant ones
+		if ratio < leastSpacingRatio {
+			digits = 1 - int(math.Floor(math.Log10(ratio)))
+		}
+		ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth.", strconv.FormatFloat(ratio, 'f', digits, 64))
 	}
 	poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
 }
@@ -260,8 +264,9 @@ func (p *prepared) stoppedWarnings(ws *warnings) {
 }
 
 // lawWarnings replay with the quadratic law what was replayed with the linear one far from the height that this was worked
-// out for, with the drains as new, and say by how much the deciding figure moves. The options for which the linear law lets out
-// too much share one text, and so do those for which it lets out too little.
+// out for, with the drains as new, and say by how much the deciding figure moves. The options whose water stands lower share
+// one text, and so do those whose water stands higher. Which law has the higher figure does not follow from that: bands are
+// passed while the water stands high.
 func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []optionFigures) error {
 	on := p.study.Count.DecideOn
 	if on < 0 {
@@ -312,9 +317,9 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 		return moved <= lawMoves*max(j.squared, j.linear) || moved <= lawMatters*most
 	})
 	for _, high := range []bool{false, true} {
-		far, too := "less than half", "much"
+		far := "less than half"
 		if high {
-			far, too = "more than twice", "little"
+			far = "more than twice"
 		}
 		var moved []string
 		for _, j := range jobs {
@@ -328,8 +333,8 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 			}
 			at := warn("linear_law_far")
 			at.Option, at.Band = j.option.Name, p.study.Bands[on].Name
-			ws.add(at, "While the trenches run the water midway stands at %s of their working_head, so that their linear rate lets out too %s. By the quadratic law, which follows the height, and with the drains as new the %s would be%s: %s. Set working_head to the usual height, or law: quadratic.",
-				far, too, measureTitle(m.name), m.unit, firstOf(moved, "; ", mostPairs))
+			ws.add(at, "While the trenches run the water midway stands at %s of their working_head on average; below that head a linear rate lets out too much, above it too little. By the quadratic law, which follows the height, and with the drains as new the %s would be%s: %s. Set working_head to the usual height, or law: quadratic.",
+				far, measureTitle(m.name), m.unit, firstOf(moved, "; ", mostPairs))
 		}
 	}
 	return nil
