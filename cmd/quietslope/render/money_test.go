@@ -102,7 +102,7 @@ func TestPricedExtremes(t *testing.T) {
 		{"no money", func(c *result.Comparison) {
 			c.Settings.Money = nil
 			each(func(_ int, o *result.Option) { o.Cost, o.Decision.DominatedBy, o.Decision.OnFrontier = nil, "", nil })(c)
-		}, []string{`Target: at most 2 days a year above "movement onset" (case 2)`, "those of B–E and G age over the design life, 50 years"}, []string{"EUR", "cost"}},
+		}, []string{`Target: at most 2 days a year above "movement onset" (case 2)`, "those of B–E and G age, without a flush over the design life, 50 years"}, []string{"EUR", "cost"}},
 		{"none is told apart", costs(func(_ int, of *result.Cost) {
 			of.ToldApart, of.BenefitCost, of.StepBenefitCost = false, nil, nil
 			of.PerDayAvoided, of.PerDayAvoidedCI, of.PerEventAvoided, of.PerEventAvoidedCI, of.BreakEvenLoss = nil, nil, nil, nil, nil

@@ -76,7 +76,7 @@ func (v *view) drainsText() string {
 		if v.c.Settings.Money != nil {
 			of = "the horizon of the costs"
 		}
-		parts = append(parts, fmt.Sprintf("those of %s age over %s, %s", someByLetter(options), of, plural(v.agingYears(), "year")))
+		parts = append(parts, fmt.Sprintf("those of %s age, without a flush over %s, %s", someByLetter(options), of, plural(v.agingYears(), "year")))
 	}
 	return strings.Join(parts, "; ")
 }

@@ -115,7 +115,7 @@ func TestMeans(t *testing.T) {
 	for _, want := range []string{
 		"The figures of B–D and G are means over the ages of their drains between two flushes, those of E over 50 years without a flush, or over their life if they are renewed before, so that counts need not be whole; longest and peak are the largest of all ages.",
 		"In all other tables B–D and G stand with the mean between two flushes and E stands with the mean over the years; but what is longest, highest or a peak is the largest of all ages, and the rate of a drain that as new.", " 4.5 (", " <0.1 (",
-		"those of B–E and G age over the horizon of the costs, 50 years",
+		"those of B–E and G age, without a flush over the horizon of the costs, 50 years",
 	} {
 		if !strings.Contains(text, want) {
 			t.Errorf("no %q in\n%s", want, text)
