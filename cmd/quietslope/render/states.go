@@ -226,24 +226,30 @@ func (v *view) statesShort(c *result.Case, band int, by *measure) {
 
 // inTarget says of options with a known state which of them meet the target in it.
 func inTarget(c *result.Case, options []int, state string) string {
-	var met, notShown []int
-	for _, i := range options {
-		switch stateOf(&c.Options[i], state).MeetsTarget {
-		case targetMet:
-			met = append(met, i)
-		case targetNotShown:
-			notShown = append(notShown, i)
+	var parts []string
+	target := "the target"
+	for _, of := range []struct {
+		answer, all, is, are string
+	}{
+		{targetMet, "meeting the target", "meets", "meet"},
+		{targetMissed, "missing the target", "misses", "miss"},
+		{targetNotShown, "meeting the target is not shown", "is not shown to meet", "are not shown to meet"},
+	} {
+		var some []int
+		for _, i := range options {
+			if stateOf(&c.Options[i], state).MeetsTarget == of.answer {
+				some = append(some, i)
+			}
+		}
+		if len(some) == len(options) {
+			return of.all
+		}
+		if some != nil {
+			parts = append(parts, someByLetter(some)+" "+verb(some, of.is, of.are)+" "+target)
+			target = "it"
 		}
 	}
-	switch {
-	case len(met) == len(options):
-		return "meeting the target"
-	case met != nil:
-		return someByLetter(met) + verb(met, " meets", " meet") + " the target"
-	case notShown != nil:
-		return "meeting the target is not shown"
-	}
-	return "missing the target"
+	return strings.Join(parts, "; ")
 }
 
 // spread are the figures of options in a state: each of up to three, the least and the highest of more.
