@@ -49,14 +49,21 @@ func declineOver(part float64, horizon int) func(*Decline) float64 {
 		case d == nil:
 			return 1
 		case math.IsInf(d.Every, 1):
-			years := float64(horizon)
-			if d.Renewed > 0 {
-				years = min(years, d.Renewed)
-			}
-			return math.Exp2(-part * years / d.HalfLife)
+			return math.Exp2(-part * min(float64(horizon), d.neglected()) / d.HalfLife)
 		}
 		return d.Restored * math.Exp2(-part*d.Every/d.HalfLife)
 	}
+}
+
+// neglected is the time, y, for which drains that clog are neither flushed nor renewed; 0 for others.
+func (d *Decline) neglected() float64 {
+	switch {
+	case d == nil:
+		return 0
+	case d.Renewed > 0:
+		return min(d.Every, d.Renewed)
+	}
+	return d.Every
 }
 
 // horizon is the time, y, over which drains age and money counts.

@@ -211,7 +211,8 @@ func casesOf(t *testing.T, s *Study) (*prepared, [][]optionFigures) {
 var alike = cmp.Options{cmpopts.EquateApprox(1e-11, 1e-11)}
 
 // TestRowIsTheMeanOfFourStudies: the figures of an option whose drains clog are the mean of those of four studies that have
-// the rates at four ages written out, and each interval is that of the mean of the yearly figures.
+// the rates at four ages written out, but that extremes are the largest of all ages, and each interval is that of the mean of
+// the yearly figures.
 func TestRowIsTheMeanOfFourStudies(t *testing.T) {
 	for _, horizon := range []int{30, 12} {
 		t.Run(fmt.Sprintf("horizon %d y", horizon), func(t *testing.T) {

@@ -388,7 +388,7 @@ var costShape = shape{form: formBlock, filled: true, hint: costMeant, fields: []
 		shape: moneyShape, def: "0", quiet: true, eg: "600"},
 	{name: "per_flush", says: "paid whenever decline.flushed_every has passed",
 		shape: moneyShape, def: "0", quiet: true, eg: "4000"},
-	{name: "life", says: "time after which capital and metres are paid again", absent: "by default never renewed",
+	{name: "life", says: "time after which capital and metres are paid again, and drains that nobody flushes are as new", absent: "by default never renewed",
 		shape: years(atLeast(365.25, 365250), "works that are never renewed have no life; delete the key"), quiet: true, eg: "30 y"},
 	{name: "like", says: "name of an option above whose cost is taken, or of several whose costs are added up", absent: "may be left out",
 		shape: shape{form: formOneOrMore, most: mostCosts}, quiet: true, eg: "name of the other option"},

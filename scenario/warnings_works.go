@@ -133,7 +133,7 @@ func (p *prepared) designWarnings(ws *warnings, w *works) {
 		if (m.Trench != nil || m.Bored != nil) && m.decline() == nil {
 			ws.add(at(warn("drains_never_clog")), "The %s are taken as new for ever. Drains clog; give decline with a half_life, such as 10 y and 20 y in turn, and see what is left.", measureWords(m.Key))
 		}
-		if m.Bored != nil && m.Bored.Decline != nil && m.Bored.Decline.Every > mostUnflushed {
+		if m.Bored != nil && m.Bored.Decline.neglected() > mostUnflushed {
 			ws.add(at(warn("bored_drains_unflushed")), "The bored drains go without flushing for more than %.0f years. Without upkeep such drains last 15 to 20 years at most (European guidance); plan flushing, and pay for it.", mostUnflushed)
 		}
 		if m.Trench == nil {

@@ -79,6 +79,8 @@ func TestWorksWarnings(t *testing.T) {
 		{"bores flushed every 15 years", bores(func(b *BoredDrains) { b.Decline = &Decline{HalfLife: 10, Every: 15, Restored: 1} }), nil},
 		{"bores flushed less often", bores(func(b *BoredDrains) { b.Decline = &Decline{HalfLife: 10, Every: 15.01, Restored: 1} }), []string{"bored_drains_unflushed"}},
 		{"bores that nobody flushes", bores(func(b *BoredDrains) { b.Decline = &Decline{HalfLife: 10, Every: math.Inf(1)} }), []string{"bored_drains_unflushed"}},
+		{"bores that are renewed instead", bores(func(b *BoredDrains) { b.Decline = &Decline{HalfLife: 10, Every: math.Inf(1), Renewed: 15} }), nil},
+		{"bores that are renewed later", bores(func(b *BoredDrains) { b.Decline = &Decline{HalfLife: 10, Every: math.Inf(1), Renewed: 16} }), []string{"bored_drains_unflushed"}},
 
 		{"down to the slip surface", sloped(3, trenches(func(*TrenchDrains) {})), nil},
 		{"short of the slip surface", sloped(3.01, trenches(func(*TrenchDrains) {})), []string{"trench_above_slip"}},

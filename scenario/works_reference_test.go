@@ -217,8 +217,8 @@ func TestWorksDrains(t *testing.T) {
 	t.Logf("largest difference %.1e at %s", w.worst, w.at)
 }
 
-// TestWorksCounts: every figure of every band, whole for drains of one age, else the mean of the figures over four ages, with
-// its interval and its change against the baseline.
+// TestWorksCounts: every figure of every band, whole for drains of one age, else the mean of the figures over four ages and
+// the longest event of all, with its interval and its change against the baseline.
 func TestWorksCounts(t *testing.T) {
 	found := worksStudies(t)
 	w := &worksCheck{worksTable: readWorks(t, "counts")}
