@@ -419,6 +419,23 @@ func TestRatiosNeedADifference(t *testing.T) {
 	}
 }
 
+// TestNoStepToTheBaseline: an option that costs as little as the baseline and does as much by the deciding figure may stand
+// before it by its losses. The next step is from that option; to leave things as they are is none.
+func TestNoStepToTheBaseline(t *testing.T) {
+	free := []Cost{{Life: math.Inf(1)}}
+	p, options, r := priced(Money{Horizon: 10}, []offer{
+		{name: "as it stands", costs: free, days: constant(8, 10), losses: constant(8, 100)},
+		{name: "as good", costs: free, days: constant(8, 10), losses: constant(8, 90), deep: 1},
+		{name: "better", costs: []Cost{{Capital: 10, Life: math.Inf(1)}}, days: constant(8, 5), losses: constant(8, 50), deep: 1},
+	})
+	p.costs(options, r)
+	for i, want := range []string{"", "", "as good"} {
+		if on := options[i].Decision.OnFrontier; !*on || options[i].Cost.StepFrom != want {
+			t.Errorf("%s: on the frontier %v, step from %q, want %q", options[i].Name, *on, options[i].Cost.StepFrom, want)
+		}
+	}
+}
+
 // TestCostIntervals: intervals of what is avoided are those of the resampled differences, turned round and multiplied.
 func TestCostIntervals(t *testing.T) {
 	base := offer{name: "base", days: []float64{20, 14, 31, 8, 25, 17, 40, 11}, events: []float64{2, 1, 3, 1, 2, 2, 4, 1}, losses: []float64{100, 80, 250, 30, 160, 90, 400, 50}}
