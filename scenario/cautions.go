@@ -3,7 +3,14 @@ package scenario
 // Version of the program, as results carry it.
 const Version = "0.1.0"
 
-// Cautions are the short form of SAFETY.md. They stand in every result.
+// handCautions are those of a check by hand, which replays nothing.
+var handCautions = []string{
+	"These figures are of parallel drains in even ground over a level base. They are no stability analysis and no forecast of movement: nobody's safety may rest on them alone.",
+	"What they do to the level that moves the slope, only a replay and then readings can show. Conductivity is seldom well known, and the rate goes with it: try a third of it, and three times as much.",
+	Cautions[len(Cautions)-1],
+}
+
+// Cautions are the short form of SAFETY.md. They stand in every result of a replay.
 var Cautions = []string{
 	"These figures compare options on one record. They are no stability analysis, no forecast of movement and no warning system: nobody's safety may rest on them alone.",
 	"Each layer has a single level. Left out: flow along and across the slope, pressure in the clay that lags its fissures, water held up above the table, artesian water, frost, snow (it counts as rain on the day it falls), earthquake, loading, cutting and erosion of the toe.",

@@ -107,7 +107,7 @@ func (o *Option) renewDrains() {
 		decline := m.decline()
 		for _, c := range o.Costs {
 			if decline != nil && (c.Drains == m.Key || len(o.Costs) == 1) && c.Capital+c.PerMetre > 0 && !math.IsInf(c.Life, 1) {
-				decline.Renewed = c.Life
+				decline.Renewed = max(decline.Renewed, c.Life) // of several parts the longest, to be on the safe side
 			}
 		}
 	}

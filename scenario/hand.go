@@ -19,6 +19,7 @@ func HandCheck(s *Study, q HandQuery) (*result.Drains, error) {
 	h := q.read(r)
 	var rows []handRow
 	found := &result.Drains{Head: newHead(s, "drains")}
+	found.Cautions = handCautions
 	if s == nil {
 		rows = h.rows(&q, r)
 	} else {
