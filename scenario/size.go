@@ -3,6 +3,7 @@ package scenario
 import (
 	"context"
 	"errors"
+	"fmt"
 	"math"
 	"slices"
 
@@ -17,6 +18,7 @@ type SizeQuery struct {
 	Vary      string // the key in the option, such as trench_drains.spacing
 	Between   string // the range, such as "4 m .. 40 m"
 	Condition string // of the works; "" for as built
+	Drains    string // state of the drains, such as before_flush; "" for that which the option's own figures are for
 }
 
 const (
@@ -34,6 +36,7 @@ type sizing struct {
 	prepared  *prepared
 	option    int
 	condition Condition
+	drains    *state // nil for that which the option's own figures are for
 	key       string
 	shape     *shape
 	unit      string  // that the range is written in; "" for bare numbers
@@ -113,6 +116,9 @@ func newSizing(s *Study, q SizeQuery) (*sizing, error) {
 	if z.shape, err = s.numberOf(z.option, q.Vary); err != nil {
 		return nil, err
 	}
+	if z.drains, err = s.stateToSize(&s.Options[z.option], q.Drains); err != nil {
+		return nil, err
+	}
 	if err := z.between(q.Between); err != nil {
 		return nil, err
 	}
@@ -122,6 +128,29 @@ func newSizing(s *Study, q SizeQuery) (*sizing, error) {
 		}
 	}
 	return z, nil
+}
+
+// stateToSize is the state of an option's drains with a name, nil for none. With all drains stopped there is nothing to size.
+func (s *Study) stateToSize(o *Option, name string) (*state, error) {
+	if name == "" {
+		return nil, nil
+	}
+	known := []string{}
+	for _, in := range append([]state{asNew}, s.furtherStates(o)...) {
+		if in.name == name && name != stateStopped {
+			return &in, nil
+		}
+		if in.name != stateStopped && !slices.Contains(known, in.name) {
+			known = append(known, in.name)
+		}
+	}
+	switch {
+	case !o.drained():
+		return nil, &fault.Error{Key: "--drains", Text: fmt.Sprintf("%s has no drains; leave --drains out", quoted(o.Name))}
+	case name == stateStopped:
+		return nil, &fault.Error{Key: "--drains", Text: "with all drains stopped there is nothing to size; use " + fault.Words(known, "or")}
+	}
+	return nil, &fault.Error{Key: "--drains", Text: fmt.Sprintf("the drains of %s have no state %s; use %s", quoted(o.Name), quoted(name), fault.Words(known, "or"))}
 }
 
 // prepare settles what all values share.
@@ -209,7 +238,11 @@ func (z *sizing) replay(ctx context.Context, value float64) (*prepared, []option
 	}
 	p := *z.prepared
 	p.study, p.baseline, p.works = s, 0, []*works{w}
-	p.cases = []caseWorks{{condition: z.condition.Name, works: p.works, rows: [][]weighted{s.row(w, &z.condition)}}}
+	row := s.row(w, &z.condition)
+	if z.drains != nil {
+		row = []weighted{{newWorks(s, &s.Options[0], &z.condition, *z.drains), 1}}
+	}
+	p.cases = []caseWorks{{condition: z.condition.Name, works: p.works, rows: [][]weighted{row}}}
 	f, err := p.rowFigures(ctx, w, p.cases[0].rows[0])
 	if err != nil {
 		var found *fault.Error
@@ -217,6 +250,9 @@ func (z *sizing) replay(ctx context.Context, value float64) (*prepared, []option
 			err = z.refused(value, found.Text)
 		}
 		return nil, nil, err
+	}
+	if z.drains != nil {
+		f.DrainsAs = z.drains.name
 	}
 	all := []optionFigures{f}
 	p.judge(&all[0], &all[0], z.resamples)

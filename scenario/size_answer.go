@@ -90,7 +90,7 @@ func (z *sizing) describe(ctx context.Context, found *result.Size) error {
 	if err != nil {
 		return err
 	}
-	if err := p.states(ctx, options, &z.condition, z.resamples); err != nil {
+	if options[0].States, err = z.states(ctx, shown.Value); err != nil {
 		return err
 	}
 	f := &options[0]
@@ -126,6 +126,18 @@ func (z *sizing) describe(ctx context.Context, found *result.Size) error {
 		return w.Band != "" && w.Band != found.DecideOn || w.Code == "losses_not_given" // which no sizing needs
 	})
 	return nil
+}
+
+// states are the deciding figures of the option with a value in every state of its drains, whichever it is sized for.
+func (z *sizing) states(ctx context.Context, value float64) ([]result.State, error) {
+	own := *z
+	own.drains = nil
+	p, options, err := own.replay(ctx, value)
+	if err != nil {
+		return nil, err
+	}
+	err = p.states(ctx, options, &z.condition, z.resamples)
+	return options[0].States, err
 }
 
 // answerWarnings add what the reader of the answer and the curve must weigh.

@@ -639,7 +639,7 @@ options:
 func TestSizeCondition(t *testing.T) {
 	s := parsed(t, demoText(t, "\nsite:", "\nconditions:\n  - {name: worn, drains: 60 %}\n\nsite:"))
 	built := size(t, s, "trenches", "trench_drains.spacing", "4 m .. 40 m")
-	worn, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", "Worn"})
+	worn, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", "Worn", ""})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -661,7 +661,7 @@ func TestSizeCondition(t *testing.T) {
 func TestSizeLawOfACondition(t *testing.T) {
 	s := parsed(t, demoText(t, "law: quadratic", "working_head: 1.2 m", "\nsite:", "\nconditions:\n  - {name: worn, drains: 99 %}\n\nsite:"))
 	for condition, want := range map[string]bool{"": true, "worn": false} {
-		found, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", condition})
+		found, err := Size(context.Background(), s, SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", condition, ""})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -745,26 +745,26 @@ func TestSizeRefuses(t *testing.T) {
 		q    SizeQuery
 		want string
 	}{
-		{SizeQuery{"spacings", spacing, "4 m .. 40 m", ""}, `--option: the study has no "spacings"; did you mean "spacing"?`},
-		{SizeQuery{"as it stands", spacing, "4 m .. 40 m", ""}, `--option: "as it stands" does nothing, so it has no number to vary`},
-		{SizeQuery{"spacing", spacing, "4 m .. 40 m", "neglected"}, `--condition: the study has no "neglected"` + "\n  it has: as built"},
-		{SizeQuery{"spacing", "spacing", "4 m .. 40 m", ""}, `--vary: "spacing" is no number of the option "spacing"; did you mean trench_drains.spacing?`},
-		{SizeQuery{"spacing", "trench_drain.spacing", "4 m .. 40 m", ""}, `--vary: "trench_drain.spacing" is no number of the option "spacing"; did you mean trench_drains.spacing?`},
-		{SizeQuery{"spacing", "trench_drains.law", "4 m .. 40 m", ""}, `--vary: "trench_drains.law" is no number of the option "spacing"` + "\n  it has: trench_drains.depth"},
-		{SizeQuery{"spacing", "cost.per_metre", "4 .. 40", ""}, `--vary: "cost.per_metre" is no number of the option "spacing"`},
-		{SizeQuery{"rate", spacing, "4 m .. 40 m", ""}, `--vary: trench_drains.spacing has no place beside trench_drains.rate, which "rate" gives`},
-		{SizeQuery{"bores", "bored_drains.number", "4 .. 40", ""}, `--vary: bored_drains.number changes what the drains cost and no level, so no value of it can meet a target`},
-		{SizeQuery{"ground", "set.deep.consolidation", "1 .. 4 m2/y", ""}, `--vary: set.deep.consolidation changes the time until trenches act and no level, so no value of it can meet a target`},
-		{SizeQuery{"spacing", spacing, "4 m", ""}, `--between: "4 m" is not a range; write two values of a length, such as 1 .. 4 m`},
-		{SizeQuery{"spacing", spacing, "40 m .. 4 m", ""}, `--between: "40 m .. 4 m" does not rise; write the smaller value first, 4 m .. 40 m`},
-		{SizeQuery{"spacing", spacing, "4 .. 40", ""}, `--between: "4 .. 40" has no unit; write 4 .. 40 m`},
-		{SizeQuery{"others", "vegetation.pet_factor", "1 m .. 2 m", ""}, `--between: "2 m": a number without a unit is wanted here; write 2`},
-		{SizeQuery{"spacing", spacing, "0 m .. 40 m", ""}, `--between: trench_drains.spacing cannot be 0 m: `},
-		{SizeQuery{"spacing", spacing, "-4 m .. 40 m", ""}, `--between: trench_drains.spacing cannot be -4 m: `},
-		{SizeQuery{"spacing", spacing, "0.1 mm .. 40 m", ""}, `--between: trench_drains.spacing cannot be 0.0001 m: the drains work out at `},
-		{SizeQuery{"rate", "trench_drains.depth", "1 m .. 5 m", ""}, `--between: trench_drains.depth cannot be 5 m: `},
-		{SizeQuery{"others", "surface_water.kept_out", "0 .. 150 %", ""}, `--between: surface_water.kept_out cannot be 150 %: `},
-		{SizeQuery{"bores", "bored_drains.level", "1 m .. 99 m", ""}, `--between: bored_drains.level cannot be 99 m: `},
+		{SizeQuery{"spacings", spacing, "4 m .. 40 m", "", ""}, `--option: the study has no "spacings"; did you mean "spacing"?`},
+		{SizeQuery{"as it stands", spacing, "4 m .. 40 m", "", ""}, `--option: "as it stands" does nothing, so it has no number to vary`},
+		{SizeQuery{"spacing", spacing, "4 m .. 40 m", "neglected", ""}, `--condition: the study has no "neglected"` + "\n  it has: as built"},
+		{SizeQuery{"spacing", "spacing", "4 m .. 40 m", "", ""}, `--vary: "spacing" is no number of the option "spacing"; did you mean trench_drains.spacing?`},
+		{SizeQuery{"spacing", "trench_drain.spacing", "4 m .. 40 m", "", ""}, `--vary: "trench_drain.spacing" is no number of the option "spacing"; did you mean trench_drains.spacing?`},
+		{SizeQuery{"spacing", "trench_drains.law", "4 m .. 40 m", "", ""}, `--vary: "trench_drains.law" is no number of the option "spacing"` + "\n  it has: trench_drains.depth"},
+		{SizeQuery{"spacing", "cost.per_metre", "4 .. 40", "", ""}, `--vary: "cost.per_metre" is no number of the option "spacing"`},
+		{SizeQuery{"rate", spacing, "4 m .. 40 m", "", ""}, `--vary: trench_drains.spacing has no place beside trench_drains.rate, which "rate" gives`},
+		{SizeQuery{"bores", "bored_drains.number", "4 .. 40", "", ""}, `--vary: bored_drains.number changes what the drains cost and no level, so no value of it can meet a target`},
+		{SizeQuery{"ground", "set.deep.consolidation", "1 .. 4 m2/y", "", ""}, `--vary: set.deep.consolidation changes the time until trenches act and no level, so no value of it can meet a target`},
+		{SizeQuery{"spacing", spacing, "4 m", "", ""}, `--between: "4 m" is not a range; write two values of a length, such as 1 .. 4 m`},
+		{SizeQuery{"spacing", spacing, "40 m .. 4 m", "", ""}, `--between: "40 m .. 4 m" does not rise; write the smaller value first, 4 m .. 40 m`},
+		{SizeQuery{"spacing", spacing, "4 .. 40", "", ""}, `--between: "4 .. 40" has no unit; write 4 .. 40 m`},
+		{SizeQuery{"others", "vegetation.pet_factor", "1 m .. 2 m", "", ""}, `--between: "2 m": a number without a unit is wanted here; write 2`},
+		{SizeQuery{"spacing", spacing, "0 m .. 40 m", "", ""}, `--between: trench_drains.spacing cannot be 0 m: `},
+		{SizeQuery{"spacing", spacing, "-4 m .. 40 m", "", ""}, `--between: trench_drains.spacing cannot be -4 m: `},
+		{SizeQuery{"spacing", spacing, "0.1 mm .. 40 m", "", ""}, `--between: trench_drains.spacing cannot be 0.0001 m: the drains work out at `},
+		{SizeQuery{"rate", "trench_drains.depth", "1 m .. 5 m", "", ""}, `--between: trench_drains.depth cannot be 5 m: `},
+		{SizeQuery{"others", "surface_water.kept_out", "0 .. 150 %", "", ""}, `--between: surface_water.kept_out cannot be 150 %: `},
+		{SizeQuery{"bores", "bored_drains.level", "1 m .. 99 m", "", ""}, `--between: bored_drains.level cannot be 99 m: `},
 	} {
 		_, err := Size(context.Background(), s, tt.q)
 		var f *fault.Error
@@ -776,17 +776,17 @@ func TestSizeRefuses(t *testing.T) {
 	}
 
 	demo := parsed(t, demoText(t))
-	_, err := Size(context.Background(), demo, SizeQuery{"trenches", "trench_drains.depth", "1 m .. 4 m", ""})
+	_, err := Size(context.Background(), demo, SizeQuery{"trenches", "trench_drains.depth", "1 m .. 4 m", "", ""})
 	if want := `--option: "trenches" is a list over trench_drains.spacing; to size another number name one of its options, such as "trenches, spacing 8 m"`; err == nil || err.Error() != want {
 		t.Errorf("%v", err)
 	}
-	_, err = Size(context.Background(), demo, SizeQuery{"nobody", "trench_drains.depth", "1 m .. 4 m", ""})
+	_, err = Size(context.Background(), demo, SizeQuery{"nobody", "trench_drains.depth", "1 m .. 4 m", "", ""})
 	if err == nil || !strings.Contains(err.Error(), "it has: trenches\n          as it stands\n          trenches, spacing 8 m") {
 		t.Errorf("%v", err)
 	}
 
 	alone, _, _ := strings.Cut(demoText(t, "  decide_on: movement onset ", "  # "), "\n  - name: trenches\n")
-	_, err = Size(context.Background(), parsed(t, edited(t, alone, "target: {days: 2}", "")), SizeQuery{"as it stands", spacing, "4 m .. 40 m", ""})
+	_, err = Size(context.Background(), parsed(t, edited(t, alone, "target: {days: 2}", "")), SizeQuery{"as it stands", spacing, "4 m .. 40 m", "", ""})
 	if err == nil || !strings.Contains(err.Error(), "count.decide_on: several bands are given, so say which of them the option is sized on: give decide_on") {
 		t.Errorf("%v", err)
 	}
@@ -796,7 +796,45 @@ func TestSizeRefuses(t *testing.T) {
 func TestSizeStops(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
-	if _, err := Size(ctx, parsed(t, demoText(t)), SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", ""}); !errors.Is(err, context.Canceled) {
+	if _, err := Size(ctx, parsed(t, demoText(t)), SizeQuery{"trenches", "trench_drains.spacing", "4 m .. 40 m", "", ""}); !errors.Is(err, context.Canceled) {
 		t.Error(err)
+	}
+}
+
+// TestSizeDrains: sized for a state of its drains an option has the figures that it has in that state, and is sized safer the
+// less is left of them.
+func TestSizeDrains(t *testing.T) {
+	s := parsed(t, demoText(t))
+	last := math.Inf(1)
+	for _, in := range []string{stateNew, stateMean, stateBefore, stateHalf} {
+		q := SizeQuery{Option: "trenches", Vary: "trench_drains.spacing", Between: "4 m .. 20 m", Drains: in}
+		if in == stateMean { // its own
+			q.Drains = ""
+		}
+		found, err := Size(context.Background(), s, q)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if found.DrainsAs != in || !(found.Answer.Value < last) {
+			t.Errorf("%s: sized as %s at %s", in, found.DrainsAs, found.Answer.Text)
+		}
+		last = found.Answer.Value
+		k := slices.IndexFunc(found.States, func(r result.State) bool { return r.State == in })
+		if r := found.States[k]; r.Value != found.Answer.Figure || !cmp.Equal(r.CI, found.Answer.CI) || r.MeetsTarget != found.Answer.Meets || len(found.States) != 6 {
+			t.Errorf("%s: %+v, want %+v", in, r, found.Answer)
+		}
+	}
+	for in, want := range map[string]string{
+		"all_stopped": `--drains: with all drains stopped there is nothing to size; use as_new, before_flush, never_flushed or half_stopped`,
+		"clogged":     `--drains: the drains of "trenches, spacing 8 m" have no state "clogged"; use as_new, before_flush, never_flushed or half_stopped`,
+	} {
+		_, err := Size(context.Background(), s, SizeQuery{Option: "trenches", Vary: "trench_drains.spacing", Between: "4 m .. 20 m", Drains: in})
+		if err == nil || err.Error() != want {
+			t.Errorf("%s: %v, want %s", in, err, want)
+		}
+	}
+	_, err := Size(context.Background(), s, SizeQuery{Option: "lined channels", Vary: "surface_water.kept_out", Between: "0 .. 40 %", Drains: stateHalf})
+	if want := `--drains: "lined channels" has no drains; leave --drains out`; err == nil || err.Error() != want {
+		t.Errorf("%v, want %s", err, want)
 	}
 }

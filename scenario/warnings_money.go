@@ -165,7 +165,7 @@ func (p *prepared) targetWarnings(ws *warnings, options []optionFigures) {
 			continue
 		}
 		if aged := missed(stateMean, stateHorizon, stateBefore); len(aged) > 0 { // the mildest says it all
-			ws.add(at, "The target is met with the drains as new, and missed %s. Size them for the state that they will be in: give a condition with the share that is left then, and name it to size with --condition.", aged[0])
+			ws.add(at, "The target is met with the drains as new, and missed %s. Size them for the state that they will be in: see size --drains.", aged[0])
 		} else if lapsed := missed(stateNever, stateHalf, stateStopped); len(lapsed) > 0 {
 			at.Code, at.Severity = "target_needs_drains", result.Note
 			ws.add(at, "The target is missed %s. Say who keeps them running, and what is done if nobody does.", fault.Words(lapsed, "and"))

@@ -26,6 +26,7 @@ const (
 	flagTo        = "to"
 	flagVary      = "vary"
 	flagBetween   = "between"
+	flagDrains    = "drains"
 )
 
 // format is a way to write a result.

@@ -35,7 +35,8 @@ What it needs:
 Examples:
   quietslope size study.yaml --option trenches --vary trench_drains.spacing --between "4 m .. 40 m"
   quietslope size study.yaml --option channels --vary surface_water.kept_out --between "0 .. 40 %"
-  quietslope size study.yaml --option bores --vary bored_drains.rate --between "0.001 .. 0.02 /d"
+  quietslope size study.yaml --option bores --vary bored_drains.rate --between "0.001 .. 0.02 /d" \
+    --drains before_flush
 
 The format csv:
   A row for every figure and every text, with the columns that "quietslope help compare" explains.
@@ -47,6 +48,7 @@ The format csv:
 			&cli.StringFlag{Name: flagVary, Usage: "KEY: the number in the option, as in the study: trench_drains.spacing"},
 			&cli.StringFlag{Name: flagBetween, Usage: "RANGE: the values to look at, such as \"4 m .. 40 m\" or \"0 .. 40 %\". The answer is\nin the unit given here"},
 			&cli.StringFlag{Name: flagCondition, Usage: "NAME: size the works in this condition of the study (default: as built)"},
+			&cli.StringFlag{Name: flagDrains, Usage: "VALUE: size drains that age or stop for one state: as_new, before_flush,\nnever_flushed or half_stopped (default: the state that compare takes)"},
 			formatFlag(), outFlag(),
 		},
 		Action: func(c *cli.Context) error {
@@ -58,7 +60,7 @@ The format csv:
 				case !c.IsSet(name) && needed:
 					value, _ := usageOf(f)
 					missing = append(missing, "--"+name+" "+value)
-				case c.IsSet(name) && c.String(name) == "" && (needed || name == flagCondition):
+				case c.IsSet(name) && c.String(name) == "" && (needed || name == flagCondition || name == flagDrains):
 					return usagef(c.Command.Name, "--%s needs a value", name)
 				}
 			}
@@ -67,6 +69,7 @@ The format csv:
 			}
 			q := scenario.SizeQuery{
 				Option: c.String(flagOption), Vary: c.String(flagVary), Between: c.String(flagBetween), Condition: c.String(flagCondition),
+				Drains: c.String(flagDrains),
 			}
 			size := func(ctx context.Context, s *scenario.Study) (*result.Size, error) { return scenario.Size(ctx, s, q) }
 			return answer(c, size, render.Size)

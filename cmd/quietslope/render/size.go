@@ -88,6 +88,23 @@ func (v *sizeView) point(p *result.SizePoint) string {
 	return text
 }
 
+// given says in what condition and state of its drains the option was sized; "" for as built and its own figures.
+func (v *sizeView) given() string {
+	s := v.s
+	o := &result.Option{DrainsAs: s.DrainsAs, States: s.States}
+	own := s.DrainsAs == "as_new" && stateOf(o, "mean_between_flushes") == nil && stateOf(o, "mean_over_horizon") == nil ||
+		s.DrainsAs == "" || strings.HasPrefix(s.DrainsAs, "mean_")
+	switch named := s.Condition != scenario.AsBuilt; {
+	case named && own:
+		return fmt.Sprintf("In the condition %s", inQuotes(s.Condition))
+	case named:
+		return fmt.Sprintf("In the condition %s, with %s,", inQuotes(s.Condition), ownState(o))
+	case own:
+		return ""
+	}
+	return "With " + ownState(o)
+}
+
 func wholeMetres(x float64) string { return strconv.FormatFloat(x, 'f', 0, 64) }
 
 // inShort says in a few lines what the curve says.
@@ -110,8 +127,8 @@ func (v *sizeView) inShort() {
 		v.para("The target is %s. %s With %s it is %s.", v.targetText(), s.Reason, safe.Text, v.point(safe))
 	default:
 		the := "The"
-		if s.Condition != scenario.AsBuilt {
-			the = fmt.Sprintf("In the condition %s the", inQuotes(s.Condition))
+		if given := v.given(); given != "" {
+			the = given + " the"
 		}
 		v.para("The target is %s. %s %s %s of %s that meets it is %s: %s.", v.targetText(), the, widest, s.Vary, inQuotes(s.Option), a.Text, v.point(a))
 		v.margin(widest, fromSafe)
