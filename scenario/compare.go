@@ -168,7 +168,10 @@ func Compare(ctx context.Context, s *Study, q CompareQuery) (*result.Comparison,
 	n := len(s.Options)
 	all := make([]optionFigures, n*len(p.cases)) // the options of each case in turn
 	err = each(len(all), func(i int) (err error) {
-		all[i], err = p.rowFigures(ctx, p.cases[i/n].works[i%n], p.cases[i/n].rows[i%n])
+		asNew := p.cases[i/n].works[i%n]
+		if all[i], err = p.rowFigures(ctx, asNew, p.cases[i/n].rows[i%n]); err == nil {
+			err = p.peaks(ctx, &all[i], asNew)
+		}
 		return err
 	})
 	if err != nil {
@@ -259,6 +262,7 @@ type optionFigures struct {
 	trace  traceSummary
 	passed []stats.Exceedance // by band
 	losses []float64          // by counted year; nil where no band has a loss
+	fresh  *optionFigures     // with its drains as new, where the figures are a mean over their ages
 }
 
 // traceSummary is what the warnings ask of a replay, so that its series need not be kept.

@@ -23,22 +23,30 @@ func (p *prepared) rowFigures(ctx context.Context, asNew *works, row []weighted)
 		parts, weights = append(parts, f), append(weights, w.weight)
 	}
 	f := p.mean(asNew, parts, weights)
-	if len(row) > 1 { // outlets are sized by what drains carry as new
-		fresh, err := p.replayed(ctx, asNew)
-		if err != nil {
-			return optionFigures{}, err
-		}
-		for i := range f.Drains {
-			d := &fresh.Drains[i]
-			if d.PeakMMPerDay > f.Drains[i].PeakMMPerDay {
-				f.Drains[i].PeakMMPerDay, f.Drains[i].PeakLPerS = d.PeakMMPerDay, d.PeakLPerS
-			}
-		}
-	}
 	if o := asNew.option; o.drained() {
 		f.DrainsAs, _ = p.study.ownStates(o)
 	}
 	return f, nil
+}
+
+// peaks gives the drains of an option the peak flows that they have as new, where those are larger than at any of the ages that
+// its figures are a mean over: outlets are sized by them.
+func (p *prepared) peaks(ctx context.Context, f *optionFigures, asNew *works) error {
+	if f.DrainsAs == "" || f.DrainsAs == stateNew {
+		return nil
+	}
+	fresh, err := p.replayed(ctx, asNew)
+	if err != nil {
+		return err
+	}
+	for i := range f.Drains {
+		d := &fresh.Drains[i]
+		if d.PeakMMPerDay > f.Drains[i].PeakMMPerDay {
+			f.Drains[i].PeakMMPerDay, f.Drains[i].PeakLPerS = d.PeakMMPerDay, d.PeakLPerS
+		}
+	}
+	f.fresh = &fresh
+	return nil
 }
 
 // mean is the weighted mean of the figures of several replays of an option, which is not what a replay with mean drains
@@ -182,9 +190,14 @@ func (p *prepared) states(ctx context.Context, options []optionFigures, c *Condi
 	found := make([]result.State, len(jobs))
 	err := each(len(jobs), func(k int) error {
 		w := jobs[k].works
-		f, err := p.replayed(ctx, w)
-		if err != nil {
-			return p.inState(err, w)
+		var f optionFigures
+		if fresh := options[jobs[k].option].fresh; fresh != nil && w.state.name == stateNew {
+			f = *fresh
+		} else {
+			var err error
+			if f, err = p.replayed(ctx, w); err != nil {
+				return p.inState(err, w)
+			}
 		}
 		p.judge(&f, &f, r)
 		found[k] = stateOf(&f, w.state.name, w.effectShare())
