@@ -558,7 +558,7 @@ func (d *decoder) readScalar(n *node, s *shape, at Place) *value {
 			return bad("%s is out of range; write a value %s%s", quoted(n.text), s.limits.words(s), left)
 		}
 	case formYears:
-		years := v.num / 365.25
+		years := yearsOf(v.num)
 		if math.Abs(years-math.Round(years)) > 1e-9 || !s.limits.hold(math.Round(years)) {
 			meant := ""
 			if up := math.Ceil(years); years > 0 && s.limits.hold(up) {

@@ -81,7 +81,7 @@ func (d *decoder) costBlock(s *Study, o *Option, here *optionCost, v *value) {
 			}
 		}
 		if life.given && !life.bad {
-			c.Life = life.num / 365.25
+			c.Life = yearsOf(life.num)
 		}
 		d.drainsOf(c, o, b)
 		here.cost = *c

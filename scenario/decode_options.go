@@ -297,7 +297,7 @@ func (d *decoder) decline(v *value) *Decline {
 		return nil
 	}
 	every, restored := b.get("flushed_every"), b.get("restored_to")
-	years := func(v *value) float64 { return v.num / 365.25 }
+	years := func(v *value) float64 { return yearsOf(v.num) }
 	decline := &Decline{HalfLife: years(b.get("half_life")), Every: math.Inf(1), Restored: restored.or(1)}
 	if every.given {
 		decline.Every = years(every)

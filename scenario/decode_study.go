@@ -184,7 +184,7 @@ func (d *decoder) count(s *Study, b *blockValue) {
 	*c = Count{
 		Apart:      b.get("apart").num,
 		Confidence: b.get("confidence").num,
-		MeanBlock:  b.get("mean_block").num / 365.25,
+		MeanBlock:  yearsOf(b.get("mean_block").num),
 		DecideOn:   -1,
 		DecideBy:   b.get("decide_by").text,
 		DesignLife: int(b.get("design_life").or(0)),

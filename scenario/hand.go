@@ -140,10 +140,7 @@ func (h *hand) rowsOf(s *Study, options []handOption, q *HandQuery, r *handReade
 		if t.Equivalent = or(h.equivalent, t.Equivalent); h.computed {
 			t.Equivalent = math.NaN()
 		}
-		o := *of.option
-		o.Measures = append([]Measure(nil), o.Measures...)
-		o.Measures[of.place].Trench = &t
-		w := newWorks(s, &o, &asBuilt, asNew)
+		w := newWorks(s, of.option.withTrench(&t), &asBuilt, asNew)
 		w.ground.Consolidation = or(h.consolidation, w.ground.Consolidation)
 		rows = append(rows, handRow{trench: &t, ground: &w.ground, works: w})
 	}
@@ -292,10 +289,7 @@ func (h *hand) layout(to *result.DrainLayout, row *handRow) {
 		to.ConsolidationM2PerYear = &c
 	}
 	if w := row.works; w != nil {
-		to.Law = "linear"
-		if t.Quadratic {
-			to.Law = "quadratic"
-		}
+		to.Law = lawName(t.Quadratic)
 		if w.given != nil {
 			to.PorosityGiven = &w.given.CoverPorosity
 		}

@@ -58,11 +58,10 @@ func (h *hand) warnings(s *Study, rows []handRow, found *result.Drains) []result
 		{warn("implausible_drain_rate"), func(_ *handRow, f *result.DrainSpacing) bool { return !plausibleRate(f.ReactionFactorPerDay) },
 			"At a spacing of %s the reaction factor is outside the usual " + short(leastRate) + " to " + short(mostRate) + " /d. Check conductivity, porosity, spacing and their units."},
 		{note("spacing_unusual"), func(r *handRow, _ *result.DrainSpacing) bool {
-			ratio := r.trench.Spacing / r.trench.Depth
-			return !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio)
+			return r.trench.unusualSpacing()
 		}, "At a spacing of %s the drains are less than " + short(leastSpacingRatio) + " or more than " + short(mostSpacingRatio) + " times as far apart as they are deep; usual for trenches on slopes are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth."},
 		{warn("formula_range"), func(r *handRow, _ *result.DrainSpacing) bool {
-			return !given && !r.onBase() && (r.trench.Spacing < leastRadii*r.trench.Radius || r.under() < math.Pi*r.trench.Radius)
+			return !given && r.trench.thickDrains(r.under())
 		}, "At a spacing of %s the drains are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller radius, or the equivalent depth itself."},
 		{note("equivalent_depth_differs"), func(r *handRow, f *result.DrainSpacing) bool {
 			return given && len(rows) == 1 && f.ComputedDepthM != nil && math.Abs(r.trench.Equivalent-*f.ComputedDepthM) > roughEquivalent**f.ComputedDepthM
@@ -81,8 +80,7 @@ func (h *hand) warnings(s *Study, rows []handRow, found *result.Drains) []result
 			if f.SteadyHeadM == nil || *f.SteadyHeadM > r.trench.Depth+tie {
 				return false
 			}
-			ratio := *f.SteadyHeadM / r.trench.Head
-			return ratio > headFar || ratio < 1/headFar
+			return r.trench.farFromHead(*f.SteadyHeadM)
 		}, "At a spacing of %s the steady head under the recharge is less than half or more than twice the working head, for which the linear rate is worked out. Set the working head nearer to it, and read what Hooghoudt's equation says."},
 	} {
 		if of := where(held.holds); of != "" {

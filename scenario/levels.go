@@ -91,14 +91,25 @@ func (q *LevelsQuery) check(s *Study) error {
 	if q.Climate != "" && !sameName(q.Climate, AsRecorded) {
 		return unknownName("--climate", q.Climate, []string{AsRecorded})
 	}
-	conditions := []string{AsBuilt}
-	for i := range s.Conditions {
-		conditions = append(conditions, s.Conditions[i].Name)
+	_, err := s.conditionNamed(q.Condition)
+	return err
+}
+
+// conditionNamed is the condition that a query names, as built for "".
+func (s *Study) conditionNamed(name string) (Condition, error) {
+	all := append([]Condition{asBuilt}, s.Conditions...)
+	names := make([]string, len(all))
+	for i := range all {
+		names[i] = all[i].Name
 	}
-	if q.Condition != "" && indexOfName(conditions, q.Condition) < 0 {
-		return unknownName("--condition", q.Condition, conditions)
+	switch i := indexOfName(names, name); {
+	case name == "":
+		return asBuilt, nil
+	case i < 0:
+		return Condition{}, unknownName("--condition", name, names)
+	default:
+		return all[i], nil
 	}
-	return nil
 }
 
 func unknownName(flag, name string, known []string) error {

@@ -91,7 +91,7 @@ func Size(ctx context.Context, s *Study, q SizeQuery) (*result.Size, error) {
 
 // newSizing finds the option and the key, and reads the range.
 func newSizing(s *Study, q SizeQuery) (*sizing, error) {
-	z := &sizing{study: s, key: q.Vary, condition: asBuilt}
+	z := &sizing{study: s, key: q.Vary}
 	if s.Count.DecideOn < 0 {
 		return nil, s.Fault(s.PlaceOf("count.decide_on"), "several bands are given, so say which of them the option is sized on: give decide_on")
 	}
@@ -99,17 +99,10 @@ func newSizing(s *Study, q SizeQuery) (*sizing, error) {
 	if t := s.Count.Target; t != nil {
 		z.measure = measureNamed(t.Measure)
 	}
-	names := []string{AsBuilt}
-	for i := range s.Conditions {
-		names = append(names, s.Conditions[i].Name)
-		if sameName(s.Conditions[i].Name, q.Condition) {
-			z.condition = s.Conditions[i]
-		}
-	}
-	if q.Condition != "" && indexOfName(names, q.Condition) < 0 {
-		return nil, unknownName("--condition", q.Condition, names)
-	}
 	var err error
+	if z.condition, err = s.conditionNamed(q.Condition); err != nil {
+		return nil, err
+	}
 	if z.option, err = s.optionToVary(q.Option, q.Vary); err != nil {
 		return nil, err
 	}

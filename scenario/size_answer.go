@@ -90,10 +90,10 @@ func (z *sizing) describe(ctx context.Context, found *result.Size) error {
 	if err != nil {
 		return err
 	}
-	if options[0].States, err = z.states(ctx, shown.Value); err != nil {
+	f := &options[0]
+	if f.States, err = z.states(ctx, shown.Value, p, options); err != nil {
 		return err
 	}
-	f := &options[0]
 	found.Measures, found.DrainsAs = f.Measures, f.DrainsAs
 	if found.Answer != nil {
 		found.States, found.TimeToEffect = f.States, f.trace.works.timeToEffect()
@@ -128,13 +128,15 @@ func (z *sizing) describe(ctx context.Context, found *result.Size) error {
 	return nil
 }
 
-// states are the deciding figures of the option with a value in every state of its drains, whichever it is sized for.
-func (z *sizing) states(ctx context.Context, value float64) ([]result.State, error) {
-	own := *z
-	own.drains = nil
-	p, options, err := own.replay(ctx, value)
-	if err != nil {
-		return nil, err
+// states are the deciding figures of the option with a value in every state of its drains, whichever it is sized for. It was
+// replayed in that one, which need not be its own.
+func (z *sizing) states(ctx context.Context, value float64, p *prepared, options []optionFigures) (_ []result.State, err error) {
+	if z.drains != nil {
+		own := *z
+		own.drains = nil
+		if p, options, err = own.replay(ctx, value); err != nil {
+			return nil, err
+		}
 	}
 	err = p.states(ctx, options, &z.condition, z.resamples)
 	return options[0].States, err
@@ -147,7 +149,7 @@ func (z *sizing) answerWarnings(ws *warnings, found *result.Size) {
 		return w
 	}
 	if t := z.study.Options[z.option].drains("trench_drains"); t != nil && !math.IsNaN(t.Trench.Equivalent) && t.Trench.Equivalent > 0 &&
-		(z.key == "trench_drains.spacing" || z.key == "trench_drains.depth") {
+		(z.key == variedSpacing || z.key == "trench_drains.depth") {
 		w := warn("equivalent_depth_fixed")
 		w.Option = found.Option
 		ws.add(w, "The equivalent_depth given, %s m, serves every value, though it changes with spacing and depth. Leave it out to have it computed for each.", short(t.Trench.Equivalent))

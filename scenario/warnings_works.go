@@ -156,16 +156,16 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 	found := short(math.Round(1000*computed) / 1000)
 	const check = "Check for which spacing and radius it was worked out, or leave the key out."
 	switch {
-	case given && computed > 0 && w.option.varied == "trench_drains.spacing":
+	case given && computed > 0 && w.option.varied == variedSpacing:
 		ws.add(at(note("equivalent_depth_fixed")), "One equivalent_depth, %s m, serves all spacings of the list, though it grows with the spacing. Leave the key out, and it is computed for each.", short(t.Equivalent))
 	case given && t.Equivalent > (1+roughEquivalent)*computed:
 		ws.add(at(warn("equivalent_depth_differs")), "equivalent_depth is %s m, and for a drain of %s m radius only %s m are computed: the rate may be too high. "+check, short(t.Equivalent), short(t.Radius), found)
 	case given && t.Equivalent < (1-roughEquivalent)*computed:
 		ws.add(at(note("equivalent_depth_differs")), "equivalent_depth is %s m; for a drain of %s m radius %s m are computed. "+check, short(t.Equivalent), short(t.Radius), found)
-	case !given && under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadii*t.Radius):
+	case !given && t.thickDrains(under):
 		ws.add(at(warn("formula_range")), "Drains of %s m radius are not thin against the ground between or below them, for which the formula of the equivalent depth is made. Give a smaller drain_radius, or equivalent_depth itself.", short(t.Radius))
 	}
-	if ratio := t.Spacing / t.Depth; !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio) {
+	if ratio := t.Spacing / t.Depth; t.unusualSpacing() {
 		digits := 0 // two significant ones
 		if ratio < leastSpacingRatio {
 			digits = 1 - int(math.Floor(math.Log10(ratio)))
@@ -173,6 +173,23 @@ func layoutWarnings(ws *warnings, at func(result.Warning) result.Warning, w *wor
 		ws.add(at(note("spacing_unusual")), "The trenches are %s times as far apart as they are deep; usual are 2 to 6 times (Hutchinson 1977, quoted from memory). Check spacing and depth.", strconv.FormatFloat(ratio, 'f', digits, 64))
 	}
 	poresWarning(ws, at(warn("conductivity_and_porosity")), l.Above, l.Porosity)
+}
+
+// thickDrains tells whether drains are too thick, against the ground between them or below them (m), for the formula of the
+// equivalent depth. With no ground below them there is none to be worked out.
+func (t *TrenchDrains) thickDrains(under float64) bool {
+	return under > tie && (under < math.Pi*t.Radius || t.Spacing < leastRadii*t.Radius)
+}
+
+// unusualSpacing tells whether trenches are much closer together or farther apart than their depth lets expect.
+func (t *TrenchDrains) unusualSpacing() bool {
+	ratio := t.Spacing / t.Depth
+	return !(ratio >= leastSpacingRatio && ratio <= mostSpacingRatio)
+}
+
+// farFromHead tells whether a height of the water over trenches, m, differs much from the working head of their linear rate.
+func (t *TrenchDrains) farFromHead(height float64) bool {
+	return height*headFar < t.Head || height > headFar*t.Head
 }
 
 // poresWarning holds a conductivity, m/d, and a drainable porosity against each other.
@@ -290,7 +307,7 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 			continue
 		}
 		head := drain.Midway * *f.Drains[k].MeanHeadM
-		if head*headFar >= trench.Trench.Head && head <= headFar*trench.Trench.Head {
+		if !trench.Trench.farFromHead(head) {
 			continue
 		}
 		j := job{option: o, high: head > trench.Trench.Head, linear: f.Decision.Value}
@@ -342,10 +359,7 @@ func (p *prepared) lawWarnings(ctx context.Context, ws *warnings, options []opti
 
 // byQuadraticLaw is an option with trenches, given by a spacing, that follow the quadratic law.
 func byQuadraticLaw(o *Option) *Option {
-	other := *o
-	other.Measures = slices.Clone(o.Measures)
-	m := other.drains("trench_drains")
-	trench := *m.Trench
-	trench.Quadratic, m.Trench = true, &trench
-	return &other
+	t := *o.drains("trench_drains").Trench
+	t.Quadratic = true
+	return o.withTrench(&t)
 }

@@ -3,6 +3,7 @@ package scenario
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -377,9 +378,19 @@ func finite(x float64) *float64 {
 
 // law names how a drain's outflow grows with the height of the water above it. It is the study's word, which a drain keeps
 // that has stopped.
-func (d *drainage) law() string {
-	if d.quadratic {
+func (d *drainage) law() string { return lawName(d.quadratic) }
+
+func lawName(quadratic bool) string {
+	if quadratic {
 		return "quadratic"
 	}
 	return "linear"
+}
+
+// withTrench is the option with other trench drains in place of its own.
+func (o *Option) withTrench(t *TrenchDrains) *Option {
+	other := *o
+	other.Measures = slices.Clone(o.Measures)
+	other.drains("trench_drains").Trench = t
+	return &other
 }

@@ -44,6 +44,14 @@ func (u unit) sum(x float64, ci *result.Interval) (value, limits string) {
 	return ranged(x, scaled(ci, 1/u.size), leastSum)
 }
 
+// some is sum for a figure that may not be there.
+func (u unit) some(x *float64, ci *result.Interval) (value, limits string) {
+	if x == nil {
+		return "", ""
+	}
+	return u.sum(*x, ci)
+}
+
 // sumText is a sum in a sentence, with its range and the currency.
 func (v *view) sumText(x float64, ci *result.Interval) string {
 	largest := math.Abs(x)
@@ -217,16 +225,16 @@ func (v *view) worth(c *result.Case, options []*result.Option) {
 func (v *view) lossColumns(u unit, c *result.Case) []columnOf {
 	return []columnOf{
 		{"losses:", "", "a year", false, func(o *result.Option) (string, string) {
-			if o.Cost == nil || o.Cost.AnnualLoss == nil {
+			if o.Cost == nil {
 				return "", ""
 			}
-			return u.sum(*o.Cost.AnnualLoss, o.Cost.AnnualLossCI)
+			return u.some(o.Cost.AnnualLoss, o.Cost.AnnualLossCI)
 		}},
 		{"losses:", "", "net benefit", false, func(o *result.Option) (string, string) {
-			if o.Cost == nil || o.Cost.NetBenefit == nil {
+			if o.Cost == nil {
 				return "", ""
 			}
-			return u.sum(*o.Cost.NetBenefit, o.Cost.NetBenefitCI)
+			return u.some(o.Cost.NetBenefit, o.Cost.NetBenefitCI)
 		}},
 		{"benefit-cost:", "against", v.baseline, false, func(o *result.Option) (string, string) { return v.ratio(c, o), "" }},
 	}
@@ -330,12 +338,6 @@ func (v *view) avoiding(options []*result.Option) {
 		largest.see(o.Cost.BreakEvenLoss, nil)
 	}
 	u := inUnit(float64(largest), 1e4)
-	some := func(x *float64, ci *result.Interval) (string, string) {
-		if x == nil {
-			return "", ""
-		}
-		return u.sum(*x, ci)
-	}
 	count := func(n *int) (string, string) {
 		if n == nil {
 			return "", ""
@@ -369,9 +371,9 @@ func (v *view) avoiding(options []*result.Option) {
 			}
 			return duration(o.TimeToEffect.Days), ""
 		}},
-		{"avoided:", "", "per day", false, func(o *result.Option) (string, string) { return some(o.Cost.PerDayAvoided, o.Cost.PerDayAvoidedCI) }},
+		{"avoided:", "", "per day", false, func(o *result.Option) (string, string) { return u.some(o.Cost.PerDayAvoided, o.Cost.PerDayAvoidedCI) }},
 		{"avoided:", "", "per event", false, func(o *result.Option) (string, string) {
-			return some(o.Cost.PerEventAvoided, o.Cost.PerEventAvoidedCI)
+			return u.some(o.Cost.PerEventAvoided, o.Cost.PerEventAvoidedCI)
 		}},
 		{"breaks", "", "even at", false, func(o *result.Option) (string, string) {
 			if o.Cost.BreakEvenLoss == nil {

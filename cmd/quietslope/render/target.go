@@ -1,6 +1,7 @@
 package render
 
 import (
+	"cmp"
 	"fmt"
 	"slices"
 	"strings"
@@ -142,14 +143,7 @@ func actingAfter(c *result.Case, keep func(option int) bool) []string {
 		}
 	}
 	slices.SortStableFunc(all, func(a, b together) int {
-		x, y := c.Options[a.options[0]].TimeToEffect.Days, c.Options[b.options[0]].TimeToEffect.Days
-		switch {
-		case x < y:
-			return -1
-		case x > y:
-			return 1
-		}
-		return 0
+		return cmp.Compare(c.Options[a.options[0]].TimeToEffect.Days, c.Options[b.options[0]].TimeToEffect.Days)
 	})
 	var parts []string
 	for _, t := range all {
