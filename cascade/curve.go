@@ -156,15 +156,7 @@ func (c *curve) move(p *pair, u2, t float64) motion {
 		return m
 	}
 	m.u1 += c.rise(t)
-	var sum, squares, behind, volume float64
-	for i, x := range gaussAt {
-		d := c.rise(t * x)
-		wd := gaussWeight[i] * d
-		sum += wd
-		squares += wd * d
-		behind += l.behind[i] * d
-		volume += l.volume[i] * d
-	}
+	sum, squares, behind, volume := c.gauss(&l, t)
 	sum *= t
 	m.volume1 += sum
 	m.squares1 += 2*c.u*sum + squares*t
@@ -203,6 +195,20 @@ func (p *pair) lag(t float64) lag {
 		l.volume[i] = w * left * exp01(-p.rate2*left)
 	}
 	return l
+}
+
+// gauss sums up the rise d of u1 at the points of Gauss's formula over a time t within a part: its mean, that of its square, and
+// what it adds to the deep store and to that store's integral by the lag of t.
+func (c *curve) gauss(l *lag, t float64) (mean, squares, behind, volume float64) {
+	for i, x := range gaussAt {
+		d := c.rise(t * x)
+		wd := gaussWeight[i] * d
+		mean += wd
+		squares += wd * d
+		behind += l.behind[i] * d
+		volume += l.volume[i] * d
+	}
+	return mean, squares, behind, volume
 }
 
 // crossing returns the time in (0, h] at which the deep store, which is at u2, comes to target, as [pair.crossing] does.
@@ -262,15 +268,7 @@ func (r *Run) glideCurved(t *table, perDay float64, depths, cover, deep []float6
 		}
 		still := p.b + p.perc*u1
 		next1 := u1 + c.rise(days)
-		var d1, dd1, behind, volume float64
-		for i, x := range gaussAt {
-			d := c.rise(days * x)
-			wd := gaussWeight[i] * d
-			d1 += wd
-			dd1 += wd * d
-			behind += l.behind[i] * d
-			volume += l.volume[i] * d
-		}
+		d1, dd1, behind, volume := c.gauss(&l, days)
 		next2 := l.e2*u2 + l.f2*still + behind
 		far := u2 + l.f2*(still-p.rate2*u2)
 		if !(next1 >= 0 && next1 <= p.width1 && next2 >= 0 && next2 <= p.width2 && far >= 0 && far <= p.width2) {
